@@ -1,0 +1,18 @@
+"""bothways: closed batch reactors by kinetics that cannot contradict thermodynamics.
+
+Every reverse rate is made from the forward rate and K(T); see `run`, `read_case`, `read_mechanism`.
+"""
+
+from .batch import Remark, program_version, run
+from .case import Case, build_case, read_case
+from .errors import BothwaysError, InputError, SolverError
+from .mechanism import Mechanism, bundled_cases, bundled_mechanisms, read_mechanism, write_mechanism
+from .mechanism import build as build_mechanism
+from .trajectory import Trajectory, read_trajectory, write_trajectory
+from .vessel import Equations
+
+__version__ = program_version()
+
+__all__ = ["BothwaysError", "Case", "Equations", "InputError", "Mechanism", "Remark", "SolverError", "Trajectory",
+           "build_case", "build_mechanism", "bundled_cases", "bundled_mechanisms", "read_case", "read_mechanism",
+           "read_trajectory", "run", "write_mechanism", "write_trajectory"]

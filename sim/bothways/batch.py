@@ -1,0 +1,79 @@
+"""A batch run: the equations of a case integrated under the recorder's eyes, and the trajectory that results."""
+
+import warnings
+from collections.abc import Callable
+from importlib.metadata import PackageNotFoundError, version
+from typing import Any
+
+import numpy as np
+
+from .case import MARGIN_WARN, Case, temperatures_outside
+from .integrate import Outcome, Problem, Status, integrate
+from .mechanism.toml_writer import to_toml
+from .milestones import milestones
+from .recorder import POTENTIALS, Recorder
+from .trajectory import Trajectory
+from .vessel import Equations
+
+TOLD_JOINS = 1e-2
+"""Joins shifted by more than this in h/RT or s/R are remarked on at a run."""
+
+
+class Remark(UserWarning):
+    """Something a user should know of a run that did not stop it."""
+
+
+def program_version() -> str:
+    """The version of the installed program."""
+    try:
+        return version("bothways")
+    except PackageNotFoundError:
+        return "0 (not installed)"
+
+
+def run(case: Case, told: Callable[[int, float, float], None] | None = None) -> Trajectory:
+    """Runs a case to its end and returns the trajectory.
+
+    told : called with (steps, time [s], temperature [K]) at each accepted step.
+    A run that the solver gave up, or that Ctrl-C ended, returns what there is with `complete` false and `reason`
+    saying why. Remarks (species outside the range of their data, joins far apart) are given as warnings.
+    """
+    equations = case.equations()
+    recorder = Recorder(case, equations, told)
+    _remark(case, [case.charge.temperature])
+    outcome = integrate(_problem(case, equations), case.method, recorder)
+    _remark(case, [row[1] for row in recorder.rows[1:]])
+    return _trajectory(case, equations, recorder, outcome)
+
+
+def _problem(case: Case, equations: Equations) -> Problem:
+    charge = case.charge
+    part = charge.concentration if case.holds == "volume" else charge.amount
+    atol = np.append(np.full(part.size, case.atol * float(np.sum(part))), 1e-12 * charge.temperature)
+    stops = tuple(t for t in case.also_at if t < case.end)
+    return Problem(equations.f, equations.J, np.append(part, charge.temperature), case.end, case.rtol, atol, stops)
+
+
+def _remark(case: Case, temperatures: list[float]) -> None:
+    """Warns of species whose data end more than MARGIN_WARN before the temperatures met, once each way."""
+    if not temperatures:
+        return
+    for temperature in {min(temperatures), max(temperatures)}:
+        outside = temperatures_outside(case.mechanism, temperature, MARGIN_WARN)
+        if outside:
+            warnings.warn(f"at {temperature:.0f} K the run is outside the range of the thermochemical data of {outside}; "
+                          "they continue with constant heat capacity", Remark, stacklevel=3)
+
+
+def _trajectory(case: Case, equations: Equations, recorder: Recorder, outcome: Outcome) -> Trajectory:
+    columns: dict[str, Any] = recorder.columns()
+    name, units = POTENTIALS[case.heat, case.holds]
+    statistics = {"method": case.method, "rtol": case.rtol, "atol": case.atol, "status": outcome.status.value,
+                  **outcome.counts, "largest_potential_rise": recorder.largest_rise()}
+    m = case.mechanism
+    return Trajectory(
+        **columns, potential_name=name, potential_units=units, species=m.names, molar_mass=m.molar_mass,
+        reactions=tuple(str(r.equation) for r in m.reactions), mechanism_name=m.name, mechanism_text=to_toml(m.document),
+        case_text=to_toml(case.document), sources=m.sources, statistics=statistics,
+        milestones=milestones(case, equations, columns), program_version=program_version(),
+        complete=outcome.status is Status.FINISHED, reason=outcome.reason)

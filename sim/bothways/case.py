@@ -1,0 +1,169 @@
+"""A case: what is charged, into which vessel, until when. Read from a TOML file or a plain dict, checked whole."""
+
+from collections.abc import Mapping
+from dataclasses import dataclass, field
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+
+from .charge import Charge, read_charge
+from .contents import Contents
+from .entry import Entry
+from .errors import InputError, nearest
+from .integrate import DEFAULT_METHOD, METHODS
+from .mechanism import Mechanism, bundled_cases, read_mechanism
+from .mechanism.files import mechanism_path, read_toml
+from .mechanism.model import copy_document
+from .vessel import HEAT, HOLDS, Equations
+
+MARGIN_WARN, MARGIN_ERROR = 10.0, 500.0
+"""Temperatures so far outside a fit's range [K] are remarked on, or refused."""
+
+
+@dataclass(frozen=True)
+class Case:
+    """One batch, SI: volume [m3] and pressure [Pa] at the start, times [s].
+
+    own_heat_capacity : [J/K] of the vessel, from the thermal inertia of adiabatic calorimetry.
+    atol : mole fraction below which accuracy is not asked [-].
+    """
+
+    mechanism: Mechanism
+    holds: str
+    heat: str
+    charge: Charge
+    end: float
+    rtol: float = 1e-6
+    atol: float = 1e-12
+    method: str = DEFAULT_METHOD
+    thermal_inertia: float = 1.0
+    output: Path | None = None
+    also_at: tuple[float, ...] = ()
+    document: Mapping[str, Any] = field(default_factory=dict, repr=False)
+    file: object = field(default=None, repr=False, compare=False)
+
+    @property
+    def own_heat_capacity(self) -> float:
+        """Heat capacity of the vessel itself [J/K]: (φ - 1) times that of the contents at the start."""
+        if self.thermal_inertia == 1.0:
+            return 0.0
+        c = self.charge
+        return (self.thermal_inertia - 1.0) * Contents(self.mechanism).heat_capacity(c.amount, c.temperature, self.holds)
+
+    def equations(self) -> Equations:
+        """f and J of this case's vessel."""
+        own = self.own_heat_capacity / (self.charge.volume if self.holds == "volume" else 1.0)
+        return Equations(self.mechanism, self.holds, self.heat, self.charge.pressure, own)
+
+
+def read_case(name: str | Path) -> Case:
+    """The case in a file, or a bundled one by its name.
+
+    Raises InputError: no such file or name (with the nearest), and every fault in case or mechanism.
+    """
+    bundled = bundled_cases()
+    if str(name) in bundled:
+        return build_case(read_toml(bundled[str(name)]), bundled[str(name)])
+    path = Path(name)
+    if not path.exists() and path.suffix != ".toml" and "/" not in str(name):
+        raise InputError(f"no bundled case and no file '{name}' ({nearest(str(name), bundled)})",
+                         remedy="'bothways mechanisms' lists the bundled cases")
+    return build_case(read_toml(path), path)
+
+
+def build_case(document: Mapping[str, Any], file: object = None, mechanism: Mechanism | None = None) -> Case:
+    """The case that a document states, with the keys of a case file.
+
+    mechanism : used instead of the one the key case.mechanism names, which may then be left out.
+    """
+    top = Entry(document, "", file)
+    mechanism = _mechanism(top, mechanism)
+    vessel = top.table("vessel", {})
+    holds = vessel.text("holds", "volume", choices=HOLDS)
+    heat = vessel.text("heat", "adiabatic", choices=HEAT)
+    inertia = vessel.number("thermal_inertia", 1.0, "positive")
+    if inertia < 1.0 or (inertia > 1.0 and heat != "adiabatic"):
+        raise vessel.error(f"{inertia} for a vessel that is {heat}", key="thermal_inertia",
+                           expected="a number from 1 upwards, in an adiabatic vessel")
+    volume = vessel.quantity("volume", "volume", None, "positive")
+    vessel.done()
+    start = top.table("start")
+    charge = read_charge(start, mechanism, holds, volume)
+    _check_temperature(start, mechanism, charge)
+    case = Case(mechanism, holds, heat, charge, _end(top), *_solver(top), inertia, *_output(top, file),
+                document=copy_document(document), file=file)
+    top.done()
+    return case
+
+
+def _mechanism(top: Entry, given: Mechanism | None) -> Mechanism:
+    head = top.table("case", {}) if given else top.table("case")
+    head.text("title", "")
+    name = head.text("mechanism", "") if given else head.text("mechanism")
+    head.done()
+    if given:
+        return given
+    folder = Path(str(top.file)).parent if top.file else Path()
+    try:
+        return read_mechanism(mechanism_path(name, folder))
+    except InputError as err:
+        if err.file is None:
+            raise head.error(err.problem, remedy=err.remedy, key="mechanism") from None
+        raise
+
+
+def _end(top: Entry) -> float:
+    until = top.table("until")
+    end = until.quantity("time", "time", sign="positive")
+    until.done()
+    return end
+
+
+def _solver(top: Entry) -> tuple[float, float, str]:
+    solver = top.table("solver", {})
+    rtol, atol = solver.number("rtol", 1e-6, "positive"), solver.number("atol", 1e-12, "positive")
+    for key, value, low, high in (("rtol", rtol, 1e-13, 1e-2), ("atol", atol, 1e-40, 1e-3)):
+        if not low <= value <= high:
+            raise solver.error(f"{value}", expected=f"a number from {low} to {high}", key=key)
+    method = solver.text("method", DEFAULT_METHOD, choices=METHODS)
+    solver.done()
+    return rtol, atol, method
+
+
+def _output(top: Entry, file: object) -> tuple[Path | None, tuple[float, ...]]:
+    output = top.table("output", {})
+    name = output.text("file", None)
+    also = output.get("also_at", [])
+    if not isinstance(also, (list, tuple)):
+        raise output.error(f"{also!r} is not a list", expected='times such as ["1 ms", "2 ms"]', key="also_at")
+    times = tuple(sorted({output.convert(t, "time", "also_at", "positive") for t in also}))
+    output.done()
+    bundled = file in bundled_cases().values()
+    folder = Path(str(file)).parent if file and not bundled else Path()
+    return (folder / name if name else None), times
+
+
+def _check_temperature(start: Entry, mechanism: Mechanism, charge: Charge) -> None:
+    lowest = Equations(mechanism).tables.lowest_temperature
+    if charge.temperature < lowest:
+        raise start.error(f"{charge.temperature:g} K", expected=f"at least {lowest:g} K for this mechanism: below, "
+                          "its equilibrium constants leave the range of the arithmetic", key="temperature")
+    outside = temperatures_outside(mechanism, charge.temperature, MARGIN_ERROR)
+    if outside:
+        raise start.error(f"{charge.temperature:g} K is more than {MARGIN_ERROR:g} K outside the thermochemical data "
+                          f"of {outside}", expected="a temperature nearer to the range of the data", key="temperature")
+
+
+def temperatures_outside(mechanism: Mechanism, temperature: float, margin: float) -> str:
+    """The species whose data end more than `margin` [K] before a temperature [K], as text; empty if none."""
+    names = [s.name for s in mechanism.species
+             if not s.fit_range[0] - margin <= temperature <= s.fit_range[1] + margin]
+    more = f" and {len(names) - 6} more" if len(names) > 6 else ""
+    return ", ".join(names[:6]) + more
+
+
+def charged(case: Case) -> dict[str, float]:
+    """Mole fractions of what is charged."""
+    x = case.charge.amount / np.sum(case.charge.amount)
+    return {name: float(x[k]) for k, name in enumerate(case.mechanism.names) if x[k] > 0}

@@ -1,0 +1,29 @@
+"""bothways mechanisms: what is bundled."""
+
+import argparse
+import textwrap
+
+from ..mechanism import bundled_cases, bundled_mechanisms, read_mechanism
+from ..mechanism.files import read_toml
+from . import DONE
+
+
+def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
+    """Adds the verb to the parser."""
+    parser = verbs.add_parser("mechanisms", help="list the bundled mechanisms and cases",
+                              description="Lists the bundled mechanisms with phase, size and source, and the bundled "
+                              "cases.", epilog="example: bothways mechanisms")
+    parser.set_defaults(act=act)
+
+
+def act(chosen: argparse.Namespace) -> int:
+    """Carries out the verb."""
+    for name in bundled_mechanisms():
+        m = read_mechanism(name)
+        print(f"{name:<18}{m.phase}, {len(m.species)} species, {len(m.reactions)} reactions")
+        for source in m.sources:
+            print(textwrap.indent(textwrap.fill(source, 90), " " * 18))
+    print("\nbundled cases (an invented scenario), for 'bothways run NAME':")
+    for name, path in bundled_cases().items():
+        print(f"{name:<28}{read_toml(path)['case'].get('title', '')}")
+    return DONE

@@ -1,0 +1,81 @@
+"""Energy, entropy and potentials of a vessel's contents, from species potentials alone."""
+
+from functools import cached_property
+
+import numpy as np
+
+from .constants import GAS_CONSTANT as R
+from .kernels.thermal import polynomials
+from .mechanism import Mechanism, Tables, build_tables, table_view
+
+
+class Contents:
+    """Functions of state of an ideal-gas mixture over a mechanism's species.
+
+    amounts n are (N) [mol], temperatures [K], volumes [m3].
+    """
+
+    def __init__(self, mechanism: Mechanism, tables: Tables | None = None) -> None:
+        self.mechanism = mechanism
+        self.tables = tables or build_tables(mechanism)
+
+    @cached_property
+    def _arrays(self) -> tuple[np.ndarray, ...]:
+        return tuple(table_view(self.tables, name) for name in ("range_start", "range_top", "range_row"))
+
+    def molar(self, temperature: float) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+        """g°/RT, h°/RT and cp°/R of every species [-], (N) each, at the mechanism's standard pressure."""
+        out = np.empty((4, len(self.mechanism.species)))
+        polynomials(temperature, *self._arrays, *out)
+        return out[0], out[1], out[2]
+
+    def enthalpy(self, n: np.ndarray, temperature: float) -> float:
+        """H [J]."""
+        return float(R * temperature * (n @ self.molar(temperature)[1]))
+
+    def internal_energy(self, n: np.ndarray, temperature: float) -> float:
+        """U [J]."""
+        return float(R * temperature * (n @ (self.molar(temperature)[1] - 1.0)))
+
+    def heat_capacity(self, n: np.ndarray, temperature: float, holds: str) -> float:
+        """C_V or C_p [J/K]."""
+        less = 1.0 if holds == "volume" else 0.0
+        return float(R * (n @ (self.molar(temperature)[2] - less)))
+
+    def energy(self, n: np.ndarray, temperature: float, holds: str) -> float:
+        """What an adiabatic vessel conserves: U where the volume is held, H where the pressure is [J]."""
+        return self.internal_energy(n, temperature) if holds == "volume" else self.enthalpy(n, temperature)
+
+    def chemical_potentials(self, n: np.ndarray, temperature: float, volume: float) -> np.ndarray:
+        """μ_i/RT [-], (N); -inf for an absent species."""
+        with np.errstate(divide="ignore"):
+            ratio = np.log(n * (R * temperature / (volume * self.mechanism.standard_pressure)))
+        return self.molar(temperature)[0] + ratio
+
+    def gibbs(self, n: np.ndarray, temperature: float, volume: float) -> float:
+        """G = Σ n_i μ_i [J]."""
+        mu = self.chemical_potentials(n, temperature, volume)
+        return float(R * temperature * np.sum(n[n > 0] * mu[n > 0]))
+
+    def helmholtz(self, n: np.ndarray, temperature: float, volume: float) -> float:
+        """A = G - pV [J]."""
+        return self.gibbs(n, temperature, volume) - float(np.sum(n)) * R * temperature
+
+    def entropy(self, n: np.ndarray, temperature: float, volume: float) -> float:
+        """S = (H - G)/T [J/K]."""
+        return (self.enthalpy(n, temperature) - self.gibbs(n, temperature, volume)) / temperature
+
+    def temperature_of(self, energy: float, n: np.ndarray, guess: float, holds: str,
+                       own_heat_capacity: float = 0.0, reference: float = 0.0) -> float:
+        """The temperature [K] at which contents and vessel hold `energy` [J]: Newton's method from a near guess.
+
+        own_heat_capacity [J/K] is the vessel's, counted from the reference temperature [K].
+        """
+        T = guess
+        for _ in range(50):
+            missing = energy - self.energy(n, T, holds) - own_heat_capacity * (T - reference)
+            step = missing / (self.heat_capacity(n, T, holds) + own_heat_capacity)
+            T = min(max(T + step, 0.5 * T), 2.0 * T)
+            if abs(step) <= 4e-16 * T:
+                break
+        return T

@@ -1,0 +1,54 @@
+"""The door to scipy's implicit methods: the independent check of every other integrator.
+
+BDF of orders 1 to 5 (L.F. Shampine, M.W. Reichelt, SIAM J. Sci. Comput. 18 (1997) 1, doi:10.1137/S1064827594276424)
+and Radau IIA of order 5 (E. Hairer, G. Wanner, Solving Ordinary Differential Equations II, 2nd ed., 1996, IV.8).
+"""
+
+import time
+import warnings
+
+import numpy as np
+from scipy.integrate import BDF, OdeSolver, Radau
+
+from .interface import MOST_STEPS, Monitor, Outcome, Problem, Status
+
+METHODS = {"BDF": BDF, "Radau": Radau}
+
+
+def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
+    """Integrates with scipy's `method`, landing on every stop; Ctrl-C ends it between steps."""
+    began = time.perf_counter()
+    outcome = Outcome(Status.FINISHED, 0.0)
+    steps = 0
+    try:
+        with warnings.catch_warnings(), np.errstate(all="ignore"):
+            warnings.simplefilter("ignore")  # trial states may leave the range of exp; they are rejected
+            solver = METHODS[method](problem.f, 0.0, problem.start, problem.end, rtol=problem.rtol,
+                                     atol=problem.atol, jac=problem.J)
+            for stop in (*problem.stops, problem.end):
+                steps = _advance(solver, stop, monitor, outcome, steps)
+    except KeyboardInterrupt:
+        outcome.status, outcome.reason = Status.INTERRUPTED, f"interrupted at {outcome.time:.6g} s"
+    outcome.counts |= {"steps": steps, "seconds": time.perf_counter() - began}
+    if outcome.time > 0 or steps:
+        outcome.counts |= {"f_evaluations": int(solver.nfev), "J_evaluations": int(solver.njev),
+                           "factorisations": int(solver.nlu)}
+    return outcome
+
+
+def _advance(solver: OdeSolver, stop: float, monitor: Monitor, outcome: Outcome, steps: int) -> int:
+    """Steps until `stop`, unless the solver gave up before."""
+    solver.t_bound = stop
+    if outcome.status is not Status.FINISHED:
+        return steps
+    solver.status = "running"
+    while solver.status == "running":
+        message = solver.step()
+        if solver.status == "failed" or steps == MOST_STEPS:
+            outcome.status = Status.GAVE_UP
+            outcome.reason = f"at {outcome.time:.6g} s: " + (message or f"{MOST_STEPS} steps were not enough")
+            break
+        steps += 1
+        outcome.time = float(solver.t)
+        monitor.accepted(outcome.time, solver.y.copy())
+    return steps

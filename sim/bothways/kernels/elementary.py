@@ -1,0 +1,38 @@
+"""exp over arrays, written so that the compiler turns the loop into vector instructions."""
+
+from .compiled import bits_to_float, compiled, float_to_bits
+
+_LOG2E = 1.4426950408889634
+_LN2_HIGH = 0.6931471803691238
+_LN2_LOW = 1.9082149292705877e-10
+_ROUND = 6755399441055744.0  # 1.5 · 2^52: adding it rounds to a whole number that stands in the low bits
+SMALLEST, LARGEST = -708.0, 709.0
+
+
+@compiled
+def exp_array(x, out):
+    """exp(x) element by element; arguments are limited to -708…709, NaN stays NaN.
+
+    Reduction by ln 2 in two parts (W.J. Cody, W. Waite, Software Manual for the Elementary Functions, 1980,
+    ch. 6) and the Taylor polynomial of degree 13 on |r| ≤ ln 2/2: truncation 4e-18, error below 1 ulp.
+    """
+    for i in range(x.size):
+        v = min(max(x[i], SMALLEST), LARGEST)
+        t = v * _LOG2E + _ROUND
+        k = t - _ROUND
+        r = (v - k * _LN2_HIGH) - k * _LN2_LOW
+        p = 1.0 / 6227020800.0
+        p = p * r + 1.0 / 479001600.0
+        p = p * r + 1.0 / 39916800.0
+        p = p * r + 1.0 / 3628800.0
+        p = p * r + 1.0 / 362880.0
+        p = p * r + 1.0 / 40320.0
+        p = p * r + 1.0 / 5040.0
+        p = p * r + 1.0 / 720.0
+        p = p * r + 1.0 / 120.0
+        p = p * r + 1.0 / 24.0
+        p = p * r + 1.0 / 6.0
+        p = p * r + 0.5
+        p = p * r + 1.0
+        p = p * r + 1.0
+        out[i] = p * bits_to_float((float_to_bits(t) + 1023) << 52)

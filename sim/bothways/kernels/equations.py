@@ -1,0 +1,259 @@
+"""The equations of closed vessels: right-hand side and exact Jacobian, plain and bordered.
+
+State of constant volume: concentrations c_1…c_N [mol/m3] and T [K]; of constant pressure: amounts n_1…n_N [mol]
+and T. The bordered form carries one more unknown before T, the total concentration [mol/m3] or the volume [m3],
+with an algebraic row that ties it to the others: this keeps the Jacobian sparse where partners and expansion
+would fill it. `vessel` is (5): HOLDS, HEAT, pressure [Pa], heat capacity of the vessel itself [J/K, at constant
+volume J/(m3 K)], unused.
+"""
+
+import numpy as np
+
+from ..constants import GAS_CONSTANT as R
+from . import layout as at
+from .compiled import compiled
+from .layout import view
+from .rates import set_derivatives, set_production
+from .thermal import set_temperature
+
+VESSEL_SIZE = 5
+HOLDS, HEAT, PRESSURE, HEAT_CAPACITY = range(4)
+VOLUME_HELD, PRESSURE_HELD = 0.0, 1.0
+ISOTHERMAL, ADIABATIC = 0.0, 1.0
+LOWEST_TEMPERATURE, HIGHEST_TEMPERATURE = 1.0, 1e5  # [K] outside, a trial state is answered with NaN
+
+_BLOCK_START = at.offset_slot(at.INTS, "block_start")
+_BLOCK_ROW = at.offset_slot(at.INTS, "block_row")
+_ENTHALPY = at.offset_slot(at.WORK, "enthalpy")
+_CP = at.offset_slot(at.WORK, "heat_capacity")
+_CP_SLOPE = at.offset_slot(at.WORK, "heat_capacity_slope")
+_OMEGA = at.offset_slot(at.WORK, "omega")
+_OMEGA_BY_T = at.offset_slot(at.WORK, "omega_by_T")
+_BLOCK = at.offset_slot(at.WORK, "block")
+_FORWARD = at.offset_slot(at.WORK, "forward")
+_REVERSE = at.offset_slot(at.WORK, "reverse")
+_UNKNOWN = at.offset_slot(at.WORK, "unknown")
+_COLUMN = at.offset_slot(at.WORK, "column")
+
+
+@compiled
+def _produce(y, border, T, vessel, ints, floats, work):
+    """Sets rates and omega for the species part y of a state; returns the volume in units of the state.
+
+    At constant volume the state is per volume (1); border is the total concentration or the volume.
+    """
+    n = ints[at.SPECIES]
+    c = view(work, ints, _UNKNOWN)
+    volume, total = 1.0, border
+    if vessel[HOLDS] == PRESSURE_HELD:
+        volume, total = border, vessel[PRESSURE] / (R * T)
+    for i in range(n):
+        c[i] = y[i] / volume
+    set_temperature(T, ints, floats, work)
+    set_production(c, total, ints, floats, work)
+    return volume
+
+
+@compiled
+def _usable(T):
+    return LOWEST_TEMPERATURE < T < HIGHEST_TEMPERATURE
+
+
+@compiled
+def _border_of(y, n, vessel):
+    """The border unknown that belongs to a plain state: total concentration, or volume."""
+    total = 0.0
+    for i in range(n):
+        total += y[i]
+    if vessel[HOLDS] == PRESSURE_HELD:
+        return total * R * y[n] / vessel[PRESSURE]
+    return total
+
+
+@compiled
+def _heat_capacity(y, vessel, ints, work):
+    """Heat capacity at constant volume or pressure of contents and vessel, per unit of the state, over R."""
+    cp = view(work, ints, _CP)
+    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    total = vessel[HEAT_CAPACITY] / R
+    for i in range(cp.size):
+        total += y[i] * (cp[i] - less)
+    return total
+
+
+@compiled
+def _heating(y, T, volume, vessel, ints, work):
+    """dT/dt [K/s] of an adiabatic vessel from the production rates, 0 of an isothermal one."""
+    if vessel[HEAT] == ISOTHERMAL:
+        return 0.0
+    enthalpy, omega = view(work, ints, _ENTHALPY), view(work, ints, _OMEGA)
+    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    released = 0.0
+    for i in range(omega.size):
+        released -= (enthalpy[i] - less) * omega[i]
+    return released * volume * T / _heat_capacity(y, vessel, ints, work)
+
+
+@compiled
+def rates_of_change(y, vessel, ints, floats, work, out):
+    """dy/dt of the plain form; y, out: (N + 1). NaN for a temperature without meaning."""
+    n = ints[at.SPECIES]
+    T = y[n]
+    if not _usable(T):
+        out[:] = np.nan
+        return
+    volume = _produce(y, _border_of(y, n, vessel), T, vessel, ints, floats, work)
+    omega = view(work, ints, _OMEGA)
+    for i in range(n):
+        out[i] = volume * omega[i]
+    out[n] = _heating(y, T, volume, vessel, ints, work)
+
+
+@compiled
+def bordered_rates_of_change(z, vessel, ints, floats, work, out):
+    """Right-hand side of the bordered form; z, out: (N + 2), out[N] the residual of the algebraic row."""
+    n = ints[at.SPECIES]
+    T, border = z[n + 1], z[n]
+    if not _usable(T):
+        out[:] = np.nan
+        return
+    volume = _produce(z, border, T, vessel, ints, floats, work)
+    omega = view(work, ints, _OMEGA)
+    total = 0.0
+    for i in range(n):
+        out[i] = volume * omega[i]
+        total += z[i]
+    out[n] = total - (border if vessel[HOLDS] == VOLUME_HELD else vessel[PRESSURE] * border / (R * T))
+    out[n + 1] = _heating(z, T, volume, vessel, ints, work)
+
+
+@compiled
+def _columns(y, border, T, vessel, ints, floats, work):
+    """Completes the Jacobian's species rows: `block` holds ∂f/∂y, `column` ∂f/∂border, `omega_by_T` ∂f/∂T."""
+    n, size = ints[at.SPECIES], ints[at.BLOCK]
+    volume = _produce(y, border, T, vessel, ints, floats, work)
+    set_derivatives(T, ints, floats, work)
+    block, omega, by_T = view(work, ints, _BLOCK), view(work, ints, _OMEGA), view(work, ints, _OMEGA_BY_T)
+    column = view(work, ints, _COLUMN)
+    if vessel[HOLDS] == VOLUME_HELD:
+        for i in range(n):
+            column[i] = block[size + i]
+        return volume
+    start, row, c = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), view(work, ints, _UNKNOWN)
+    total = vessel[PRESSURE] / (R * T)
+    for i in range(n):
+        column[i] = omega[i]
+        by_T[i] = volume * (by_T[i] - block[size + i] * total / T)
+    for s in range(n):
+        for e in range(start[s], start[s + 1]):
+            column[row[e]] -= block[e] * c[s]
+    return volume
+
+
+@compiled
+def bordered_jacobian(z, vessel, ints, floats, work, data):
+    """Values of the bordered Jacobian, columns one after another as `bordered_pattern` of vessel.py lists them.
+
+    Column of species s: its rows of the block, then the algebraic row, then the row of T; the last two columns
+    (border, T) are full. NaN for a temperature without meaning.
+    """
+    n = ints[at.SPECIES]
+    T, border = z[n + 1], z[n]
+    if not _usable(T):
+        data[:] = np.nan
+        return
+    volume = _columns(z, border, T, vessel, ints, floats, work)
+    start, row, block = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), view(work, ints, _BLOCK)
+    p = 0
+    for s in range(n):
+        for e in range(start[s], start[s + 1]):
+            data[p] = block[e]
+            p += 1
+        data[p] = 1.0
+        p += 2
+    column, by_T = view(work, ints, _COLUMN), view(work, ints, _OMEGA_BY_T)
+    held_pressure = vessel[HOLDS] == PRESSURE_HELD
+    slope = vessel[PRESSURE] / (R * T)
+    data[p : p + n] = column
+    data[p + n] = -slope if held_pressure else -1.0
+    data[p + n + 2 : p + 2 * n + 2] = by_T
+    data[p + 2 * n + 2] = slope * border / T if held_pressure else 0.0
+    _temperature_row(z, T, volume, vessel, ints, work, data)
+
+
+@compiled
+def _temperature_row(y, T, volume, vessel, ints, work, data):
+    """Puts ∂(dT/dt)/∂z into its places of `data`; the species rows stand there already.
+
+    With C the heat capacity and f = dT/dt = -Σ u_i f_i/C: ∂f = -(Σ u_i ∂f_i + Σ ∂u_i f_i + f ∂C)/C, u the
+    internal energies at constant volume, the enthalpies at constant pressure.
+    """
+    n = ints[at.SPECIES]
+    start, row = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW)
+    enthalpy, cp, cp_slope = view(work, ints, _ENTHALPY), view(work, ints, _CP), view(work, ints, _CP_SLOPE)
+    omega = view(work, ints, _OMEGA)
+    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    adiabatic = 1.0 if vessel[HEAT] == ADIABATIC else 0.0
+    heat = _heat_capacity(y, vessel, ints, work)
+    f = _heating(y, T, volume, vessel, ints, work)
+    p = 0
+    for s in range(n):
+        total = 0.0
+        for e in range(start[s], start[s + 1]):
+            total += (enthalpy[row[e]] - less) * data[p]
+            p += 1
+        data[p + 1] = -adiabatic * (T * total + f * (cp[s] - less)) / heat
+        p += 2
+    by_border, by_T, own, change = 0.0, 0.0, 0.0, 0.0
+    for i in range(n):
+        by_border += (enthalpy[i] - less) * data[p + i]
+        by_T += (enthalpy[i] - less) * data[p + n + 2 + i]
+        own += (cp[i] - less) * omega[i] * volume
+        change += y[i] * cp_slope[i]
+    data[p + n + 1] = -adiabatic * T * by_border / heat
+    data[p + 2 * n + 3] = -adiabatic * (T * by_T + own + f * change / T) / heat
+
+
+@compiled
+def jacobian(y, vessel, ints, floats, work, data, out):
+    """Exact dense Jacobian of the plain form, out: (N + 1, N + 1), by eliminating the border.
+
+    data: scratch of the size of the bordered values. The border b of a plain state follows from the algebraic
+    row, so ∂f/∂y gains ∂f/∂b times ∂b/∂y.
+    """
+    n = ints[at.SPECIES]
+    T = y[n]
+    if not _usable(T):
+        out[:] = np.nan
+        return
+    z = np.empty(n + 2)
+    z[:n] = y[:n]
+    z[n] = _border_of(y, n, vessel)
+    z[n + 1] = T
+    bordered_jacobian(z, vessel, ints, floats, work, data)
+    start, row = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW)
+    border = data[data.size - 2 * (n + 2) : data.size - (n + 2)]
+    last = data[data.size - (n + 2) :]
+    by_T = -last[n] / border[n]
+    out[n, n] = last[n + 1] + border[n + 1] * by_T
+    p = 0
+    for i in range(n):
+        out[i, n] = last[i] + border[i] * by_T
+    for s in range(n):
+        by_y = -1.0 / border[n]
+        for i in range(n):
+            out[i, s] = border[i] * by_y
+        for e in range(start[s], start[s + 1]):
+            out[row[e], s] += data[p]
+            p += 1
+        out[n, s] = data[p + 1] + border[n + 1] * by_y
+        p += 2
+
+
+@compiled
+def reaction_rates(y, vessel, ints, floats, work, forward, reverse):
+    """Forward and reverse rates [mol/(m3 s)] of every reaction in a plain state; outputs (R)."""
+    n = ints[at.SPECIES]
+    _produce(y, _border_of(y, n, vessel), y[n], vessel, ints, floats, work)
+    forward[:] = view(work, ints, _FORWARD)
+    reverse[:] = view(work, ints, _REVERSE)

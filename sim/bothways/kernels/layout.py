@@ -1,0 +1,93 @@
+"""How a mechanism lies in two flat tables, so that one compiled function serves every mechanism.
+
+`ints` (uint32) and `floats` (float64) hold the named arrays of INTS and FLOATS one after another; `work` (float64)
+holds those of WORK and belongs to one caller at a time. ints[0:] starts with the sizes, then the offsets: array k
+of a list spans offset k to offset k + 1. `view` is the one way to them.
+"""
+
+from collections.abc import Sequence
+
+from .compiled import compiled
+
+SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALLOFFS", "GROUPS", "LONG", "BLOCK")
+SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALLOFFS, GROUPS, LONG, BLOCK = range(len(SIZES))
+
+INTS = (
+    "range_start",      # (N + 1) first temperature range of each species
+    "reactant",         # (3 R) up to three reactant molecules, padded with N
+    "product",          # (3 R) likewise products
+    "long_reaction",    # (m) further molecules of long sides: their reaction,
+    "long_species",     # (m) species,
+    "long_side",        # (m) and side, 0 reactants 1 products
+    "term_reaction",    # (T) reaction of each term; the first R terms are the reactions' first ones
+    "body_term",        # (B) terms multiplied by the concentration of a partner
+    "body_group",       # (B) and its group
+    "fall_term",        # (L) terms in fall-off
+    "fall_low",         # (L) expression of their low-pressure limit
+    "fall_group",       # (L) partner group
+    "fall_kind",        # (L) broadening
+    "group_start",      # (G + 1) partner groups: first named species
+    "group_species",    # named species of the groups
+    "nu_start",         # (N + 1) stoichiometric numbers by species: first entry
+    "nu_reaction",      # their reactions
+    "block_start",      # (N + 1) columns of the species block of the Jacobian
+    "block_row",        # its rows
+    "sum_start",        # (nb + N + 1) how each of its entries, then dω/dC, is summed
+    "sum_source",       # partial derivatives that go into the sums
+)
+FLOATS = (
+    "range_top",        # upper temperature of each range [K]
+    "range_row",        # (9 per range) coefficients
+    "reduction",        # (2 N) element terms taken off g/RT: alpha [K], beta [-]
+    "log_A", "power", "theta",  # (X) expressions
+    "term_sign",        # (T)
+    "fall_parameter",   # (4 L) broadening
+    "group_default",    # (G) efficiency of species not named
+    "group_excess",     # efficiency of the named ones above the default
+    "nu",               # stoichiometric numbers
+    "sum_weight",       # weights in the sums of the Jacobian
+    "standard",         # (1) standard pressure [Pa]
+)
+WORK = (
+    "seen",             # (2) temperature the thermal parts stand for, and that of their slopes
+    "gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope",  # (N) g/RT reduced, h/RT, cp/R, T dcp/dT/R
+    "scale",            # (N + 1) E
+    "inverse_scale",    # (N + 1) 1/E
+    "scale_slope",      # (N + 1) d ln E/dT
+    "log_k", "k_limit",  # (X) expressions and their exponentials
+    "k_slope",          # (X) d ln k/dT
+    "reactant_scale",   # (R) product of E over the reactants
+    "reverse_slope",    # (R) d ln (ΠE_reac/ΠE_prod)/dT
+    "log_centre", "log_centre_slope",  # (L) log10 F_cent and its slope
+    "activity",         # (N + 1) a = c/E
+    "partner",          # (G) partner concentrations
+    "k",                # (T) forward rate constants of the terms, partner included
+    "k_by_T", "k_by_M",  # (T) their derivatives
+    "k_total", "k_total_by_T",  # (R)
+    "bare",             # (R) ΠE_reac (Πa_reac - Πa_prod): the net rate for k one
+    "forward", "reverse", "net",  # (R) rates
+    "net_by_T",         # (R)
+    "omega",            # (N) production rates
+    "omega_by_T",       # (N)
+    "partial",          # (6 R + m + T) partial derivatives of the rates
+    "block",            # (nb + N) species block of the Jacobian, then dω/dC
+    "unknown", "column",  # (N) scratch of the vessel equations
+)
+
+SIZE_OF = {name: k for k, name in enumerate(SIZES)}
+_INT_OFFSETS = len(SIZES)
+_FLOAT_OFFSETS = _INT_OFFSETS + len(INTS) + 1
+_WORK_OFFSETS = _FLOAT_OFFSETS + len(FLOATS) + 1
+HEADER = _WORK_OFFSETS + len(WORK) + 1
+
+
+def offset_slot(names: Sequence[str], name: str) -> int:
+    """The place in `ints` where the offset of a named array stands."""
+    base = {INTS: _INT_OFFSETS, FLOATS: _FLOAT_OFFSETS, WORK: _WORK_OFFSETS}[tuple(names)]
+    return base + tuple(names).index(name)
+
+
+@compiled
+def view(array, ints, slot):
+    """The named array whose offset stands at `slot`, as a view."""
+    return array[ints[slot] : ints[slot + 1]]

@@ -1,0 +1,195 @@
+"""The flat tables of a mechanism for the compiled kernels (see kernels/layout.py for their order)."""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from ..constants import GAS_CONSTANT
+from ..kernels import layout
+from ..thermo.polynomial import cp_h_s, extended
+from .jacobian_sums import jacobian_sums
+from .model import Mechanism, Partner
+
+_REDUCTION_TEMPERATURES = np.array([300.0, 500.0, 1000.0, 2000.0, 3000.0])
+_LARGEST_SUM = 650.0  # of ln E over one side; exp overflows at 709
+
+
+@dataclass(frozen=True)
+class Tables:
+    """ints (uint32) and floats (float64) as the kernels read them, and the length of `work`.
+
+    lowest_temperature : below this [K] the exponentials of a side would overflow.
+    """
+
+    ints: np.ndarray
+    floats: np.ndarray
+    work_size: int
+    lowest_temperature: float
+
+    def work(self) -> np.ndarray:
+        """Fresh scratch for one caller."""
+        return np.full(self.work_size, np.nan)
+
+
+def build_tables(mechanism: Mechanism) -> Tables:
+    """The tables of a mechanism."""
+    ints: dict[str, np.ndarray] = {}
+    floats: dict[str, np.ndarray] = {"standard": np.array([mechanism.standard_pressure])}
+    _thermo(mechanism, ints, floats)
+    sides = _sides(mechanism, ints)
+    _terms(mechanism, ints, floats)
+    _stoichiometry(mechanism, ints, floats)
+    jacobian_sums(mechanism, ints, floats)
+    packed_ints, packed_floats, work_size = _pack(mechanism, ints, floats)
+    return Tables(packed_ints, packed_floats, work_size, _lowest_temperature(mechanism, floats, sides))
+
+
+def _thermo(mechanism: Mechanism, ints: dict, floats: dict) -> None:
+    start, tops, rows = [0], [], []
+    for k, species in enumerate(mechanism.species):
+        whole = extended(mechanism.ranges(k))
+        shifted = whole.rows.copy()
+        shifted[:, 8] += np.log(mechanism.standard_pressure / species.standard_pressure)
+        tops.append(whole.boundaries[1:])
+        rows.append(shifted)
+        start.append(start[-1] + len(shifted))
+    ints["range_start"] = np.array(start)
+    floats["range_top"], floats["range_row"] = np.concatenate(tops), np.vstack(rows).ravel()
+    floats["reduction"] = _reduction(mechanism).ravel()
+
+
+def _reduction(mechanism: Mechanism) -> np.ndarray:
+    """Element terms alpha/T + beta, (N, 2), that bring g/RT near zero; being sums over elements they change no K."""
+    atoms = mechanism.element_matrix.T
+    T = _REDUCTION_TEMPERATURES
+    design = np.vstack([np.hstack([atoms / t, atoms]) for t in T])
+    g = np.concatenate([[_g(mechanism, k, t) for k in range(len(atoms))] for t in T])
+    weights = np.linalg.lstsq(design, g, rcond=None)[0]
+    m = atoms.shape[1]
+    return np.column_stack([atoms @ weights[:m], atoms @ weights[m:]])
+
+
+def _g(mechanism: Mechanism, k: int, temperature: float) -> float:
+    whole = extended(mechanism.ranges(k))
+    row = whole.rows[int(np.searchsorted(whole.boundaries[1:-1], temperature, side="right"))]
+    _, h, s = cp_h_s(row, temperature)
+    return h - s
+
+
+def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
+    """Molecules of each side: three in the tables, padded with N; the rest in the lists of long sides."""
+    n = len(mechanism.species)
+    sides: list[list[list[int]]] = [[], []]
+    long: list[tuple[int, int, int]] = []
+    for j, reaction in enumerate(mechanism.reactions):
+        for side, terms in enumerate((reaction.equation.reactants, reaction.equation.products)):
+            molecules = [mechanism.index(name) for name, count in terms for _ in range(count)]
+            sides[side].append(molecules)
+            long += [(j, k, side) for k in molecules[3:]]
+    for key, molecules in zip(("reactant", "product"), sides, strict=True):
+        ints[key] = np.array([(m + [n, n, n])[:3] for m in molecules]).ravel()
+    for column, key in enumerate(("long_reaction", "long_species", "long_side")):
+        ints[key] = np.array([row[column] for row in long])
+    return sides
+
+
+def _terms(mechanism: Mechanism, ints: dict, floats: dict) -> None:
+    """Terms, expressions and partners: the first term of every reaction comes first, in the reactions' order."""
+    ordered = [(j, r.terms[0]) for j, r in enumerate(mechanism.reactions)]
+    ordered += [(j, term) for j, r in enumerate(mechanism.reactions) for term in r.terms[1:]]
+    expressions = [term.law.expressions()[0] for _, term in ordered]
+    groups: dict[tuple, int] = {}
+    bodies, falls, kinds, parameters = [], [], [], []
+    for t, (_, term) in enumerate(ordered):
+        parts = term.law.expressions()
+        if term.partner is None:
+            continue
+        group = groups.setdefault(_group_key(mechanism, term.partner), len(groups))
+        if len(parts) == 1:
+            bodies.append((t, group))
+        else:
+            falls.append((t, len(expressions), group))
+            expressions.append(parts[1])
+            kind, values = term.law.broadening()  # type: ignore[attr-defined]
+            kinds.append(kind)
+            parameters += values
+    ints["term_reaction"] = np.array([j for j, _ in ordered])
+    ints["body_term"], ints["body_group"] = _columns(bodies, 2)
+    ints["fall_term"], ints["fall_low"], ints["fall_group"] = _columns(falls, 3)
+    ints["fall_kind"], floats["fall_parameter"] = np.array(kinds), np.array(parameters)
+    floats["log_A"], floats["power"], floats["theta"], sign = (np.array(c, dtype=float) for c in _columns(expressions, 4))
+    floats["term_sign"] = sign[: len(ordered)]
+    _groups(list(groups), ints, floats)
+
+
+def _columns(rows: list, width: int) -> list[list]:
+    return [[row[k] for row in rows] for k in range(width)]
+
+
+def _group_key(mechanism: Mechanism, partner: Partner) -> tuple:
+    excess = {mechanism.index(name): value - partner.default for name, value in partner.efficiency.items()}
+    return partner.default, tuple(sorted((k, e) for k, e in excess.items() if e))
+
+
+def _groups(keys: list[tuple], ints: dict, floats: dict) -> None:
+    floats["group_default"] = np.array([default for default, _ in keys])
+    ints["group_start"] = np.cumsum([0] + [len(named) for _, named in keys])
+    ints["group_species"] = np.array([k for _, named in keys for k, _ in named])
+    floats["group_excess"] = np.array([e for _, named in keys for _, e in named])
+
+
+def _stoichiometry(mechanism: Mechanism, ints: dict, floats: dict) -> None:
+    rows: list[list[tuple[int, int]]] = [[] for _ in mechanism.species]
+    for j, reaction in enumerate(mechanism.reactions):
+        for name, count in reaction.net.items():
+            rows[mechanism.index(name)].append((j, count))
+    ints["nu_start"] = np.cumsum([0] + [len(row) for row in rows])
+    ints["nu_reaction"] = np.array([j for row in rows for j, _ in row])
+    floats["nu"] = np.array([count for row in rows for _, count in row])
+
+
+def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, np.ndarray, int]:
+    sizes = {"SPECIES": len(mechanism.species), "REACTIONS": len(mechanism.reactions),
+             "EXPRESSIONS": len(floats["log_A"]), "TERMS": len(ints["term_reaction"]),
+             "BODIES": len(ints["body_term"]), "FALLOFFS": len(ints["fall_term"]),
+             "GROUPS": len(floats["group_default"]), "LONG": len(ints["long_side"]),
+             "BLOCK": len(ints["block_row"])}
+    header = [sizes[name] for name in layout.SIZES]
+    lengths = [[np.size(ints[name]) for name in layout.INTS], [np.size(floats[name]) for name in layout.FLOATS],
+               _work_lengths(sizes)]
+    for first, list_of_lengths in zip((layout.HEADER, 0, 0), lengths, strict=True):
+        header += list(first + np.cumsum([0] + list_of_lengths))
+    all_ints = np.concatenate([header] + [np.asarray(ints[name]).ravel() for name in layout.INTS])
+    all_floats = np.concatenate([np.asarray(floats[name], dtype=float).ravel() for name in layout.FLOATS])
+    return all_ints.astype(np.uint32), all_floats, sum(lengths[2])
+
+
+def _work_lengths(sizes: dict[str, int]) -> list[int]:
+    n, r, t, x, fall = (sizes[k] for k in ("SPECIES", "REACTIONS", "TERMS", "EXPRESSIONS", "FALLOFFS"))
+    by_name = {"seen": 2, "scale": n + 1, "inverse_scale": n + 1, "scale_slope": n + 1, "activity": n + 1,
+               "log_k": x, "k_limit": x, "k_slope": x, "log_centre": fall, "log_centre_slope": fall,
+               "partner": sizes["GROUPS"], "k": t, "k_by_T": t, "k_by_M": t,
+               "partial": 6 * r + sizes["LONG"] + t, "block": sizes["BLOCK"] + n}
+    of_species = {"gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T", "unknown",
+                  "column"}
+    return [by_name.get(name, n if name in of_species else r) for name in layout.WORK]
+
+
+def _lowest_temperature(mechanism: Mechanism, floats: dict, sides: list[list[list[int]]]) -> float:
+    """The lowest whole temperature [K] at which no side's sum of ln E leaves the range of exp."""
+    reduction = floats["reduction"].reshape(-1, 2)
+    for temperature in (50.0, 75.0, 100.0, 125.0, 150.0, 175.0, 200.0, 250.0, 300.0, 400.0, 500.0):
+        g = np.array([_g(mechanism, k, temperature) for k in range(len(reduction))])
+        log_scale = np.log(mechanism.standard_pressure / (GAS_CONSTANT * temperature)) - g
+        log_scale += reduction[:, 0] / temperature + reduction[:, 1]
+        sums = [abs(sum(log_scale[m])) for both in sides for m in both]
+        if max(sums + list(abs(log_scale)), default=0.0) < _LARGEST_SUM:
+            return temperature
+    return np.inf
+
+
+def table_view(tables: Tables, name: str) -> np.ndarray:
+    """A named array of the packed tables."""
+    names, array = (layout.INTS, tables.ints) if name in layout.INTS else (layout.FLOATS, tables.floats)
+    slot = layout.offset_slot(names, name)
+    return array[tables.ints[slot] : tables.ints[slot + 1]]

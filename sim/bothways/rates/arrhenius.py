@@ -1,0 +1,48 @@
+"""The modified Arrhenius expression k = A (T/T_ref)^n exp(-Ea/RT).
+
+S. Arrhenius, Z. Phys. Chem. 4 (1889) 226, doi:10.1515/zpch-1889-0416; D.M. Kooij, Z. Phys. Chem. 12 (1893) 155,
+for the power of T.
+"""
+
+import math
+from dataclasses import dataclass
+
+from ..constants import GAS_CONSTANT
+from ..entry import Entry
+from .law import Expression, Law, LawContext
+
+NAME = "Arrhenius"
+FALL_OFF = False
+
+
+@dataclass(frozen=True)
+class Arrhenius(Law):
+    """A [(m3/mol)^(order-1)/s] at T_ref [K], n [-], Ea [J/mol]."""
+
+    A: float
+    n: float = 0.0
+    Ea: float = 0.0
+    T_ref: float = 1.0
+
+    def k(self, temperature: float, partner: float = 1.0) -> float:
+        """k at a temperature [K] times the concentration of the partner [mol/m3], where there is one."""
+        power = (temperature / self.T_ref) ** self.n
+        return self.A * power * math.exp(-self.Ea / (GAS_CONSTANT * temperature)) * partner
+
+    def expressions(self) -> tuple[Expression, ...]:
+        """The one expression of this law."""
+        log_A = math.log(abs(self.A)) - self.n * math.log(self.T_ref)
+        return (Expression(log_A, self.n, self.Ea / GAS_CONSTANT, math.copysign(1.0, self.A)),)
+
+
+def read_expression(entry: Entry, order: int, sign: str) -> Arrhenius:
+    """A, n, Ea and T_ref from a table, A in the file's units for that order."""
+    A = entry.number("A", sign=sign) * entry.units.rate_factor(order)
+    Ea = entry.quantity("Ea", "molar energy", 0.0)
+    return Arrhenius(A, entry.number("n", 0.0), Ea, entry.quantity("T_ref", "temperature", 1.0, sign="positive"))
+
+
+def read(entry: Entry, context: LawContext) -> Arrhenius:
+    """The law from its table; A may be negative only as one of several terms."""
+    sign = "not zero" if context.of_several else "positive"
+    return read_expression(entry, context.order + context.partner_in_equation, sign)

@@ -1,0 +1,117 @@
+"""Fall-off between the low- and the high-pressure limit: Lindemann's and Troe's.
+
+k = k_inf P_r/(1 + P_r) F, P_r = k_0 [M]/k_inf (F.A. Lindemann, Trans. Faraday Soc. 17 (1922) 598;
+C.N. Hinshelwood, Proc. R. Soc. A 113 (1926) 230). F = 1, or after R.G. Gilbert, K. Luther, J. Troe, Ber.
+Bunsenges. Phys. Chem. 87 (1983) 169, doi:10.1002/bbpc.19830870218, with
+log F = log F_cent / (1 + [(log P_r + c)/(N - 0.14 (log P_r + c))]²), c = -0.4 - 0.67 log F_cent,
+N = 0.75 - 1.27 log F_cent, F_cent = (1 - a) exp(-T/T***) + a exp(-T/T*) + exp(-T**/T).
+"""
+
+import math
+from dataclasses import dataclass
+
+from ..entry import Entry
+from .arrhenius import Arrhenius, read_expression
+from .law import Broadening, Expression, Law, LawContext
+
+LINDEMANN, TROE = 0, 1
+_NO_THIRD_TERM = 1e300  # [K] exp(-T**/T) and its slope vanish, without an infinity times zero
+_AT_ONCE = 1e-30  # [K] exp(-T/T*) vanishes: what is left of F_cent is the constant 1 - a
+SMALLEST_PARTNER = 1e-300
+"""Below this [mol/m3] the broadening no longer changes; k stays linear in the partner."""
+SMALLEST_CENTRE = 1e-30
+"""F_cent is kept above this [-]; a file whose F_cent is not positive in its range does not load."""
+
+
+@dataclass(frozen=True)
+class Centre:
+    """F_cent(T): a [-], T***, T*, T** [K]; T** may be absent."""
+
+    a: float
+    T3: float
+    T1: float
+    T2: float | None = None
+
+    def __call__(self, temperature: float) -> float:
+        """F_cent at a temperature [K]."""
+        T = temperature
+        value = (1 - self.a) * math.exp(-T / self.T3) + self.a * math.exp(-T / self.T1)
+        return value + (0.0 if self.T2 is None else math.exp(-self.T2 / T))
+
+
+@dataclass(frozen=True)
+class FallOff(Law):
+    """Both limits, and F_cent for Troe's broadening (None: Lindemann)."""
+
+    k_inf: Arrhenius
+    k_0: Arrhenius
+    centre: Centre | None = None
+
+    def k(self, temperature: float, partner: float = 1.0) -> float:
+        """k at T [K] and partner concentration [mol/m3]."""
+        k_inf, k_0 = self.k_inf.k(temperature), self.k_0.k(temperature)
+        reduced = k_0 * partner / k_inf
+        return k_0 * partner / (1 + reduced) * self.broadening_factor(temperature, reduced)
+
+    def broadening_factor(self, temperature: float, reduced: float) -> float:
+        """F [-] at T [K] and reduced pressure P_r [-]."""
+        if self.centre is None:
+            return 1.0
+        log_centre = math.log10(max(self.centre(temperature), SMALLEST_CENTRE))
+        x = math.log10(max(reduced, SMALLEST_PARTNER)) - 0.4 - 0.67 * log_centre
+        d = 0.75 - 1.27 * log_centre - 0.14 * x
+        return 10.0 ** (log_centre * d**2 / (d**2 + x**2))
+
+    def expressions(self) -> tuple[Expression, ...]:
+        """High- and low-pressure limit."""
+        return self.k_inf.expressions() + self.k_0.expressions()
+
+    def broadening(self) -> Broadening:
+        """Kind and parameters (a, 1/T***, 1/T*, T**) for the kernels."""
+        if self.centre is None:
+            return Broadening(LINDEMANN, (0.0, 0.0, 0.0, 0.0))
+        c = self.centre
+        return Broadening(TROE, (c.a, 1.0 / c.T3, 1.0 / c.T1, _NO_THIRD_TERM if c.T2 is None else c.T2))
+
+
+def read_limits(entry: Entry, context: LawContext) -> tuple[Arrhenius, Arrhenius]:
+    """k_inf and k_0 from their tables, k_0 one order higher."""
+    limits = []
+    for key, order in (("k_inf", context.order), ("k_0", context.order + 1)):
+        table = entry.table(key)
+        limits.append(read_expression(table, order, "positive"))
+        table.done()
+    return limits[0], limits[1]
+
+
+class Lindemann:
+    """Registration of the law without broadening."""
+
+    NAME, FALL_OFF = "Lindemann", True
+
+    @staticmethod
+    def read(entry: Entry, context: LawContext) -> FallOff:
+        """The law from its table."""
+        return FallOff(*read_limits(entry, context))
+
+
+class Troe:
+    """Registration of the law with Troe's broadening."""
+
+    NAME, FALL_OFF = "Troe", True
+
+    @staticmethod
+    def read(entry: Entry, context: LawContext) -> FallOff:
+        """The law from its table."""
+        return FallOff(*read_limits(entry, context), read_centre(entry))
+
+
+def read_centre(entry: Entry) -> Centre:
+    """F_cent: a number, or a table of a, T***, T* and perhaps T**."""
+    if not isinstance(entry.get("F_cent", what="a number or { a, \"T***\", \"T*\", \"T**\" }"), dict):
+        return Centre(1.0 - entry.number("F_cent", sign="positive"), math.inf, _AT_ONCE)
+    table = entry.table("F_cent")
+    centre = Centre(table.number("a"), table.number("T***", sign="positive"), table.number("T*", sign="positive"),
+                    table.number("T**", None))
+    table.done()
+    return centre

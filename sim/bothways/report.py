@@ -1,0 +1,120 @@
+"""The summary of a run as text: vessel, charge, milestones, end, balances, cautions."""
+
+from collections.abc import Iterable
+
+import numpy as np
+
+from .case import Case, charged
+from .trajectory import Trajectory
+
+NOTABLE_RISE = {"temperature": 50.0, "pressure": 1.2}
+"""A temperature rise above this [K] or a pressure ratio above this [-] calls for the caution (our own thresholds)."""
+CAUTION = ("a model is not a safety case: a rise of temperature or pressure like this can hurt people. Measure it "
+           "(calorimetry), follow the local codes, and have a licensed or otherwise competent person judge it.")
+_SHOWN = 8
+
+
+def summary(case: Case, run: Trajectory, title: str = "") -> str:
+    """The summary of a run, a line a fact, about 80 columns wide."""
+    sections = [("mechanism", [_mechanism(case)]), ("vessel", [_vessel(case)]), ("charge", [_charge(case)]),
+                ("milestones", _milestones(run)), ("end", _end(run)), ("balances", [_balances(run)]),
+                ("solver", [_solver(run)])]
+    lines = [title] if title else []
+    for name, content in sections:
+        lines += _section(name, content or ["none: nothing steep, half-converted or peaking by the end"])
+    if notable(run):
+        lines += _section("caution", _wrapped(CAUTION))
+    return "\n".join(lines)
+
+
+def _section(name: str, content: Iterable[str]) -> list[str]:
+    return [f"{name if k == 0 else '':<12}{line}" for k, line in enumerate(content)]
+
+
+def _wrapped(text: str, width: int = 68) -> list[str]:
+    lines = [""]
+    for word in text.split():
+        if len(lines[-1]) + len(word) + 1 > width:
+            lines.append("")
+        lines[-1] += (" " if lines[-1] else "") + word
+    return lines
+
+
+def notable(run: Trajectory) -> bool:
+    """Whether temperature or pressure rises so far that a caution belongs beside it."""
+    hotter = float(np.max(run.temperature) - run.temperature[0])
+    pressed = float(np.max(run.pressure) / run.pressure[0])
+    return hotter > NOTABLE_RISE["temperature"] or pressed > NOTABLE_RISE["pressure"]
+
+
+def _mechanism(case: Case) -> str:
+    m = case.mechanism
+    return f"{m.name}: {len(m.species)} species, {len(m.reactions)} reactions, {m.phase}"
+
+
+def _vessel(case: Case) -> str:
+    held = f"constant volume {volume_text(case.charge.volume)}"
+    if case.holds == "pressure":
+        held = f"constant pressure {pressure_text(case.charge.pressure)}, {volume_text(case.charge.volume)} at the start"
+    inertia = f", thermal inertia {case.thermal_inertia:g}" if case.thermal_inertia != 1 else ""
+    return f"closed, {held}, {case.heat}{inertia}"
+
+
+def _charge(case: Case) -> str:
+    shares = sorted(charged(case).items(), key=lambda item: -item[1])
+    parts = ", ".join(f"{name} {100 * x:.4g} %" for name, x in shares[:_SHOWN])
+    more = f" and {len(shares) - _SHOWN} more" if len(shares) > _SHOWN else ""
+    c = case.charge
+    return f"{c.temperature:.6g} K, {pressure_text(c.pressure)}; by amount {parts}{more}"
+
+
+def _milestones(run: Trajectory) -> list[str]:
+    rows = [(name, t) for name, t in run.milestones.items() if not name.startswith("peak")]
+    heights = {name.removeprefix("peak mole fraction of "): x for name, x in run.milestones.items()
+               if name.startswith("peak mole fraction of ")}
+    lines = [f"{name:<34}{time_text(t):>12}" for name, t in rows]
+    for name, x in sorted(heights.items(), key=lambda item: -item[1])[:_SHOWN]:
+        lines.append(f"{'peak of ' + name:<34}{time_text(run.milestones['peak of ' + name]):>12}   at mole fraction {x:.3g}")
+    if len(heights) > _SHOWN:
+        lines.append(f"and {len(heights) - _SHOWN} smaller peaks, in the file")
+    return lines
+
+
+def _end(run: Trajectory) -> list[str]:
+    state = f"{time_text(float(run.time[-1]))}: {run.temperature[-1]:.6g} K, {pressure_text(float(run.pressure[-1]))}"
+    if run.volume[-1] != run.volume[0]:
+        state += f", {volume_text(float(run.volume[-1]))}"
+    lines = [state if run.complete else f"{state} (incomplete: {run.reason})"]
+    x = run.mole_fraction[-1]
+    shown = [f"{run.species[k]} {x[k]:.4g}" for k in np.argsort(-x)[: _SHOWN + 4] if x[k] > 1e-12]
+    return lines + _wrapped("mole fractions " + ", ".join(shown))
+
+
+def _balances(run: Trajectory) -> str:
+    text = f"elements within {np.max(np.abs(run.element_residual)):.1e}"
+    if np.any(run.energy_residual):
+        text += f", energy within {np.max(np.abs(run.energy_residual)):.1e} before it sets the temperature"
+    return text + f"; entropy produced {run.entropy_produced[-1]:.4g} J/K"
+
+
+def _solver(run: Trajectory) -> str:
+    s = run.statistics
+    return f"{s['method']}, relative tolerance {s['rtol']:g}, {s['steps']} steps in {float(s['seconds']):.2g} s"
+
+
+def time_text(seconds: float) -> str:
+    """A time with a unit of fitting size."""
+    for factor, unit in ((86400.0, "d"), (3600.0, "h"), (60.0, "min"), (1.0, "s"), (1e-3, "ms"), (1e-6, "µs")):
+        if abs(seconds) >= factor:
+            return f"{seconds / factor:.5g} {unit}"
+    return f"{seconds / 1e-9:.5g} ns"
+
+
+def pressure_text(pascals: float) -> str:
+    """A pressure in bar."""
+    return f"{pascals / 1e5:.5g} bar"
+
+
+def volume_text(cubic_metres: float) -> str:
+    """A volume in L below 1 m3."""
+    return f"{cubic_metres * 1e3:.5g} L" if cubic_metres < 1 else f"{cubic_metres:.5g} m3"

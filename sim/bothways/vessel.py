@@ -1,0 +1,171 @@
+"""The equations of a closed vessel as plain functions f and J that any ODE library can use.
+
+Plain form: y = (c_1…c_N, T) at constant volume, [mol/m3] and [K], or (n_1…n_N, T) at constant pressure, [mol] and
+[K]; y' = f(y). Bordered form: z = (c_1…c_N, C, T) or (n_1…n_N, V, T) with the total concentration C [mol/m3] or
+the volume V [m3] as one more unknown and an algebraic row that ties it to the others: M z' = F(z), M the identity
+but for a zero at the border (a semi-explicit differential-algebraic system of index 1). Both Jacobians are exact.
+"""
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from functools import cached_property
+
+import numpy as np
+from scipy.sparse import csc_array
+
+from .constants import GAS_CONSTANT as _R
+from .errors import InputError
+from .kernels import equations as kernel
+from .kernels.compiled import in_cache
+from .mechanism import Mechanism, Tables, build_tables, table_view
+
+HEAT = ("isothermal", "adiabatic")
+HOLDS = ("volume", "pressure")
+
+
+@dataclass(frozen=True)
+class Equations:
+    """f and J of one mechanism in one kind of closed vessel.
+
+    Parameters
+    ----------
+    mechanism : the mechanism.
+    holds : "volume" or "pressure".
+    heat : "isothermal" or "adiabatic".
+    pressure : [Pa], where it is held.
+    heat_capacity : of the vessel itself, sharing the contents' temperature: [J/K], at constant volume per volume
+        of contents [J/(m3 K)].
+
+    The time argument of the functions is ignored: the equations are autonomous. Use one object per thread.
+    """
+
+    mechanism: Mechanism
+    holds: str = "volume"
+    heat: str = "adiabatic"
+    pressure: float = 0.0
+    heat_capacity: float = 0.0
+
+    def __post_init__(self) -> None:
+        if self.holds not in HOLDS or self.heat not in HEAT:
+            raise InputError(f"no vessel that holds '{self.holds}', '{self.heat}'",
+                             expected=f"holds: {' or '.join(HOLDS)}; heat: {' or '.join(HEAT)}")
+        if self.holds == "pressure" and not self.pressure > 0:
+            raise InputError(f"pressure {self.pressure} Pa", expected="a positive pressure where it is held")
+
+    @cached_property
+    def tables(self) -> Tables:
+        """The mechanism as the kernels read it."""
+        return build_tables(self.mechanism)
+
+    @cached_property
+    def vessel(self) -> np.ndarray:
+        """The vessel as the kernels read it."""
+        vessel = np.zeros(kernel.VESSEL_SIZE)
+        vessel[kernel.HOLDS], vessel[kernel.HEAT] = HOLDS.index(self.holds), HEAT.index(self.heat)
+        vessel[kernel.PRESSURE], vessel[kernel.HEAT_CAPACITY] = self.pressure, self.heat_capacity
+        return vessel
+
+    @cached_property
+    def _arguments(self) -> tuple[np.ndarray, ...]:
+        return self.vessel, self.tables.ints, self.tables.floats, self.tables.work()
+
+    def prepare(self, say: Callable[[str], None] = lambda text: None) -> bool:
+        """Compiles (or fetches from the cache) the kernels of f and J now; says so first where it will take long.
+
+        Returns whether the machine had no compiled kernels.
+        """
+        new = not in_cache()
+        if new:
+            say("compiling the numerical kernels, once on this machine (about half a minute)")
+        y = np.append(np.ones(self.size - 1), 1000.0)
+        self.f(0.0, y)
+        self.J(0.0, y)
+        return new
+
+    @property
+    def size(self) -> int:
+        """Number of unknowns of the plain form, N + 1."""
+        return len(self.mechanism.species) + 1
+
+    def f(self, t: float, y: np.ndarray) -> np.ndarray:
+        """dy/dt of the plain form, (N + 1); NaN where T is outside 1 to 1e5 K."""
+        out = np.empty(self.size)
+        kernel.rates_of_change(_vector(y), *self._arguments, out)
+        return out
+
+    def J(self, t: float, y: np.ndarray) -> np.ndarray:
+        """∂f/∂y of the plain form, dense, (N + 1, N + 1), [row, column]."""
+        out = np.empty((self.size, self.size))
+        kernel.jacobian(_vector(y), *self._arguments, self._data, out)
+        return out
+
+    def J_sparse(self, t: float, y: np.ndarray) -> csc_array:
+        """∂f/∂y of the plain form on its own sparsity pattern."""
+        rows, starts = self.pattern
+        columns = np.repeat(np.arange(self.size), np.diff(starts))
+        return csc_array((self.J(t, y)[rows, columns], rows, starts), shape=(self.size, self.size))
+
+    def bordered_f(self, t: float, z: np.ndarray) -> np.ndarray:
+        """Right-hand side F of the bordered form, (N + 2); the row before last is the algebraic residual."""
+        out = np.empty(self.size + 1)
+        kernel.bordered_rates_of_change(_vector(z), *self._arguments, out)
+        return out
+
+    def bordered_J(self, t: float, z: np.ndarray) -> csc_array:
+        """∂F/∂z of the bordered form on its sparsity pattern, (N + 2, N + 2)."""
+        rows, starts = self.bordered_pattern
+        data = np.empty(rows.size)
+        kernel.bordered_jacobian(_vector(z), *self._arguments, data)
+        return csc_array((data, rows, starts), shape=(self.size + 1, self.size + 1))
+
+    @cached_property
+    def mass(self) -> np.ndarray:
+        """Diagonal of M in the bordered form: ones, and a zero at the border."""
+        diagonal = np.ones(self.size + 1)
+        diagonal[-2] = 0.0
+        return diagonal
+
+    def bordered_state(self, y: np.ndarray) -> np.ndarray:
+        """The bordered state z that belongs to a plain state y."""
+        from_state = np.sum(y[:-1])
+        if self.holds == "pressure":
+            from_state *= _R * y[-1] / self.pressure
+        return np.concatenate([y[:-1], [from_state], y[-1:]])
+
+    @cached_property
+    def _data(self) -> np.ndarray:
+        return np.empty(self.bordered_pattern[0].size)
+
+    @cached_property
+    def bordered_pattern(self) -> tuple[np.ndarray, np.ndarray]:
+        """Row indices and column starts of the bordered Jacobian (compressed columns)."""
+        start, rows = table_view(self.tables, "block_start").astype(np.int64), table_view(self.tables, "block_row").astype(np.int64)
+        n = self.size - 1
+        columns = [[*rows[start[s] : start[s + 1]], n, n + 1] for s in range(n)] + [list(range(n + 2))] * 2
+        return np.concatenate(columns).astype(np.int32), np.cumsum([0] + [len(c) for c in columns]).astype(np.int32)
+
+    @cached_property
+    def pattern(self) -> tuple[np.ndarray, np.ndarray]:
+        """Row indices and column starts of the plain Jacobian: rows with a partner or expansion are full."""
+        start, rows = table_view(self.tables, "block_start").astype(np.int64), table_view(self.tables, "block_row").astype(np.int64)
+        n, full = self.size - 1, self._full_rows
+        columns = [sorted({*rows[start[s] : start[s + 1]].tolist(), *full, n}) for s in range(n)] + [list(range(n + 1))]
+        return np.concatenate(columns).astype(np.int32), np.cumsum([0] + [len(c) for c in columns]).astype(np.int32)
+
+    @cached_property
+    def _full_rows(self) -> set[int]:
+        if self.holds == "pressure":
+            return set(np.flatnonzero(np.diff(table_view(self.tables, "nu_start").astype(np.int64))).tolist())
+        sums, n = table_view(self.tables, "sum_start").astype(np.int64), self.size - 1
+        return set(np.flatnonzero(np.diff(sums)[-n:]).tolist())
+
+    def reaction_rates(self, y: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        """Forward and reverse rates [mol/(m3 s)] of every reaction in a plain state, (R) each."""
+        forward = np.empty(len(self.mechanism.reactions))
+        reverse = np.empty_like(forward)
+        kernel.reaction_rates(_vector(y), *self._arguments, forward, reverse)
+        return forward, reverse
+
+
+def _vector(y: np.ndarray) -> np.ndarray:
+    return np.ascontiguousarray(y, dtype=np.float64)

@@ -1,0 +1,265 @@
+"""The equations once more, in plain NumPy, to hold compiled kernels against.
+
+Written from the formulas alone; nothing of the program is imported. It reads a mechanism as a plain dict
+(what ``tomllib`` makes of a mechanism file) and covers gases with these parts:
+
+* species potentials ``NASA 7-coefficient`` and ``constant heat capacity``, joins closed or as published;
+* laws ``Arrhenius`` (also with + M), ``Lindemann`` and ``Troe``, and lists of terms.
+
+Anything else raises NotImplementedError, so that no test passes by leaving something out.
+
+The real types of NumPy go in and come out: float64, longdouble and their complex partners. Derivatives are
+taken by complex step (W. Squire, G. Trapp, SIAM Rev. 40 (1998) 110, doi:10.1137/S003614459631241X), so every
+branch looks at real parts only. Constants: the exact ones of the SI (2019).
+"""
+
+from dataclasses import dataclass
+from typing import Any
+
+import numpy as np
+
+from reference_file import (
+    LD,
+    PRESSURE,
+    Array,
+    R,
+    Terms,
+    boundaries_and_rows,
+    cp_of,
+    h_of,
+    quantity,
+    reaction,
+    s_of,
+    units_of,
+)
+
+# ---- laws
+
+
+def arrhenius(rows: Array, T: Any) -> Array:
+    """A (T/T_ref)^n exp(-Ea/RT) of rows (m, 4)."""
+    A, n, Ea_R, T_ref = rows.T
+    return A * np.exp(n * np.log(T / T_ref) - Ea_R / T)
+
+
+def centre(rows: Array, T: Any) -> Array:
+    """F_cent [-] of rows (m, 7).
+
+    R.G. Gilbert, K. Luther, J. Troe, Ber. Bunsenges. Phys. Chem. 87 (1983) 169, doi:10.1002/bbpc.19830870218.
+    """
+    w0, w3, T3, w1, T1, w2, T2 = rows.T
+    return w0 + w3 * np.exp(-T / T3) + w1 * np.exp(-T / T1) + w2 * np.exp(-T2 / T)
+
+
+def falloff(k_inf: Array, k_0: Array, F_cent: Array, M: Array) -> Array:
+    """k of fall-off terms at [M] [mol/m3] (same source; F_cent = 1 is Lindemann's form).
+
+    Where the real part of P_r is not above 0 the limit of F for P_r -> 0 stands, so that k is linear in [M].
+    """
+    P_r = k_0 * M / k_inf
+    present = P_r.real > 0
+    log_F = np.log10(F_cent)
+    x = np.log10(np.where(present, P_r, 1)) - (40 + 67 * log_F) / 100
+    d = (75 - 127 * log_F - 14 * x) / 100
+    F = np.exp(np.log(F_cent) * np.where(present, d**2 / (d**2 + x**2), 1))
+    F_limit = np.exp(np.log(F_cent) * 196 / 10196)  # x/d -> -1/0.14
+    return k_0 * M * np.where(present, F / (1 + np.where(present, P_r, 0)), F_limit)
+
+
+# ---- the whole
+
+
+@dataclass(frozen=True)
+class Vessel:
+    """How the contents are held: ``volume`` or ``pressure`` [Pa]; ``adiabatic`` or ``isothermal``."""
+
+    holds: str
+    heat: str
+    pressure: float | None = None
+    heat_capacity: float = 0.0  # of the vessel: J/(m3 K), at constant pressure J/K
+
+    def __post_init__(self) -> None:
+        if self.holds not in ("volume", "pressure") or self.heat not in ("adiabatic", "isothermal"):
+            raise NotImplementedError(f"{self.holds}, {self.heat}")
+        if self.holds == "pressure" and self.pressure is None:
+            raise ValueError("a vessel that holds its pressure needs one")
+
+
+@dataclass(frozen=True)
+class Thermal:
+    """What depends on temperature alone."""
+
+    T: Any
+    k: Array  # of each term; k_inf of a fall-off term
+    k_0: Array  # of each fall-off term
+    F_cent: Array  # of each fall-off term
+    K_c: Array  # of each reaction
+    h: Array  # h/RT
+    cp: Array  # cp/R
+
+
+class Reference:
+    """A mechanism, read from the dict ``document``; ``precision`` is the real type of its numbers."""
+
+    def __init__(self, document: dict[str, Any], precision: type = np.float64) -> None:
+        if document["mechanism"].get("phase", "ideal gas") != "ideal gas":
+            raise NotImplementedError(document["mechanism"]["phase"])
+        self.precision, self.R = precision, precision(R)
+        self.names = list(document["species"])
+        self.n = len(self.names)
+        units = units_of(document)
+        self._read_species(document, units)
+        self._read_reactions(document, units)
+
+    def _read_species(self, document: dict[str, Any], units: dict[str, LD]) -> None:
+        head, species = document["mechanism"], list(document["species"].values())
+        joins, common = head.get("joins", "closed"), head.get("standard_pressure", "1 bar")
+        stated = [one.get("standard_pressure", common) for one in species]
+        self._p = self._kept([quantity(p, units["pressure"], PRESSURE) for p in stated])
+        fits = [boundaries_and_rows(one["potential"], joins, units) for one in species]
+        width = max(len(T) for T, _ in fits)
+        self._T = self._kept([np.pad(T, (0, width - len(T)), constant_values=np.inf) for T, _ in fits])
+        self._a = self._kept([np.pad(a, ((0, width + 1 - len(a)), (0, 0))) for _, a in fits])
+
+    def _read_reactions(self, document: dict[str, Any], units: dict[str, LD]) -> None:
+        self.reactions = [reaction(entry) for entry in document.get("reaction", [])]
+        terms = Terms()
+        for j, one in enumerate(self.reactions):
+            for term in one.terms:
+                terms.add(j, one, term, self.names, units)
+        self._of = np.array(terms.reaction, dtype=int)
+        self._partnered = np.array(terms.partnered, dtype=int)
+        self._falloff = np.array(terms.falloff, dtype=int)
+        self._rate, self._low = self._kept(terms.rate, 4), self._kept(terms.low, 4)
+        self._centre, self._efficiency = self._kept(terms.centre, 7), self._kept(terms.efficiency, self.n)
+        self._read_stoichiometry()
+
+    def _read_stoichiometry(self) -> None:
+        """Molecules one by one, padded with the place n, whose concentration is 1; net numbers as triples."""
+        self._molecules = [self._places([r.reactants for r in self.reactions]),
+                           self._places([r.products for r in self.reactions])]
+        net = [(j, self.names.index(name), r.products.get(name, 0) - r.reactants.get(name, 0))
+               for j, r in enumerate(self.reactions) for name in dict.fromkeys([*r.reactants, *r.products])]
+        triples = np.array(net, dtype=int).reshape(-1, 3)
+        self._j, self._i = triples[:, 0], triples[:, 1]
+        self._nu = triples[:, 2].astype(self.precision)
+
+    def _places(self, sides: list[dict[str, int]]) -> Array:
+        lists = [[self.names.index(name) for name, m in one.items() for _ in range(m)] for one in sides]
+        width = max((len(one) for one in lists), default=0)
+        padded = [one + [self.n] * (width - len(one)) for one in lists]
+        return np.array(padded, dtype=int).reshape(len(sides), width)
+
+    def _kept(self, values: Any, width: int | None = None) -> Array:
+        array = np.array(values, dtype=LD).astype(self.precision)
+        return array if width is None else array.reshape(-1, width)
+
+    # -- species
+
+    def _rows(self, T: Any) -> Array:
+        """The row (n, 7) in force at T; at a boundary the lower range."""
+        return self._a[np.arange(self.n), (T.real > self._T).sum(axis=1)]
+
+    def _typed(self, T: Any) -> Any:
+        return T * self.precision(1)
+
+    def cp_R(self, T: Any) -> Array:
+        """Heat capacity at constant pressure cp/R (n,) [-]."""
+        return cp_of(self._rows(T), self._typed(T))
+
+    def h_RT(self, T: Any) -> Array:
+        """Enthalpy h/RT (n,) [-]."""
+        return h_of(self._rows(T), self._typed(T)) / T
+
+    def s_R(self, T: Any) -> Array:
+        """Standard entropy s/R (n,) [-]."""
+        return s_of(self._rows(T), self._typed(T))
+
+    def g_RT(self, T: Any) -> Array:
+        """Standard chemical potential g/RT (n,) [-]."""
+        return self.h_RT(T) - self.s_R(T)
+
+    # -- rates
+
+    def _sum(self, places: Array, values: Array, length: int) -> Array:
+        total = np.zeros(length, dtype=values.dtype)
+        np.add.at(total, places, values)
+        return total
+
+    def K_c(self, T: Any) -> Array:
+        """Equilibrium constants in concentrations [(mol/m3)^sum(nu)]: exp(-dG/RT) prod (p_i/RT)^nu_i."""
+        minus_mu = np.log(self._p / (self.R * T)) - self.g_RT(T)
+        return np.exp(self._sum(self._j, self._nu * minus_mu[self._i], len(self.reactions)))
+
+    def _thermal(self, T: Any) -> Thermal:
+        T = self._typed(T)
+        laws = arrhenius(self._rate, T), arrhenius(self._low, T), centre(self._centre, T)
+        return Thermal(T, *laws, self.K_c(T), self.h_RT(T), self.cp_R(T))
+
+    def _term_constants(self, at: Thermal, M: Array) -> Array:
+        """k of each term; ``M`` of each partnered term. A +M term: k of one order higher, not times [M]."""
+        k = at.k.astype(np.result_type(at.k, M))
+        falling = self._partnered[self._falloff]
+        k[falling] = falloff(at.k[falling], at.k_0, at.F_cent, M[self._falloff])
+        return k
+
+    def rate_constant(self, j: int, T: Any, M: Any = 0.0) -> Any:
+        """Forward k of reaction j, summed over its terms [mol, m3, s]; [M] [mol/m3] is the same for all.
+
+        A +M reaction has the k of one order higher: its rate is k [M] times the reactants' concentrations.
+        """
+        k = self._term_constants(self._thermal(T), np.full(len(self._partnered), self._typed(M)))
+        return k[self._of == j].sum()
+
+    def _rates(self, at: Thermal, c: Array) -> tuple[Array, Array, Array]:
+        """Forward and reverse rates, and the sum of both without regard to sign [mol/(m3 s)]."""
+        M = (self._efficiency * c).sum(axis=1)
+        k = self._term_constants(at, M)
+        plain = np.setdiff1d(np.arange(len(M)), self._falloff)
+        k[self._partnered[plain]] *= M[plain]
+        padded = np.append(c, c.dtype.type(1))
+        forward, reverse = (padded[places].prod(axis=1) for places in self._molecules)
+        reverse = reverse / at.K_c
+        total, gross = (self._sum(self._of, x, len(self.reactions)) for x in (k, abs(k)))
+        return total * forward, total * reverse, gross * (abs(forward) + abs(reverse))
+
+    def net_rates(self, c: Array, T: Any) -> tuple[Array, Array]:
+        """Forward and reverse rate of each reaction [mol/(m3 s)] at concentrations c (n,) [mol/m3]."""
+        return self._rates(self._thermal(T), self._typed(np.asarray(c)))[:2]
+
+    # -- the vessel
+
+    def _change(self, at: Thermal, y: Array, vessel: Vessel) -> tuple[Array, Array]:
+        amounts, constant_volume = y[:-1], vessel.holds == "volume"
+        volume = 1 if constant_volume else amounts.sum() * self.R * at.T / vessel.pressure
+        forward, reverse, size = self._rates(at, amounts / volume)
+        made = volume * self._sum(self._i, self._nu * (forward - reverse)[self._j], self.n)
+        gross = abs(volume) * self._sum(self._i, abs(self._nu) * size[self._j], self.n)
+        if vessel.heat == "isothermal":
+            return np.append(made, 0 * at.T), np.append(gross, 0 * at.T.real)
+        energy = self.R * at.T * (at.h - constant_volume)  # u or h of each species [J/mol]
+        capacity = self.R * ((at.cp - constant_volume) @ amounts) + vessel.heat_capacity
+        return (np.append(made, -(energy @ made) / capacity),
+                np.append(gross, abs(energy) @ gross / abs(capacity)))
+
+    def derivative(self, y: Array, holds: str, heat: str, pressure: float | None = None,
+                   vessel_heat_capacity: float = 0.0) -> tuple[Array, Array]:
+        """dy/dt (n + 1,) and, of the same shape, the sum of the absolute contributions to it.
+
+        holds = "volume": y = (c_1 ... c_n [mol/m3], T [K]), the vessel's heat capacity in J/(m3 K).
+        holds = "pressure": y = (n_1 ... n_n [mol], T [K]), the vessel's heat capacity in J/K.
+        """
+        y = self._typed(np.asarray(y))
+        return self._change(self._thermal(y[-1]), y, Vessel(holds, heat, pressure, vessel_heat_capacity))
+
+    def jacobian(self, y: Array, holds: str, heat: str, pressure: float | None = None,
+                 vessel_heat_capacity: float = 0.0) -> Array:
+        """d(dy/dt)/dy (n + 1, n + 1) by complex step; arguments as those of ``derivative``."""
+        y, vessel = self._typed(np.asarray(y)), Vessel(holds, heat, pressure, vessel_heat_capacity)
+        at, J = self._thermal(y[-1]), np.empty((self.n + 1, self.n + 1), dtype=y.dtype)
+        for k in range(self.n + 1):
+            h = y.dtype.type(1e-30) * max(abs(y[k]), y.dtype.type(1e-20))
+            z = y + 1j * h * (np.arange(self.n + 1) == k)
+            here = at if k < self.n else self._thermal(z[-1])
+            J[:, k] = self._change(here, z, vessel)[0].imag / h
+        return J
