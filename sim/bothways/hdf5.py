@@ -20,8 +20,8 @@ from .outfile import StrPath
 Note = float | int | str
 _TEXT = h5py.string_dtype("utf-8")
 _OWN = ("units", "long_name")
-_NOTE_NAME = re.compile(r"[^\W_]([^/\x00-\x1f\x7f]*[^/\s\x00-\x1f\x7f])?")
-"""Names that netCDF can write too (NetCDF Users Guide, Permitted Characters in NetCDF Names)."""
+_NOTE_NAME = re.compile(r"[^\W_]([^\x00-\x1f\x7f]*[^\s\x00-\x1f\x7f])?")
+"""Names that netCDF can write (NetCDF Users Guide, Permitted Characters in NetCDF Names), slash aside."""
 _LARGE = 16384
 """Values from which on a variable is packed."""
 
@@ -53,7 +53,7 @@ def plain_notes(notes: Mapping[str, Any], entry: str) -> dict[str, Note]:
     for name, value in values.items():
         if not isinstance(value, Note) or not _NOTE_NAME.fullmatch(name) or name in _OWN:
             raise InputError(f"{name!r} = {value!r} cannot be kept", entry=entry,
-                             expected="a number or text, its name beginning with a letter, without slash")
+                             expected="a number or a text by a name that begins with a letter")
     return {name: int(v) if isinstance(v, bool) else v for name, v in values.items()}
 
 
@@ -69,9 +69,15 @@ def image(variables: Iterable[tuple[Variable, Any]], attributes: Mapping[str, No
         for variable, values in variables:
             _create_variable(file, variable, np.array(values, dtype=_TEXT if variable.text else np.float64))
         for variable, named in notes:
-            _create_variable(file, variable, np.array(len(named))).attrs.update(named)
+            attrs = _create_variable(file, variable, np.array(len(named))).attrs
+            attrs.update({_without_slash(name): value for name, value in named.items()})
         file.flush()
         return file.id.get_file_image()
+
+
+def _without_slash(name: str) -> str:
+    """Written as in a URL, since netCDF forbids it and names of species may hold it."""
+    return name.replace("%", "%25").replace("/", "%2F")
 
 
 def _create_variable(file: h5py.File, variable: Variable, data: np.ndarray) -> h5py.Dataset:
@@ -151,5 +157,6 @@ def attribute(holder: h5py.File | h5py.Dataset, name: str) -> Note:
 def read_notes(file: h5py.File, variable: Variable) -> dict[str, Note]:
     """The notes kept as attributes of a scalar."""
     dataset = file[variable.name]
-    return {name: attribute(dataset, name) for name in dataset.attrs
-            if name not in _OWN and _NOTE_NAME.fullmatch(name)}
+    notes = {name: attribute(dataset, name) for name in dataset.attrs
+             if name not in _OWN and _NOTE_NAME.fullmatch(name)}
+    return {name.replace("%2F", "/").replace("%25", "%"): value for name, value in notes.items()}

@@ -200,8 +200,8 @@ def write_trajectory(path: StrPath, trajectory: Trajectory, replace: bool = Fals
 def _described(variable: Variable, trajectory: Trajectory) -> Variable:
     if variable.name != "potential":
         return variable
-    own = {"units": trajectory.potential_units, "long_name": trajectory.potential_name}
-    return dataclasses.replace(variable, **own)
+    name, units = trajectory.potential_name, trajectory.potential_units
+    return dataclasses.replace(variable, units=units, long_name=name)
 
 
 def _attributes(trajectory: Trajectory) -> dict[str, Any]:

@@ -91,7 +91,7 @@ else:
 
     def bits_to_float(bits: int) -> float:
         """The float64 of these 64 bits (interpreted kernels)."""
-        return struct.unpack("<d", struct.pack("<q", bits))[0]
+        return struct.unpack("<d", struct.pack("<Q", bits & 0xFFFFFFFFFFFFFFFF))[0]
 
     def float_to_bits(value: float) -> int:
         """The 64 bits of a float64 (interpreted kernels)."""

@@ -49,7 +49,7 @@ def _thermo(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     for k, species in enumerate(mechanism.species):
         whole = extended(mechanism.ranges(k))
         shifted = whole.rows.copy()
-        shifted[:, 8] += np.log(mechanism.standard_pressure / species.standard_pressure)
+        shifted[:, 8] -= np.log(mechanism.standard_pressure / species.standard_pressure)
         tops.append(whole.boundaries[1:])
         rows.append(shifted)
         start.append(start[-1] + len(shifted))
