@@ -51,7 +51,7 @@ FLOATS = (
 WORK = (
     "seen",             # (2) temperature the thermal parts stand for, and that of their slopes
     "gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope",  # (N) g/RT reduced, h/RT, cp/R, T dcp/dT/R
-    "scale",            # (N + 1) E
+    "log_scale", "scale",  # (N + 1) E
     "inverse_scale",    # (N + 1) 1/E
     "scale_slope",      # (N + 1) d ln E/dT
     "log_k", "k_limit",  # (X) expressions and their exponentials
@@ -59,8 +59,10 @@ WORK = (
     "reactant_scale",   # (R) product of E over the reactants
     "reverse_slope",    # (R) d ln (ΠE_reac/ΠE_prod)/dT
     "log_centre", "log_centre_slope",  # (L) log10 F_cent and its slope
+    "centre_exponent", "centre_part",  # (3 L) exponentials of F_cent
+    "log_broadening", "broadening",  # (L) F
     "activity",         # (N + 1) a = c/E
-    "partner",          # (G) partner concentrations
+    "partner", "log_partner",  # (G) partner concentrations and their logarithms
     "k",                # (T) forward rate constants of the terms, partner included
     "k_by_T", "k_by_M",  # (T) their derivatives
     "k_total", "k_total_by_T",  # (R)

@@ -8,6 +8,7 @@ import math
 
 from . import layout as at
 from .compiled import compiled
+from .elementary import exp_array
 from .layout import view
 from .thermal import LN10, set_slopes
 
@@ -35,6 +36,7 @@ _GROUP_EXCESS = at.offset_slot(at.FLOATS, "group_excess")
 _NU = at.offset_slot(at.FLOATS, "nu")
 _SUM_WEIGHT = at.offset_slot(at.FLOATS, "sum_weight")
 _INVERSE_SCALE = at.offset_slot(at.WORK, "inverse_scale")
+_LOG_PARTNER = at.offset_slot(at.WORK, "log_partner")
 _LOG_K = at.offset_slot(at.WORK, "log_k")
 _K_LIMIT = at.offset_slot(at.WORK, "k_limit")
 _K_SLOPE = at.offset_slot(at.WORK, "k_slope")
@@ -42,6 +44,8 @@ _REACTANT_SCALE = at.offset_slot(at.WORK, "reactant_scale")
 _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
 _LOG_CENTRE = at.offset_slot(at.WORK, "log_centre")
 _LOG_CENTRE_SLOPE = at.offset_slot(at.WORK, "log_centre_slope")
+_LOG_BROADENING = at.offset_slot(at.WORK, "log_broadening")
+_BROADENING = at.offset_slot(at.WORK, "broadening")
 _ACTIVITY = at.offset_slot(at.WORK, "activity")
 _PARTNER = at.offset_slot(at.WORK, "partner")
 _K = at.offset_slot(at.WORK, "k")
@@ -67,12 +71,13 @@ def _partners(c, total, ints, floats, work):
     """Concentration of the partner of each group: default · total + Σ excess · c, [mol/m3]."""
     start, species = view(ints, ints, _GROUP_START), view(ints, ints, _GROUP_SPECIES)
     default, excess = view(floats, ints, _GROUP_DEFAULT), view(floats, ints, _GROUP_EXCESS)
-    partner = view(work, ints, _PARTNER)
+    partner, log_partner = view(work, ints, _PARTNER), view(work, ints, _LOG_PARTNER)
     for g in range(partner.size):
         m = default[g] * total
         for e in range(start[g], start[g + 1]):
             m += excess[e] * c[species[e]]
         partner[g] = m
+        log_partner[g] = math.log(max(m, _SMALLEST_PARTNER))
 
 
 @compiled
@@ -99,13 +104,18 @@ def _rate_constants(ints, floats, work):
         k[body[b]] *= partner[group[b]]
     term, low, group = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(ints, ints, _FALL_GROUP)
     kind, log_k, log_centre = view(ints, ints, _FALL_KIND), view(work, ints, _LOG_K), view(work, ints, _LOG_CENTRE)
+    log_factor, factor = view(work, ints, _LOG_BROADENING), view(work, ints, _BROADENING)
+    log_partner = view(work, ints, _LOG_PARTNER)
+    for q in range(term.size):
+        log_factor[q] = 0.0
+        if kind[q] == 1:
+            log_reduced = log_k[low[q]] + log_partner[group[q]] - log_k[term[q]]
+            log_F, _, _ = _broadening(log_reduced / LN10, log_centre[q])
+            log_factor[q] = LN10 * log_F
+    exp_array(log_factor, factor)
     for q in range(term.size):
         t, m = term[q], partner[group[q]]
-        log_reduced = log_k[low[q]] + math.log(max(m, _SMALLEST_PARTNER)) - log_k[t]
-        k[t] = limit[low[q]] * m / (1.0 + m * limit[low[q]] / limit[t])
-        if kind[q] == 1:
-            log_F, _, _ = _broadening(log_reduced / LN10, log_centre[q])
-            k[t] *= math.exp(LN10 * log_F)
+        k[t] = limit[low[q]] * m / (1.0 + m * limit[low[q]] / limit[t]) * factor[q]
 
 
 @compiled
@@ -122,16 +132,16 @@ def _rate_constant_slopes(ints, floats, work):
         by_M[body[b]] = sign[body[b]] * limit[body[b]]
     term, low, group = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(ints, ints, _FALL_GROUP)
     kind, log_k, log_centre = view(ints, ints, _FALL_KIND), view(work, ints, _LOG_K), view(work, ints, _LOG_CENTRE)
-    centre_slope = view(work, ints, _LOG_CENTRE_SLOPE)
+    centre_slope, factor = view(work, ints, _LOG_CENTRE_SLOPE), view(work, ints, _BROADENING)
+    log_partner = view(work, ints, _LOG_PARTNER)
     for q in range(term.size):
         t, l, m = term[q], low[q], partner[group[q]]
         response = 1.0 / (1.0 + m * limit[l] / limit[t])  # d ln k/d ln P_r
-        per_partner = limit[l] * response  # k/[M]
+        per_partner = limit[l] * response * factor[q]  # k/[M]
         by_centre = 0.0
         if kind[q] == 1:
-            log_reduced = log_k[l] + math.log(max(m, _SMALLEST_PARTNER)) - log_k[t]
-            log_F, by_reduced, by_log_centre = _broadening(log_reduced / LN10, log_centre[q])
-            per_partner *= math.exp(LN10 * log_F)
+            log_reduced = log_k[l] + log_partner[group[q]] - log_k[t]
+            _, by_reduced, by_log_centre = _broadening(log_reduced / LN10, log_centre[q])
             response += by_reduced if m > _SMALLEST_PARTNER else 0.0
             by_centre = LN10 * by_log_centre * centre_slope[q]
         by_T[t] = k[t] * (slope[t] + (slope[l] - slope[t]) * response + by_centre)

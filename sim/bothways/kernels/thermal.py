@@ -34,6 +34,7 @@ _GIBBS = at.offset_slot(at.WORK, "gibbs")
 _ENTHALPY = at.offset_slot(at.WORK, "enthalpy")
 _HEAT_CAPACITY = at.offset_slot(at.WORK, "heat_capacity")
 _HEAT_CAPACITY_SLOPE = at.offset_slot(at.WORK, "heat_capacity_slope")
+_LOG_SCALE = at.offset_slot(at.WORK, "log_scale")
 _SCALE = at.offset_slot(at.WORK, "scale")
 _INVERSE_SCALE = at.offset_slot(at.WORK, "inverse_scale")
 _SCALE_SLOPE = at.offset_slot(at.WORK, "scale_slope")
@@ -42,6 +43,8 @@ _K_LIMIT = at.offset_slot(at.WORK, "k_limit")
 _K_SLOPE = at.offset_slot(at.WORK, "k_slope")
 _REACTANT_SCALE = at.offset_slot(at.WORK, "reactant_scale")
 _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
+_CENTRE_EXPONENT = at.offset_slot(at.WORK, "centre_exponent")
+_CENTRE_PART = at.offset_slot(at.WORK, "centre_part")
 _LOG_CENTRE = at.offset_slot(at.WORK, "log_centre")
 _LOG_CENTRE_SLOPE = at.offset_slot(at.WORK, "log_centre_slope")
 
@@ -75,16 +78,16 @@ def _scales(T, ints, floats, work):
     """E_i = (p°/RT)·exp(-g_i/RT) [mol/m3] with the element terms taken off g, which change no K; and 1/E_i."""
     n = ints[at.SPECIES]
     gibbs, reduction = view(work, ints, _GIBBS), view(floats, ints, _REDUCTION)
-    scale, inverse_scale = view(work, ints, _SCALE), view(work, ints, _INVERSE_SCALE)
+    log_scale, scale = view(work, ints, _LOG_SCALE), view(work, ints, _SCALE)
+    inverse_scale = view(work, ints, _INVERSE_SCALE)
     log_standard = math.log(view(floats, ints, _STANDARD)[0] / (R * T))
     for i in range(n):
         gibbs[i] -= reduction[2 * i] / T + reduction[2 * i + 1]
-        scale[i] = log_standard - gibbs[i]
-        inverse_scale[i] = -scale[i]
-    scale[n] = 0.0
-    inverse_scale[n] = 0.0
-    exp_array(scale, scale)
-    exp_array(inverse_scale, inverse_scale)
+        log_scale[i] = log_standard - gibbs[i]
+    log_scale[n] = 0.0
+    exp_array(log_scale, scale)
+    for i in range(n + 1):
+        inverse_scale[i] = 1.0 / scale[i]
 
 
 @compiled
@@ -117,15 +120,21 @@ def _centres(T, ints, floats, work):
     """log10 F_cent and its slope of every fall-off with Troe's broadening."""
     kind, parameter = view(ints, ints, _FALL_KIND), view(floats, ints, _FALL_PARAMETER)
     log_centre, slope = view(work, ints, _LOG_CENTRE), view(work, ints, _LOG_CENTRE_SLOPE)
+    exponent, parts = view(work, ints, _CENTRE_EXPONENT), view(work, ints, _CENTRE_PART)
+    for q in range(kind.size):
+        exponent[3 * q] = -T * parameter[4 * q + 1]
+        exponent[3 * q + 1] = -T * parameter[4 * q + 2]
+        exponent[3 * q + 2] = -parameter[4 * q + 3] / T
+    exp_array(exponent, parts)
     for q in range(kind.size):
         if kind[q] == 1:
-            a, i3, i1, t2 = parameter[4 * q], parameter[4 * q + 1], parameter[4 * q + 2], parameter[4 * q + 3]
-            x3, x1, x2 = (1.0 - a) * math.exp(-T * i3), a * math.exp(-T * i1), math.exp(-t2 / T)
+            a = parameter[4 * q]
+            x3, x1, x2 = (1.0 - a) * parts[3 * q], a * parts[3 * q + 1], parts[3 * q + 2]
             centre = x3 + x1 + x2
-            centre_slope = -x3 * i3 - x1 * i1 + x2 * t2 / (T * T)
+            centre_slope = -x3 * parameter[4 * q + 1] - x1 * parameter[4 * q + 2] + x2 * parameter[4 * q + 3] / (T * T)
             if centre < _SMALLEST_CENTRE:
                 centre, centre_slope = _SMALLEST_CENTRE, 0.0
-            log_centre[q] = math.log10(centre)
+            log_centre[q] = math.log(centre) / LN10
             slope[q] = centre_slope / (centre * LN10)
 
 

@@ -166,9 +166,10 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
 
 def _work_lengths(sizes: dict[str, int]) -> list[int]:
     n, r, t, x, fall = (sizes[k] for k in ("SPECIES", "REACTIONS", "TERMS", "EXPRESSIONS", "FALLOFFS"))
-    by_name = {"seen": 2, "scale": n + 1, "inverse_scale": n + 1, "scale_slope": n + 1, "activity": n + 1,
+    by_name = {"seen": 2, "log_scale": n + 1, "scale": n + 1, "inverse_scale": n + 1, "scale_slope": n + 1, "activity": n + 1,
                "log_k": x, "k_limit": x, "k_slope": x, "log_centre": fall, "log_centre_slope": fall,
-               "partner": sizes["GROUPS"], "k": t, "k_by_T": t, "k_by_M": t,
+               "centre_exponent": 3 * fall, "centre_part": 3 * fall, "log_broadening": fall, "broadening": fall,
+               "partner": sizes["GROUPS"], "log_partner": sizes["GROUPS"], "k": t, "k_by_T": t, "k_by_M": t,
                "partial": 6 * r + sizes["LONG"] + t, "block": sizes["BLOCK"] + n}
     of_species = {"gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T", "unknown",
                   "column"}
