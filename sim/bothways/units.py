@@ -8,8 +8,10 @@ import math
 from collections.abc import Sequence
 from dataclasses import dataclass
 
+import numpy as np
+
 from .constants import ATMOSPHERE, AVOGADRO, ELEMENTARY_CHARGE, GAS_CONSTANT, THERMOCHEMICAL_CALORIE
-from .errors import InputError, nearest
+from .errors import InputError, hint, shown
 
 _CAL = THERMOCHEMICAL_CALORIE
 
@@ -45,8 +47,8 @@ def parse_quantity(text: str, kind: str) -> float:
 
     Raises InputError (with neither file nor entry) for a malformed number or a unit unknown or of another kind.
     """
-    number, _, unit = text.strip().partition(" ")
-    unit = unit.strip()
+    number, *rest = text.split(maxsplit=1)
+    unit = "".join(rest).rstrip()
     try:
         value = float(number)
     except ValueError:
@@ -61,7 +63,7 @@ def _unit_problem(text: str, unit: str, kind: str) -> str:
         return f"'{text}' has no unit"
     if unit in _KIND_OF_UNIT:
         return f"'{text}': {unit} is a unit of {_KIND_OF_UNIT[unit]}, not of {kind}"
-    return f"'{text}': unknown unit '{unit}' ({nearest(unit, UNITS[kind])})"
+    return f"'{text}': unknown unit '{unit}'{hint(unit, UNITS[kind])}"
 
 
 def _example(kind: str) -> str:
@@ -90,7 +92,10 @@ class UnitSystem:
     def rate_factor(self, order: int) -> float:
         """SI value [(m3/mol)^(order-1)/s] of one bare unit of a rate constant of that order."""
         concentration = self.factor("amount") / self.factor("length") ** 3
-        return concentration ** (1 - order) / self.factor("time")
+        try:
+            return concentration ** (1 - order) / self.factor("time")
+        except OverflowError:
+            return math.inf
 
 
 _FILE_KINDS = ("length", "amount", "time", "molar energy", "pressure")
@@ -103,7 +108,7 @@ def unit_system(names: Sequence[object]) -> UnitSystem:
         kind = next((k for k in _FILE_KINDS if isinstance(name, str) and name in UNITS[k]), None)
         if kind is None:
             known = [unit for k in _FILE_KINDS for unit in UNITS[k]]
-            raise InputError(f"unknown unit '{name}' ({nearest(str(name), known)})",
+            raise InputError(f"unknown unit {shown(name)}{hint(name, known)}",
                              expected="units of length, amount, time, molar energy and pressure")
         if kind in chosen:
             raise InputError(f"two units of {kind}: {chosen[kind]} and {name}", expected="one of each kind")
@@ -113,4 +118,9 @@ def unit_system(names: Sequence[object]) -> UnitSystem:
 
 def finite(value: object) -> bool:
     """Whether `value` is a finite number (booleans are not numbers)."""
-    return isinstance(value, (int, float)) and not isinstance(value, bool) and math.isfinite(value)
+    if not isinstance(value, (int, float, np.integer, np.floating)) or isinstance(value, bool):
+        return False
+    try:
+        return math.isfinite(value)
+    except OverflowError:  # an integer beyond the range of float
+        return False

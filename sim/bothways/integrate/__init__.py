@@ -7,7 +7,7 @@ from . import scipy_methods
 from .interface import Monitor, Outcome, Problem, Status
 
 METHODS = tuple(scipy_methods.METHODS)
-DEFAULT_METHOD = "BDF"
+DEFAULT_METHOD = "Radau"
 
 
 def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:

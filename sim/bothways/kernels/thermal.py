@@ -8,7 +8,7 @@ import math
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
 from .compiled import compiled
-from .elementary import exp_array
+from .elementary import SMALLEST, exp_array
 from .layout import view
 
 LN10 = 2.302585092994046
@@ -126,6 +126,9 @@ def _centres(T, ints, floats, work):
         exponent[3 * q + 1] = -T * parameter[4 * q + 2]
         exponent[3 * q + 2] = -parameter[4 * q + 3] / T
     exp_array(exponent, parts)
+    for e in range(parts.size):
+        if exponent[e] < SMALLEST:  # a published T* of 1e-30 means zero, and its slope too
+            parts[e] = 0.0
     for q in range(kind.size):
         if kind[q] == 1:
             a = parameter[4 * q]
