@@ -8,9 +8,10 @@ from typing import Any
 import numpy as np
 
 from .case import MARGIN_WARN, Case, temperatures_outside
-from .integrate import Outcome, Problem, Status, integrate
+from .integrate import OWN_METHODS, Outcome, Status, integrate
 from .mechanism.toml_writer import to_toml
 from .milestones import milestones
+from .monitored import Monitored, monitored
 from .recorder import POTENTIALS, Recorder
 from .trajectory import Trajectory
 from .vessel import Equations
@@ -39,19 +40,12 @@ def run(case: Case, told: Callable[[int, float, float], None] | None = None) -> 
     saying why. Remarks (species outside the range of their data, joins far apart) are given as warnings.
     """
     equations = case.equations()
-    recorder = Recorder(case, equations, told)
     _remark(case, [case.charge.temperature])
-    outcome = integrate(_problem(case, equations), case.method, recorder)
-    _remark(case, [row[1] for row in recorder.rows[1:]])
-    return _trajectory(case, equations, recorder, outcome)
-
-
-def _problem(case: Case, equations: Equations) -> Problem:
-    charge = case.charge
-    part = charge.concentration if case.holds == "volume" else charge.amount
-    atol = np.append(np.full(part.size, case.atol * float(np.sum(part))), 1e-12 * charge.temperature)
-    stops = tuple(t for t in case.also_at if t < case.end)
-    return Problem(equations.f, equations.J, np.append(part, charge.temperature), case.end, case.rtol, atol, stops)
+    task, recorder = monitored(case, equations), Recorder(case, equations, told)
+    outcome = integrate(task.problem, case.method, recorder)
+    columns = recorder.columns()
+    _remark(case, list(columns["temperature"][1:]))
+    return _trajectory(case, equations, columns, task, outcome)
 
 
 def _remark(case: Case, temperatures: list[float]) -> None:
@@ -65,11 +59,11 @@ def _remark(case: Case, temperatures: list[float]) -> None:
                           "they continue with constant heat capacity", Remark, stacklevel=3)
 
 
-def _trajectory(case: Case, equations: Equations, recorder: Recorder, outcome: Outcome) -> Trajectory:
-    columns: dict[str, Any] = recorder.columns()
+def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task: Monitored, outcome: Outcome) -> Trajectory:
     name, units = POTENTIALS[case.heat, case.holds]
+    rise = float(max(np.max(np.diff(columns["potential"]), initial=0.0), 0.0))
     statistics = {"method": case.method, "rtol": case.rtol, "atol": case.atol, "status": outcome.status.value,
-                  **outcome.counts, "largest_potential_rise": recorder.largest_rise()}
+                  **outcome.counts, **(task.notes() if case.method in OWN_METHODS else {}), "largest_potential_rise": rise}
     m = case.mechanism
     return Trajectory(
         **columns, potential_name=name, potential_units=units, species=m.names, molar_mass=m.molar_mass,

@@ -1,5 +1,6 @@
 """A case: what is charged, into which vessel, until when. Read from a TOML file or a plain dict, checked whole."""
 
+import os
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from pathlib import Path
@@ -10,8 +11,9 @@ import numpy as np
 from .charge import Charge, read_charge
 from .contents import Contents
 from .entry import Entry
-from .errors import InputError, nearest
+from .errors import InputError, hint
 from .integrate import DEFAULT_METHOD, METHODS
+from .kernels.equations import HIGHEST_TEMPERATURE
 from .mechanism import Mechanism, bundled_cases, read_mechanism
 from .mechanism.files import mechanism_path, read_toml
 from .mechanism.model import copy_document
@@ -19,6 +21,8 @@ from .vessel import HEAT, HOLDS, Equations
 
 MARGIN_WARN, MARGIN_ERROR = 10.0, 500.0
 """Temperatures so far outside a fit's range [K] are remarked on, or refused."""
+MOST_INERTIA = 1e6
+"""Thermal inertia above this [-] is taken for a slip."""
 
 
 @dataclass(frozen=True)
@@ -66,8 +70,9 @@ def read_case(name: str | Path) -> Case:
     if str(name) in bundled:
         return build_case(read_toml(bundled[str(name)]), bundled[str(name)])
     path = Path(name)
-    if not path.exists() and path.suffix != ".toml" and "/" not in str(name):
-        raise InputError(f"no bundled case and no file '{name}' ({nearest(str(name), bundled)})",
+    if not os.path.exists(path) and path.suffix != ".toml" and "/" not in str(name):
+        known = [*bundled, *(p.name for p in Path().glob("*.toml"))]
+        raise InputError(f"no bundled case and no file '{name}'{hint(name, known)}", expected="a case",
                          remedy="'bothways mechanisms' lists the bundled cases")
     return build_case(read_toml(path), path)
 
@@ -78,23 +83,32 @@ def build_case(document: Mapping[str, Any], file: object = None, mechanism: Mech
     mechanism : used instead of the one the key case.mechanism names, which may then be left out.
     """
     top = Entry(document, "", file)
+    if "case" not in top.data and "species" in top.data:
+        raise top.error("this is a mechanism", expected="a case", remedy="name it under [case] in a case file")
+    top.expect("case", "vessel", "start", "until", "solver", "output")
     mechanism = _mechanism(top, mechanism)
+    holds, heat, inertia, volume = _vessel(top)
+    start = top.table("start")
+    charge = read_charge(start, mechanism, holds, volume)
+    _check_temperature(start, mechanism, charge)
+    end = _end(top)
+    case = Case(mechanism, holds, heat, charge, end, *_solver(top), inertia, *_output(top, file, end),
+                document=copy_document(document), file=file)
+    return case
+
+
+def _vessel(top: Entry) -> tuple[str, str, float, float | None]:
+    """What is held, heat, thermal inertia [-] and volume [m3] if stated."""
     vessel = top.table("vessel", {})
     holds = vessel.text("holds", "volume", choices=HOLDS)
     heat = vessel.text("heat", "adiabatic", choices=HEAT)
     inertia = vessel.number("thermal_inertia", 1.0, "positive")
-    if inertia < 1.0 or (inertia > 1.0 and heat != "adiabatic"):
-        raise vessel.error(f"{inertia} for a vessel that is {heat}", key="thermal_inertia",
-                           expected="a number from 1 upwards, in an adiabatic vessel")
+    if not 1.0 <= inertia <= MOST_INERTIA or (inertia > 1.0 and heat != "adiabatic"):
+        raise vessel.error(f"{inertia:g} for a vessel that is {heat}", key="thermal_inertia", remedy="correct it",
+                           expected=f"a number from 1 to {MOST_INERTIA:g} in an adiabatic vessel, 1 in others")
     volume = vessel.quantity("volume", "volume", None, "positive")
     vessel.done()
-    start = top.table("start")
-    charge = read_charge(start, mechanism, holds, volume)
-    _check_temperature(start, mechanism, charge)
-    case = Case(mechanism, holds, heat, charge, _end(top), *_solver(top), inertia, *_output(top, file),
-                document=copy_document(document), file=file)
-    top.done()
-    return case
+    return holds, heat, inertia, volume
 
 
 def _mechanism(top: Entry, given: Mechanism | None) -> Mechanism:
@@ -109,7 +123,7 @@ def _mechanism(top: Entry, given: Mechanism | None) -> Mechanism:
         return read_mechanism(mechanism_path(name, folder))
     except InputError as err:
         if err.file is None:
-            raise head.error(err.problem, remedy=err.remedy, key="mechanism") from None
+            raise head.error(err.problem, expected=err.expected, remedy=err.remedy, key="mechanism") from None
         raise
 
 
@@ -125,34 +139,46 @@ def _solver(top: Entry) -> tuple[float, float, str]:
     rtol, atol = solver.number("rtol", 1e-6, "positive"), solver.number("atol", 1e-12, "positive")
     for key, value, low, high in (("rtol", rtol, 1e-13, 1e-2), ("atol", atol, 1e-40, 1e-3)):
         if not low <= value <= high:
-            raise solver.error(f"{value}", expected=f"a number from {low} to {high}", key=key)
+            raise solver.error(f"{value:g} is out of range", expected=f"a number from {low:g} to {high:g}", key=key)
     method = solver.text("method", DEFAULT_METHOD, choices=METHODS)
     solver.done()
     return rtol, atol, method
 
 
-def _output(top: Entry, file: object) -> tuple[Path | None, tuple[float, ...]]:
+def _output(top: Entry, file: object, end: float) -> tuple[Path | None, tuple[float, ...]]:
     output = top.table("output", {})
     name = output.text("file", None)
-    also = output.get("also_at", [])
-    if not isinstance(also, (list, tuple)):
-        raise output.error(f"{also!r} is not a list", expected='times such as ["1 ms", "2 ms"]', key="also_at")
-    times = tuple(sorted({output.convert(t, "time", "also_at", "positive") for t in also}))
+    times = _times(output, end)
     output.done()
     bundled = file in bundled_cases().values()
     folder = Path(str(file)).parent if file and not bundled else Path()
     return (folder / name if name else None), times
 
 
+def _times(output: Entry, end: float) -> tuple[float, ...]:
+    """The times [s] of also_at, rising."""
+    stated = output.items("also_at", (), '["1 ms", "2 ms"]')
+    times = [output.convert(t, "time", f"also_at[{k}]", "positive") for k, t in enumerate(stated, 1)]
+    for k, t in enumerate(times, 1):
+        if t > end:
+            raise output.error(f"{t:g} s is after the end", expected=f"a time up to until.time, {end:g} s",
+                               remedy="correct either", key=f"also_at[{k}]")
+    return tuple(sorted(set(times)))
+
+
 def _check_temperature(start: Entry, mechanism: Mechanism, charge: Charge) -> None:
     lowest = Equations(mechanism).tables.lowest_temperature
-    if charge.temperature < lowest:
-        raise start.error(f"{charge.temperature:g} K", expected=f"at least {lowest:g} K for this mechanism: below, "
-                          "its equilibrium constants leave the range of the arithmetic", key="temperature")
+    if not lowest <= charge.temperature < HIGHEST_TEMPERATURE:
+        expected = f"{lowest:g} to {HIGHEST_TEMPERATURE:g} K for this mechanism"
+        if lowest > HIGHEST_TEMPERATURE:
+            expected = "potentials nearer to each other: no temperature is possible with this mechanism"
+        raise start.error(f"{charge.temperature:g} K", expected=expected, key="temperature",
+                          remedy="beyond, rates and equilibrium constants leave the range of the arithmetic")
     outside = temperatures_outside(mechanism, charge.temperature, MARGIN_ERROR)
     if outside:
         raise start.error(f"{charge.temperature:g} K is more than {MARGIN_ERROR:g} K outside the thermochemical data "
-                          f"of {outside}", expected="a temperature nearer to the range of the data", key="temperature")
+                          f"of {outside}", expected="a temperature nearer to the range of the data", key="temperature",
+                          remedy="correct it, or use a mechanism whose data reach there")
 
 
 def temperatures_outside(mechanism: Mechanism, temperature: float, margin: float) -> str:

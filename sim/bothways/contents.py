@@ -3,9 +3,10 @@
 from functools import cached_property
 
 import numpy as np
+from scipy.special import xlogy
 
 from .constants import GAS_CONSTANT as R
-from .kernels.thermal import polynomials
+from .kernels.thermal import polynomials, polynomials_at
 from .mechanism import Mechanism, Tables, build_tables, table_view
 
 
@@ -65,17 +66,42 @@ class Contents:
         """S = (H - G)/T [J/K]."""
         return (self.enthalpy(n, temperature) - self.gibbs(n, temperature, volume)) / temperature
 
-    def temperature_of(self, energy: float, n: np.ndarray, guess: float, holds: str,
-                       own_heat_capacity: float = 0.0, reference: float = 0.0) -> float:
-        """The temperature [K] at which contents and vessel hold `energy` [J]: Newton's method from a near guess.
+    def molar_at(self, temperatures: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+        """g°/RT, h°/RT and cp°/R at many temperatures (nt), (nt, N) each."""
+        out = np.empty((4, len(temperatures), len(self.mechanism.species)))
+        polynomials_at(np.ascontiguousarray(temperatures), *self._arrays, *out)
+        return out[0], out[1], out[2]
+
+    def energies(self, n: np.ndarray, temperatures: np.ndarray, holds: str) -> np.ndarray:
+        """`energy` of many states: n (nt, N), temperatures (nt) [J]."""
+        less = 1.0 if holds == "volume" else 0.0
+        return R * temperatures * np.einsum("ki,ki->k", n, self.molar_at(temperatures)[1] - less)
+
+    def gibbs_energies(self, n: np.ndarray, temperatures: np.ndarray, volumes: np.ndarray) -> np.ndarray:
+        """G of many states [J]."""
+        return R * temperatures * self._gibbs_over_RT(n, temperatures, volumes, self.molar_at(temperatures)[0])
+
+    def entropies(self, n: np.ndarray, temperatures: np.ndarray, volumes: np.ndarray) -> np.ndarray:
+        """S = (H - G)/T of many states [J/K]."""
+        g, h, _ = self.molar_at(temperatures)
+        return R * (np.einsum("ki,ki->k", n, h) - self._gibbs_over_RT(n, temperatures, volumes, g))
+
+    def _gibbs_over_RT(self, n: np.ndarray, T: np.ndarray, volumes: np.ndarray, g: np.ndarray) -> np.ndarray:
+        unit = R * T / (volumes * self.mechanism.standard_pressure)
+        return np.einsum("ki,ki->k", n, g) + np.sum(xlogy(n, n * unit[:, None]), axis=1)
+
+    def temperatures_of(self, energy: float, n: np.ndarray, near: np.ndarray, holds: str,
+                        own_heat_capacity: float = 0.0, reference: float = 0.0) -> np.ndarray:
+        """The temperatures [K] at which contents n (nt, N) and vessel hold `energy` [J]: Newton from near guesses.
 
         own_heat_capacity [J/K] is the vessel's, counted from the reference temperature [K].
         """
-        T = guess
+        T, less = near.astype(float), 1.0 if holds == "volume" else 0.0
         for _ in range(50):
-            missing = energy - self.energy(n, T, holds) - own_heat_capacity * (T - reference)
-            step = missing / (self.heat_capacity(n, T, holds) + own_heat_capacity)
-            T = min(max(T + step, 0.5 * T), 2.0 * T)
-            if abs(step) <= 4e-16 * T:
+            _, h, cp = self.molar_at(T)
+            held = R * T * np.einsum("ki,ki->k", n, h - less) + own_heat_capacity * (T - reference)
+            step = (energy - held) / (R * np.einsum("ki,ki->k", n, cp - less) + own_heat_capacity)
+            T = np.clip(T + step, 0.5 * T, 2.0 * T)
+            if np.all(np.abs(step) <= 4e-16 * T):
                 break
         return T

@@ -45,11 +45,11 @@ class Entry:
 
     def unknown(self, what: str, name: str, known: Iterable[str], *, key: str = "", remedy: str = "") -> InputError:
         """An InputError for a name of some kind that is not among the known ones."""
-        known = list(known)
-        if self.above is not None and name in self.above.known and name not in known:
-            remedy = (f"it belongs to {self.above.place or 'the top of the file'}: put it before this table's header, "
-                      "since what follows a [table] header belongs to that table")
-        return self.error(f"unknown {what} '{name}'{hint(name, known)}", remedy=remedy or f"correct the {what}", key=key)
+        close, remedy = hint(name, known), remedy or f"correct the {what}"
+        if self.above is not None and name in self.above.known:
+            close, remedy = "", (f"it belongs to {self.above.place or 'the top of the file'}: put it before this table's "
+                                 "header, since what follows a [table] header belongs to that table")
+        return self.error(f"unknown {what} {shown(name)}{close}", remedy=remedy, key=key)
 
     def get(self, key: str, default: Any = _REQUIRED, what: str = "a value") -> Any:
         """The raw value of `key`, or `default`; an error where it is required and missing."""
@@ -100,7 +100,7 @@ class Entry:
 
     def text(self, key: str, default: Any = _REQUIRED, choices: Sequence[str] = ()) -> Any:
         """A string, one of `choices` if these are given."""
-        listed = " or ".join(f'"{c}"' for c in choices)
+        listed = " or ".join([f'"{c}"' for c in choices]) if choices else ""
         value = self.get(key, default, listed or "a text")
         if value is default:
             return value
@@ -173,6 +173,11 @@ class Entry:
         if kind:
             return {name: inner.quantity(name, kind, sign=sign) for name in inner.data}
         return {name: inner.number(name, sign=sign) for name in inner.data}
+
+    def expect(self, *keys: str) -> None:
+        """Reports the first key that is none of these, before any is read."""
+        self.known.update(keys)
+        self.done()
 
     def done(self, also: Iterable[str] = ()) -> None:
         """Reports the first key that nobody asked for."""

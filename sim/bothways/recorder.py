@@ -1,7 +1,8 @@
-"""The step monitor of a batch: turns each accepted state into a reported one and keeps its balances.
+"""The step monitor of a batch: keeps every accepted state, and works out what is reported of them, all at once.
 
 A reported state has no negative amounts, the elements of the charge, and in an adiabatic vessel the temperature
-that the conserved energy gives. What the solver's own state had is recorded as residuals.
+that the conserved energy gives. The compiled methods' judge has seen to that at each step; for any other solver it
+is done here. What the solver's own state had is reported as residuals.
 """
 
 from collections.abc import Callable
@@ -20,7 +21,7 @@ POTENTIALS = {("isothermal", "volume"): ("Helmholtz energy", "J"), ("isothermal"
 
 
 class Recorder:
-    """Records time, reported state, potential and residuals at every accepted step.
+    """Keeps time and state of the start and of every accepted step; `columns` reports them.
 
     told : called with (steps so far, time [s], temperature [K]) at each step, for progress.
     """
@@ -28,89 +29,81 @@ class Recorder:
     def __init__(self, case: Case, equations: Equations, told: Callable[[int, float, float], None] | None = None) -> None:
         self.case, self.told = case, told
         self.contents = Contents(case.mechanism, equations.tables)
-        self.own = case.own_heat_capacity
         charge = case.charge
-        self.atoms = case.mechanism.element_matrix
-        self.totals = self.atoms @ charge.amount
-        self._absolute = np.abs(self.atoms) @ charge.amount
-        self.energy = self.contents.energy(charge.amount, charge.temperature, case.holds)
-        self._energy_scale = R * charge.temperature * float(
-            charge.amount @ np.abs(self.contents.molar(charge.temperature)[2]))
-        self.rows: list[tuple[float, ...]] = []
-        self.amounts: list[np.ndarray] = []
-        self._record(0.0, charge.amount, charge.temperature, 0.0, 0.0)
+        part = charge.concentration if case.holds == "volume" else charge.amount
+        self.times, self.states = [0.0], [np.append(part, charge.temperature)]
 
     def accepted(self, t: float, y: np.ndarray) -> None:
-        """Records the state y of the plain form at time t [s]."""
-        raw = y[:-1] * self.case.charge.volume if self.case.holds == "volume" else y[:-1]
-        element = self._element_residual(raw)
-        amount = repaired(raw, self.atoms, self.totals)
-        temperature, energy = float(y[-1]), 0.0
-        if self.case.heat == "adiabatic":
-            energy = self._energy_residual(raw, temperature)
-            temperature = self.contents.temperature_of(self.energy, amount, temperature, self.case.holds, self.own,
-                                                       self.case.charge.temperature)
-        self._record(t, amount, temperature, element, energy)
+        """Keeps the state y of the plain form at time t [s]."""
+        self.times.append(t)
+        self.states.append(y)
         if self.told:
-            self.told(len(self.rows) - 1, t, temperature)
+            self.told(len(self.times) - 1, t, float(y[-1]))
 
-    def _element_residual(self, amount: np.ndarray) -> float:
+    def columns(self) -> dict[str, np.ndarray]:
+        """The records as the arrays of a trajectory."""
+        states, charge, case = np.array(self.states), self.case.charge, self.case
+        raw = states[:, :-1] * (charge.volume if case.holds == "volume" else 1.0)
+        amount = repaired(raw, case.mechanism.element_matrix, charge.amount)
+        amount[0] = charge.amount
+        T = self._temperatures(amount, states[:, -1])
+        total = amount.sum(axis=1)
+        held = np.full(len(T), charge.volume if case.holds == "volume" else charge.pressure)
+        other = total * R * T / held
+        volume, pressure = (held, other) if case.holds == "volume" else (other, held)
+        pressure[0] = charge.pressure
+        potential = self._potential(amount, T, volume)
+        produced = (potential[0] - potential) / (charge.temperature if case.heat == "isothermal" else 1.0)
+        return {"time": np.array(self.times), "temperature": T, "pressure": pressure, "volume": volume, "amount": amount,
+                "potential": potential, "entropy_produced": produced, "element_residual": self._element_residual(raw),
+                "energy_residual": self._energy_residual(raw, states[:, -1])}
+
+    def _temperatures(self, amount: np.ndarray, near: np.ndarray) -> np.ndarray:
+        if self.case.heat == "isothermal":
+            return np.full(len(near), self.case.charge.temperature)
+        case, charge = self.case, self.case.charge
+        energy = self.contents.energy(charge.amount, charge.temperature, case.holds)
+        T = self.contents.temperatures_of(energy, amount, near, case.holds, case.own_heat_capacity, charge.temperature)
+        T[0] = charge.temperature
+        return T
+
+    def _element_residual(self, amount: np.ndarray) -> np.ndarray:
         """Largest departure of an element from the charge, relative to what was charged of it.
 
         Elements that were not charged are held against all atoms.
         """
-        scale = np.where(self._absolute > 0, self._absolute, np.sum(self._absolute))
-        return float(np.max(np.abs(self.atoms @ amount - self.totals) / scale))
+        atoms, charged = self.case.mechanism.element_matrix, self.case.charge.amount
+        size = np.abs(atoms) @ charged
+        scale = np.where(size > 0, size, np.sum(size))
+        return np.max(np.abs((amount - charged) @ atoms.T) / scale, axis=1)
 
-    def _energy_residual(self, amount: np.ndarray, temperature: float) -> float:
-        """Departure of U or H from the start, relative to the thermal energy Σ n cp T of the charge."""
-        now = self.contents.energy(amount, temperature, self.case.holds)
-        return (now + self.own * (temperature - self.case.charge.temperature) - self.energy) / self._energy_scale
-
-    def _record(self, t: float, amount: np.ndarray, T: float, element: float, energy: float) -> None:
-        charge = self.case.charge
-        total = float(np.sum(amount))
-        volume = charge.volume if self.case.holds == "volume" else total * R * T / charge.pressure
-        pressure = total * R * T / volume if self.case.holds == "volume" else charge.pressure
-        potential = self._potential(amount, T, volume)
-        if not self.rows:
-            self._first_potential = potential
-        produced = self._first_potential - potential
+    def _energy_residual(self, amount: np.ndarray, T: np.ndarray) -> np.ndarray:
+        """Departure of U or H from the start, relative to the thermal energy Σ n cp T of the charge; 0 if isothermal."""
         if self.case.heat == "isothermal":
-            produced /= charge.temperature
-        self.rows.append((t, T, pressure, volume, potential, produced, element, energy))
-        self.amounts.append(amount)
+            return np.zeros(len(T))
+        case, charge = self.case, self.case.charge
+        scale = charge.temperature * self.contents.heat_capacity(charge.amount, charge.temperature, "pressure")
+        energy = self.contents.energies(amount, T, case.holds) + case.own_heat_capacity * (T - charge.temperature)
+        return (energy - energy[0]) / scale
 
-    def _potential(self, amount: np.ndarray, T: float, volume: float) -> float:
+    def _potential(self, amount: np.ndarray, T: np.ndarray, volume: np.ndarray) -> np.ndarray:
         if self.case.heat == "adiabatic":
-            own = self.own * np.log(T / self.case.charge.temperature)
-            return -self.contents.entropy(amount, T, volume) - float(own)
-        if self.case.holds == "volume":
-            return self.contents.helmholtz(amount, T, volume)
-        return self.contents.gibbs(amount, T, volume)
-
-    def columns(self) -> dict[str, np.ndarray]:
-        """The records as the arrays of a trajectory."""
-        names = ("time", "temperature", "pressure", "volume", "potential", "entropy_produced", "element_residual",
-                 "energy_residual")
-        table = np.array(self.rows)
-        return {name: table[:, k].copy() for k, name in enumerate(names)} | {"amount": np.array(self.amounts)}
-
-    def largest_rise(self) -> float:
-        """The largest rise of the potential from one record to the next; zero if it only fell."""
-        potential = np.array([row[4] for row in self.rows])
-        return float(max(np.max(np.diff(potential), initial=0.0), 0.0))
+            own = self.case.own_heat_capacity * np.log(T / self.case.charge.temperature)
+            return -self.contents.entropies(amount, T, volume) - own
+        gibbs = self.contents.gibbs_energies(amount, T, volume)
+        return gibbs - amount.sum(axis=1) * R * T if self.case.holds == "volume" else gibbs
 
 
-def repaired(amount: np.ndarray, atoms: np.ndarray, totals: np.ndarray) -> np.ndarray:
-    """Amounts (N) [mol] without negatives and with the elements' totals kept.
+def repaired(amount: np.ndarray, atoms: np.ndarray, charge: np.ndarray) -> np.ndarray:
+    """Amounts (nt, N) [mol] without negatives and with the elements of the charge (N).
 
     Where the solver left a negative it is set to zero, and the atoms this adds are taken off all species in
     proportion: n_i → n_i (1 + Σ_e λ_e atoms_ei). The change is of the size of the negatives.
     """
-    if np.min(amount) >= 0:
-        return amount
-    kept = np.maximum(amount, 0.0)
-    matrix = (atoms * kept) @ atoms.T
-    multipliers = np.linalg.lstsq(matrix, totals - atoms @ kept, rcond=1e-12)[0]
-    return np.maximum(kept * (1.0 + multipliers @ atoms), 0.0)
+    mended = amount.copy()
+    for k in np.flatnonzero(np.any(amount < 0, axis=1)):
+        kept = np.maximum(amount[k], 0.0)
+        matrix = (atoms * kept) @ atoms.T
+        multipliers = np.linalg.lstsq(matrix, atoms @ (charge - kept), rcond=1e-12)[0]
+        mended[k] = np.maximum(kept * (1.0 + multipliers @ atoms), 0.0)
+    return mended

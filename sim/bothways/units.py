@@ -7,8 +7,7 @@ Publication 811, 2008, for atm, cal_th and Torr).
 import math
 from collections.abc import Sequence
 from dataclasses import dataclass
-
-import numpy as np
+from numbers import Real
 
 from .constants import ATMOSPHERE, AVOGADRO, ELEMENTARY_CHARGE, GAS_CONSTANT, THERMOCHEMICAL_CALORIE
 from .errors import InputError, hint, shown
@@ -21,8 +20,8 @@ UNITS: dict[str, dict[str, float]] = {
                  "atm": ATMOSPHERE, "Torr": ATMOSPHERE / 760.0},
     "time": {"s": 1.0, "ms": 1e-3, "us": 1e-6, "\u00b5s": 1e-6, "\u03bcs": 1e-6, "ns": 1e-9, "min": 60.0, "h": 3600.0,
              "d": 86400.0},
-    "length": {"m": 1.0, "dm": 0.1, "cm": 1e-2, "mm": 1e-3, "um": 1e-6, "\u00b5m": 1e-6, "\u03bcm": 1e-6, "nm": 1e-9, "pm": 1e-12,
-               "\u00c5": 1e-10, "\u212b": 1e-10},
+    "length": {"m": 1.0, "dm": 0.1, "cm": 1e-2, "mm": 1e-3, "um": 1e-6, "\u00b5m": 1e-6, "\u03bcm": 1e-6, "nm": 1e-9,
+               "pm": 1e-12, "\u00c5": 1e-10, "\u212b": 1e-10},
     "volume": {"m3": 1.0, "m³": 1.0, "L": 1e-3, "l": 1e-3, "mL": 1e-6, "ml": 1e-6, "dm3": 1e-3, "cm3": 1e-6,
                "cm³": 1e-6},
     "amount": {"mol": 1.0, "mmol": 1e-3, "kmol": 1e3, "molecule": 1.0 / AVOGADRO},
@@ -47,12 +46,12 @@ def parse_quantity(text: str, kind: str) -> float:
 
     Raises InputError (with neither file nor entry) for a malformed number or a unit unknown or of another kind.
     """
-    number, *rest = text.split(maxsplit=1)
+    number, *rest = text.split(maxsplit=1) or [""]
     unit = "".join(rest).rstrip()
     try:
         value = float(number)
     except ValueError:
-        raise InputError(f"'{text}' is not a number with its unit", expected=_example(kind)) from None
+        raise InputError(f"{shown(text)} is not a number with its unit", expected=_example(kind)) from None
     if unit not in UNITS[kind]:
         raise InputError(_unit_problem(text, unit, kind), expected=_example(kind))
     return value * UNITS[kind][unit] + _CELSIUS.get(unit, 0.0)
@@ -60,10 +59,10 @@ def parse_quantity(text: str, kind: str) -> float:
 
 def _unit_problem(text: str, unit: str, kind: str) -> str:
     if not unit:
-        return f"'{text}' has no unit"
+        return f"{shown(text)} has no unit"
     if unit in _KIND_OF_UNIT:
-        return f"'{text}': {unit} is a unit of {_KIND_OF_UNIT[unit]}, not of {kind}"
-    return f"'{text}': unknown unit '{unit}'{hint(unit, UNITS[kind])}"
+        return f"{shown(text)}: {unit} is a unit of {_KIND_OF_UNIT[unit]}, not of {kind}"
+    return f"{shown(text)}: unknown unit {shown(unit)}{hint(unit, UNITS[kind])}"
 
 
 def _example(kind: str) -> str:
@@ -118,7 +117,7 @@ def unit_system(names: Sequence[object]) -> UnitSystem:
 
 def finite(value: object) -> bool:
     """Whether `value` is a finite number (booleans are not numbers)."""
-    if not isinstance(value, (int, float, np.integer, np.floating)) or isinstance(value, bool):
+    if not isinstance(value, (float, int, Real)) or isinstance(value, bool):
         return False
     try:
         return math.isfinite(value)

@@ -16,7 +16,7 @@ from scipy.sparse import csc_array
 from .constants import GAS_CONSTANT as _R
 from .errors import InputError
 from .kernels import equations as kernel
-from .kernels.compiled import in_cache
+from .compiled import in_cache
 from .mechanism import Mechanism, Tables, build_tables, table_view
 
 HEAT = ("isothermal", "adiabatic")

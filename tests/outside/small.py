@@ -1,6 +1,7 @@
 """Small mechanisms and cases for the outside checks, and what they give in the units of tables."""
 
 from collections.abc import Mapping, Sequence
+from functools import cache
 from typing import Any
 
 import numpy as np
@@ -13,32 +14,37 @@ CM3 = 1e6
 """A second-order rate constant in m3/(mol s) times this is in cm3/(mol s)."""
 
 
+@cache
+def bundled(name: str) -> Contents:
+    """A bundled mechanism (`.mechanism`) with the functions of state of its species."""
+    return Contents(read_mechanism(name))
+
+
 def excerpt(name: str, reactions: Sequence[Mapping[str, Any]], formation: Mapping[str, float] | None = None) -> Mechanism:
     """Species of a bundled mechanism with reactions of our own; bare numbers in cm, mol, s and K.
 
     formation : other enthalpies of formation at 298.15 K [kJ/mol], by species.
     """
-    whole = read_mechanism(name)
-    document = whole.to_dict()
+    document = bundled(name).mechanism.to_dict()
     words = {word for reaction in reactions for word in reaction["equation"].split()}
     document["species"] = {s: table for s, table in document["species"].items() if s in words}
     document["mechanism"]["units"] = ["cm", "mol", "s", "K"]
     document["reaction"] = [dict(reaction) for reaction in reactions]
     for species, enthalpy in (formation or {}).items():
-        shift = (enthalpy - properties(whole, species, 298.15)[1]) * 1e3 / R
+        shift = (enthalpy - properties(bundled(name), species, 298.15)[1]) * 1e3 / R
         for row in document["species"][species]["potential"]["a"]:
             row[5] += shift  # a6 [K] of the 7-coefficient form
     return build_mechanism(document)
 
 
-def properties(mechanism: Mechanism, species: str, temperature: float) -> tuple[float, float, float]:
+def properties(contents: Contents, species: str, temperature: float) -> tuple[float, float, float]:
     """cp [J/(mol K)], h [kJ/mol] and s [J/(mol K)] of a species as its own record has them.
 
-    Own record: at the standard pressure stated for the species.
+    Own record: at the standard pressure stated for the species, whatever the mechanism's.
     """
-    k = mechanism.index(species)
-    g, h, cp = (values[k] for values in Contents(mechanism).molar(temperature))
-    own = np.log(mechanism.standard_pressure / mechanism.species[k].standard_pressure)
+    k = contents.mechanism.index(species)
+    g, h, cp = (values[k] for values in contents.molar(temperature))
+    own = np.log(contents.mechanism.standard_pressure / contents.mechanism.species[k].standard_pressure)
     return float(R * cp), float(R * temperature * h * 1e-3), float(R * (h - g + own))
 
 
@@ -76,10 +82,10 @@ def building_blocks(compositions: Mapping[str, Mapping[str, int]], gibbs: Mappin
 
 
 def course(mechanism: Mechanism, vessel: Mapping[str, Any], start: Mapping[str, Any], times: Sequence[float],
-           method: str, rtol: float = 1e-10) -> tuple[Trajectory, np.ndarray]:
+           method: str, rtol: float = 1e-10, atol: float = 1e-14) -> tuple[Trajectory, np.ndarray]:
     """The trajectory of a run to the last of the rising times [s], and the places of these times in it."""
     case = build_case({"vessel": dict(vessel), "start": dict(start), "until": {"time": times[-1]},
-                       "solver": {"rtol": rtol, "atol": 1e-14, "method": method},
+                       "solver": {"rtol": rtol, "atol": atol, "method": method},
                        "output": {"also_at": list(times)}}, mechanism=mechanism)
     trajectory = run(case)
     assert trajectory.complete, trajectory.reason
@@ -88,5 +94,5 @@ def course(mechanism: Mechanism, vessel: Mapping[str, Any], start: Mapping[str, 
     return trajectory, places
 
 
-__all__ = ["CM3", "R", "atm", "bar", "building_blocks", "constants", "course", "excerpt", "pressure_constants",
+__all__ = ["CM3", "R", "atm", "bar", "building_blocks", "bundled", "constants", "course", "excerpt", "pressure_constants",
            "properties"]

@@ -12,7 +12,7 @@ def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser("mechanisms", help="list the bundled mechanisms and cases",
                               description="Lists the bundled mechanisms with phase, size and source, and the bundled "
-                              "cases.", epilog="example: bothways mechanisms")
+                              "cases.", epilog="example: bothways mechanisms", allow_abbrev=False)
     parser.set_defaults(act=act)
 
 

@@ -1,7 +1,10 @@
 """bothways run: the time course of one case."""
 
 import argparse
+import os
+import signal
 import sys
+import threading
 import time
 import warnings
 from collections.abc import Callable, Iterator
@@ -12,12 +15,11 @@ from tqdm import tqdm
 
 from ..batch import Remark, run
 from ..case import Case, read_case
+from ..errors import InputError
 from ..outfile import check_writable
 from ..report import summary
 from ..trajectory import Trajectory, write_trajectory
-from . import BAD_INPUT, DONE, INTERRUPTED
-
-GAVE_UP = 3
+from . import BAD_INPUT, DONE, GAVE_UP, INTERRUPTED
 
 
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
@@ -25,7 +27,8 @@ def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     parser = verbs.add_parser(
         "run", help="predict a batch's time course", formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Integrates a case and writes its trajectory (HDF5); prints a summary.",
-        epilog="examples:\n  bothways run hydrogen-kettle --plot\n  bothways run my-batch.toml --output my-batch.h5 --replace")
+        epilog="examples:\n  bothways run hydrogen-kettle --plot\n"
+        "  bothways run my-batch.toml --output my-batch.h5 --replace", allow_abbrev=False)
     parser.add_argument("case", metavar="CASE", help="a case file, or the name of a bundled case")
     parser.add_argument("--output", metavar="FILE", type=Path, help="the trajectory file (default: as the case says, "
                         "else CASE.h5 in this folder)")
@@ -38,14 +41,11 @@ def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
 def act(chosen: argparse.Namespace) -> int:
     """Carries out the verb."""
     case = read_case(chosen.case)
-    output = chosen.output or case.output or Path(Path(chosen.case).stem + ".h5")
-    picture = None if chosen.plot is None else Path(chosen.plot or output.with_suffix(".png"))
-    for path in filter(None, (output, picture)):
-        check_writable(path, chosen.replace)
+    output, picture = _files(case, chosen)
     _compile(case)
-    with remarks_shown():
-        trajectory = _with_progress(case)
-    write_trajectory(output, trajectory, replace=chosen.replace)
+    with remarks_shown(), _Patience() as patience:
+        trajectory = _with_progress(case, patience)
+        write_trajectory(output, trajectory, replace=chosen.replace)
     print(summary(case, trajectory, _title(case, chosen.case)))
     print(f"{'file':<12}{output}")
     if picture is not None:
@@ -53,7 +53,30 @@ def act(chosen: argparse.Namespace) -> int:
 
         save_course(trajectory, picture, replace=chosen.replace)
         print(f"{'plot':<12}{picture}")
-    return _status(trajectory)
+    return _status(case, trajectory, output)
+
+
+def _files(case: Case, chosen: argparse.Namespace) -> tuple[Path, Path | None]:
+    """The files to write, trajectory and picture, both known to be writable."""
+    output = chosen.output or case.output or Path(Path(chosen.case).stem + ".h5")
+    _spare_inputs(case, output)
+    check_writable(output, chosen.replace)
+    if chosen.plot is None:
+        return output, None
+    from ..plots import check_picture
+
+    picture = Path(chosen.plot or output.with_suffix(".png"))
+    _spare_inputs(case, picture, output)
+    check_picture(picture, chosen.replace)
+    return output, picture
+
+
+def _spare_inputs(case: Case, path: Path, *also: Path) -> None:
+    """Refuses, even with --replace, to write over what is read or over the other output."""
+    for other in filter(None, (case.file, case.mechanism.file, *also)):
+        if os.path.realpath(path) == os.path.realpath(str(other)):
+            raise InputError("this file is needed for something else", expected="a file of its own to write",
+                             remedy="name another one", file=path)
 
 
 def _title(case: Case, name: str) -> str:
@@ -82,25 +105,58 @@ def remarks_shown() -> Iterator[None]:
             print(f"bothways: note: {warning.message}", file=sys.stderr)
 
 
-def _with_progress(case: Case) -> Trajectory:
+class _Patience:
+    """Lets the first Ctrl-C wait for the end of the step in hand, so that what is kept is whole; the second does not wait.
+
+    One that comes when the last step is done changes nothing: the run is complete and is written.
+    """
+
+    def __init__(self) -> None:
+        self.pressed = False
+
+    def __enter__(self) -> "_Patience":
+        self._governs = threading.current_thread() is threading.main_thread()  # signals reach no other
+        if self._governs:
+            self._former = signal.signal(signal.SIGINT, self._press)
+        return self
+
+    def __exit__(self, *exception: object) -> None:
+        if self._governs:
+            signal.signal(signal.SIGINT, self._former)
+
+    def _press(self, *unused: object) -> None:
+        self.check()
+        self.pressed = True
+
+    def check(self) -> None:
+        """Ends the run here if Ctrl-C was pressed."""
+        if self.pressed:
+            raise KeyboardInterrupt
+
+
+def _with_progress(case: Case, patience: _Patience) -> Trajectory:
     bar_format = "{desc} {elapsed}"
     with tqdm(desc="starting", bar_format=bar_format, disable=None, leave=False, file=sys.stderr) as bar:
-        return run(case, _teller(bar))
+        return run(case, _teller(bar, patience))
 
 
-def _teller(bar: tqdm) -> Callable[[int, float, float], None]:
+def _teller(bar: tqdm, patience: _Patience) -> Callable[[int, float, float], None]:
     def told(steps: int, t: float, temperature: float) -> None:
         bar.set_description_str(f"{steps} steps, {t:.4g} s, {temperature:.1f} K", refresh=False)
         bar.update()
+        patience.check()
 
     return told
 
 
-def _status(trajectory: Trajectory) -> int:
+def _status(case: Case, trajectory: Trajectory, output: Path) -> int:
     if trajectory.complete:
         return DONE
-    print(f"bothways: the run is incomplete: {trajectory.reason}; the file holds it up to there", file=sys.stderr)
-    return INTERRUPTED if "interrupted" in trajectory.reason else GAVE_UP
+    interrupted = "interrupted" in trajectory.reason
+    remedy = "run it again for the rest" if interrupted else "try another [solver] method or rtol, and see its last states"
+    print(f"bothways: {case.file}: the run is incomplete: {trajectory.reason}; {output} holds it up to there "
+          f"(complete = 0); {remedy}", file=sys.stderr)
+    return INTERRUPTED if interrupted else GAVE_UP
 
 
 __all__ = ["BAD_INPUT", "act", "add_to", "remarks_shown"]

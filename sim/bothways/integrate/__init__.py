@@ -3,16 +3,19 @@
 `integrate(problem, method, monitor)` is the door; METHODS names what it can do, DEFAULT_METHOD what it does unasked.
 """
 
-from . import scipy_methods
-from .interface import Monitor, Outcome, Problem, Status
+from . import compiled_methods, scipy_methods
+from .interface import CompiledSystem, Monitor, Outcome, Problem, Status
 
-METHODS = tuple(scipy_methods.METHODS)
-DEFAULT_METHOD = "Radau"
+OWN_METHODS = ("Rosenbrock",)
+METHODS = (*OWN_METHODS, *scipy_methods.METHODS)
+DEFAULT_METHOD = "Rosenbrock"
 
 
 def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
     """Integrates a problem with a named method, telling the monitor of every accepted step."""
-    return scipy_methods.integrate(problem, method, monitor)
+    if method in scipy_methods.METHODS:
+        return scipy_methods.integrate(problem, method, monitor)
+    return compiled_methods.integrate(problem, monitor)
 
 
-__all__ = ["DEFAULT_METHOD", "METHODS", "Monitor", "Outcome", "Problem", "Status", "integrate"]
+__all__ = ["DEFAULT_METHOD", "METHODS", "OWN_METHODS", "CompiledSystem", "Monitor", "Outcome", "Problem", "Status", "integrate"]

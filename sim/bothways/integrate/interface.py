@@ -9,10 +9,36 @@ import numpy as np
 
 
 @dataclass(frozen=True)
+class CompiledSystem:
+    """The same problem behind addresses, for the compiled methods; z are its unknowns, y among them.
+
+    f, J, judge : addresses of `callback`s over (z, f(z)), (z, values of ∂f/∂z by `pattern`) and
+        (z old | z new | error estimate, notes (4)). The judge may mend the new state, and returns 1 if the step may
+        stand, 0 if not; address 0: none.
+    context : (int64) handed to each of them. keep : what the addresses in it belong to.
+    pattern : row indices and column starts (compressed columns) of ∂f/∂z, its diagonal included.
+    mass : (nz) 1 for unknowns with a derivative, 0 for those tied by a linear row of ∂f/∂z.
+    tail : so many unknowns at the end have full rows and columns.
+    places : (n) where the unknowns y stand in z. start : (nz) z at time 0.
+    """
+
+    f: int
+    J: int
+    judge: int
+    context: np.ndarray
+    pattern: tuple[np.ndarray, np.ndarray]
+    mass: np.ndarray
+    tail: int
+    places: np.ndarray
+    start: np.ndarray
+    keep: tuple = ()
+
+
+@dataclass(frozen=True)
 class Problem:
     """An initial value problem y' = f(t, y) with its Jacobian.
 
-    f : (t, y) -> (n). J : (t, y) -> (n, n), dense.
+    f : (t, y) -> (n). J : (t, y) -> (n, n), dense. compiled : the same for the compiled methods.
     start : y at time 0. end : last time [s].
     rtol : relative tolerance [-]. atol : (n) absolute tolerances, units of y.
     stops : rising times within (0, end) that a step must land on [s].
@@ -25,6 +51,7 @@ class Problem:
     rtol: float
     atol: np.ndarray
     stops: tuple[float, ...] = ()
+    compiled: CompiledSystem | None = None
 
 
 class Monitor(Protocol):

@@ -1,6 +1,6 @@
 """exp over arrays, written so that the compiler turns the loop into vector instructions."""
 
-from .compiled import bits_to_float, compiled, float_to_bits
+from ..compiled import bits_to_float, compiled, float_to_bits
 
 _LOG2E = 1.4426950408889634
 _LN2_HIGH = 0.6931471803691238

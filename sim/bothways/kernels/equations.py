@@ -11,7 +11,7 @@ import numpy as np
 
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
-from .compiled import compiled
+from ..compiled import compiled
 from .layout import view
 from .rates import set_derivatives, set_production
 from .thermal import set_temperature
@@ -60,7 +60,7 @@ def _usable(T):
 
 
 @compiled
-def _border_of(y, n, vessel):
+def border_of(y, n, vessel):
     """The border unknown that belongs to a plain state: total concentration, or volume."""
     total = 0.0
     for i in range(n):
@@ -102,7 +102,7 @@ def rates_of_change(y, vessel, ints, floats, work, out):
     if not _usable(T):
         out[:] = np.nan
         return
-    volume = _produce(y, _border_of(y, n, vessel), T, vessel, ints, floats, work)
+    volume = _produce(y, border_of(y, n, vessel), T, vessel, ints, floats, work)
     omega = view(work, ints, _OMEGA)
     for i in range(n):
         out[i] = volume * omega[i]
@@ -228,7 +228,7 @@ def jacobian(y, vessel, ints, floats, work, data, out):
         return
     z = np.empty(n + 2)
     z[:n] = y[:n]
-    z[n] = _border_of(y, n, vessel)
+    z[n] = border_of(y, n, vessel)
     z[n + 1] = T
     bordered_jacobian(z, vessel, ints, floats, work, data)
     start, row = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW)
@@ -254,6 +254,6 @@ def jacobian(y, vessel, ints, floats, work, data, out):
 def reaction_rates(y, vessel, ints, floats, work, forward, reverse):
     """Forward and reverse rates [mol/(m3 s)] of every reaction in a plain state; outputs (R)."""
     n = ints[at.SPECIES]
-    _produce(y, _border_of(y, n, vessel), y[n], vessel, ints, floats, work)
+    _produce(y, border_of(y, n, vessel), y[n], vessel, ints, floats, work)
     forward[:] = view(work, ints, _FORWARD)
     reverse[:] = view(work, ints, _REVERSE)

@@ -7,7 +7,7 @@ of a list spans offset k to offset k + 1. `view` is the one way to them.
 
 from collections.abc import Sequence
 
-from .compiled import compiled
+from ..compiled import compiled
 
 SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALLOFFS", "GROUPS", "LONG", "BLOCK")
 SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALLOFFS, GROUPS, LONG, BLOCK = range(len(SIZES))

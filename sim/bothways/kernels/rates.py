@@ -7,7 +7,7 @@ at equilibrium; no reverse rate constant is formed (balance.py states the rule i
 import math
 
 from . import layout as at
-from .compiled import compiled
+from ..compiled import compiled
 from .elementary import exp_array
 from .layout import view
 from .thermal import LN10, set_slopes

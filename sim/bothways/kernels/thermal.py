@@ -7,7 +7,7 @@ import math
 
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
-from .compiled import compiled
+from ..compiled import compiled
 from .elementary import SMALLEST, exp_array
 from .layout import view
 
@@ -71,6 +71,13 @@ def polynomials(T, range_start, range_top, rows, gibbs, enthalpy, heat_capacity,
         gibbs[i] = h - s
         heat_capacity[i] = t1 + t2 + t3 + t4 + t5 + t6 + t7
         slope[i] = -2.0 * t1 - t2 + t4 + 2.0 * t5 + 3.0 * t6 + 4.0 * t7
+
+
+@compiled
+def polynomials_at(temperatures, range_start, range_top, rows, gibbs, enthalpy, heat_capacity, slope):
+    """`polynomials` at many temperatures (nt); outputs (nt, N)."""
+    for k in range(temperatures.size):
+        polynomials(temperatures[k], range_start, range_top, rows, gibbs[k], enthalpy[k], heat_capacity[k], slope[k])
 
 
 @compiled

@@ -9,7 +9,7 @@ given. Elements without a standard atomic weight are left out; state them under 
 import re
 from collections.abc import Mapping
 
-from ..errors import InputError, nearest
+from ..errors import InputError, hint, shown
 
 _G_PER_MOL = """
 H 1.008 D 2.014101778 He 4.002602 Li 6.94 Be 9.0121831 B 10.81 C 12.011 N 14.007 O 15.999 F 18.998403162
@@ -25,7 +25,10 @@ Au 196.966570 Hg 200.592 Tl 204.38 Pb 207.2 Bi 208.98040 Th 232.0377 Pa 231.0358
 ATOMIC_MASS = {symbol: float(value) * 1e-3 for symbol, value in zip(_G_PER_MOL[::2], _G_PER_MOL[1::2], strict=True)}
 """Molar masses of the elements [kg/mol]."""
 
-_TOKEN = re.compile(r"([A-Z][a-z]?|\(|\))(\d*)")
+_TOKEN = re.compile(r"([A-Z][a-z]?|\(|\))([0-9]*)")
+MOST_ATOMS = 1_000_000
+"""More atoms of one element in one species are taken for a slip."""
+_BLOCK = "state its molar mass under [elements] if it is a building block"
 
 
 def parse_formula(formula: str, symbols: Mapping[str, float]) -> dict[str, int]:
@@ -40,10 +43,31 @@ def parse_formula(formula: str, symbols: Mapping[str, float]) -> dict[str, int]:
         if token is None:
             raise _unreadable(formula, formula[position:])
         position = token.end()
-        _apply(stack, token.group(1), int(token.group(2) or 1), formula, symbols)
+        _apply(stack, token.group(1), _count(token.group(2), formula), formula, symbols)
     if len(stack) != 1 or not stack[0]:
         raise _unreadable(formula, formula)
+    check_atoms(stack[0])
     return stack[0]
+
+
+def check_atoms(counts: Mapping[str, float]) -> None:
+    """InputError (without a place) unless every count is a whole number of at least one atom."""
+    if not counts:
+        raise InputError("no atoms", expected="at least one element", remedy="name the elements it is made of")
+    for symbol, count in counts.items():
+        if not (1 <= count <= MOST_ATOMS and count == int(count)):
+            raise InputError(f"{count:g} atoms of {symbol}", expected=f"a whole number from 1 to {MOST_ATOMS}")
+
+
+def unknown_element(symbol: str, symbols: Mapping[str, float]) -> InputError:
+    """An InputError (without a place) for a symbol that is none of the known ones."""
+    return InputError(f"unknown element '{symbol}'{hint(symbol, symbols)}", expected="an element symbol", remedy=_BLOCK)
+
+
+def _count(digits: str, formula: str) -> int:
+    if len(digits) > len(str(MOST_ATOMS)):
+        raise _unreadable(formula, digits)
+    return int(digits or 1)
 
 
 def _apply(stack: list[dict[str, int]], name: str, count: int, formula: str, symbols: Mapping[str, float]) -> None:
@@ -57,11 +81,10 @@ def _apply(stack: list[dict[str, int]], name: str, count: int, formula: str, sym
     elif name in symbols:
         stack[-1][name] = stack[-1].get(name, 0) + count
     else:
-        raise InputError(f"formula '{formula}': unknown element '{name}' ({nearest(name, symbols)})",
-                         remedy="state its molar mass under [elements] if it is a building block")
+        raise unknown_element(name, symbols)
 
 
 def _unreadable(formula: str, rest: str) -> InputError:
-    return InputError(f"formula '{formula}' cannot be read at '{rest}'",
+    return InputError(f"formula {shown(formula)} cannot be read at {shown(rest)}",
                       expected="element symbols with counts, such as CH3OH or (CH3)2CO",
                       remedy="or use composition = { C = 1, H = 4 }; an ion's charge stands in the key 'charge'")

@@ -20,6 +20,8 @@ def jacobian_sums(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     net = [[(mechanism.index(name), count) for name, count in r.net.items()] for r in mechanism.reactions]
     block: Sums = defaultdict(list)
     total: Sums = defaultdict(list)
+    for i in range(n):
+        block[i, i] = []  # the integrators' matrices have a full diagonal
     _add_molecules(n, net, ints, block)
     _add_partners(net, ints, floats, block, total)
     columns = sorted(block, key=lambda place: (place[1], place[0]))

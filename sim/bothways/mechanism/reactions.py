@@ -1,19 +1,23 @@
 """Reading of the [[reaction]] entries: equation, partners, forward terms, comparison-only keys."""
 
+import re
 from collections.abc import Mapping, Sequence
+from functools import lru_cache
 from typing import Any
 
 import numpy as np
 
 from ..entry import Entry
-from ..errors import InputError, nearest
+from ..errors import InputError, hint
 from ..rates import Arrhenius, LawContext, read_law, says_fall_off
 from ..rates.arrhenius import read_expression
 from ..units import UnitSystem
 from .equation import Equation, parse_equation
 from .model import Partner, Reaction, Species, Term
 
-_REVERSE_WORDS = ("reverse", "backward", "backwards", "reverse_rate", "k_reverse", "k_r", "kr", "rev")
+_REVERSE_WORDS = re.compile(r"reverse|backward|(^|_)(rev|k_?(r|b|rev))(_|$)", re.IGNORECASE)
+_UNLIMITED = 200.0, 3000.0
+"""Temperatures [K] that laws are checked over where the potentials' data have no ends."""
 
 
 def read_reactions(top: Entry, units: UnitSystem, species: Sequence[Species]) -> tuple[Reaction, ...]:
@@ -21,46 +25,52 @@ def read_reactions(top: Entry, units: UnitSystem, species: Sequence[Species]) ->
     entries = top.get("reaction", [])
     if not isinstance(entries, (list, tuple)):
         raise top.error("'reaction' is not a list of tables", expected="entries [[reaction]]", key="reaction")
-    by_name = {s.name: s for s in species}
-    reactions: list[Reaction] = []
+    by_name, fits = {s.name: s for s in species}, {s.name: s.fit_range for s in species}
     seen: dict[tuple, tuple[str, Reaction]] = {}
     for number, data in enumerate(entries, 1):
-        reaction, place = _one(data, number, top, units, by_name)
-        _compare_with_earlier(reaction, place, seen, top)
-        seen[reaction.equation.key] = (place, reaction)
-        reactions.append(reaction)
-    return tuple(reactions)
+        entry = _entry(data, number, top, units)
+        reaction = _one(entry, by_name)
+        _check_laws(reaction, entry, fits)
+        _compare_with_earlier(reaction, entry, seen)
+        seen[reaction.equation.key] = (entry.place, reaction)
+    return tuple(reaction for _, reaction in seen.values())
 
 
-def _one(data: Any, number: int, top: Entry, units: UnitSystem,
-         species: Mapping[str, Species]) -> tuple[Reaction, str]:
+def _entry(data: Any, number: int, top: Entry, units: UnitSystem) -> Entry:
     stated = data.get("equation") if isinstance(data, Mapping) else None
-    place = f"reaction {number}" + (f" '{stated}'" if isinstance(stated, str) else "")
-    entry = Entry(data, place, top.file, units)
+    return Entry(data, f"reaction {number}" + (f" '{stated}'" if isinstance(stated, str) else ""), top.file, units)
+
+
+def _one(entry: Entry, species: Mapping[str, Species]) -> Reaction:
     equation = _equation(entry, species)
-    for word in _REVERSE_WORDS:
-        if word in entry.data:
-            raise entry.error(f"'{word}': a reverse rate is stated", remedy="leave it out, since it follows from the "
-                              "forward rate and K(T); published_reverse records one for comparison")
-    terms = _terms(entry, equation, species)
-    reaction = Reaction(equation, terms, entry.text("source", ""), entry.flag("published_one_way"),
-                        _published_reverse(entry, equation))
+    _refuse_reverse(entry)
+    source, one_way = entry.text("source", ""), entry.flag("published_one_way")
+    reverse = _published_reverse(entry, equation)
+    reaction = Reaction(equation, _terms(entry, equation, species), source, one_way, reverse)
     entry.done()
-    _check_sum(reaction, entry, species)
-    return reaction, place
+    return reaction
+
+
+def _refuse_reverse(entry: Entry) -> None:
+    for key in entry.data:
+        if key != "published_reverse" and _REVERSE_WORDS.search(key):
+            raise entry.error(f"'{key}': a reverse rate is stated", expected="forward rates only",
+                              remedy="leave it out, since it follows from the forward rate and K(T); published_reverse "
+                                     "beside 'equation' records one for comparison")
 
 
 def _equation(entry: Entry, species: Mapping[str, Species]) -> Equation:
+    text = entry.text("equation")
     try:
-        equation = parse_equation(entry.text("equation"))
+        equation = parse_equation(text)
     except InputError as err:
         raise entry.error(err.problem, expected=err.expected, remedy=err.remedy) from None
     for name, _ in equation.reactants + equation.products:
         if name not in species:
-            raise entry.error(f"unknown species '{name}' ({nearest(name, species)})",
+            raise entry.error(f"unknown species '{name}'{hint(name, species)}",
                               remedy="correct the name or add [species.…]; a '+' needs a space on either side")
     if frozenset(equation.reactants) == frozenset(equation.products):
-        raise entry.error("both sides are the same", remedy="leave the entry out")
+        raise entry.error("both sides are the same", expected="a reaction", remedy="leave the entry out")
     _check_balance(entry, equation, species)
     return equation
 
@@ -74,7 +84,7 @@ def _check_balance(entry: Entry, equation: Equation, species: Mapping[str, Speci
                 excess[symbol] = excess.get(symbol, 0) + sign * count * atoms
     wrong = [f"{symbol} {value:+d}" for symbol, value in excess.items() if value]
     if wrong:
-        raise entry.error("not balanced: " + ", ".join(wrong) + " on the right-hand side",
+        raise entry.error("not balanced: " + ", ".join(wrong) + " on the right-hand side", expected="no difference",
                           remedy="correct the equation or the formulas")
 
 
@@ -83,23 +93,28 @@ def _terms(entry: Entry, equation: Equation, species: Mapping[str, Species]) -> 
     several = isinstance(forward, (list, tuple))
     tables = list(forward) if several else [forward]
     if not tables:
-        raise entry.error("no forward term", expected="at least one", key="forward")
+        raise entry.error("no forward term", expected="at least one", remedy="state the forward law", key="forward")
     shared = _partner_keys(entry, species)
     terms = []
     for k, data in enumerate(tables, 1):
         place = f"{entry.place}.forward" + (f"[{k}]" if several else "")
         terms.append(_term(entry.sub(data, place), equation, species, shared, len(tables) > 1))
     if shared is not None and not any(term.partner for term in terms):
-        raise entry.error("a collision efficiency or partner is stated, but no partner takes part",
-                          remedy="write + M on both sides, use a fall-off law, or leave the key out")
+        raise _needless(entry)
     return tuple(terms)
+
+
+def _needless(entry: Entry) -> InputError:
+    return entry.error("a collision efficiency or partner is stated, but no partner takes part", expected="a partner",
+                       remedy="write + M on both sides, use a fall-off law, or leave the key out")
 
 
 def _term(entry: Entry, equation: Equation, species: Mapping[str, Species], shared: Partner | None,
           several: bool) -> Term:
+    _refuse_reverse(entry)
     fall_off = says_fall_off(entry)
     if fall_off and equation.partner:
-        raise entry.error("M stands in the equation of a fall-off reaction",
+        raise entry.error("M stands in the equation of a fall-off reaction", expected="no M",
                           remedy="leave M out of the equation: the law says that a partner takes part")
     order = sum(count for _, count in equation.reactants)
     law = read_law(entry, LawContext(order, equation.partner, several))
@@ -107,29 +122,26 @@ def _term(entry: Entry, equation: Equation, species: Mapping[str, Species], shar
     entry.done()
     if not (fall_off or equation.partner):
         if own is not None:
-            raise entry.error("a collision efficiency or partner is stated, but no partner takes part",
-                              remedy="write + M on both sides, use a fall-off law, or leave the key out")
+            raise _needless(entry)
         return Term(law)
     return Term(law, own or shared or Partner(1.0, {}))
 
 
 def _partner_keys(entry: Entry, species: Mapping[str, Species]) -> Partner | None:
-    efficiency = entry.named_numbers("collision_efficiency", sign="not negative", default=None)
+    efficiency = entry.named_numbers("collision_efficiency", "species", species, default=None)
     single = entry.text("collision_partner", None)
     if efficiency is not None and single is not None:
-        raise entry.error("collision_efficiency and collision_partner are both stated", expected="one of them")
-    for name in [*(efficiency or {}), *([single] if single else [])]:
-        if name not in species:
-            raise entry.error(f"unknown species '{name}' ({nearest(name, species)})",
-                              key="collision_efficiency" if efficiency else "collision_partner")
+        raise entry.error("collision_efficiency and collision_partner are both stated", expected="one of them",
+                          remedy="leave out either")
+    if single is not None and single not in species:
+        raise entry.unknown("species", single, species, key="collision_partner")
     if single is not None:
         return Partner(0.0, {single: 1.0})
     return None if efficiency is None else Partner(1.0, efficiency)
 
 
 def _published_reverse(entry: Entry, equation: Equation) -> Arrhenius | None:
-    if "published_reverse" not in entry.data:
-        entry.known.add("published_reverse")
+    if entry.get("published_reverse", None) is None:
         return None
     table = entry.table("published_reverse")
     order = sum(count for _, count in equation.products) + equation.partner
@@ -138,27 +150,41 @@ def _published_reverse(entry: Entry, equation: Equation) -> Arrhenius | None:
     return reverse
 
 
-def _check_sum(reaction: Reaction, entry: Entry, species: Mapping[str, Species]) -> None:
-    """The sum of several terms must be positive over the range of the fits of the species in the reaction."""
-    if all(e.sign > 0 for term in reaction.terms for e in term.law.expressions()):
-        return
-    fits = [species[name].fit_range for name, _ in reaction.equation.reactants + reaction.equation.products]
-    low, high = max(200.0, max(f[0] for f in fits)), min(3000.0, min(f[1] for f in fits))
-    for temperature in np.geomspace(low, max(low, high), 200):
+def _check_laws(reaction: Reaction, entry: Entry, fits: Mapping[str, tuple[float, float]]) -> None:
+    """Each law must be sound, and the sum of several terms positive, over the range of the reaction's own fits."""
+    own = [fits[name] for name, _ in reaction.equation.reactants + reaction.equation.products]
+    low, high = max(fit[0] for fit in own) or _UNLIMITED[0], min(fit[1] for fit in own)
+    temperatures = _grid(low, high if np.isfinite(high) else max(_UNLIMITED[1], 2 * low))
+    for k, term in enumerate(reaction.terms, 1):
+        fault = term.law.fault(temperatures)
+        if fault:
+            raise entry.error(f"{fault.problem} at {fault.temperature:.4g} K", expected=fault.expected,
+                              remedy="correct its numbers", key="forward" + (f"[{k}]" if len(reaction.terms) > 1 else ""))
+    if any(e.sign < 0 for term in reaction.terms for e in term.law.expressions()):
+        _check_sum(reaction, entry, temperatures)
+
+
+@lru_cache
+def _grid(low: float, high: float) -> tuple[float, ...]:
+    return tuple(float(T) for T in np.geomspace(low, max(low, high), 100))
+
+
+def _check_sum(reaction: Reaction, entry: Entry, temperatures: Sequence[float]) -> None:
+    for temperature in temperatures:
         for partner in (1e-3, 1.0, 1e3):
-            if not reaction.forward_constant(float(temperature), partner) > 0:
-                raise entry.error(f"the sum of the forward terms is not positive at {temperature:.0f} K",
-                                  expected=f"a positive sum from {low:.0f} to {high:.0f} K", key="forward")
+            if not reaction.forward_constant(temperature, partner) > 0:
+                raise entry.error(f"the sum of the forward terms is not positive at {temperature:.4g} K",
+                                  expected=f"a positive sum from {temperatures[0]:g} to {temperatures[-1]:g} K",
+                                  remedy="correct the terms", key="forward")
 
 
-def _compare_with_earlier(reaction: Reaction, place: str, seen: Mapping[tuple, tuple[str, Reaction]],
-                          top: Entry) -> None:
+def _compare_with_earlier(reaction: Reaction, entry: Entry, seen: Mapping[tuple, tuple[str, Reaction]]) -> None:
     key = reaction.equation.key
     if key in seen:
-        raise InputError(f"the same equation stands in {seen[key][0]}", file=top.file, entry=place,
-                         remedy="make one entry whose 'forward' is a list of both terms")
+        raise entry.error(f"the same equation stands in {seen[key][0]}", expected="one entry for one equation",
+                          remedy="make one entry whose 'forward' is a list of both terms")
     opposite = seen.get((key[1], key[0], key[2]))
     if opposite and reaction.published_one_way and opposite[1].published_one_way:
-        raise InputError(f"this and {opposite[0]} are two halves of one reaction, both published one way",
-                         file=top.file, entry=place,
-                         remedy="make one entry, with the other half as its published_reverse")
+        raise entry.error(f"this and {opposite[0]} are two halves of one reaction, both published one way",
+                          expected="one entry for one reaction",
+                          remedy="make one entry, with the other half as its published_reverse")

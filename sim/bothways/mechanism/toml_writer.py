@@ -4,7 +4,7 @@ import re
 from collections.abc import Mapping
 from typing import Any
 
-_BARE = re.compile(r"[A-Za-z0-9_-]+$")
+_BARE = re.compile(r"[A-Za-z0-9_-]+")
 _ESCAPES = {'"': '\\"', "\\": "\\\\", "\n": "\\n", "\t": "\\t", "\r": "\\r", "\b": "\\b", "\f": "\\f"}
 
 
@@ -34,7 +34,7 @@ def _table(table: Mapping[str, Any], path: tuple[str, ...], lines: list[str]) ->
 def _needs_header(value: Any, depth: int) -> bool:
     if isinstance(value, list):
         return depth == 0 and bool(value) and all(isinstance(v, Mapping) for v in value)
-    return isinstance(value, Mapping) and (depth < 2 and depth != 1 or _holds_table(value) and depth < 3)
+    return isinstance(value, Mapping) and (depth == 0 or (depth < 3 and _holds_table(value)))
 
 
 def _holds_table(value: Mapping[str, Any]) -> bool:
@@ -42,7 +42,7 @@ def _holds_table(value: Mapping[str, Any]) -> bool:
 
 
 def _key(key: str) -> str:
-    return key if _BARE.match(key) else _text(key)
+    return key if _BARE.fullmatch(key) else _text(key)
 
 
 def _text(text: str) -> str:

@@ -8,7 +8,7 @@ from ..entry import Entry
 from . import arrhenius, falloff
 from .arrhenius import Arrhenius
 from .falloff import FallOff
-from .law import Law, LawContext
+from .law import Fault, Law, LawContext
 
 _LAWS = {law.NAME: law for law in (arrhenius, falloff.Lindemann, falloff.Troe)}
 
@@ -28,4 +28,4 @@ def law_named(entry: Entry):
     return _LAWS[entry.text("law", choices=tuple(_LAWS))]
 
 
-__all__ = ["Arrhenius", "FallOff", "Law", "LawContext", "read_law", "says_fall_off"]
+__all__ = ["Arrhenius", "FallOff", "Fault", "Law", "LawContext", "read_law", "says_fall_off"]

@@ -5,14 +5,18 @@ for the power of T.
 """
 
 import math
+from collections.abc import Sequence
 from dataclasses import dataclass
 
 from ..constants import GAS_CONSTANT
 from ..entry import Entry
-from .law import Expression, Law, LawContext
+from ..errors import shown
+from .law import Expression, Fault, Law, LawContext
 
 NAME = "Arrhenius"
 FALL_OFF = False
+LARGEST = 1e200
+"""A rate constant above this [m3, mol, s of its order] is taken for a slip; products with it could overflow."""
 
 
 @dataclass(frozen=True)
@@ -34,10 +38,29 @@ class Arrhenius(Law):
         log_A = math.log(abs(self.A)) - self.n * math.log(self.T_ref)
         return (Expression(log_A, self.n, self.Ea / GAS_CONSTANT, math.copysign(1.0, self.A)),)
 
+    def fault(self, temperatures: Sequence[float]) -> Fault | None:
+        """Overflow: at an end of the range, or at T = -Ea/(R n), the one extremum of ln k."""
+        low, high = temperatures[0], temperatures[-1]
+        peak = -self.Ea / (GAS_CONSTANT * self.n) if self.n else low
+        for temperature in (low, min(max(low, peak), high), high):
+            if not self._magnitude(temperature) < LARGEST:
+                return Fault(f"k with A = {self.A:g}, n = {self.n:g}, Ea = {self.Ea:g} J/mol (SI) overflows", temperature,
+                             f"a rate constant below {LARGEST:g}")
+        return None
+
+    def _magnitude(self, temperature: float) -> float:
+        try:
+            return abs(self.k(temperature))
+        except OverflowError:
+            return math.inf
+
 
 def read_expression(entry: Entry, order: int, sign: str) -> Arrhenius:
     """A, n, Ea and T_ref from a table, A in the file's units for that order."""
     A = entry.number("A", sign=sign) * entry.units.rate_factor(order)
+    if A == 0 or not math.isfinite(A):
+        raise entry.error(f"{shown(entry.data['A'])} is {A:g} in SI units", expected="a number that SI units can express",
+                          remedy="correct it or the units", key="A")
     Ea = entry.quantity("Ea", "molar energy", 0.0)
     return Arrhenius(A, entry.number("n", 0.0), Ea, entry.quantity("T_ref", "temperature", 1.0, sign="positive"))
 

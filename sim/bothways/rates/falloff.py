@@ -8,11 +8,12 @@ N = 0.75 - 1.27 log F_cent, F_cent = (1 - a) exp(-T/T***) + a exp(-T/T*) + exp(-
 """
 
 import math
+from collections.abc import Mapping, Sequence
 from dataclasses import dataclass
 
 from ..entry import Entry
 from .arrhenius import Arrhenius, read_expression
-from .law import Broadening, Expression, Law, LawContext
+from .law import Broadening, Expression, Fault, Law, LawContext
 
 LINDEMANN, TROE = 0, 1
 _NO_THIRD_TERM = 1e300  # [K] exp(-T**/T) and its slope vanish, without an infinity times zero
@@ -20,7 +21,10 @@ _AT_ONCE = 1e-30  # [K] exp(-T/T*) vanishes: what is left of F_cent is the const
 SMALLEST_PARTNER = 1e-300
 """Below this [mol/m3] the broadening no longer changes; k stays linear in the partner."""
 SMALLEST_CENTRE = 1e-30
-"""F_cent is kept above this [-]; a file whose F_cent is not positive in its range does not load."""
+"""F_cent is kept above this [-]; a file whose F_cent is not positive in the fits' range does not load."""
+
+LARGEST_CENTRE = 1e3
+"""F_cent above this [-] is taken for a slip. Published fits reach 20 where they are of no account."""
 
 
 @dataclass(frozen=True)
@@ -37,6 +41,28 @@ class Centre:
         T = temperature
         value = (1 - self.a) * math.exp(-T / self.T3) + self.a * math.exp(-T / self.T1)
         return value + (0.0 if self.T2 is None else math.exp(-self.T2 / T))
+
+    def fault(self, temperatures: Sequence[float]) -> Fault | None:
+        """F_cent not positive, or absurdly large, within the range."""
+        if self._surely_positive(temperatures[-1]):
+            return None
+        for temperature in temperatures:
+            value = self._value(temperature)
+            if not 0 < value < LARGEST_CENTRE:
+                return Fault(f"F_cent is {value:.4g}", temperature, f"F_cent above 0 and below {LARGEST_CENTRE:g} over the "
+                             f"range of the thermochemical data, {temperatures[0]:g} to {temperatures[-1]:g} K")
+        return None
+
+    def _surely_positive(self, high: float) -> bool:
+        """Whether two terms that are never negative are still positive at the highest temperature [K]."""
+        never_negative = 0 <= self.a <= 1 and (self.T2 is None or self.T2 >= 0)
+        return never_negative and (1 - self.a) * math.exp(-high / self.T3) + self.a * math.exp(-high / self.T1) > 0
+
+    def _value(self, temperature: float) -> float:
+        try:
+            return self(temperature)
+        except OverflowError:
+            return math.inf
 
 
 @dataclass(frozen=True)
@@ -61,6 +87,11 @@ class FallOff(Law):
         x = math.log10(max(reduced, SMALLEST_PARTNER)) - 0.4 - 0.67 * log_centre
         d = 0.75 - 1.27 * log_centre - 0.14 * x
         return 10.0 ** (log_centre * d**2 / (d**2 + x**2))
+
+    def fault(self, temperatures: Sequence[float]) -> Fault | None:
+        """Overflow of a limit, or an F_cent that is not positive."""
+        centre = self.centre.fault(temperatures) if self.centre else None
+        return centre or self.k_inf.fault(temperatures) or self.k_0.fault(temperatures)
 
     def expressions(self) -> tuple[Expression, ...]:
         """High- and low-pressure limit."""
@@ -108,7 +139,7 @@ class Troe:
 
 def read_centre(entry: Entry) -> Centre:
     """F_cent: a number, or a table of a, T***, T* and perhaps T**."""
-    if not isinstance(entry.get("F_cent", what="a number or { a, \"T***\", \"T*\", \"T**\" }"), dict):
+    if not isinstance(entry.get("F_cent", what="a number or { a, \"T***\", \"T*\", \"T**\" }"), Mapping):
         return Centre(1.0 - entry.number("F_cent", sign="positive"), math.inf, _AT_ONCE)
     table = entry.table("F_cent")
     centre = Centre(table.number("a"), table.number("T***", sign="positive"), table.number("T*", sign="positive"),

@@ -1,5 +1,6 @@
 """What every rate law offers, and what reading one needs to know."""
 
+from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import NamedTuple, Protocol
 
@@ -20,6 +21,14 @@ class Broadening(NamedTuple):
     parameters: tuple[float, float, float, float]
 
 
+class Fault(NamedTuple):
+    """What is wrong with a law, at which temperature [K], and what would be right."""
+
+    problem: str
+    temperature: float
+    expected: str
+
+
 @dataclass(frozen=True)
 class LawContext:
     """What the reaction tells its law: the reactants' order, whether M stands in the equation, one term of several."""
@@ -37,3 +46,9 @@ class Law(Protocol):
 
     def expressions(self) -> tuple[Expression, ...]:
         """One exponential, or for fall-off two: the high- and the low-pressure limit."""
+
+    def fault(self, temperatures: Sequence[float]) -> Fault | None:
+        """The first fault at one of the rising temperatures [K]; asked once, when a mechanism is read.
+
+        A law tells only what is wrong with itself: that a sum of terms is positive is the reaction's concern.
+        """

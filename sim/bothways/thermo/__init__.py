@@ -8,7 +8,7 @@ from typing import Protocol
 
 from ..entry import Entry
 from . import constant_cp, nasa7
-from .polynomial import Ranges, at
+from .polynomial import LARGEST, Ranges, at, fault
 
 _FORMS = {module.NAME: module for module in (nasa7, constant_cp)}
 
@@ -20,11 +20,18 @@ class Potential(Protocol):
         """The common coefficients."""
 
 
-def read_potential(entry: Entry) -> Potential:
-    """The potential from its table, by the registered form it names."""
+def read_potential(entry: Entry, least_cp: float = 0.0) -> Potential:
+    """The potential from its table, by the registered form it names.
+
+    Raises InputError: faults of the table; cp/R not above `least_cp` [-] or values out of reason within the range.
+    """
     module = _FORMS[entry.text("form", choices=tuple(_FORMS))]
     potential = module.read(entry)
     entry.done()
+    problem = fault(potential.ranges(), least_cp)
+    if problem:
+        raise entry.error(problem, expected=f"cp/R above {least_cp:g}, and cp/R, h/RT and s/R within ±{LARGEST:g}",
+                          remedy="correct the coefficients or the range")
     return potential
 
 

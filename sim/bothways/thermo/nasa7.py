@@ -4,11 +4,13 @@ cp/R = a1 + a2 T + a3 T² + a4 T³ + a5 T⁴; h/RT with a6, s/R with a7 (S. Gord
 A. Burcat, B. Ruscic, ANL-05/20, 2005). Valid within the stated ranges, usually to better than 0.1 % of cp.
 """
 
+import itertools
 from dataclasses import dataclass
 
 import numpy as np
 
 from ..entry import Entry
+from ..errors import shown
 from .polynomial import N_COEFFICIENTS, Ranges
 
 NAME = "NASA 7-coefficient"
@@ -38,9 +40,9 @@ def read(entry: Entry) -> Nasa7:
 def rising_temperatures(entry: Entry) -> tuple[float, ...]:
     """The range boundaries `T`: at least two, positive, rising [K]."""
     T = entry.numbers("T")
-    if len(T) < 2 or T[0] <= 0 or any(low >= high for low, high in zip(T, T[1:], strict=False)):
-        raise entry.error(f"{list(T)} does not rise", expected="range boundaries in K, rising, n + 1 for n ranges",
-                          key="T")
+    if len(T) < 2 or T[0] <= 0 or any(low >= high for low, high in itertools.pairwise(T)):
+        raise entry.error(f"{shown(list(T))} does not rise from above 0", remedy="correct the boundaries", key="T",
+                          expected="range boundaries in K, rising, n + 1 for n ranges")
     return T
 
 
@@ -48,10 +50,11 @@ def coefficient_rows(entry: Entry, count: int, width: int) -> tuple[tuple[float,
     """The rows of `a`: one a range, each of `width` numbers."""
     rows = entry.get("a", what=f"{count} rows of {width} coefficients")
     if not isinstance(rows, (list, tuple)) or len(rows) != count:
-        found = f"{len(rows)} rows" if isinstance(rows, (list, tuple)) else f"{rows!r}"
-        raise entry.error(f"{found} of coefficients", expected=f"{count}, one for each range of T", key="a")
+        found = f"{len(rows)} rows" if isinstance(rows, (list, tuple)) else shown(rows)
+        raise entry.error(f"{found} of coefficients", expected=f"{count}, one for each range of T",
+                          remedy="correct a or T", key="a")
     checked = tuple(entry.row(row, f"a[{k + 1}]") for k, row in enumerate(rows))
     for k, row in enumerate(checked):
         if len(row) != width:
-            raise entry.error(f"{len(row)} coefficients", expected=f"{width}", key=f"a[{k + 1}]")
+            raise entry.error(f"{len(row)} coefficients", expected=f"{width}", remedy="complete the row", key=f"a[{k + 1}]")
     return checked

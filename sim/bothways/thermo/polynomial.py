@@ -10,6 +10,9 @@ from dataclasses import dataclass
 import numpy as np
 
 N_COEFFICIENTS = 9
+LARGEST = 1e6
+"""cp/R, h/RT and s/R larger than this are taken for slips [-]."""
+_UNLIMITED = 1.0, 1e5  # [K] where a range has no end
 
 
 @dataclass(frozen=True)
@@ -61,10 +64,23 @@ def closed(ranges: Ranges) -> tuple[Ranges, tuple[Shift, ...]]:
     return Ranges(ranges.boundaries, rows), tuple(shifts)
 
 
+def fault(ranges: Ranges, least_cp: float) -> str:
+    """What makes ranges unusable: cp/R not above `least_cp`, values not finite or absurd; empty if nothing."""
+    with np.errstate(all="ignore"):
+        for k, row in enumerate(ranges.rows):
+            for T in np.linspace(*np.clip(ranges.boundaries[k : k + 2], *_UNLIMITED), 5):
+                values = dict(zip(("cp/R", "h/RT", "s/R"), cp_h_s(row, T), strict=True))
+                wrong = [name for name, value in values.items() if not abs(value) < LARGEST]
+                if wrong or values["cp/R"] <= least_cp:
+                    name = wrong[0] if wrong else "cp/R"
+                    return f"{name} is {values[name]:.4g} at {T:.4g} K"
+    return ""
+
+
 def extended(ranges: Ranges) -> Ranges:
     """The ranges with one of constant cp on either side (h and s continuous): 0 to infinity [K]."""
     low, high = ranges.boundaries[0], ranges.boundaries[-1]
-    inner, rows = [T for T in ranges.boundaries], [ranges.rows]
+    inner, rows = list(ranges.boundaries), [ranges.rows]
     if low > 0:
         rows.insert(0, _constant_row(ranges.rows[0], low))
         inner.insert(0, 0.0)

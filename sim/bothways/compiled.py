@@ -1,4 +1,4 @@
-"""The door to numba: the decorator of every kernel, and a cache on disk that cannot go stale.
+"""The door to numba: the decorators of every kernel, and a cache on disk that cannot go stale.
 
 numba notices a change in the file of a cached function, but not in the file of a function it calls. Kernels here
 stand in several files and call one another, so the cache folder carries a digest of all of them: any change
@@ -8,20 +8,23 @@ starts an empty folder. NUMBA_CACHE_DIR, where it is set, is where these folders
 import hashlib
 import os
 import tempfile
-from collections.abc import Callable
+from collections.abc import Callable, Iterator
+from contextlib import contextmanager
+from functools import cached_property
 from pathlib import Path
 from typing import Any
 
 import numba
+from llvmlite import ir
 from numba.core import types
 from numba.extending import intrinsic
 
 _HERE = Path(__file__).parent
+_SOURCES = ("constants.py", "compiled.py", "kernels/*.py", "integrate/*.py")
 
 
 def _digest() -> str:
-    sources = [*sorted(_HERE.glob("*.py")), _HERE.parent / "constants.py"]
-    text = b"".join(path.read_bytes() for path in sources)
+    text = b"".join(path.read_bytes() for pattern in _SOURCES for path in sorted(_HERE.glob(pattern)))
     return hashlib.sha256(text + numba.__version__.encode()).hexdigest()[:16]
 
 
@@ -55,10 +58,39 @@ def compiled(function: Callable[..., Any]) -> Callable[..., Any]:
     No fastmath: sums keep their order and NaN stays NaN. Division by zero gives inf or NaN, as in NumPy.
     The GIL is released.
     """
+    with _in_cache_folder():
+        return numba.njit(cache=True, nogil=True, error_model="numpy")(function)
+
+
+class callback:  # noqa: N801 - used as a decorator
+    """A function of three pointers, (float64*, float64*, int64*) -> int64, whose `address` `call` takes.
+
+    Passing an address as a number keeps caller and callee apart: the caller is compiled and cached once, whatever it
+    calls. (A function passed as an argument would miss numba's cache in every process.) Compiled when first asked for.
+    """
+
+    def __init__(self, function: Callable[..., Any]) -> None:
+        self._function = function
+        self.__doc__ = function.__doc__
+
+    @cached_property
+    def _compiled(self) -> Any:
+        pointers = types.CPointer(types.float64), types.CPointer(types.float64), types.CPointer(types.int64)
+        with _in_cache_folder():
+            return numba.cfunc(types.int64(*pointers), cache=True, nopython=True, error_model="numpy")(self._function)
+
+    @property
+    def address(self) -> int:
+        """Where the compiled function starts."""
+        return int(self._compiled.address)
+
+
+@contextmanager
+def _in_cache_folder() -> Iterator[None]:
     before = numba.config.CACHE_DIR
     numba.config.CACHE_DIR = str(CACHE_FOLDER)
     try:
-        return numba.njit(cache=True, nogil=True, error_model="numpy")(function)
+        yield
     finally:
         numba.config.CACHE_DIR = before
 
@@ -83,6 +115,35 @@ def _float_to_bits(typing_context, value):  # type: ignore[no-untyped-def]
 
     return types.int64(types.float64), generate
 
+
+@intrinsic
+def call(typing_context, address, given, result, context_array):  # type: ignore[no-untyped-def]
+    """Calls the `callback` at an address with the data of three arrays; returns its int64."""
+    def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
+        arrays = zip(signature.args[1:], arguments[1:], strict=True)
+        pointers = [builder.bitcast(context.make_array(kind)(context, builder, value).data, ir.IntType(8).as_pointer())
+                    for kind, value in arrays]
+        function = ir.FunctionType(ir.IntType(64), [p.type for p in pointers])
+        return builder.call(builder.inttoptr(arguments[0], function.as_pointer()), pointers)
+
+    return types.int64(types.int64, given, result, context_array), generate
+
+
+def _pointer_to(item):  # type: ignore[no-untyped-def]
+    @intrinsic
+    def pointer(typing_context, address):  # type: ignore[no-untyped-def]
+        result = types.CPointer(item)
+
+        def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
+            return builder.inttoptr(arguments[0], context.get_value_type(result))
+
+        return result(types.int64), generate
+
+    return pointer
+
+
+float64_pointer, uint32_pointer = _pointer_to(types.float64), _pointer_to(types.uint32)
+"""An address as a pointer to float64 or uint32, for numba's carray."""
 
 if JIT:
     bits_to_float, float_to_bits = _bits_to_float, _float_to_bits

@@ -1,0 +1,153 @@
+"""The equilibrium of a charge where T and V, T and p, U and V, or H and p are given."""
+
+from dataclasses import dataclass, replace
+
+import numpy as np
+
+from ..constants import GAS_CONSTANT as R
+from ..contents import Contents
+from ..errors import InputError
+from .components import Components
+from .continuation import compose
+from .newton import Point, Task, balances, jacobian, log_amounts
+
+LOWEST, HIGHEST = 50.0, 20000.0
+"""Where the temperature of an adiabatic vessel is sought [K]."""
+_FIRST_GUESS = 2000.0
+_MOST_TEMPERATURES = 200
+_CLOSE = 1e-13
+
+
+@dataclass(frozen=True)
+class Stock:
+    """A charge over the species it can turn into.
+
+    possible : (N) mask. charge : (n) amounts, scaled by a power of two to a sum near 1. scale : that power [mol].
+    components : any, over the n possible species.
+    """
+
+    contents: Contents
+    possible: np.ndarray
+    charge: np.ndarray
+    scale: float
+    components: Components
+
+    def molar(self, temperature: float) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+        """g°/RT, h°/RT and cp°/R of the possible species [-], (n) each."""
+        g, h, cp = self.contents.molar(temperature)
+        return g[self.possible], h[self.possible], cp[self.possible]
+
+
+@dataclass(frozen=True)
+class Held:
+    """What is held besides temperature or energy: "volume" [m3] or "pressure" [Pa]."""
+
+    what: str
+    value: float
+
+
+@dataclass(frozen=True)
+class State:
+    """An equilibrium of a stock: temperature [K], ln of the scaled amounts (n), and what finding it took.
+
+    energy : U at held volume, H at held pressure, over R and the scale [K]; heat_capacity : its slope [-].
+    shift : d(η, ζ)/d ln T, (r) or (r + 1).
+    """
+
+    temperature: float
+    point: Point
+    log_amount: np.ndarray
+    energy: float
+    heat_capacity: float
+    shift: np.ndarray
+    iterations: int
+    energy_misfit: float = 0.0
+
+
+def at_temperature(stock: Stock, held: Held, temperature: float, near: State | None = None) -> State:
+    """The equilibrium at a given temperature [K]."""
+    g, h, cp = stock.molar(temperature)
+    p_standard = stock.contents.mechanism.standard_pressure
+    swells = held.what == "pressure"
+    ratio = held.value / p_standard if swells else R * temperature * stock.scale / (held.value * p_standard)
+    task = Task(g + np.log(ratio), stock.charge, swells)
+    point, iterations = compose(task, stock.components, _moved(near, temperature))
+    less = 0.0 if swells else 1.0
+    return _with_energy(point, task, temperature, h - less, cp - less, iterations)
+
+
+def _moved(near: State | None, temperature: float) -> Point | None:
+    """The point of a state, shifted to another temperature to first order where that is a small shift."""
+    if near is None:
+        return None
+    shift = near.shift * np.log(temperature / near.temperature)
+    if np.max(np.abs(shift)) > 1.0:
+        return near.point
+    n_rows = near.point.log_component.size
+    total = near.point.log_total + float(np.sum(shift[n_rows:]))
+    return Point(near.point.components, near.point.log_component + shift[:n_rows], total)
+
+
+def _with_energy(point: Point, task: Task, temperature: float, energy: np.ndarray, heat_capacity: np.ndarray,
+                 iterations: int) -> State:
+    """The state with its energy and heat capacity, that of shifting composition included.
+
+    energy (n): u/RT or h/RT; heat_capacity (n): cv/R or cp/R, of the species. At fixed η and ζ, d ln n_j/d ln T is the
+    energy of forming j from the components; η and ζ then follow the balances.
+    """
+    components = point.components
+    log_n = log_amounts(point, task)
+    _, weight, fraction = balances(point, task, components.totals(task.charge))
+    formation = energy - energy[components.basis] @ components.formation
+    forced = weight @ formation
+    if task.swells:
+        forced = np.append(forced, fraction @ formation)
+    shift = -np.linalg.solve(jacobian(point, task, weight, fraction), forced)
+    slope = formation + shift[: components.basis.size] @ components.formation
+    if task.swells:
+        slope += (1.0 - np.sum(components.formation, axis=0)) * shift[-1]
+    n = np.exp(log_n)
+    return State(temperature, point, log_n, float(temperature * (n @ energy)),
+                 float(n @ (energy * slope + heat_capacity)), shift, iterations)
+
+
+def at_energy(stock: Stock, held: Held, energy: float, own_heat_capacity: float, reference: float,
+              near: State | None = None) -> State:
+    """The equilibrium at a given U or H [J], own_heat_capacity [J/K] × (T - reference [K]) of the vessel included.
+
+    Entropy is concave, so the energy rises with temperature: Newton's method within a bracket.
+    """
+    wanted, own = energy / (R * stock.scale), own_heat_capacity / (R * stock.scale)
+    low, high = LOWEST, HIGHEST
+    T = near.temperature if near else _FIRST_GUESS
+    iterations = 0
+    for count in range(_MOST_TEMPERATURES):
+        near = at_temperature(stock, held, T, near)
+        iterations += near.iterations
+        excess = near.energy + own * (T - reference) - wanted
+        step = -excess / (near.heat_capacity + own)
+        if abs(step) <= _CLOSE * T or high - low <= 4e-16 * T:
+            break
+        if (T == LOWEST and excess > 0) or (T == HIGHEST and excess < 0):
+            raise _out_of_reach(held, energy, T, excess * R * stock.scale)
+        low, high = (T, high) if excess < 0 else (low, T)
+        T = _next(T + step, low, high, count)
+    return replace(near, iterations=iterations, energy_misfit=abs(step) / T)
+
+
+def _next(newton: float, low: float, high: float, count: int) -> float:
+    """Newton's temperature, kept within the bracket; every eighth time its middle, whatever Newton says."""
+    if count % 8 == 7:
+        return float(np.sqrt(low * high))
+    if newton <= low:
+        return low if low == LOWEST else float(np.sqrt(low * high))
+    if newton >= high:
+        return high if high == HIGHEST else float(np.sqrt(low * high))
+    return newton
+
+
+def _out_of_reach(held: Held, energy: float, temperature: float, excess: float) -> InputError:
+    word, side = ("internal energy", "volume") if held.what == "volume" else ("enthalpy", "pressure")
+    least = "at least" if excess > 0 else "at most"
+    return InputError(f"{word} {energy:.6g} J is out of reach at constant {side}",
+                      expected=f"{least} {energy + excess:.6g} J, that of the equilibrium at {temperature:g} K")

@@ -1,0 +1,141 @@
+"""What a closed vessel conserves: the elements, and what a mechanism's reactions leave unchanged beyond them."""
+
+import math
+from collections.abc import Iterable, Iterator, Mapping
+from fractions import Fraction
+
+import numpy as np
+
+from ..mechanism.model import Mechanism
+from .components import Components
+
+_TERMS_SHOWN = 8
+
+
+def conserved_by_elements(mechanism: Mechanism) -> np.ndarray:
+    """Atoms of each element in each species, (m, N), integer; a last row of charges where there are any."""
+    return np.rint(mechanism.element_matrix).astype(np.int64)
+
+
+def conserved_by_reactions(mechanism: Mechanism) -> np.ndarray:
+    """All that no reaction of the mechanism changes: a basis of the left null space of its stoichiometry, (m, N).
+
+    Small integers: the independent ones among the elements, then the combinations of `extra_conserved`. Without any
+    reaction every species is conserved by itself.
+    """
+    if not mechanism.reactions:
+        return np.eye(len(mechanism.species), dtype=np.int64)
+    elements = conserved_by_elements(mechanism)
+    return np.vstack([elements[_independent(elements)], extra_conserved(mechanism)])
+
+
+def extra_conserved(mechanism: Mechanism) -> np.ndarray:
+    """What the reactions conserve beyond the elements, (m, N), integer, the plainest combinations first.
+
+    Together with the elements they span the left null space of the stoichiometry; none is implied by the others.
+    """
+    elements = conserved_by_elements(mechanism)
+    chosen = elements[_independent(elements)]
+    n_elements = len(chosen)
+    null_space = left_null_space((r.net for r in mechanism.reactions), mechanism.names)
+    if len(null_space) > n_elements:
+        for row in _candidates(mechanism, elements, null_space):
+            if len(chosen) == len(null_space):
+                break
+            extended = np.vstack([chosen, row])
+            if len(_independent(extended)) == len(extended):
+                chosen = extended
+    return chosen[n_elements:]
+
+
+def combination_text(mechanism: Mechanism, row: np.ndarray) -> str:
+    """A conserved combination as chemistry: "N2", "2 CH4 + C2H6", "atoms of H", "charge"."""
+    terms = [(int(count), name) for count, name in zip(row, mechanism.names, strict=True) if count]
+    if len(terms) > 1:
+        for label, own in zip([f"atoms of {e}" for e in mechanism.used_elements] + ["charge"],
+                              conserved_by_elements(mechanism), strict=False):
+            if np.array_equal(row, own):
+                return label
+    shown = terms if len(terms) <= _TERMS_SHOWN + 1 else terms[:_TERMS_SHOWN]
+    text = " ".join(f"{'-' if count < 0 else '+'} {'' if abs(count) == 1 else f'{abs(count)} '}{name}" for count, name in shown)
+    more = f" + … ({len(terms)} species)" if len(shown) < len(terms) else ""
+    return text.removeprefix("+ ") + more
+
+
+def left_null_space(reactions: Iterable[Mapping[str, int]], names: tuple[str, ...]) -> np.ndarray:
+    """An integer basis of all c with Σ_i c_i ν_i = 0 for every reaction, (m, N), by rational elimination.
+
+    Each reaction ties the c of its species; `tied` states one species' c by those of the species still free.
+    """
+    tied: dict[str, dict[str, Fraction]] = {}
+    for net in reactions:
+        relation = _substitute({name: Fraction(count) for name, count in net.items()}, tied)
+        if not relation:
+            continue
+        pivot = min(relation, key=lambda name: (abs(relation[name]) != 1, name in tied))
+        scale = -relation.pop(pivot)
+        tied[pivot] = {name: value / scale for name, value in relation.items()}
+        for name, own in tied.items():
+            if pivot in own:
+                tied[name] = _substitute(own, {pivot: tied[pivot]})
+    free = [name for name in names if name not in tied]
+    rows = [[tied[name].get(f, 0) if name in tied else int(name == f) for name in names] for f in free]
+    return np.array([_primitive(row) for row in rows], dtype=np.int64).reshape(len(free), len(names))
+
+
+def _substitute(relation: Mapping[str, Fraction], tied: Mapping[str, Mapping[str, Fraction]]) -> dict[str, Fraction]:
+    result: dict[str, Fraction] = {}
+    for name, value in relation.items():
+        for inner, factor in tied.get(name, {name: Fraction(1)}).items():
+            result[inner] = result.get(inner, Fraction(0)) + value * factor
+    return {name: value for name, value in result.items() if value}
+
+
+def _primitive(row: Iterable[Fraction | int]) -> list[int]:
+    """The smallest integers in the ratios of `row`, the larger part of them positive."""
+    values = [Fraction(v) for v in row]
+    common = math.lcm(*(v.denominator for v in values))
+    whole = [int(v * common) for v in values]
+    divisor = math.gcd(*whole) or 1
+    sign = -1 if sum(whole) < 0 else 1
+    return [sign * v // divisor for v in whole]
+
+
+def _independent(rows: np.ndarray) -> np.ndarray:
+    """Places of the first rows that carry the rank, rising."""
+    return np.sort(Components(rows.T, np.arange(len(rows))).basis)
+
+
+def _candidates(mechanism: Mechanism, elements: np.ndarray, null_space: np.ndarray) -> Iterator[np.ndarray]:
+    """Conserved combinations, plain ones first: a species that no reaction touches, the atoms within a group of
+    species that reactions link, and then the simplest found by exchanging components of the null space."""
+    groups = _linked_groups(mechanism)
+    yield from sorted((row for group in groups for row in _within(elements, group)), key=_plainness)
+    components = Components(null_space, np.arange(null_space.shape[1]))
+    found = {tuple(_primitive(row)) for row in components.numbers.tolist()}
+    for k, j in np.argwhere(components.numbers != 0).tolist():
+        if j != components.basis[k]:
+            other = components.copy()
+            other.exchange(k, j)
+            found |= {tuple(_primitive(row)) for row in other.numbers.tolist()}
+    yield from sorted((np.array(row) for row in found), key=_plainness)
+
+
+def _plainness(row: np.ndarray) -> tuple:
+    return bool(np.any(row < 0)), int(np.count_nonzero(row)), int(np.sum(np.abs(row))), (-np.abs(row)).tolist()
+
+
+def _within(elements: np.ndarray, group: np.ndarray) -> list[np.ndarray]:
+    if np.count_nonzero(group) == 1:
+        return [group.astype(np.int64)]
+    rows = np.where(group, elements, 0)
+    return [np.array(_primitive(row)) for row in rows.tolist() if any(row)]
+
+
+def _linked_groups(mechanism: Mechanism) -> list[np.ndarray]:
+    """Masks (N) of the groups of species that reactions link with one another."""
+    group = list(range(len(mechanism.species)))
+    for reaction in mechanism.reactions:
+        places = {group[mechanism.index(name)] for name in reaction.net}
+        group = [min(places) if g in places else g for g in group]
+    return [np.array(group) == g for g in sorted(set(group))]

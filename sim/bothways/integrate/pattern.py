@@ -1,0 +1,98 @@
+"""Symbolic part of the sparse LU: ordering, fill, and where each value of the Jacobian goes. Done once.
+
+Minimum degree on the symmetrised pattern (A. George, J.W.H. Liu, SIAM Rev. 31 (1989) 1, doi:10.1137/1031001), the
+last `tail` unknowns kept last, since their rows and columns are full.
+"""
+
+from dataclasses import dataclass
+
+import numpy as np
+
+
+@dataclass(frozen=True)
+class SparsePlan:
+    """Static pattern of L + U of a permuted matrix, by rows.
+
+    order : (n) original index of each permuted one.
+    start, column : rows of L + U in compressed form, columns rising.
+    diagonal : (n) place of each diagonal entry.
+    target : place in L + U of each value of the compressed-column input.
+    pivot : (n) place of the input's diagonal in the LU storage, by original index.
+    """
+
+    order: np.ndarray
+    start: np.ndarray
+    column: np.ndarray
+    diagonal: np.ndarray
+    target: np.ndarray
+
+    @property
+    def fill(self) -> int:
+        """Entries of L + U."""
+        return len(self.column)
+
+
+def plan(rows: np.ndarray, starts: np.ndarray, tail: int) -> SparsePlan:
+    """The plan for a square matrix with compressed columns (rows, starts); a full diagonal is assumed."""
+    n = len(starts) - 1
+    neighbours = _graph(rows, starts, n)
+    order, filled = _eliminate(neighbours, n, tail)
+    place = np.empty(n, dtype=np.int64)
+    place[order] = np.arange(n)
+    start, column, diagonal = _rows_of_factors(order, filled, place)
+    lookup = {(i, j): k for i in range(n) for k, j in
+              enumerate(column[start[i] : start[i + 1]].tolist(), start[i])}
+    columns = np.repeat(np.arange(n), np.diff(starts))
+    target = [lookup[i, j] for i, j in zip(place[rows].tolist(), place[columns].tolist(), strict=True)]
+    return SparsePlan(order.astype(np.uint32), start.astype(np.uint32), column.astype(np.uint32),
+                      diagonal.astype(np.uint32), np.array(target, dtype=np.uint32))
+
+
+def _graph(rows: np.ndarray, starts: np.ndarray, n: int) -> list[set[int]]:
+    neighbours: list[set[int]] = [set() for _ in range(n)]
+    for j in range(n):
+        for i in rows[starts[j] : starts[j + 1]].tolist():
+            if i != j:
+                neighbours[i].add(j)
+                neighbours[j].add(i)
+    return neighbours
+
+
+def _eliminate(neighbours: list[set[int]], n: int, tail: int) -> tuple[np.ndarray, list[list[int]]]:
+    """Elimination order and, for each unknown, its neighbours among those eliminated later."""
+    last = set(range(n - tail, n))
+    remaining = set(range(n - tail))
+    order: list[int] = []
+    later: list[list[int]] = [[] for _ in range(n)]
+    while remaining:
+        k = min(remaining, key=lambda v: (len(neighbours[v]), v))
+        remaining.discard(k)
+        _remove(k, neighbours, order, later)
+    for k in sorted(last):
+        _remove(k, neighbours, order, later)
+    return np.array(order), later
+
+
+def _remove(k: int, neighbours: list[set[int]], order: list[int], later: list[list[int]]) -> None:
+    around = neighbours[k]
+    later[k] = list(around)
+    for v in around:
+        neighbours[v].discard(k)
+        neighbours[v] |= around
+        neighbours[v].discard(v)
+    order.append(k)
+    neighbours[k] = set()
+
+
+def _rows_of_factors(order: np.ndarray, later: list[list[int]],
+                     place: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    n = len(order)
+    rows: list[list[int]] = [[i] for i in range(n)]
+    for k in order.tolist():
+        for v in later[k]:
+            rows[place[k]].append(int(place[v]))
+            rows[place[v]].append(int(place[k]))
+    start = np.cumsum([0] + [len(row) for row in rows])
+    column = np.concatenate([np.sort(row) for row in rows])
+    diagonal = np.array([start[i] + int(np.searchsorted(column[start[i] : start[i + 1]], i)) for i in range(n)])
+    return start, column, diagonal

@@ -1,0 +1,177 @@
+"""Rosenbrock methods, compiled: linearly implicit, stiffly accurate, the exact Jacobian at every step.
+
+The methods' tables stand in rosenbrock_tables.py. Unknowns may be differential (mass 1) or tied by a linear row of
+the Jacobian (mass 0: a border that keeps the linear system sparse; E. Hairer, G. Wanner, Solving Ordinary
+Differential Equations II, 2nd ed., 1996, IV.7 for the transformed step formulas, IV.8 for the first step and IV.2 for
+the controller with memory, after K. Gustafsson, ACM Trans. Math. Softw. 20 (1994) 496, doi:10.1145/198429.198437).
+"""
+
+import math
+
+import numpy as np
+
+from ..compiled import call, compiled
+from .sparse_lu import dense_factor, dense_solve, factor, solve, unpermute
+
+REACHED, BUFFER_FULL, TOO_SMALL, NOT_FINITE, TOO_MANY = range(5)
+TIME, STEP, LAST_STEP, LAST_ERROR, SMALLEST_STEP, LARGEST_STEP = range(6)
+MEMORY_SIZE = 6
+STEPS, REJECTED, F_CALLS, J_CALLS, FACTORISATIONS, SOLVES, DENSE, JUDGED_AGAINST, STEP_LIMIT = range(9)
+COUNTS_SIZE = 9
+_SAFETY, _SHRINK, _GROW = 0.9, 0.2, 6.0
+
+
+@compiled
+def error_norm(error, old, new, atol, rtol):
+    """Root mean square of the error estimate in units of the tolerances [-]; unknowns of infinite atol do not count."""
+    total, count = 0.0, 0
+    for i in range(error.size):
+        scale = atol[i] + rtol * max(abs(old[i]), abs(new[i]))
+        if scale < np.inf:
+            total += (error[i] / scale) ** 2
+            count += 1
+    return math.sqrt(total / count)
+
+
+@compiled
+def first_step(f, context, z, slope, atol, rtol, order, span):
+    """A first step from the size of f and of its change (Hairer, Nørsett, Wanner, vol. I, II.4)."""
+    zero = np.zeros(z.size)
+    size, speed = error_norm(z, z, zero, atol, rtol), error_norm(slope, z, zero, atol, rtol)
+    trial = 0.01 * size / speed if speed > 1e-5 and size > 1e-5 else 1e-6 * span
+    moved, changed = z + trial * slope, np.empty(z.size)
+    call(f, moved, changed, context)
+    bend = error_norm(changed - slope, z, zero, atol, rtol) / trial
+    largest = max(speed, bend)
+    h = (0.01 / largest) ** (1.0 / (order + 1.0)) if largest > 1e-15 else max(1e-6 * span, 1e-3 * trial)
+    if not h > 0.0:
+        h = 1e-12 * span
+    return min(100.0 * trial, h, span)
+
+
+@compiled
+def begin(f, context, z, atol, rtol, order, span):
+    """The first step for a start z, NaN where f is not finite there."""
+    slope = np.empty(z.size)
+    call(f, z, slope, context)
+    for value in slope:
+        if not math.isfinite(value):
+            return np.nan
+    return first_step(f, context, z, slope, atol, rtol, order, span)
+
+
+@compiled
+def _next_factor(norm, memory, rejected_before, order):
+    """How much longer the next step may be: the elementary rule, held back by the trend of the last error."""
+    if not norm > 1e-10:
+        norm = 1e-10
+    growth = _SAFETY * norm ** (-1.0 / order)
+    if memory[LAST_STEP] > 0.0:
+        trend = _SAFETY * memory[STEP] / memory[LAST_STEP] * (memory[LAST_ERROR] / norm**2) ** (1.0 / order)
+        growth = min(growth, trend)
+    growth = min(max(growth, _SHRINK), _GROW)
+    return min(growth, 1.0) if rejected_before else growth
+
+
+@compiled
+def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, target, own, mass, table, gamma,
+            estimator_order, z, memory, atol, rtol, stop, times, states, counts):
+    """Steps from memory[TIME] towards `stop` until it is reached or the buffer (times, states) is full.
+
+    f, J, judge: addresses (judge may be 0). table: (4, s, s) a, c, and rows m and e. own: place of each diagonal in
+    the Jacobian's values. Returns the status and the number of steps written.
+    """
+    n, s = z.size, table.shape[1]
+    values, jacobian = np.empty(rows.size), np.empty(rows.size)
+    lu, row, permuted = np.zeros(column.size), np.zeros(n), np.empty(n)
+    matrix, pivots = np.empty((0, 0)), np.empty(0, dtype=np.int64)
+    u, right, point = np.zeros((s, n)), np.empty(n), np.empty(n)
+    start_slope, slope = np.empty(n), np.empty(n)
+    exchange, verdict = np.zeros(3 * n), np.zeros(4)
+    written, fresh, rejected = 0, False, False
+    while written < times.size:
+        t, h = memory[TIME], memory[STEP]
+        if counts[STEPS] + counts[REJECTED] >= counts[STEP_LIMIT]:
+            return TOO_MANY, written
+        last = t + 1.0001 * h >= stop
+        if last:
+            h = stop - t
+        if h <= memory[SMALLEST_STEP] * max(abs(t), 1e-300) and not last:
+            return TOO_SMALL, written
+        if not fresh:
+            call(J, z, jacobian, context)
+            call(f, z, start_slope, context)
+            counts[J_CALLS] += 1
+            counts[F_CALLS] += 1
+            fresh = True
+        for e in range(values.size):
+            values[e] = -jacobian[e]
+        for i in range(n):
+            values[own[i]] += mass[i] / (h * gamma)
+        sound = factor(values, order, start, column, diagonal, target, lu, row)
+        counts[FACTORISATIONS] += 1
+        if not sound:
+            if matrix.size == 0:
+                matrix, pivots = np.empty((n, n)), np.empty(n, dtype=np.int64)
+            counts[DENSE] += 1
+            if not dense_factor(values, rows, starts, matrix, pivots):
+                memory[STEP] = 0.5 * h
+                counts[REJECTED] += 1
+                continue
+        finite = True
+        for i in range(s):
+            if i > 0:
+                point[:] = z
+                for j in range(i):
+                    if table[0, i, j] != 0.0:
+                        for k in range(n):
+                            point[k] += table[0, i, j] * u[j, k]
+                call(f, point, slope, context)
+                counts[F_CALLS] += 1
+            right[:] = start_slope if i == 0 else slope
+            for j in range(i):
+                for k in range(n):
+                    right[k] += table[1, i, j] / h * u[j, k] * mass[k]
+            if sound:
+                solve(lu, order, start, column, diagonal, right, permuted)
+                unpermute(permuted, order, u[i])
+            else:
+                dense_solve(matrix, pivots, right, u[i])
+            counts[SOLVES] += 1
+        old, new, error = exchange[:n], exchange[n : 2 * n], exchange[2 * n :]
+        for k in range(n):
+            old[k] = z[k]
+            move, wrong = 0.0, 0.0
+            for j in range(s):
+                move += table[2, 0, j] * u[j, k]
+                wrong += table[3, 0, j] * u[j, k]
+            new[k] = z[k] + move
+            error[k] = wrong
+            finite = finite and math.isfinite(new[k])
+        norm = error_norm(error, old, new, atol, rtol) if finite else np.inf
+        if not norm <= 1.0:
+            factor_down = _next_factor(norm, memory, True, estimator_order) if norm < 1e10 else 0.1
+            memory[STEP] = h * min(factor_down, 0.9)
+            counts[REJECTED] += 1
+            rejected = True
+            continue
+        if judge != 0 and call(judge, exchange, verdict, context) == 0:
+            counts[JUDGED_AGAINST] += 1
+            counts[REJECTED] += 1
+            memory[STEP] = 0.25 * h
+            rejected = True
+            continue
+        memory[STEP] = h
+        growth = _next_factor(norm, memory, rejected, estimator_order)
+        memory[LAST_STEP], memory[LAST_ERROR] = h, max(norm, 1e-2)
+        memory[TIME] = stop if last else t + h
+        memory[STEP] = h * growth
+        z[:] = new
+        times[written] = memory[TIME]
+        states[written] = z
+        counts[STEPS] += 1
+        written += 1
+        fresh, rejected = False, False
+        if last:
+            return REACHED, written
+    return BUFFER_FULL, written

@@ -1,0 +1,268 @@
+"""What every accepted step of a batch must pass: conservation restored, temperature from the energy, second law kept.
+
+Called by the compiled integrators with (old state | new state | error estimate), bordered; it may mend the new
+state. In order:
+
+1. Negative amounts become zero, and the conserved combinations (elements and whatever else the stoichiometry
+   conserves) are brought back to the charge's totals by n_i → n_i (1 + Σ_k λ_k a_ki): no amount changes sign, and
+   what round-off took is given back in proportion.
+2. In an adiabatic vessel T is the temperature at which contents and vessel hold the energy of the start.
+3. The potential that may not rise (A, G or -S) is compared by its change, worked out from the changes themselves:
+   with φ = n₁ ln(n₁/n₀) - Δn,  ΔA/RT = Σ Δn μ₀/RT + Σ φ,  ΔG/RT the same less the φ of the total amount, and
+   -ΔS/R = (ΔA or ΔG at T₀)/RT₀ + C (x - ln(1 + x))/R, x = T₁/T₀ - 1. A rise beyond round-off and beyond
+   Σ |μ_i - Σ_k λ_k a_ki|·|error_i|/RT is refused; λ, the combinations' potentials, are fitted to the mixture.
+"""
+
+import math
+
+import numpy as np
+from numba import carray
+
+from ..compiled import callback, compiled, float64_pointer
+from ..constants import GAS_CONSTANT as R
+from . import layout as at
+from .callbacks import CONTEXT_SIZE, tables_of
+from .equations import ADIABATIC, HEAT, HEAT_CAPACITY, HOLDS, PRESSURE, PRESSURE_HELD, VOLUME_HELD
+from .layout import view
+from .thermal import polynomials
+
+LEDGER, N_ROWS = CONTEXT_SIZE, CONTEXT_SIZE + 1
+JUDGE_CONTEXT_SIZE = CONTEXT_SIZE + 2
+ENERGY, START_TEMPERATURE, LARGEST_EXCESS, MENDED, LARGEST_DRIFT, LARGEST_ENERGY_DRIFT = range(6)
+LEDGER_HEAD = 8
+ROUND_OFF = 4e-15
+"""Of each part of a change of the potential [-]."""
+DRIFT_ALLOWED = 1e-15
+"""Conserved totals further off than this [-] are mended."""
+LARGEST_MENDING = 1e-2
+"""A mending that changes an amount by more than this part of it is refused: the step is too long."""
+COOLEST, HOTTEST = 20.0, 2e4
+
+_RANGE_START = at.offset_slot(at.INTS, "range_start")
+_RANGE_TOP = at.offset_slot(at.FLOATS, "range_top")
+_RANGE_ROW = at.offset_slot(at.FLOATS, "range_row")
+_REDUCTION = at.offset_slot(at.FLOATS, "reduction")
+_STANDARD = at.offset_slot(at.FLOATS, "standard")
+
+
+def ledger_of(rows: np.ndarray, totals: np.ndarray, energy: float, temperature: float) -> np.ndarray:
+    """The judge's ledger: a head, then totals (m), rows (m, N), and scratch.
+
+    rows : (m, N) conserved combinations; totals : (m) their values in the state's units.
+    energy : of the start, in the state's units [J/m3 or J]; temperature [K] of the start.
+    """
+    m, n = rows.shape
+    head = np.zeros(LEDGER_HEAD)
+    head[ENERGY], head[START_TEMPERATURE] = energy, temperature
+    return np.concatenate([head, totals, rows.ravel(), np.zeros(m * m + 2 * m + 10 * n)])
+
+
+@compiled
+def weighted_solve(rows, weights, right, matrix, out):
+    """λ of (Σ_i rows_ki w_i rows_li) λ_l = right_k by Cholesky's method; rows that weigh nothing get λ = 0."""
+    m, n = rows.shape
+    for k in range(m):
+        for l in range(k + 1):
+            total = 0.0
+            for i in range(n):
+                total += rows[k, i] * weights[i] * rows[l, i]
+            matrix[k, l] = total
+    for k in range(m):
+        scale = matrix[k, k]
+        for l in range(k + 1):
+            total = matrix[k, l]
+            for j in range(l):
+                total -= matrix[k, j] * matrix[l, j]
+            if l < k:
+                matrix[k, l] = total / matrix[l, l] if matrix[l, l] > 0.0 else 0.0
+            else:
+                matrix[k, k] = math.sqrt(total) if total > 1e-12 * scale else 0.0
+    for k in range(m):
+        total = right[k]
+        for j in range(k):
+            total -= matrix[k, j] * out[j]
+        out[k] = total / matrix[k, k] if matrix[k, k] > 0.0 else 0.0
+    for q in range(m):
+        k = m - 1 - q
+        total = out[k]
+        for j in range(k + 1, m):
+            total -= matrix[j, k] * out[j]
+        out[k] = total / matrix[k, k] if matrix[k, k] > 0.0 else 0.0
+
+
+@compiled
+def mend(amount, rows, totals, matrix, residual, multiplier, head):
+    """Step 1: amounts without negatives and with the conserved totals; False if that would change them much."""
+    negative = False
+    for i in range(amount.size):
+        if amount[i] < 0.0:
+            amount[i] = 0.0
+            negative = True
+    for attempt in range(3):
+        worst = 0.0
+        for k in range(totals.size):
+            now, size = 0.0, 0.0
+            for i in range(amount.size):
+                now += rows[k, i] * amount[i]
+                size += abs(rows[k, i]) * amount[i]
+            residual[k] = totals[k] - now
+            if size > 0.0:
+                worst = max(worst, abs(residual[k]) / size)
+        if attempt == 0 and not negative:
+            head[LARGEST_DRIFT] = max(head[LARGEST_DRIFT], worst)
+        if worst <= DRIFT_ALLOWED:
+            return True
+        weighted_solve(rows, amount, residual, matrix, multiplier)
+        for i in range(amount.size):
+            change = 0.0
+            for k in range(totals.size):
+                change += multiplier[k] * rows[k, i]
+            if abs(change) > LARGEST_MENDING:
+                return False
+            amount[i] *= 1.0 + change
+        head[MENDED] += 1.0
+    return worst <= 1e-13
+
+
+@compiled
+def temperature_of(amount, T, vessel, ints, floats, head, gibbs, enthalpy, cp, slope):
+    """Step 2: T at which the energy is that of the start; the last arrays stand for it then. -1 if out of reach."""
+    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    start, top, rows = view(ints, ints, _RANGE_START), view(floats, ints, _RANGE_TOP), view(floats, ints, _RANGE_ROW)
+    previous = np.inf
+    for attempt in range(60):
+        if not COOLEST < T < HOTTEST:
+            return -1.0
+        polynomials(T, start, top, rows, gibbs, enthalpy, cp, slope)
+        own = vessel[HEAT_CAPACITY] / R
+        energy, heat = own * (T - head[START_TEMPERATURE]), own
+        for i in range(amount.size):
+            energy += amount[i] * (enthalpy[i] - less) * T
+            heat += amount[i] * (cp[i] - less)
+        step = (head[ENERGY] / R - energy) / heat
+        if attempt == 0:
+            head[LARGEST_ENERGY_DRIFT] = max(head[LARGEST_ENERGY_DRIFT], abs(step) / T)
+        if abs(step) <= 2e-16 * T or abs(step) >= previous and abs(step) < 1e-13 * T:
+            return T
+        previous = abs(step)
+        T += max(min(step, 0.5 * T), -0.3 * T)
+    return -1.0
+
+
+@compiled
+def change_of_potential(old, new, T0, T1, potential, deviation, cp0, cp1, vessel):
+    """Step 3: change of A/RT, G/RT or -S/R from old to new, and the round-off it carries.
+
+    potential: μ₀/RT; deviation: of it from the combinations' potentials, whose part of Σ Δn μ₀ is zero by
+    conservation and is left out before it can drown the rest. Of species absent before, both lack ln of the amount.
+    """
+    change, noise, before, after, heat = 0.0, 0.0, 0.0, 0.0, vessel[HEAT_CAPACITY] / R
+    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    for i in range(cp0.size):
+        n0, n1 = old[i], new[i]
+        before += n0
+        after += n1
+        heat += n1 * (0.5 * (cp0[i] + cp1[i]) - less)
+        if n0 > 0.0:
+            change += (n1 - n0) * deviation[i] + bend(n0, n1)
+            noise += abs(n1 - n0) * (1.0 + abs(potential[i])) + n0 * abs(deviation[i])
+        elif n1 > 0.0:
+            change += n1 * (deviation[i] + math.log(n1) - 1.0)
+            noise += n1 * (abs(potential[i]) + abs(math.log(n1)))
+    if vessel[HOLDS] == PRESSURE_HELD:
+        change -= bend(before, after)
+    if vessel[HEAT] == ADIABATIC:
+        x = (T1 - T0) / T0
+        change += heat * (x - math.log1p(x) if abs(x) > 1e-4 else x * x * (0.5 - x / 3.0))
+    return change, ROUND_OFF * noise
+
+
+@compiled
+def bend(n0, n1):
+    """n₁ ln(n₁/n₀) - (n₁ - n₀) for n₀ > 0, without cancellation for small changes."""
+    if not n1 > 0.0:
+        return n0
+    x = (n1 - n0) / n0
+    if abs(x) < 1e-3:
+        return n0 * x * x * (0.5 - x * (1.0 / 6.0 - x * (1.0 / 12.0 - x / 20.0)))
+    return n1 * math.log1p(x) - (n1 - n0)
+
+
+@callback
+def judge(exchange_pointer, verdict_pointer, context):
+    """1 if the step may stand, its new state mended in place; 0 if not. verdict[0]: rise beyond what is allowed."""
+    vessel, ints, floats, _, _ = tables_of(context)
+    c = carray(context, (JUDGE_CONTEXT_SIZE,))
+    n, m = np.int64(ints[at.SPECIES]), c[N_ROWS]
+    exchange, verdict = carray(exchange_pointer, (3 * (n + 2),)), carray(verdict_pointer, (4,))
+    ledger = carray(float64_pointer(c[LEDGER]), (LEDGER_HEAD + m + m * n + m * m + 2 * m + 10 * n,))
+    head, totals = ledger[:LEDGER_HEAD], ledger[LEDGER_HEAD : LEDGER_HEAD + m]
+    o = LEDGER_HEAD + m
+    rows = ledger[o : o + m * n].reshape((m, n))
+    o += m * n
+    matrix = ledger[o : o + m * m].reshape((m, m))
+    o += m * m
+    residual, multiplier = ledger[o : o + m], ledger[o + m : o + 2 * m]
+    o += 2 * m
+    scratch = ledger[o : o + 10 * n].reshape((10, n))
+    old, new, error = exchange[:n], exchange[n + 2 : 2 * n + 2], exchange[2 * n + 4 : 3 * n + 4]
+    T0, T1 = exchange[n + 1], exchange[2 * n + 3]
+    verdict[0] = 0.0
+    if not mend(new, rows, totals, matrix, residual, multiplier, head):
+        return 0
+    start, top, coefficients = view(ints, ints, _RANGE_START), view(floats, ints, _RANGE_TOP), view(floats, ints, _RANGE_ROW)
+    polynomials(T0, start, top, coefficients, scratch[0], scratch[1], scratch[2], scratch[3])
+    if vessel[HEAT] == ADIABATIC:
+        T1 = temperature_of(new, T1, vessel, ints, floats, head, scratch[4], scratch[5], scratch[6], scratch[7])
+        if T1 < 0.0:
+            return 0
+        exchange[2 * n + 3] = T1
+    else:
+        scratch[6, :] = scratch[2]
+    potential, deviation = scratch[8], scratch[9]
+    _reduced_potentials(old, T0, vessel, ints, floats, scratch[0], potential)
+    _deviations(old, rows, potential, matrix, residual, multiplier, deviation)
+    change, noise = change_of_potential(old, new, T0, T1, potential, deviation, scratch[2], scratch[6], vessel)
+    if change <= noise:
+        return 1
+    allowed = noise
+    for i in range(n):
+        allowed += abs(deviation[i]) * abs(error[i])
+    if change <= allowed:
+        return 1
+    verdict[0] = change - allowed
+    head[LARGEST_EXCESS] = max(head[LARGEST_EXCESS], change - allowed)
+    return 0
+
+
+@compiled
+def _reduced_potentials(amount, T, vessel, ints, floats, gibbs, out):
+    """μ/RT less element terms, which no reaction changes; without ln of the amount where that is zero."""
+    reduction, standard = view(floats, ints, _REDUCTION), view(floats, ints, _STANDARD)[0]
+    total = 0.0
+    for i in range(amount.size):
+        total += amount[i]
+    shift = math.log(R * T / standard)
+    if vessel[HOLDS] == PRESSURE_HELD:
+        shift = math.log(vessel[PRESSURE] / (standard * total))
+    for i in range(amount.size):
+        out[i] = gibbs[i] - reduction[2 * i] / T - reduction[2 * i + 1] + shift
+        if amount[i] > 0.0:
+            out[i] += math.log(amount[i])
+
+
+@compiled
+def _deviations(old, rows, potential, matrix, right, multiplier, deviation):
+    """μ_i/RT less the potentials Σ_k λ_k a_ki of the conserved combinations, λ fitted with the amounts as weights."""
+    m, n = rows.shape
+    for k in range(m):
+        right[k] = 0.0
+        for i in range(n):
+            if old[i] > 0.0:
+                right[k] += rows[k, i] * old[i] * potential[i]
+    weighted_solve(rows, old, right, matrix, multiplier)
+    for i in range(n):
+        fitted = 0.0
+        for k in range(m):
+            fitted += multiplier[k] * rows[k, i]
+        deviation[i] = potential[i] - fitted

@@ -1,0 +1,9 @@
+"""Figures of runs, for a page (180 mm) or a column (85 mm); needs no display.
+
+One file a figure; `style`, `views`, `labels`, `selection`, `words` and `saving` are what they share.
+"""
+
+from .course import course, save_course
+from .saving import check_picture, save
+
+__all__ = ["check_picture", "course", "save", "save_course"]
