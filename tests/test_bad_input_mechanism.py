@@ -1,4 +1,4 @@
-"""Faults of a mechanism's keys, names, equations: one line with file, entry, found, expected, remedy; status 2; nothing written."""
+"""Faults of a mechanism's keys, names and equations: one line, exit status 2, nothing written (see refusals.py)."""
 
 from pathlib import Path
 
@@ -61,7 +61,8 @@ def test_unknown_key(refusals: Refusals, changes: tuple, entry: str, texts: tupl
 MISPLACED = [
     row("source after the law", 'source = "invented"\n[reaction.forward]\nlaw = "Troe"',
         '[reaction.forward]\nlaw = "Troe"\nsource = "invented"', f"{R3}.forward",
-        f"unknown key 'source'; it belongs to {R3}: put it before this table's header, since what follows a [table] header " "belongs to that table"),
+        f"unknown key 'source'; it belongs to {R3}: put it before this table's header, since what follows a [table] "
+        "header belongs to that table"),
     row("efficiency within the efficiencies", "O2 = 2.0,", "source = 2.0,", f"{R1}.collision_efficiency",
         f"unknown species 'source'; it belongs to {R1}: put it before this table's header"),
     row("key of a species after its potential", "T = [300.0", "collision_diameter = 1\nT = [300.0", "species.Q2.potential",
@@ -78,7 +79,7 @@ def test_key_that_landed_under_the_wrong_header(refusals: Refusals, changes: tup
 
 MISSING_KEYS = [
     row("mechanism", "[mechanism]", "[mechanisms]", "",
-        "the key 'mechanism' is missing; expected a table; is 'mechanisms' meant"),
+        "unknown key 'mechanisms' (nearest: mechanism)"),
     row("phase", 'phase = "ideal gas"', "", "mechanism", "the key 'phase' is missing; expected \"ideal gas\"; add it"),
     row("standard pressure", "standard_pressure =", "standard_presure =", "mechanism",
         "the key 'standard_pressure' is missing; expected a pressure; is 'standard_presure' meant to be it?"),
@@ -110,14 +111,15 @@ def test_missing_key(refusals: Refusals, changes: tuple, entry: str, texts: tupl
 # ---- names of species and elements, equations
 
 EQUATIONS = [
-    row("unknown species", '"Q + O2 ⇌', '"Q + 02 ⇌', "reaction 2 'Q + 02 ⇌ QO + O'",
-        "unknown species '02' (nearest: O2", "add [species.…]"),
+    row("unknown species", '"Q + O2 ⇌', '"Q + o2 ⇌', "reaction 2 'Q + o2 ⇌ QO + O'", "unknown species 'o2' (nearest: O2",
+        "add [species.…]"),
+    row("digit for a letter", '"Q + O2 ⇌', '"Q + 02 ⇌', "reaction 2 'Q + 02 ⇌ QO + O'", "cannot read '02'"),
     row("no space beside the plus", '"Q + O2 ⇌', '"Q +O2 ⇌', "reaction 2 'Q +O2 ⇌ QO + O'", "cannot read 'Q +O2'",
         "parted by spaces"),
     row("unknown species of efficiency", "{ O2 = 2.0,", "{ H2O = 2.0,", f"{R1}.collision_efficiency",
-        "unknown species 'H2O'", "nearest: O2", "correct the species"),
+        "unknown species 'H2O' (known: O, O2, Q, Q+, Q2, QO)", "correct the species"),
     row("unknown partner", 'law = "Troe"', 'law = "Troe"\ncollision_partner = "Q3"', f"{R3}.forward.collision_partner",
-        "unknown species 'Q3' (nearest: Q2"),
+        "unknown species 'Q3' (nearest: Q"),
     row("elements not balanced", "2 Q + M", "3 Q + M", "reaction 1 '3 Q + M ⇌ Q2 + M'",
         "not balanced: Q -1 on the right-hand side", "expected no difference; correct the equation or the formulas"),
     row("charge not balanced", '"Q + O ⇌ QO"', '"Q + O2 ⇌ Q+ + O2"', "reaction 3",
@@ -177,7 +179,8 @@ def test_one_way_arrow(refusals: Refusals, arrow: str, space: str) -> None:
     equation = f"Q + O{space}{arrow}{space}QO"
     refusals.write(changed(MECHANISM, ("Q + O ⇌ QO", equation)))
     refusals.refused("small.toml", f"reaction 3 '{equation}'", f"'{arrow}' is a one-way arrow", "expected ⇌, ⇄ or =",
-                     "every step runs both ways; a step that is one-way in practice has a large K", "published_one_way = true")
+                     "every step runs both ways; a step that is one-way in practice has a large K",
+                     "published_one_way = true")
 
 
 @pytest.mark.parametrize("arrow", ["<=>", "<->", "<==>", "↔", "⇔", "==", "⇋"])

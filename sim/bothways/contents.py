@@ -3,7 +3,6 @@
 from functools import cached_property
 
 import numpy as np
-from scipy.special import xlogy
 
 from .constants import GAS_CONSTANT as R
 from .kernels.thermal import polynomials, polynomials_at
@@ -88,7 +87,8 @@ class Contents:
 
     def _gibbs_over_RT(self, n: np.ndarray, T: np.ndarray, volumes: np.ndarray, g: np.ndarray) -> np.ndarray:
         unit = R * T / (volumes * self.mechanism.standard_pressure)
-        return np.einsum("ki,ki->k", n, g) + np.sum(xlogy(n, n * unit[:, None]), axis=1)
+        ratio = np.where(n > 0, n, 1.0) * unit[:, None]  # n ln n is zero for an absent species
+        return np.einsum("ki,ki->k", n, g) + np.sum(n * np.log(ratio), axis=1)
 
     def temperatures_of(self, energy: float, n: np.ndarray, near: np.ndarray, holds: str,
                         own_heat_capacity: float = 0.0, reference: float = 0.0) -> np.ndarray:

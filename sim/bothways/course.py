@@ -8,8 +8,6 @@ of sixth order in the step (e.g. E. Hairer, S.P. Nørsett, G. Wanner, Solving Or
 from collections.abc import Callable
 
 import numpy as np
-from scipy.interpolate import BPoly
-from scipy.optimize import brentq
 
 
 class Course:
@@ -24,10 +22,11 @@ class Course:
         """y'' = J f at any state (n)."""
         return self.J(t, y) @ self.f(t, y)
 
-    def between(self, k: int) -> BPoly:
-        """The interpolant (of all components) from step k to k + 1."""
-        data = [np.array([self.states[j], self.slopes[j], self.curvatures[j]]) for j in (k, k + 1)]
-        return BPoly.from_derivatives(self.times[k : k + 2], data)
+    def between(self, k: int) -> Callable[[float], np.ndarray]:
+        """The interpolant, time [s] -> state (n), from step k to k + 1."""
+        start, h = self.times[k], self.times[k + 1] - self.times[k]
+        data = np.array([v for j in (k, k + 1) for v in (self.states[j], h * self.slopes[j], h * h * self.curvatures[j])])
+        return lambda t: _hermite((t - start) / h) @ data
 
     def first_crossing(self, values: np.ndarray, component: int, level: float) -> float | None:
         """The first time at which a falling component reaches a level; values: the component at the times."""
@@ -50,7 +49,30 @@ class Course:
         return None
 
 
+def _hermite(x: float) -> np.ndarray:
+    """Weights of value, slope and curvature at both ends for the quintic at x in 0…1."""
+    y = 1.0 - x
+    left = np.array([y**3 * (1 + 3 * x + 6 * x**2), y**3 * x * (1 + 3 * x), 0.5 * y**3 * x**2])
+    right = np.array([x**3 * (1 + 3 * y + 6 * y**2), -(x**3) * y * (1 + 3 * y), 0.5 * x**3 * y**2])
+    return np.concatenate([left, right])
+
+
 def _root(function: Callable[[float], float], start: float, end: float) -> float:
-    if function(start) * function(end) > 0:  # the interpolant rounds a crossing at the very end of a step away
+    """Where a function changes sign between two times: regula falsi with Illinois weights, bisection as safeguard.
+
+    M. Dowell, P. Jarratt, BIT 11 (1971) 168, doi:10.1007/BF01934364.
+    """
+    a, b, at_a, at_b = start, end, function(start), function(end)
+    if at_a * at_b > 0:  # the interpolant rounds a crossing at the very end of a step away
         return end
-    return float(brentq(function, start, end, xtol=1e-300, rtol=1e-14))
+    for k in range(200):
+        if at_b == 0 or abs(b - a) <= 4e-16 * max(abs(a), abs(b)):
+            break
+        t = b - at_b * (b - a) / (at_b - at_a) if k % 4 else 0.5 * (a + b)
+        at_t = function(t)
+        if at_t * at_b < 0:
+            a, at_a = b, at_b
+        else:
+            at_a *= 0.5
+        b, at_b = t, at_t
+    return b

@@ -138,7 +138,7 @@ class Equations:
 
     @cached_property
     def bordered_pattern(self) -> tuple[np.ndarray, np.ndarray]:
-        """Row indices and column starts of the bordered Jacobian (compressed columns)."""
+        """Row indices and column starts of the bordered Jacobian (compressed columns), its diagonal included."""
         start, rows = table_view(self.tables, "block_start").astype(np.int64), table_view(self.tables, "block_row").astype(np.int64)
         n = self.size - 1
         columns = [[*rows[start[s] : start[s + 1]], n, n + 1] for s in range(n)] + [list(range(n + 2))] * 2
@@ -168,4 +168,5 @@ class Equations:
 
 
 def _vector(y: np.ndarray) -> np.ndarray:
-    return np.ascontiguousarray(y, dtype=np.float64)
+    """y as the kernels take it; a read-only array would make numba compile everything a second time."""
+    return np.require(y, np.float64, ["C_CONTIGUOUS", "WRITEABLE"])

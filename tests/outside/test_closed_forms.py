@@ -5,8 +5,8 @@ what the closed form asks. A closed form that runs one way only gets K so large 
 is below 1e-25 of the forward one wherever it is compared. Textbook integrations (e.g. K.J. Laidler, Chemical
 Kinetics, 3rd ed., 1987, ch. 2), evaluated with 30 digits; where another source stands behind one it is named there.
 
-Tolerances: the runs ask rtol = 1e-10. What is left after up to 500 steps was measured: below 1e-11 with Radau (order
-5) and below 5e-9 with BDF (orders 1 to 5), each in units of the largest amount; allowed are 1e-10 and 1e-8.
+Tolerances: the runs ask rtol = 1e-10. What is left, in units of the largest amount, was measured: about 1e-11 at most with
+the one-step methods, below 5e-9 with BDF; allowed are 1e-10 and 1e-8.
 """
 
 from dataclasses import dataclass
@@ -19,7 +19,7 @@ from bothways.integrate import METHODS
 
 from .small import R, bar, building_blocks, course
 
-ALLOWED = {method: 1e-10 if method == "Radau" else 1e-8 for method in METHODS}
+ALLOWED = {method: 1e-8 if method == "BDF" else 1e-10 for method in METHODS}
 T = 500.0  # [K] of the isothermal runs: the closed forms do not know a temperature
 FAR = -200e3  # [J/mol] a standard Gibbs energy that makes a step one-way: K = exp(48) for each product molecule
 
@@ -83,8 +83,7 @@ def reversible_chain() -> Form:
 
 
 def one_way_chain() -> Form:
-    """A → B → C, k = 1 and 0.4 1/s: B = k1/(k2 - k1) [exp(-k1 t) - exp(-k2 t)].
-    ln K = 96 and 48; the second is enough, as C never exceeds B by more than a few."""
+    """A → B → C, k = 1 and 0.4 1/s: B = k1/(k2 - k1) [exp(-k1 t) - exp(-k2 t)]. K = exp(96) each."""
     mechanism = _chain({"A": 0.0, "B": 2 * FAR, "C": 4 * FAR}, 1.0, 0.4)
     return Form(mechanism, {"A": 1.0}, [1.52715121979, 2.0], {
         "B": [0.542883523319, 0.523322801468], "C": [1 - 0.542883523319 - np.exp(-1.52715121979), 0.341341915296]})
@@ -176,31 +175,35 @@ REACHED = {  # time [s]: temperature [K]
     0.2241899759042: 790.0, 0.22500126261292: 799.0}
 
 
-@pytest.fixture(scope="module", params=["volume", "pressure"])
+@pytest.fixture(scope="module", params=[(holds, method) for holds in ("volume", "pressure") for method in METHODS],
+                ids=lambda param: "-".join(param))
 def explosion(request):
-    """Adiabatic A → B, ln K above 90; the heat of reaction warms by RISE what the vessel holds, cv or cp."""
-    cp = 100.0
-    heat = -RISE * (cp if request.param == "pressure" else cp - R)
+    """Adiabatic A → B, ln K above 90; the heat of reaction warms by RISE what the vessel holds, cv or cp.
+
+    Gives trajectory, places of the times, and the relative error in time that is allowed: an explosion makes its
+    first errors grow, here e^8-fold in temperature, so ten times what is allowed elsewhere."""
+    cp, (holds, method) = 100.0, request.param
+    heat = -RISE * (cp if holds == "pressure" else cp - R)
     mechanism = building_blocks(
         {"A": {"Q": 1}, "B": {"Q": 1}}, {"A": 0.0, "B": 2 * FAR}, T0, cp=cp, enthalpy={"B": heat},
         reactions=[{"equation": "A ⇌ B", "forward": {"law": "Arrhenius", "A": A, "Ea": THETA}}])
-    return course(mechanism, {"heat": "adiabatic", "holds": request.param}, {"temperature": T0, "pressure": "1 bar",
-                  "mole_ratio": {"A": 1.0}}, list(REACHED), "Radau")
+    run, at = course(mechanism, {"heat": "adiabatic", "holds": holds}, {"temperature": T0, "pressure": "1 bar",
+                     "mole_ratio": {"A": 1.0}}, list(REACHED), method)
+    return run, at, 10 * ALLOWED[method]
 
 
 def test_adiabatic_first_order(explosion):
     """t(T) = (1/A) {exp(zf) [Ei(z0 - zf) - Ei(z - zf)] - [Ei(z0) - Ei(z)]}, z = THETA/T, zf = THETA/(T0 + RISE).
 
-    An explosion: an error of the start grows e^8 fold. Compared is the time at which each temperature is reached.
-    """
-    run, at = explosion
+    Compared is the time at which each temperature is reached."""
+    run, at, allowed = explosion
     expected = np.array(list(REACHED.values()))
     slope = A * np.exp(-THETA / expected) * (T0 + RISE - expected)  # [K/s]
     late = (expected - run.temperature[at]) / slope
-    assert late == pytest.approx(0.0, abs=1e-9 * 0.22)
+    assert late == pytest.approx(0.0, abs=allowed * 0.22)
 
 
 def test_steepest_rise_of_an_adiabatic_run(explosion):
     """The rate is largest at 752.777206454 K, where T² = THETA (T0 + RISE - T)."""
-    run, _ = explosion
-    assert run.milestones["steepest temperature rise"] == pytest.approx(0.2233620113928, rel=1e-9)
+    run, _, allowed = explosion
+    assert run.milestones["steepest temperature rise"] == pytest.approx(0.2233620113928, rel=allowed)

@@ -16,7 +16,7 @@ EXACT = {  # BIPM, The International System of Units, 9th ed., 2019; R = N_A k_B
 
 
 def test_the_vintage_of_the_library_is_codata_2022():
-    """CODATA 2022 (P.J. Mohr et al., Rev. Mod. Phys. 97 (2025) 025002): m_u = 1.66053906892(52)e-27 kg, 2018 ...660(50)."""
+    """P.J. Mohr et al., Rev. Mod. Phys. 97 (2025) 025002 [M]: m_u = 1.66053906892(52)e-27 kg; in CODATA 2018 ...660(50)."""
     assert scipy.constants.physical_constants["atomic mass constant"][:2] == (1.66053906892e-27, "kg")
 
 

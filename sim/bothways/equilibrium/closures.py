@@ -6,7 +6,7 @@ import numpy as np
 
 from ..constants import GAS_CONSTANT as R
 from ..contents import Contents
-from ..errors import InputError
+from ..errors import InputError, SolverError
 from .components import Components
 from .continuation import compose
 from .newton import Point, Task, balances, jacobian, log_amounts
@@ -16,6 +16,7 @@ LOWEST, HIGHEST = 50.0, 20000.0
 _FIRST_GUESS = 2000.0
 _MOST_TEMPERATURES = 200
 _CLOSE = 1e-13
+_ROUND_OFF = 4 * np.finfo(float).eps
 
 
 @dataclass(frozen=True)
@@ -51,7 +52,7 @@ class State:
     """An equilibrium of a stock: temperature [K], ln of the scaled amounts (n), and what finding it took.
 
     energy : U at held volume, H at held pressure, over R and the scale [K]; heat_capacity : its slope [-].
-    shift : d(η, ζ)/d ln T, (r) or (r + 1).
+    round_off : of the energy, as a relative change of temperature [-]. shift : d(η, ζ)/d ln T, (r) or (r + 1).
     """
 
     temperature: float
@@ -59,6 +60,7 @@ class State:
     log_amount: np.ndarray
     energy: float
     heat_capacity: float
+    round_off: float
     shift: np.ndarray
     iterations: int
     energy_misfit: float = 0.0
@@ -107,8 +109,9 @@ def _with_energy(point: Point, task: Task, temperature: float, energy: np.ndarra
     if task.swells:
         slope += (1.0 - np.sum(components.formation, axis=0)) * shift[-1]
     n = np.exp(log_n)
-    return State(temperature, point, log_n, float(temperature * (n @ energy)),
-                 float(n @ (energy * slope + heat_capacity)), shift, iterations)
+    total = float(n @ (energy * slope + heat_capacity))
+    round_off = _ROUND_OFF * float(n @ np.abs(energy)) / total
+    return State(temperature, point, log_n, float(temperature * (n @ energy)), total, round_off, shift, iterations)
 
 
 def at_energy(stock: Stock, held: Held, energy: float, own_heat_capacity: float, reference: float,
@@ -118,31 +121,30 @@ def at_energy(stock: Stock, held: Held, energy: float, own_heat_capacity: float,
     Entropy is concave, so the energy rises with temperature: Newton's method within a bracket.
     """
     wanted, own = energy / (R * stock.scale), own_heat_capacity / (R * stock.scale)
-    low, high = LOWEST, HIGHEST
+    low, high, last = 0.0, np.inf, np.inf
     T = near.temperature if near else _FIRST_GUESS
     iterations = 0
-    for count in range(_MOST_TEMPERATURES):
+    for _ in range(_MOST_TEMPERATURES):
         near = at_temperature(stock, held, T, near)
         iterations += near.iterations
         excess = near.energy + own * (T - reference) - wanted
         step = -excess / (near.heat_capacity + own)
-        if abs(step) <= _CLOSE * T or high - low <= 4e-16 * T:
-            break
+        if abs(step) <= max(_CLOSE, near.round_off) * T or high - low <= _ROUND_OFF * T:
+            return replace(near, iterations=iterations, energy_misfit=abs(step) / T)
         if (T == LOWEST and excess > 0) or (T == HIGHEST and excess < 0):
             raise _out_of_reach(held, energy, T, excess * R * stock.scale)
         low, high = (T, high) if excess < 0 else (low, T)
-        T = _next(T + step, low, high, count)
-    return replace(near, iterations=iterations, energy_misfit=abs(step) / T)
+        new = _next(T, step, low, high, last)
+        T, last = new, abs(new - T)
+    raise SolverError(f"no temperature found for energy {energy:.6g} J", remedy="please report this case")
 
 
-def _next(newton: float, low: float, high: float, count: int) -> float:
-    """Newton's temperature, kept within the bracket; every eighth time its middle, whatever Newton says."""
-    if count % 8 == 7:
+def _next(T: float, step: float, low: float, high: float, last: float) -> float:
+    """Newton's temperature, within a factor 2 of T; between `low` and `high`, once both are known, their middle where
+    Newton's steps leave them or do not shorten. `last` is the length of the step before."""
+    newton = min(max(T + step, 0.5 * T, LOWEST), 2.0 * T, HIGHEST)
+    if low > 0 and high < np.inf and not (low < newton < high and abs(newton - T) < 0.5 * last):
         return float(np.sqrt(low * high))
-    if newton <= low:
-        return low if low == LOWEST else float(np.sqrt(low * high))
-    if newton >= high:
-        return high if high == HIGHEST else float(np.sqrt(low * high))
     return newton
 
 

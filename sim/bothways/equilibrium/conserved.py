@@ -50,14 +50,16 @@ def extra_conserved(mechanism: Mechanism) -> np.ndarray:
 
 def combination_text(mechanism: Mechanism, row: np.ndarray) -> str:
     """A conserved combination as chemistry: "N2", "2 CH4 + C2H6", "atoms of H", "charge"."""
-    terms = [(int(count), name) for count, name in zip(row, mechanism.names, strict=True) if count]
+    plain = _primitive(np.asarray(row).tolist())
+    terms = [(count, name) for count, name in zip(plain, mechanism.names, strict=True) if count]
     if len(terms) > 1:
         for label, own in zip([f"atoms of {e}" for e in mechanism.used_elements] + ["charge"],
                               conserved_by_elements(mechanism), strict=False):
-            if np.array_equal(row, own):
+            if plain == _primitive(own.tolist()):
                 return label
     shown = terms if len(terms) <= _TERMS_SHOWN + 1 else terms[:_TERMS_SHOWN]
-    text = " ".join(f"{'-' if count < 0 else '+'} {'' if abs(count) == 1 else f'{abs(count)} '}{name}" for count, name in shown)
+    text = " ".join(f"{'-' if count < 0 else '+'} {'' if abs(count) == 1 else f'{abs(count)} '}{name}"
+                    for count, name in shown)
     more = f" + … ({len(terms)} species)" if len(shown) < len(terms) else ""
     return text.removeprefix("+ ") + more
 

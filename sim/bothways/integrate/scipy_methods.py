@@ -7,12 +7,19 @@ and Radau IIA of order 5 (E. Hairer, G. Wanner, Solving Ordinary Differential Eq
 import time
 import warnings
 
+from typing import Any
+
 import numpy as np
-from scipy.integrate import BDF, OdeSolver, Radau
 
 from .interface import MOST_STEPS, Monitor, Outcome, Problem, Status
 
-METHODS = {"BDF": BDF, "Radau": Radau}
+METHODS = ("BDF", "Radau")
+
+
+def _solver_class(method: str) -> Any:
+    import scipy.integrate  # here, since it takes longer to import than a small run takes
+
+    return getattr(scipy.integrate, method)
 
 
 def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
@@ -23,7 +30,7 @@ def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
     try:
         with warnings.catch_warnings(), np.errstate(all="ignore"):
             warnings.simplefilter("ignore")  # trial states may leave the range of exp; they are rejected
-            solver = METHODS[method](problem.f, 0.0, problem.start, problem.end, rtol=problem.rtol,
+            solver = _solver_class(method)(problem.f, 0.0, problem.start, problem.end, rtol=problem.rtol,
                                      atol=problem.atol, jac=problem.J)
             for stop in (*problem.stops, problem.end):
                 steps = _advance(solver, stop, monitor, outcome, steps)
@@ -36,7 +43,7 @@ def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
     return outcome
 
 
-def _advance(solver: OdeSolver, stop: float, monitor: Monitor, outcome: Outcome, steps: int) -> int:
+def _advance(solver: Any, stop: float, monitor: Monitor, outcome: Outcome, steps: int) -> int:
     """Steps until `stop`, unless the solver gave up before."""
     solver.t_bound = stop
     if outcome.status is not Status.FINISHED:

@@ -6,7 +6,7 @@ import numpy as np
 
 from ..constants import GAS_CONSTANT
 from ..kernels import layout
-from ..thermo.polynomial import cp_h_s, extended
+from ..thermo.polynomial import extended
 from .jacobian_sums import jacobian_sums
 from .model import Mechanism, Partner
 
@@ -32,7 +32,14 @@ class Tables:
 
 
 def build_tables(mechanism: Mechanism) -> Tables:
-    """The tables of a mechanism."""
+    """The tables of a mechanism, built once."""
+    kept = mechanism.__dict__
+    if "_tables" not in kept:
+        kept["_tables"] = _build(mechanism)
+    return kept["_tables"]
+
+
+def _build(mechanism: Mechanism) -> Tables:
     ints: dict[str, np.ndarray] = {}
     floats: dict[str, np.ndarray] = {"standard": np.array([mechanism.standard_pressure])}
     _thermo(mechanism, ints, floats)
@@ -41,7 +48,7 @@ def build_tables(mechanism: Mechanism) -> Tables:
     _stoichiometry(mechanism, ints, floats)
     jacobian_sums(mechanism, ints, floats)
     packed_ints, packed_floats, work_size = _pack(mechanism, ints, floats)
-    return Tables(packed_ints, packed_floats, work_size, _lowest_temperature(mechanism, floats, sides))
+    return Tables(packed_ints, packed_floats, work_size, _lowest_temperature(ints, floats, sides))
 
 
 def _thermo(mechanism: Mechanism, ints: dict, floats: dict) -> None:
@@ -55,25 +62,27 @@ def _thermo(mechanism: Mechanism, ints: dict, floats: dict) -> None:
         start.append(start[-1] + len(shifted))
     ints["range_start"] = np.array(start)
     floats["range_top"], floats["range_row"] = np.concatenate(tops), np.vstack(rows).ravel()
-    floats["reduction"] = _reduction(mechanism).ravel()
+    floats["reduction"] = _reduction(mechanism, ints, floats).ravel()
 
 
-def _reduction(mechanism: Mechanism) -> np.ndarray:
+def _reduction(mechanism: Mechanism, ints: dict, floats: dict) -> np.ndarray:
     """Element terms alpha/T + beta, (N, 2), that bring g/RT near zero; being sums over elements they change no K."""
     atoms = mechanism.element_matrix.T
-    T = _REDUCTION_TEMPERATURES
-    design = np.vstack([np.hstack([atoms / t, atoms]) for t in T])
-    g = np.concatenate([[_g(mechanism, k, t) for k in range(len(atoms))] for t in T])
+    design = np.vstack([np.hstack([atoms / t, atoms]) for t in _REDUCTION_TEMPERATURES])
+    g = np.concatenate([_g(ints, floats, t) for t in _REDUCTION_TEMPERATURES])
     weights = np.linalg.lstsq(design, g, rcond=None)[0]
     m = atoms.shape[1]
     return np.column_stack([atoms @ weights[:m], atoms @ weights[m:]])
 
 
-def _g(mechanism: Mechanism, k: int, temperature: float) -> float:
-    whole = extended(mechanism.ranges(k))
-    row = whole.rows[int(np.searchsorted(whole.boundaries[1:-1], temperature, side="right"))]
-    _, h, s = cp_h_s(row, temperature)
-    return h - s
+def _g(ints: dict, floats: dict, temperature: float) -> np.ndarray:
+    """g°/RT of all species (N) in plain NumPy, so that reading a file compiles nothing."""
+    first, T = ints["range_start"][:-1], temperature
+    place = first + np.add.reduceat(floats["range_top"] <= T, first, dtype=int)
+    a = floats["range_row"].reshape(-1, 9)[place].T
+    h = -a[0] / T**2 + a[1] * np.log(T) / T + a[2] + a[3] * T / 2 + a[4] * T**2 / 3 + a[5] * T**3 / 4 + a[6] * T**4 / 5
+    s = -a[0] / (2 * T**2) - a[1] / T + a[2] * np.log(T) + a[3] * T + a[4] * T**2 / 2 + a[5] * T**3 / 3 + a[6] * T**4 / 4
+    return h + a[7] / T - s - a[8]
 
 
 def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
@@ -176,16 +185,17 @@ def _work_lengths(sizes: dict[str, int]) -> list[int]:
     return [by_name.get(name, n if name in of_species else r) for name in layout.WORK]
 
 
-def _lowest_temperature(mechanism: Mechanism, floats: dict, sides: list[list[list[int]]]) -> float:
-    """The lowest whole temperature [K] at which no side's sum of ln E leaves the range of exp."""
+def _lowest_temperature(ints: dict, floats: dict, sides: list[list[list[int]]]) -> float:
+    """The lowest temperature [K] on a grid at which no side's sum of ln E leaves the range of exp."""
     reduction = floats["reduction"].reshape(-1, 2)
-    for temperature in (50.0, 75.0, 100.0, 125.0, 150.0, 175.0, 200.0, 250.0, 300.0, 400.0, 500.0):
-        g = np.array([_g(mechanism, k, temperature) for k in range(len(reduction))])
-        log_scale = np.log(mechanism.standard_pressure / (GAS_CONSTANT * temperature)) - g
-        log_scale += reduction[:, 0] / temperature + reduction[:, 1]
-        sums = [abs(sum(log_scale[m])) for both in sides for m in both]
-        if max(sums + list(abs(log_scale)), default=0.0) < _LARGEST_SUM:
-            return temperature
+    longest = max((len(m) for both in sides for m in both), default=1)
+    n = len(reduction)
+    padded = np.array([m + [n] * (longest - len(m)) for both in sides for m in both], dtype=int).reshape(-1, longest)
+    for T in (50.0, 75.0, 100.0, 125.0, 150.0, 175.0, 200.0, 250.0, 300.0, 400.0, 500.0):
+        log_scale = np.log(floats["standard"][0] / (GAS_CONSTANT * T)) - _g(ints, floats, T) + reduction @ [1 / T, 1.0]
+        sums = np.append(log_scale, 0.0)[padded].sum(axis=1)
+        if np.max(np.abs(np.concatenate([log_scale, sums]))) < _LARGEST_SUM:
+            return T
     return np.inf
 
 

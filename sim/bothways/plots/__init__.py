@@ -3,7 +3,7 @@
 One file a figure; `style`, `views`, `labels`, `selection`, `words` and `saving` are what they share.
 """
 
-from .course import course, save_course
 from .saving import check_picture, save
+from .timecourse import course, save_course
 
 __all__ = ["check_picture", "course", "save", "save_course"]

@@ -118,7 +118,7 @@ def _set_abscissae(sheet: Sheet, views: Sequence[View]) -> None:
         sheet.axes[-1][k].set_xlabel("\n".join(label))
         for row in sheet.axes:
             if view.scale == "linear":
-                row[k].xaxis.set_major_locator(MaxNLocator(_numbers(sheet, len(views)), steps=STEPS))
+                row[k].xaxis.set_major_locator(MaxNLocator(_numbers(sheet, len(views)), steps=STEPS, min_n_ticks=3))
             if k:
                 row[0].axvspan(*views[0].on_axis(np.array([view.start, view.end])), color=style.PALE, linewidth=0, zorder=0)
 

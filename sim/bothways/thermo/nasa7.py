@@ -11,7 +11,7 @@ import numpy as np
 
 from ..entry import Entry
 from ..errors import shown
-from .polynomial import N_COEFFICIENTS, Ranges
+from .polynomial import LIMITS, N_COEFFICIENTS, Ranges
 
 NAME = "NASA 7-coefficient"
 _COLUMNS = [2, 3, 4, 5, 6, 7, 8]
@@ -40,9 +40,10 @@ def read(entry: Entry) -> Nasa7:
 def rising_temperatures(entry: Entry) -> tuple[float, ...]:
     """The range boundaries `T`: at least two, positive, rising [K]."""
     T = entry.numbers("T")
-    if len(T) < 2 or T[0] <= 0 or any(low >= high for low, high in itertools.pairwise(T)):
-        raise entry.error(f"{shown(list(T))} does not rise from above 0", remedy="correct the boundaries", key="T",
-                          expected="range boundaries in K, rising, n + 1 for n ranges")
+    low, high = LIMITS
+    if len(T) < 2 or T[0] < low or T[-1] > high or any(a >= b for a, b in itertools.pairwise(T)):
+        raise entry.error(f"{shown(list(T))} does not rise, or not from {low:g} to {high:g} K", key="T",
+                          expected="range boundaries in K, rising, n + 1 for n ranges", remedy="correct the boundaries")
     return T
 
 

@@ -12,7 +12,8 @@ import numpy as np
 N_COEFFICIENTS = 9
 LARGEST = 1e6
 """cp/R, h/RT and s/R larger than this are taken for slips [-]."""
-_UNLIMITED = 1.0, 1e5  # [K] where a range has no end
+LIMITS = 1.0, 1e5
+"""Temperatures [K] beyond which nothing is evaluated."""
 
 
 @dataclass(frozen=True)
@@ -68,7 +69,7 @@ def fault(ranges: Ranges, least_cp: float) -> str:
     """What makes ranges unusable: cp/R not above `least_cp`, values not finite or absurd; empty if nothing."""
     with np.errstate(all="ignore"):
         for k, row in enumerate(ranges.rows):
-            for T in np.linspace(*np.clip(ranges.boundaries[k : k + 2], *_UNLIMITED), 5):
+            for T in np.linspace(*np.clip(ranges.boundaries[k : k + 2], *LIMITS), 5):
                 values = dict(zip(("cp/R", "h/RT", "s/R"), cp_h_s(row, T), strict=True))
                 wrong = [name for name, value in values.items() if not abs(value) < LARGEST]
                 if wrong or values["cp/R"] <= least_cp:
