@@ -158,7 +158,8 @@ def test_only_plain_formulae_have_subscripts(name, mass, shown):
 
 @pytest.mark.parametrize("axis", [None, "log"])
 @pytest.mark.parametrize("run", [
-    made(1), made(2), made(3), decay().__class__(**vars(decay()) | {"amount": np.ones((200, 2))}),
+    made(1, milestones={}), made(2, milestones={}), made(3, milestones={}),
+    along(np.linspace(0.0, 5.0, 9), {"H2": np.ones(9), "O2": np.ones(9)}),
     along(np.array([0.0]), {"H2": np.array([1.0]), "O2": np.array([0.0])}),
     along(np.array([0.0, 1.0]), {"H2": np.array([1.0, 0.5]), "O2": np.array([0.0, 0.5])})],
     ids=["1", "2", "3", "constant", "one of two", "two of two"])

@@ -9,7 +9,7 @@ from bothways import plots
 from bothways.errors import InputError
 from bothways.plots.parts import Curve, Panel
 from bothways.plots.places import best_place, dense, spread
-from bothways.plots.views import change_clock, settled, time_unit, time_views
+from bothways.plots.views import change_clock, room, settled, time_unit, time_view, time_views
 from courses import along, decay, ignition
 
 
@@ -49,6 +49,14 @@ def test_change_over_decades_has_a_logarithmic_axis():
     run = along(time, {"H2": 1.0 / (1.0 + (time / 1e-3) ** 0.3), "H2O": 1.0 - 1.0 / (1.0 + (time / 1e-3) ** 0.3)})
     (scale, (start, end), label), = axes_of(plots.course(run))
     assert scale == "log" and label == "time / s" and 10 < end <= 1e3 and 1e-13 < start < 1e-7
+
+
+def test_two_changes_far_apart_have_a_logarithmic_axis():
+    """Half of the change within a microsecond, half within ten seconds: neither a linear axis nor a zoom shows both."""
+    time = np.concatenate([[0.0], np.geomspace(1e-9, 1e3, 400)])
+    left = 0.5 / (1.0 + time / 1e-6) + 0.5 / (1.0 + time / 10.0)
+    (scale, (start, end), _), = axes_of(plots.course(along(time, {"H2": left, "H2O": 1.0 - left})))
+    assert scale == "log" and start < 1e-7 and end > 100
 
 
 def test_first_view_never_ends_before_the_milestone():
@@ -91,6 +99,14 @@ def test_clock_weighs_panels_alike_and_ends_at_one():
     clock = change_clock([panel([0.0, 0.0, 1.0, 1.0]), panel([0.0, 100.0, 100.0, 100.0])])
     np.testing.assert_allclose(clock, [0.0, 0.5, 1.0, 1.0])
     np.testing.assert_array_equal(change_clock([panel([2.0, 2.0])]), [0.0, 0.0])
+
+
+def test_room_is_the_share_of_the_axis_that_the_change_takes():
+    time = np.array([0.0, 40.0, 60.0, 100.0])
+    assert room(time_view(0.0, 100.0), time, np.array([0.0, 0.0, 1.0, 1.0])) == pytest.approx(0.2)
+    assert room(time_view(0.0, 100.0), time, time / 100.0) == pytest.approx(1.0)
+    assert room(time_view(1.0, 100.0, "log"), np.array([0.0, 10.0, 10.001, 100.0]), np.array([0.0, 0.0, 1.0, 1.0])) <= 0.02
+    assert room(time_view(0.0, 30.0), time, np.array([0.0, 0.0, 1.0, 1.0])) == 0.0
 
 
 def test_settled_when_within_the_visible():

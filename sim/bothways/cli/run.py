@@ -115,7 +115,8 @@ class _Patience:
         self.pressed = False
 
     def __enter__(self) -> "_Patience":
-        self._governs = threading.current_thread() is threading.main_thread()  # signals reach no other
+        ignored = signal.getsignal(signal.SIGINT) is signal.SIG_IGN  # as in the background of a script
+        self._governs = threading.current_thread() is threading.main_thread() and not ignored
         if self._governs:
             self._former = signal.signal(signal.SIGINT, self._press)
         return self

@@ -17,6 +17,7 @@ from .vertex import leave_mixing_out
 _ITERATIONS = 25
 _LEAST_SHARE = 0.1
 _MOST_STEPS = 20000
+_WHOLE_WAY = 20.0
 
 
 def compose(task: Task, components: Components, near: Point | None = None) -> tuple[Point, int]:
@@ -51,21 +52,21 @@ def positive_start(task: Task, components: Components) -> tuple[Point, Task]:
 def follow(end: Task, point: Point, start: Task) -> tuple[Point, int]:
     """The point that solves `end`, by continuation from `point`, which solves `start`; and the iterations spent.
 
-    `left` is the share of the start in charge and Gibbs functions: 1 at the start, 0 at the end; each step keeps
-    the fraction `keep` of it.
+    `left` is the share of the start in charge and Gibbs functions: 1 at the start, 0 at the end. It falls by
+    exp(-pace) in a step; the first step tries the whole way.
     """
-    left, keep, spent = 1.0, 0.0, 0
+    left, pace, spent = 1.0, np.inf, 0
     for _ in range(_MOST_STEPS):
-        trial = point.copy()
-        done, count = solve(trial, _between(start, end, left * keep), _ITERATIONS)
+        trial, share = point.copy(), left * float(np.exp(-pace))
+        done, count = solve(trial, _between(start, end, share), _ITERATIONS)
         spent += count
-        if done:
-            point, left = trial, left * keep
-            if left == 0.0:
-                return point, spent
-            keep = max(0.0, 1.0 - 3.0 * (1.0 - keep))
-        else:
-            keep = 1.0 - 0.5 * (1.0 - keep)
+        if not done:
+            pace = min(0.5 * pace, 1.0)
+            continue
+        point, left = trial, share
+        if left == 0.0:
+            return point, spent
+        pace = 2.0 * pace if pace < _WHOLE_WAY else np.inf
     raise SolverError("the equilibrium composition was not reached", remedy="please report this case")
 
 

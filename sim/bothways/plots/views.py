@@ -3,8 +3,7 @@
 The rule, for a course none of which is known beforehand:
 
 1. The view ends soon after the last visible change (`settled`), not where the run happens to.
-2. The axis is linear, unless the middle of the change would be squeezed there and has clearly more room on a
-   logarithmic one.
+2. The axis is linear, unless the change would be squeezed there and has clearly more room on a logarithmic one.
 3. If the change is squeezed even so (an ignition long after the start), a second view beside the first shows the event
    alone, on a linear axis of its own that counts from the instant of the steepest rise.
 """
@@ -20,8 +19,10 @@ from .parts import Array, Panel, View
 TIME_AXES = ("linear", "log")
 VISIBLE = 0.02
 """A curve has settled when it stays within this share of its panel's height of its end [-]."""
-ROOMY, SQUEEZED = 0.15, 0.08
-"""Shares of the axis held by the middle 80 % of the change: enough for a linear axis; too little to be seen [-]."""
+SQUEEZED, CELLS = 0.08, 100
+"""The change is squeezed if it is spread over less than this share of the axis [-], counted in so many cells."""
+CLEARLY = 3.0
+"""A logarithmic axis must have so many times the room of a linear one [-]."""
 
 _UNITS = (("ns", 1e-9), ("µs", 1e-6), ("ms", 1e-3), ("s", 1.0), ("min", 60.0), ("h", 3600.0), ("d", 86400.0))
 _SHORTEST = {"min": 300.0, "h": 3.0 * 3600.0, "d": 3.0 * 86400.0}  # seconds and hours are read easily up to here
@@ -77,11 +78,11 @@ def _chosen(time: Array, panels: Sequence[Panel], milestones: Mapping[str, float
     end = _view_end(time, panels, max(steepest.values(), default=0.0))
     view = time_view(float(time[0]), end)
     log = time_view(_log_start(time, panels), end, "log")
-    if room(view, time, clock) < ROOMY and room(log, time, clock) > 3.0 * room(view, time, clock):
-        view = log
     if room(view, time, clock) >= SQUEEZED:
         return [view]
-    return [view, _event(view, time, clock, steepest)]
+    if room(log, time, clock) > CLEARLY * room(view, time, clock):
+        view = log
+    return [view, _event(view, time, clock, steepest)] if room(view, time, clock) < SQUEEZED else [view]
 
 
 def change_clock(panels: Sequence[Panel]) -> Array:
@@ -96,12 +97,14 @@ def change_clock(panels: Sequence[Panel]) -> Array:
 
 
 def room(view: View, time: Array, clock: Array) -> float:
-    """The share of the axis that the middle 80 % of the change takes [-]."""
-    edges = np.clip([_when(time, clock, 0.1), _when(time, clock, 0.9)], view.start, view.end)
-    ends = np.array([view.start, view.end])
-    if view.scale == "log":
-        edges, ends = np.log(edges), np.log(ends)
-    return float((edges[1] - edges[0]) / (ends[1] - ends[0]))
+    """The share of the axis over which the change is spread [-]: 1 if evenly, near 0 if in one place.
+
+    With c_j the change in each of n equal cells of the axis, (Σ c_j)²/(n Σ c_j²): the effective number of cells (M. O. Hill,
+    Ecology 54 (1973) 427, doi:10.2307/1934352, order 2) over their number.
+    """
+    space = np.geomspace if view.scale == "log" else np.linspace
+    change = np.diff(np.interp(space(view.start, view.end, CELLS + 1), time, clock))
+    return float(change.sum() ** 2 / (CELLS * np.sum(change**2))) if change.any() else 0.0
 
 
 def _when(time: Array, clock: Array, share: float) -> float:

@@ -1,0 +1,417 @@
+"""The command line: help, exit statuses 0, 2, 3, 4 and 130, what goes to stdout and what to stderr, which files are kept."""
+
+import argparse
+import os
+import re
+import select
+import shlex
+import signal
+import subprocess
+import sys
+import threading
+import time
+from collections.abc import Callable, Iterator
+from pathlib import Path
+from typing import Any
+
+import h5py
+import numpy as np
+import pytest
+
+from bothways import InputError, build_case, build_mechanism, bundled_cases, bundled_mechanisms, read_case, read_trajectory, run
+from bothways import cli, write_trajectory
+from bothways.cli import _parser, main
+from bothways.mechanism.toml_reader import parse_toml
+from refusals import CASE, MECHANISM, Refusals, changed
+
+VERBS = next(list(a.choices) for a in _parser()._actions if isinstance(a, argparse._SubParsersAction))
+
+
+@pytest.fixture
+def refusals(tmp_path: Path, capsys: pytest.CaptureFixture[str], monkeypatch: pytest.MonkeyPatch) -> Refusals:
+    return Refusals(tmp_path, capsys, monkeypatch)
+
+
+def shell(*arguments: str, **options: Any) -> subprocess.CompletedProcess[str]:
+    """The command in a process of its own."""
+    command = [sys.executable, "-m", "bothways", *arguments]
+    return subprocess.run(command, capture_output="stdout" not in options, text=True, timeout=300, check=False, **options)
+
+
+# ---- help and usage
+
+
+def help_of(capsys: pytest.CaptureFixture[str], *arguments: str) -> str:
+    with pytest.raises(SystemExit) as done:
+        main([*arguments, "--help"])
+    assert done.value.code == 0
+    out, err = capsys.readouterr()
+    assert err == ""
+    return out
+
+
+@pytest.mark.parametrize("verb", [*VERBS, ""])
+def test_help_shows_examples_that_can_be_parsed(capsys: pytest.CaptureFixture[str], verb: str) -> None:
+    text = help_of(capsys, *filter(None, [verb]))
+    examples = re.findall(r"^(?:example:)?\s*bothways (\S.*)$", text[text.index("example") :], re.MULTILINE)
+    assert examples and all(verb in example for example in examples)
+    for example in examples:
+        _parser().parse_args(shlex.split(example))
+
+
+def test_examples_name_bundled_cases(capsys: pytest.CaptureFixture[str]) -> None:
+    names = re.findall(r"bothways run (\S+)", help_of(capsys) + help_of(capsys, "run"))
+    assert {name for name in names if not name.endswith(".toml")} <= set(bundled_cases())
+
+
+def test_version_tells_where_it_is_installed(capsys: pytest.CaptureFixture[str]) -> None:
+    with pytest.raises(SystemExit) as done:
+        main(["--version"])
+    assert done.value.code == 0
+    assert re.fullmatch(rf"bothways \d+\.\d+\S* \(.*bothways, Python {sys.version.split()[0]}\)\n", capsys.readouterr().out)
+
+
+@pytest.mark.parametrize("arguments, text", [
+    (["rnu"], r"invalid choice: 'rnu' \(choose from .*run.*mechanisms.*\); 'bothways --help' shows what is possible"),
+    (["--verbose"], r"--verbose|required"),
+    (["run"], r"the following arguments are required: CASE; 'bothways run --help' shows what is possible"),
+    (["run", "case.toml", "--replac"], r"unrecognized arguments: --replac"),
+    (["run", "case.toml", "--outptu", "x"], r"unrecognized arguments: --outptu x"),
+    (["run", "case.toml", "--output"], r"argument --output: expected one argument; 'bothways run --help' shows"),
+    (["run", "case.toml", "other.toml"], r"unrecognized arguments: other.toml"),
+    (["mechanisms", "methane"], r"unrecognized arguments: methane")])
+def test_wrong_usage(refusals: Refusals, arguments: list[str], text: str) -> None:
+    refusals.write()
+    assert re.search(text, refusals.line(*arguments))
+
+
+def test_no_verb(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(sys, "argv", ["bothways"])
+    assert main() == 2
+    assert "the following arguments are required: COMMAND" in refusals.capsys.readouterr().err
+
+
+def test_mechanisms_lists_what_is_bundled(capsys: pytest.CaptureFixture[str]) -> None:
+    assert main(["mechanisms"]) == 0
+    out, err = capsys.readouterr()
+    assert err == "" and all(re.search(rf"^{name} +", out, re.MULTILINE) for name in (*bundled_mechanisms(), *bundled_cases()))
+
+
+# ---- a run that ends well
+
+
+def test_run_prints_a_summary_and_writes_the_trajectory(refusals: Refusals) -> None:
+    refusals.write()
+    assert main(["run", "case.toml"]) == 0
+    out, err = refusals.capsys.readouterr()
+    assert out.startswith("case: small\n") and out.rstrip().endswith("run.h5") and err == ""
+    trajectory = read_trajectory("run.h5")
+    assert trajectory.complete and trajectory.reason == "" and set(os.listdir()) == {"small.toml", "case.toml", "run.h5"}
+
+
+def test_replace_replaces(refusals: Refusals) -> None:
+    refusals.write()
+    (refusals.folder / "run.h5").write_text("old")
+    assert main(["run", "case.toml", "--replace"]) == 0
+    assert read_trajectory("run.h5").complete
+
+
+def test_without_a_stated_file_the_output_is_named_after_the_case(refusals: Refusals) -> None:
+    refusals.write(case=changed(CASE, ('file = "run.h5"\n', "")))
+    assert main(["run", "case.toml"]) == 0
+    assert read_trajectory("case.h5").complete
+
+
+# ---- files to write
+
+
+def test_existing_output_is_not_overwritten(refusals: Refusals) -> None:
+    refusals.write()
+    for name, arguments in (("run.h5", ()), ("other.h5", ("--output", "other.h5"))):
+        (refusals.folder / name).write_text("of someone else")
+        refusals.refused(name, "", "the file exists already; name another one, or say --replace",
+                         arguments=("run", "case.toml", *arguments))
+
+
+NEEDED = "this file is needed for something else; expected a file of its own to write; name another one"
+
+
+@pytest.mark.parametrize("output, text", [
+    ("no/such/run.h5", "there is no folder"), (".", "is no regular file"), ("small.toml", NEEDED), ("case.toml", NEEDED),
+    ("/", "is no regular file"), ("", "is no regular file"), ("case.toml/run.h5", ""), ("x" * 300 + ".h5", "cannot be written")])
+@pytest.mark.parametrize("also", [(), ("--replace",), ("--replace", "--plot")])
+def test_unwritable_output(refusals: Refusals, output: str, text: str, also: tuple) -> None:
+    refusals.write()
+    line = refusals.line("run", "case.toml", "--output", output, *also)
+    assert text in line and "; " in line, line
+
+
+def test_output_of_the_case_stands_beside_the_case(refusals: Refusals) -> None:
+    refusals.write(case=changed(CASE, ('"run.h5"', '"no/such/run.h5"')))
+    assert "there is no folder" in refusals.line("run", "case.toml")
+    refusals.write(case=changed(CASE, ('"run.h5"', '"a\\u0000b.h5"')))
+    refusals.refused("case.toml", "output.file", "holds '\\x00'")
+
+
+@pytest.mark.parametrize("plot, text", [
+    ("run.h5", NEEDED), ("x.bmp", "the suffix is '.bmp'"), ("no/such/x.png", "there is no folder"),
+    ("old.png", "the file exists already"), ("plot", "the file name has no suffix")])
+def test_unwritable_picture(refusals: Refusals, plot: str, text: str) -> None:
+    refusals.write()
+    (refusals.folder / "old.png").write_text("of someone else")
+    line = refusals.line("run", "case.toml", "--plot", plot)
+    assert text in line and "; " in line, line
+
+
+def test_output_that_appears_during_the_run_is_not_overwritten(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
+    refusals.write()
+    monkeypatch.setattr(cli.run, "run", meddled(lambda steps: Path("run.h5").write_text("of someone else")))
+    assert main(["run", "case.toml"]) == 2
+    assert "run.h5: the file exists already" in refusals.capsys.readouterr().err
+    assert Path("run.h5").read_text() == "of someone else"
+
+
+def test_trajectories_of_other_programs_are_refused(tmp_path: Path) -> None:
+    for name, content in (("text.h5", b"time,temperature\n0,1000\n"), ("empty.h5", b"")):
+        (tmp_path / name).write_bytes(content)
+        with pytest.raises(InputError, match=rf"{name}: is not an HDF5 file; expected a trajectory written by bothways"):
+            read_trajectory(tmp_path / name)
+    with h5py.File(tmp_path / "foreign.h5", "w") as file:
+        file["time"] = np.arange(3.0)
+        file.attrs["Conventions"] = "CF-1.11"
+    with pytest.raises(InputError, match=r"foreign.h5: .*Conventions is 'CF-1.11'; expected .*a trajectory written by bothways"):
+        read_trajectory(tmp_path / "foreign.h5")
+
+
+# ---- the solver gives up: status 3, the file is kept
+
+
+def meddled(with_step: Callable[[int], Any]) -> Callable[..., Any]:
+    """`run` whose every step is told to `with_step` first."""
+    def meddled_run(case: Any, told: Callable[..., None]) -> Any:
+        def both(steps: int, t: float, temperature: float) -> None:
+            with_step(steps)
+            told(steps, t, temperature)
+
+        return run(case, both)
+
+    return meddled_run
+
+
+def assert_kept(refusals: Refusals, status: int, reason: str) -> str:
+    """The run ended with `status`; run.h5 is incomplete for that reason. Returns the last line on stderr."""
+    assert main(["run", "case.toml"]) == status
+    out, err = refusals.capsys.readouterr()
+    trajectory = read_trajectory("run.h5")
+    assert not trajectory.complete and reason in trajectory.reason
+    with h5py.File("run.h5") as file:
+        assert file.attrs["complete"] == 0
+    assert "(incomplete: " in out and "Traceback" not in err
+    last = err.splitlines()[-1]
+    assert last.startswith("bothways: case.toml: the run is incomplete: ") and reason in last
+    assert "; run.h5 holds it up to there (complete = 0); " in last
+    return last
+
+
+def test_too_many_steps(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
+    refusals.write()
+    limited = [m for name, m in sys.modules.items() if name.startswith("bothways.integrate") and hasattr(m, "MOST_STEPS")]
+    for module in limited:
+        monkeypatch.setattr(module, "MOST_STEPS", 7)
+    assert "try another [solver] method or rtol" in assert_kept(refusals, 3, "7 steps were not enough")
+    assert len(read_trajectory("run.h5")) == 8
+
+
+RUNAWAY = """\
+[mechanism]
+name = "runaway"
+phase = "ideal gas"
+standard_pressure = "1 bar"
+[elements]
+Q = "10 g/mol"
+[species.A]
+formula = "Q"
+potential = { form = "constant heat capacity", at = 298.15, H = 1.5e6, S = 120, cp = 21 }
+[species.B]
+formula = "Q"
+potential = { form = "constant heat capacity", at = 298.15, H = 0, S = 120, cp = 21 }
+[[reaction]]
+equation = "A ⇌ B"
+forward = { law = "Arrhenius", A = 1e3 }
+"""
+
+
+def test_a_case_that_leaves_every_range_of_temperature(refusals: Refusals) -> None:
+    """1.5 MJ/mol set free at 12.7 J/(mol K) would heat the vessel beyond 1e5 K, where nothing is known."""
+    case = changed(CASE, ("{ Q = 0.1, O2 = 1 }", "{ A = 1 }"), ("thermal_inertia = 1.2", ""), ('"1 us"', '"1 s"'))
+    refusals.write(RUNAWAY, case)
+    assert_kept(refusals, 3, "at ")
+    temperature = read_trajectory("run.h5").temperature
+    assert temperature[0] == 1200 and 5e4 < temperature[-1] < 1e5
+
+
+# ---- Ctrl-C: status 130, the file is kept
+
+
+def interrupting(at: int, times: int = 1) -> Callable[[int], None]:
+    def with_step(steps: int) -> None:
+        if steps == at:
+            for _ in range(times):
+                signal.raise_signal(signal.SIGINT)
+
+    return with_step
+
+
+@pytest.fixture(autouse=True)
+def ordinary_interrupts() -> Iterator[None]:
+    """Ctrl-C as in a terminal, even where the tests run in the background."""
+    former = signal.signal(signal.SIGINT, signal.default_int_handler)
+    yield
+    signal.signal(signal.SIGINT, former)
+
+
+@pytest.mark.parametrize("at", [1, 5])
+def test_ctrl_c_ends_the_run_at_the_end_of_the_step(refusals: Refusals, monkeypatch: pytest.MonkeyPatch, at: int) -> None:
+    refusals.write()
+    monkeypatch.setattr(cli.run, "run", meddled(interrupting(at)))
+    assert "run it again for the rest" in assert_kept(refusals, 130, "interrupted at ")
+    assert len(read_trajectory("run.h5")) == at + 1
+    assert signal.getsignal(signal.SIGINT) is signal.default_int_handler
+
+
+def test_ctrl_c_after_the_last_step_loses_nothing(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
+    def pressed(*arguments: Any, **named: Any) -> None:
+        signal.raise_signal(signal.SIGINT)
+        write_trajectory(*arguments, **named)
+
+    refusals.write()
+    monkeypatch.setattr(cli.run, "write_trajectory", pressed)
+    assert main(["run", "case.toml"]) == 0
+    assert read_trajectory("run.h5").complete
+
+
+def test_a_second_ctrl_c_does_not_wait(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
+    def stuck(case: Any, told: Any) -> None:
+        interrupting(0, times=2)(0)
+
+    refusals.write()
+    monkeypatch.setattr(cli.run, "run", stuck)
+    assert refusals.line("run", "case.toml", status=130) == "interrupted"
+
+
+def test_ctrl_c_before_the_run_writes_nothing(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
+    refusals.write()
+    monkeypatch.setattr(cli.run, "read_case", lambda name: signal.raise_signal(signal.SIGINT))
+    assert refusals.line("run", "case.toml", status=130) == "interrupted"
+
+
+def test_ignored_interrupts_stay_ignored(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
+    refusals.write()
+    signal.signal(signal.SIGINT, signal.SIG_IGN)
+    monkeypatch.setattr(cli.run, "run", meddled(interrupting(3)))
+    assert main(["run", "case.toml"]) == 0
+
+
+def test_runs_outside_the_main_thread(refusals: Refusals) -> None:
+    refusals.write()
+    statuses: list[int] = []
+    thread = threading.Thread(target=lambda: statuses.append(main(["run", "case.toml"])))
+    thread.start()
+    thread.join(120)
+    assert statuses == [0] and read_trajectory("run.h5").complete
+
+
+def test_keyboard_interrupt_through_told(tmp_path: Path) -> None:
+    def told(steps: int, t: float, temperature: float) -> None:
+        if steps == 4:
+            raise KeyboardInterrupt
+
+    case = build_case(parse_toml(CASE), mechanism=build_mechanism(parse_toml(MECHANISM)))
+    trajectory = run(case, told)
+    assert not trajectory.complete and trajectory.reason.startswith("interrupted at ") and len(trajectory) == 5
+    write_trajectory(tmp_path / "x.h5", trajectory)
+    assert not read_trajectory(tmp_path / "x.h5").complete
+
+
+def long_case(folder: Path) -> None:
+    """A case of very many steps, whatever the solver: 200 000 times to land on."""
+    times = ", ".join(f"{t:.8g}" for t in np.linspace(0, 1, 200_001)[1:-1])
+    text = changed(CASE, ('"1 us"', '"1 s"'), ('["0.1 us", 5e-7]', f"[{times}]"))
+    (folder / "case.toml").write_text(text)
+    (folder / "small.toml").write_text(MECHANISM)
+
+
+def read_until(terminal: int, pattern: bytes, seconds: float) -> bytes:
+    """What a terminal shows until the pattern matches or nothing more comes."""
+    shown, deadline = b"", time.monotonic() + seconds
+    while not re.search(pattern, shown) and time.monotonic() < deadline:
+        if select.select([terminal], [], [], 1.0)[0]:
+            try:
+                shown += os.read(terminal, 65536)
+            except OSError:  # the other end is closed
+                break
+    return shown
+
+
+def test_ctrl_c_in_a_terminal(tmp_path: Path) -> None:
+    pty = pytest.importorskip("pty")
+    long_case(tmp_path)
+    terminal, other_end = pty.openpty()
+    process = subprocess.Popen([sys.executable, "-m", "bothways", "run", "case.toml"], cwd=tmp_path, text=True,
+                               stdin=subprocess.DEVNULL, stdout=subprocess.PIPE, stderr=other_end)
+    os.close(other_end)
+    try:
+        shown = read_until(terminal, rb"[1-9]\d* steps, ", 240)
+        assert b" steps, " in shown, shown
+        process.send_signal(signal.SIGINT)
+        out = process.communicate(timeout=240)[0]
+        shown += read_until(terminal, rb"\A(?!)", 5)
+    finally:
+        process.kill()
+        os.close(terminal)
+    assert process.returncode == 130, shown
+    assert b"Traceback" not in shown and b"the run is incomplete: interrupted at " in shown
+    assert "(incomplete: interrupted at " in out
+    trajectory = read_trajectory(tmp_path / "run.h5")
+    assert not trajectory.complete and 1 < len(trajectory) < 200_000
+    assert sorted(os.listdir(tmp_path)) == ["case.toml", "run.h5", "small.toml"]
+
+
+# ---- output that cannot be shown, faults of our own
+
+
+def test_a_reader_that_has_seen_enough_is_no_failure(tmp_path: Path) -> None:
+    reading, writing = os.pipe()
+    os.close(reading)
+    done = shell("mechanisms", stdout=writing, stderr=subprocess.PIPE)
+    os.close(writing)
+    assert (done.returncode, done.stderr) == (0, "")
+
+
+@pytest.mark.skipif(not os.path.exists("/dev/full"), reason="no device that is always full")
+def test_a_full_disk_behind_stdout() -> None:
+    with open("/dev/full", "w") as full:
+        done = shell("mechanisms", stdout=full, stderr=subprocess.PIPE)
+    assert done.returncode == 2
+    assert done.stderr == "bothways: output: No space left on device; expected a file or device that can be used\n"
+
+
+def test_characters_that_a_terminal_lacks(tmp_path: Path) -> None:
+    (tmp_path / "small.toml").write_text(MECHANISM, encoding="utf-8")
+    (tmp_path / "case.toml").write_text(CASE.replace('"small"', '"μ ⇌"'), encoding="utf-8")
+    done = shell("run", "case.toml", cwd=tmp_path, env=os.environ | {"PYTHONIOENCODING": "ascii", "PYTHONUTF8": "0"})
+    assert done.returncode == 0 and done.stdout.startswith("case: \\u03bc \\u21cc\n") and done.stderr == ""
+
+
+def test_a_fault_of_the_program_is_one_line_unless_asked_for(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
+    refusals.write()
+    monkeypatch.setattr(cli.run, "read_case", lambda name: 1 / 0)
+    line = refusals.line("run", "case.toml", status=4)
+    assert line.startswith("a fault of the program: ZeroDivisionError: division by zero; expected ") and "report it" in line
+    monkeypatch.setenv("BOTHWAYS_TRACEBACK", "1")
+    with pytest.raises(ZeroDivisionError):
+        main(["run", "case.toml"])
+
+
+def test_read_case_of_a_bundled_name() -> None:
+    assert read_case("hydrogen-kettle").mechanism.name == "hydrogen-oxygen"
