@@ -229,14 +229,15 @@ def test_kind_or_type(refusals: Refusals, changes: tuple, entry: str, texts: tup
 
 
 def hotter(temperature: float) -> str:
-    return changed(CASE, ('"1200 K"', str(temperature)), ('time = "1 us"', 'time = "1 ns"'), ('also_at = ["0.1 us", 5e-7]', ""))
+    """The case from another temperature, for a nanosecond."""
+    return changed(CASE, ('"1200 K"', str(temperature)), ('"1 us"', '"1 ns"'), ('also_at = ["0.1 us", 5e-7]', ""))
 
 
 @pytest.mark.parametrize("temperature", [3501.0, 5000.0])
 def test_more_than_500_K_outside_is_refused(refusals: Refusals, temperature: float) -> None:
     refusals.write(case=hotter(temperature))
-    refusals.refused("case.toml", "start.temperature", f"{temperature:g} K is more than 500 K outside the thermochemical data "
-                     "of Q2", "expected a temperature nearer to the range of the data")
+    refusals.refused("case.toml", "start.temperature", f"{temperature:g} K is more than 500 K outside the thermochemical "
+                     "data of Q2", "expected a temperature nearer to the range of the data")
 
 
 def test_up_to_500_K_outside_runs_with_a_note(refusals: Refusals) -> None:

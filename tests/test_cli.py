@@ -18,8 +18,18 @@ import h5py
 import numpy as np
 import pytest
 
-from bothways import InputError, build_case, build_mechanism, bundled_cases, bundled_mechanisms, read_case, read_trajectory, run
-from bothways import cli, write_trajectory
+from bothways import (
+    InputError,
+    build_case,
+    build_mechanism,
+    bundled_cases,
+    bundled_mechanisms,
+    cli,
+    read_case,
+    read_trajectory,
+    run,
+    write_trajectory,
+)
 from bothways.cli import _parser, main
 from bothways.mechanism.toml_reader import parse_toml
 from refusals import CASE, MECHANISM, Refusals, changed
@@ -60,7 +70,8 @@ def test_help_shows_examples_that_can_be_parsed(capsys: pytest.CaptureFixture[st
 
 
 def test_examples_name_bundled_cases(capsys: pytest.CaptureFixture[str]) -> None:
-    names = re.findall(r"bothways run (\S+)", help_of(capsys) + help_of(capsys, "run"))
+    texts = [help_of(capsys), help_of(capsys, "run")]
+    names = re.findall(r"bothways run (\S+)", "".join(text[text.index("example") :] for text in texts))
     assert {name for name in names if not name.endswith(".toml")} <= set(bundled_cases())
 
 
@@ -68,7 +79,8 @@ def test_version_tells_where_it_is_installed(capsys: pytest.CaptureFixture[str])
     with pytest.raises(SystemExit) as done:
         main(["--version"])
     assert done.value.code == 0
-    assert re.fullmatch(rf"bothways \d+\.\d+\S* \(.*bothways, Python {sys.version.split()[0]}\)\n", capsys.readouterr().out)
+    python = re.escape(sys.version.split()[0])
+    assert re.fullmatch(rf"bothways \d+\.\d+\S* \(.*bothways, Python {python}\)\n", capsys.readouterr().out)
 
 
 @pytest.mark.parametrize("arguments, text", [
@@ -94,7 +106,9 @@ def test_no_verb(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
 def test_mechanisms_lists_what_is_bundled(capsys: pytest.CaptureFixture[str]) -> None:
     assert main(["mechanisms"]) == 0
     out, err = capsys.readouterr()
-    assert err == "" and all(re.search(rf"^{name} +", out, re.MULTILINE) for name in (*bundled_mechanisms(), *bundled_cases()))
+    assert err == ""
+    for name in (*bundled_mechanisms(), *bundled_cases()):
+        assert re.search(rf"^{name} +", out, re.MULTILINE), name
 
 
 # ---- a run that ends well
@@ -179,7 +193,7 @@ def test_trajectories_of_other_programs_are_refused(tmp_path: Path) -> None:
     with h5py.File(tmp_path / "foreign.h5", "w") as file:
         file["time"] = np.arange(3.0)
         file.attrs["Conventions"] = "CF-1.11"
-    with pytest.raises(InputError, match=r"foreign.h5: .*Conventions is 'CF-1.11'; expected .*a trajectory written by bothways"):
+    with pytest.raises(InputError, match=r"foreign.h5: .*'CF-1.11'; expected .*a trajectory written by bothways"):
         read_trajectory(tmp_path / "foreign.h5")
 
 
@@ -215,9 +229,9 @@ def assert_kept(refusals: Refusals, status: int, reason: str) -> str:
 
 def test_too_many_steps(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
     refusals.write()
-    limited = [m for name, m in sys.modules.items() if name.startswith("bothways.integrate") and hasattr(m, "MOST_STEPS")]
-    for module in limited:
-        monkeypatch.setattr(module, "MOST_STEPS", 7)
+    for name, module in list(sys.modules.items()):
+        if name.startswith("bothways.integrate") and hasattr(module, "MOST_STEPS"):
+            monkeypatch.setattr(module, "MOST_STEPS", 7)
     assert "try another [solver] method or rtol" in assert_kept(refusals, 3, "7 steps were not enough")
     assert len(read_trajectory("run.h5")) == 8
 
@@ -242,12 +256,12 @@ forward = { law = "Arrhenius", A = 1e3 }
 
 
 def test_a_case_that_leaves_every_range_of_temperature(refusals: Refusals) -> None:
-    """1.5 MJ/mol set free at 12.7 J/(mol K) would heat the vessel beyond 1e5 K, where nothing is known."""
+    """1.5 MJ/mol set free at 12.7 J/(mol K) would heat the vessel beyond 1e5 K, where the equations are not stated."""
     case = changed(CASE, ("{ Q = 0.1, O2 = 1 }", "{ A = 1 }"), ("thermal_inertia = 1.2", ""), ('"1 us"', '"1 s"'))
     refusals.write(RUNAWAY, case)
     assert_kept(refusals, 3, "at ")
     temperature = read_trajectory("run.h5").temperature
-    assert temperature[0] == 1200 and 5e4 < temperature[-1] < 1e5
+    assert temperature[0] == 1200 and 1e4 < temperature[-1] <= 1e5
 
 
 # ---- Ctrl-C: status 130, the file is kept
@@ -354,9 +368,10 @@ def read_until(terminal: int, pattern: bytes, seconds: float) -> bytes:
 
 
 def test_ctrl_c_in_a_terminal(tmp_path: Path) -> None:
-    pty = pytest.importorskip("pty")
+    pty, termios = pytest.importorskip("pty"), pytest.importorskip("termios")
     long_case(tmp_path)
     terminal, other_end = pty.openpty()
+    termios.tcsetwinsize(other_end, (24, 100))  # without a size no progress is shown
     process = subprocess.Popen([sys.executable, "-m", "bothways", "run", "case.toml"], cwd=tmp_path, text=True,
                                stdin=subprocess.DEVNULL, stdout=subprocess.PIPE, stderr=other_end)
     os.close(other_end)

@@ -7,6 +7,7 @@ from typing import Any
 
 import numpy as np
 
+from .along import rates_along
 from .case import MARGIN_WARN, Case, temperatures_outside
 from .integrate import OWN_METHODS, Outcome, Status, integrate
 from .mechanism.toml_writer import to_toml
@@ -40,6 +41,7 @@ def run(case: Case, told: Callable[[int, float, float], None] | None = None) -> 
     saying why. Remarks (species outside the range of their data, joins far apart) are given as warnings.
     """
     equations = case.equations()
+    _remark_joins(case)
     _remark(case, [case.charge.temperature])
     task, recorder = monitored(case, equations), Recorder(case, equations, told)
     outcome = integrate(task.problem, case.method, recorder)
@@ -59,6 +61,17 @@ def _remark(case: Case, temperatures: list[float]) -> None:
                           "they continue with constant heat capacity", Remark, stacklevel=3)
 
 
+def _remark_joins(case: Case) -> None:
+    """Warns of fits whose ranges do not meet: closed if nothing else was asked for."""
+    shifts = case.mechanism.join_shifts
+    worst = max(shifts, key=lambda item: max(abs(item[1].h), abs(item[1].s)), default=None)
+    if worst is not None and max(abs(worst[1].h), abs(worst[1].s)) > TOLD_JOINS:
+        name, shift = worst
+        warnings.warn(f"the fitted ranges of {len({n for n, _ in shifts})} species do not meet and were closed, by up to "
+                      f"{abs(shift.h):.2g} in h/RT and {abs(shift.s):.2g} in s/R ({name} at {shift.temperature:.0f} K)",
+                      Remark, stacklevel=3)
+
+
 def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task: Monitored, outcome: Outcome) -> Trajectory:
     name, units = POTENTIALS[case.heat, case.holds]
     rise = float(max(np.max(np.diff(columns["potential"]), initial=0.0), 0.0))
@@ -70,4 +83,11 @@ def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task:
         reactions=tuple(str(r.equation) for r in m.reactions), mechanism_name=m.name, mechanism_text=to_toml(m.document),
         case_text=to_toml(case.document), sources=m.sources, statistics=statistics,
         milestones=milestones(case, equations, columns), program_version=program_version(),
-        complete=outcome.status is Status.FINISHED, reason=outcome.reason)
+        complete=outcome.status is Status.FINISHED, reason=outcome.reason, extra=_extra(case, columns))
+
+
+def _extra(case: Case, columns: dict[str, Any]) -> dict[str, Any]:
+    """What the file holds besides, as far as it was asked for."""
+    if not case.rates:
+        return {}
+    return dict(rates_along(case.mechanism, columns["amount"], columns["temperature"], columns["volume"]))

@@ -31,6 +31,7 @@ class Case:
 
     own_heat_capacity : [J/K] of the vessel, from the thermal inertia of adiabatic calorimetry.
     atol : mole fraction below which accuracy is not asked [-].
+    rates : whether rates and affinities of every reaction go to the file.
     """
 
     mechanism: Mechanism
@@ -44,6 +45,7 @@ class Case:
     thermal_inertia: float = 1.0
     output: Path | None = None
     also_at: tuple[float, ...] = ()
+    rates: bool = False
     document: Mapping[str, Any] = field(default_factory=dict, repr=False)
     file: object = field(default=None, repr=False, compare=False)
 
@@ -145,14 +147,14 @@ def _solver(top: Entry) -> tuple[float, float, str]:
     return rtol, atol, method
 
 
-def _output(top: Entry, file: object, end: float) -> tuple[Path | None, tuple[float, ...]]:
+def _output(top: Entry, file: object, end: float) -> tuple[Path | None, tuple[float, ...], bool]:
     output = top.table("output", {})
     name = output.text("file", None)
-    times = _times(output, end)
+    times, rates = _times(output, end), output.flag("rates")
     output.done()
     bundled = file in bundled_cases().values()
     folder = Path(str(file)).parent if file and not bundled else Path()
-    return (folder / name if name else None), times
+    return (folder / name if name else None), times, rates
 
 
 def _times(output: Entry, end: float) -> tuple[float, ...]:

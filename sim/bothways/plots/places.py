@@ -12,6 +12,8 @@ Box = tuple[float, float, float, float]
 
 CLEAR, NEAR = 0.8, 4.5
 """Another line must keep the one distance from a label [pt]; any line within the other seems to be meant by it."""
+BETWEEN = 3.0
+"""Between labels side by side [pt]."""
 AMBIGUOUS = 120.0
 """What it costs if all of them are others, in points of distance from the highest point of its own."""
 _DIRECTIONS = np.array([(0.0, 1.0), (-1.0, 0.0), (1.0, 0.0), (-0.8, 0.8), (0.8, 0.8), (0.0, -1.0), (-0.8, -0.8),
@@ -90,7 +92,8 @@ def _inside(boxes: Array, extent: Array) -> NDArray[np.bool_]:
 def _apart(boxes: Array, taken: Sequence[Box]) -> NDArray[np.bool_]:
     free = np.ones(len(boxes), dtype=bool)
     for x0, y0, x1, y1 in taken:
-        free &= (boxes[:, 0] >= x1) | (boxes[:, 2] <= x0) | (boxes[:, 1] >= y1) | (boxes[:, 3] <= y0)
+        beside = (boxes[:, 0] >= x1 + BETWEEN) | (boxes[:, 2] <= x0 - BETWEEN)
+        free &= beside | (boxes[:, 1] >= y1) | (boxes[:, 3] <= y0)
     return free
 
 
