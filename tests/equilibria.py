@@ -92,7 +92,7 @@ def faults(of: Contents, charge: np.ndarray, given: Mapping[str, float], found: 
     wrong = []
     if not balanced(found.conserved, charge, n, 1e-12):
         wrong.append("balance")
-    g, h, _ = of.molar(T)
+    g = of.molar(T)[0]
     present = found.log_mole_fraction > -np.inf
     potential = (g + found.log_mole_fraction + np.log(p / of.mechanism.standard_pressure))[present]
     from_rows = np.nan_to_num(found.element_potentials) @ found.conserved[:, present]

@@ -3,8 +3,10 @@
 Written from the formulas alone; nothing of the program is imported. It reads a mechanism as a plain dict
 (what ``tomllib`` makes of a mechanism file) and covers gases with these parts:
 
-* species potentials ``NASA 7-coefficient`` and ``constant heat capacity``, joins closed or as published;
-* laws ``Arrhenius`` (also with + M), ``Lindemann`` and ``Troe``, and lists of terms.
+* species potentials ``NASA 7-coefficient``, ``NASA 9-coefficient``, ``Shomate`` and ``constant heat capacity``,
+  joins closed or as published;
+* laws ``Arrhenius`` (also with + M), ``Lindemann``, ``Troe`` (three widths), ``SRI``, ``activated``,
+  ``pressure table`` and ``Chebyshev``, and lists of terms.
 
 Anything else raises NotImplementedError, so that no test passes by leaving something out.
 
@@ -13,7 +15,7 @@ taken by complex step (W. Squire, G. Trapp, SIAM Rev. 40 (1998) 110, doi:10.1137
 branch looks at real parts only. Constants: the exact ones of the SI (2019).
 """
 
-from dataclasses import dataclass
+from dataclasses import dataclass, fields
 from typing import Any
 
 import numpy as np
@@ -32,39 +34,7 @@ from reference_file import (
     s_of,
     units_of,
 )
-
-# ---- laws
-
-
-def arrhenius(rows: Array, T: Any) -> Array:
-    """A (T/T_ref)^n exp(-Ea/RT) of rows (m, 4)."""
-    A, n, Ea_R, T_ref = rows.T
-    return A * np.exp(n * np.log(T / T_ref) - Ea_R / T)
-
-
-def centre(rows: Array, T: Any) -> Array:
-    """F_cent [-] of rows (m, 7).
-
-    R.G. Gilbert, K. Luther, J. Troe, Ber. Bunsenges. Phys. Chem. 87 (1983) 169, doi:10.1002/bbpc.19830870218.
-    """
-    w0, w3, T3, w1, T1, w2, T2 = rows.T
-    return w0 + w3 * np.exp(-T / T3) + w1 * np.exp(-T / T1) + w2 * np.exp(-T2 / T)
-
-
-def falloff(k_inf: Array, k_0: Array, F_cent: Array, M: Array) -> Array:
-    """k of fall-off terms at [M] [mol/m3] (same source; F_cent = 1 is Lindemann's form).
-
-    Where the real part of P_r is not above 0 the limit of F for P_r -> 0 stands, so that k is linear in [M].
-    """
-    P_r = k_0 * M / k_inf
-    present = P_r.real > 0
-    log_F = np.log10(F_cent)
-    x = np.log10(np.where(present, P_r, 1)) - (40 + 67 * log_F) / 100
-    d = (75 - 127 * log_F - 14 * x) / 100
-    F = np.exp(np.log(F_cent) * np.where(present, d**2 / (d**2 + x**2), 1))
-    F_limit = np.exp(np.log(F_cent) * 196 / 10196)  # x/d -> -1/0.14
-    return k_0 * M * np.where(present, F / (1 + np.where(present, P_r, 0)), F_limit)
-
+from reference_laws import ARRHENIUS_WIDTH, CENTRE_WIDTH, activated, arrhenius, broadening, centre, falloff, front
 
 # ---- the whole
 
@@ -92,7 +62,8 @@ class Thermal:
     T: Any
     k: Array  # of each term; k_inf of a fall-off term
     k_0: Array  # of each fall-off term
-    F_cent: Array  # of each fall-off term
+    centre: Array  # F_cent of each fall-off term, or the bracket of SRI
+    front: Array  # of each fall-off term
     K_c: Array  # of each reaction
     h: Array  # h/RT
     cp: Array  # cp/R
@@ -123,16 +94,26 @@ class Reference:
 
     def _read_reactions(self, document: dict[str, Any], units: dict[str, LD]) -> None:
         self.reactions = [reaction(entry) for entry in document.get("reaction", [])]
-        terms = Terms()
+        terms = Terms(self.names, units)
         for j, one in enumerate(self.reactions):
             for term in one.terms:
-                terms.add(j, one, term, self.names, units)
+                terms.add(j, one, term)
         self._of = np.array(terms.reaction, dtype=int)
         self._partnered = np.array(terms.partnered, dtype=int)
         self._falloff = np.array(terms.falloff, dtype=int)
-        self._rate, self._low = self._kept(terms.rate, 4), self._kept(terms.low, 4)
-        self._centre, self._efficiency = self._kept(terms.centre, 7), self._kept(terms.efficiency, self.n)
+        self._rate, self._low = (self._kept(rows, ARRHENIUS_WIDTH) for rows in (terms.rate, terms.low))
+        self._efficiency = self._kept(terms.efficiency, self.n)
+        self._centre, self._front = self._kept(terms.centre, CENTRE_WIDTH), self._kept(terms.front, 2)
+        self._width, self._activated = np.array(terms.width, dtype=str), np.array(terms.activated, dtype=bool)
+        self._pressure_laws = [(i, self._kept_law(law)) for i, law in terms.pressure]
         self._read_stoichiometry()
+
+    def _kept_law(self, law: Any) -> Any:
+        """A law of temperature and pressure with its numbers in this precision."""
+        numbers = {one.name: getattr(law, one.name) for one in fields(law)}
+        kept = {name: [*map(self._kept, value)] if name == "rows" else value if name == "clamp" else self._kept(value)
+                for name, value in numbers.items()}
+        return type(law)(**kept)
 
     def _read_stoichiometry(self) -> None:
         """Molecules one by one, padded with the place n, whose concentration is 1; net numbers as triples."""
@@ -157,7 +138,7 @@ class Reference:
     # -- species
 
     def _rows(self, T: Any) -> Array:
-        """The row (n, 7) in force at T; at a boundary the lower range."""
+        """The row (n, 9) in force at T; at a boundary the lower range."""
         return self._a[np.arange(self.n), (T.real > self._T).sum(axis=1)]
 
     def _typed(self, T: Any) -> Any:
@@ -193,28 +174,33 @@ class Reference:
 
     def _thermal(self, T: Any) -> Thermal:
         T = self._typed(T)
-        laws = arrhenius(self._rate, T), arrhenius(self._low, T), centre(self._centre, T)
+        laws = arrhenius(self._rate, T), arrhenius(self._low, T), centre(self._centre, T), front(self._front, T)
         return Thermal(T, *laws, self.K_c(T), self.h_RT(T), self.cp_R(T))
 
-    def _term_constants(self, at: Thermal, M: Array) -> Array:
+    def _term_constants(self, at: Thermal, M: Array, p: Any) -> Array:
         """k of each term; ``M`` of each partnered term. A +M term: k of one order higher, not times [M]."""
-        k = at.k.astype(np.result_type(at.k, M))
-        falling = self._partnered[self._falloff]
-        k[falling] = falloff(at.k[falling], at.k_0, at.F_cent, M[self._falloff])
+        k = at.k.astype(np.result_type(at.k, M, p))
+        falling, M = self._partnered[self._falloff], M[self._falloff]
+        k_inf = at.k[falling]
+        F = at.front * broadening(self._width, at.centre, at.k_0 * M / k_inf)
+        laws = activated(k_inf, at.k_0, F, M), falloff(k_inf, at.k_0, F, M)
+        k[falling] = np.where(self._activated, *laws)
+        for i, law in self._pressure_laws:
+            k[i] = law.k(at.T, p)
         return k
 
-    def rate_constant(self, j: int, T: Any, M: Any = 0.0) -> Any:
-        """Forward k of reaction j, summed over its terms [mol, m3, s]; [M] [mol/m3] is the same for all.
+    def rate_constant(self, j: int, T: Any, M: Any = 0.0, p: Any = np.nan) -> Any:
+        """Forward k of reaction j, summed over its terms [mol, m3, s]; [M] [mol/m3] is the same for all; p [Pa].
 
         A +M reaction has the k of one order higher: its rate is k [M] times the reactants' concentrations.
         """
-        k = self._term_constants(self._thermal(T), np.full(len(self._partnered), self._typed(M)))
-        return k[self._of == j].sum()
+        M = np.full(len(self._partnered), self._typed(M))
+        return self._term_constants(self._thermal(T), M, self._typed(p))[self._of == j].sum()
 
-    def _rates(self, at: Thermal, c: Array) -> tuple[Array, Array, Array]:
+    def _rates(self, at: Thermal, c: Array, p: Any) -> tuple[Array, Array, Array]:
         """Forward and reverse rates, and the sum of both without regard to sign [mol/(m3 s)]."""
         M = (self._efficiency * c).sum(axis=1)
-        k = self._term_constants(at, M)
+        k = self._term_constants(at, M, p)
         plain = np.setdiff1d(np.arange(len(M)), self._falloff)
         k[self._partnered[plain]] *= M[plain]
         padded = np.append(c, c.dtype.type(1))
@@ -224,15 +210,17 @@ class Reference:
         return total * forward, total * reverse, gross * (abs(forward) + abs(reverse))
 
     def net_rates(self, c: Array, T: Any) -> tuple[Array, Array]:
-        """Forward and reverse rate of each reaction [mol/(m3 s)] at concentrations c (n,) [mol/m3]."""
-        return self._rates(self._thermal(T), self._typed(np.asarray(c)))[:2]
+        """Forward and reverse rate of each reaction [mol/(m3 s)] at concentrations c (n,) [mol/m3]; p = C R T."""
+        at, c = self._thermal(T), self._typed(np.asarray(c))
+        return self._rates(at, c, c.sum() * self.R * at.T)[:2]
 
     # -- the vessel
 
     def _change(self, at: Thermal, y: Array, vessel: Vessel) -> tuple[Array, Array]:
         amounts, constant_volume = y[:-1], vessel.holds == "volume"
-        volume = 1 if constant_volume else amounts.sum() * self.R * at.T / vessel.pressure
-        forward, reverse, size = self._rates(at, amounts / volume)
+        total = amounts.sum() * self.R * at.T  # p V
+        volume, p = (1, total) if constant_volume else (total / vessel.pressure, self._typed(vessel.pressure))
+        forward, reverse, size = self._rates(at, amounts / volume, p)
         made = volume * self._sum(self._i, self._nu * (forward - reverse)[self._j], self.n)
         gross = abs(volume) * self._sum(self._i, abs(self._nu) * size[self._j], self.n)
         if vessel.heat == "isothermal":

@@ -9,6 +9,8 @@ from typing import Any
 
 import numpy as np
 
+from reference_laws import Chebyshev, PressureTable
+
 Array = np.ndarray
 LD = np.longdouble
 
@@ -24,7 +26,7 @@ ENTROPY = {unit.replace("/mol", "/(mol K)"): size for unit, size in ENERGY.items
 TEMPERATURE = {"K": LD(1)}
 
 NOT_COVERED = ("orders", "stoichiometric_number", "equilibrium")
-LAWS = ("Arrhenius", "Lindemann", "Troe")
+FALL_OFF = {"Lindemann": set(), "Troe": {"F_cent", "width"}, "SRI": {"F"}, "activated": {"F_cent", "width", "F"}}
 
 
 # ---- quantities
@@ -47,43 +49,66 @@ def units_of(document: dict[str, Any]) -> dict[str, LD]:
     return units
 
 
-# ---- species: rows of a1 ... a7 between boundaries
+# ---- species: rows of a1 ... a7, b1, b2 between boundaries (powers -2 ... 4, and two constants of integration)
+# B.J. McBride, M.J. Zehe, S. Gordon, NASA Glenn coefficients, NASA/TP-2002-211556 (2002)
 
 
 def cp_of(a: Array, T: Any) -> Any:
-    """cp/R [-] of rows ``a`` (..., 7)."""
-    return a[..., 0] + T * (a[..., 1] + T * (a[..., 2] + T * (a[..., 3] + T * a[..., 4])))
+    """cp/R [-] of rows ``a`` (..., 9)."""
+    series = a[..., 2] + T * (a[..., 3] + T * (a[..., 4] + T * (a[..., 5] + T * a[..., 6])))
+    return (a[..., 0] / T + a[..., 1]) / T + series
 
 
 def h_of(a: Array, T: Any) -> Any:
-    """h/R [K] of rows ``a`` (..., 7)."""
-    series = a[..., 1] / 2 + T * (a[..., 2] / 3 + T * (a[..., 3] / 4 + T * a[..., 4] / 5))
-    return a[..., 5] + T * (a[..., 0] + T * series)
+    """h/R [K] of rows ``a`` (..., 9)."""
+    series = a[..., 3] / 2 + T * (a[..., 4] / 3 + T * (a[..., 5] / 4 + T * a[..., 6] / 5))
+    return a[..., 7] - a[..., 0] / T + a[..., 1] * np.log(T) + T * (a[..., 2] + T * series)
 
 
 def s_of(a: Array, T: Any) -> Any:
-    """s/R [-] of rows ``a`` (..., 7)."""
-    series = a[..., 1] + T * (a[..., 2] / 2 + T * (a[..., 3] / 3 + T * a[..., 4] / 4))
-    return a[..., 6] + a[..., 0] * np.log(T) + T * series
+    """s/R [-] of rows ``a`` (..., 9)."""
+    series = a[..., 3] + T * (a[..., 4] / 2 + T * (a[..., 5] / 3 + T * a[..., 6] / 4))
+    return a[..., 8] - (a[..., 0] / (2 * T) + a[..., 1]) / T + a[..., 2] * np.log(T) + T * series
 
 
 def constant_cp_row(T: LD, cp: LD, h: LD, s: LD) -> Array:
-    """The row (7,) with this constant cp/R that has h/R [K] and s/R at T."""
-    return np.array([cp, 0, 0, 0, 0, h - cp * T, s - cp * np.log(T)], dtype=LD)
+    """The row (9,) with this constant cp/R that has h/R [K] and s/R at T."""
+    return np.array([0, 0, cp, 0, 0, 0, 0, h - cp * T, s - cp * np.log(T)], dtype=LD)
 
 
 def closed_rows(T: Array, rows: Array) -> Array:
-    """The rows with a6 and a7 shifted, upwards from the lowest, so that h and s are continuous."""
+    """The rows with b1 and b2 shifted, upwards from the lowest, so that h and s are continuous."""
     rows = rows.copy()
     for i in range(1, len(rows)):
-        rows[i, 5] += h_of(rows[i - 1], T[i]) - h_of(rows[i], T[i])
-        rows[i, 6] += s_of(rows[i - 1], T[i]) - s_of(rows[i], T[i])
+        rows[i, 7] += h_of(rows[i - 1], T[i]) - h_of(rows[i], T[i])
+        rows[i, 8] += s_of(rows[i - 1], T[i]) - s_of(rows[i], T[i])
     return rows
 
 
-def nasa7(potential: dict[str, Any], joins: str) -> tuple[Array, Array]:
-    """Boundaries (n + 1,) and rows (n + 3, 7): below the range, the n rows, above the range."""
-    T, rows = np.array(potential["T"], dtype=LD), np.array(potential["a"], dtype=LD)
+def from_nasa7(a: Array) -> Array:
+    """Rows (m, 9) of rows (m, 7): the two lowest powers are missing."""
+    return np.hstack([np.zeros((len(a), 2), dtype=LD), a])
+
+
+def from_shomate(a: Array) -> Array:
+    """Rows (m, 9) of rows A ... H (m, 8) in t = T/1000, J/(mol K) and kJ/mol.
+
+    NIST Chemistry WebBook, doi:10.18434/T4D303: H°(T) - H°(298.15) = A t + ... - E/t + F - H, where H is the
+    enthalpy of formation at 298.15 K. On the scale of formation enthalpies it drops out.
+    """
+    A, B, C, D, E, F, G, _ = a.T
+    k = LD(1000)
+    return np.array([E * k**2, 0 * E, A, B / k, C / k**2, D / k**3, 0 * D, F * k, G - A * np.log(k)]).T / R
+
+
+FITS = {"NASA 7-coefficient": (7, from_nasa7), "NASA 9-coefficient": (9, np.copy), "Shomate": (8, from_shomate)}
+
+
+def fit(potential: dict[str, Any], joins: str) -> tuple[Array, Array]:
+    """Boundaries (n + 1,) and rows (n + 3, 9): below the range, the n rows, above the range."""
+    width, to_rows = FITS[potential["form"]]
+    T = np.array([quantity(t, LD(1), TEMPERATURE) for t in potential["T"]], dtype=LD)
+    rows = to_rows(np.array(potential["a"], dtype=LD).reshape(-1, width))
     if joins == "closed":
         rows = closed_rows(T, rows)
     ends = [(rows[0], T[0]), (rows[-1], T[-1])]
@@ -92,7 +117,7 @@ def nasa7(potential: dict[str, Any], joins: str) -> tuple[Array, Array]:
 
 
 def constant_heat_capacity(potential: dict[str, Any], units: dict[str, LD]) -> tuple[Array, Array]:
-    """No boundary and one row (1, 7)."""
+    """No boundary and one row (1, 9)."""
     T = quantity(potential["at"], LD(1), TEMPERATURE)
     H = quantity(potential["H"], units["energy"], ENERGY)
     cp = quantity(potential["cp"], units["energy"], ENTROPY)
@@ -104,9 +129,9 @@ def constant_heat_capacity(potential: dict[str, Any], units: dict[str, LD]) -> t
 
 
 def boundaries_and_rows(potential: dict[str, Any], joins: str, units: dict[str, LD]) -> tuple[Array, Array]:
-    """Boundaries (m,) [K] and rows (m + 1, 7) of one species."""
-    if potential["form"] == "NASA 7-coefficient":
-        return nasa7(potential, joins)
+    """Boundaries (m,) [K] and rows (m + 1, 9) of one species."""
+    if potential["form"] in FITS:
+        return fit(potential, joins)
     if potential["form"] == "constant heat capacity":
         return constant_heat_capacity(potential, units)
     raise NotImplementedError(potential["form"])
@@ -174,39 +199,90 @@ def arrhenius_row(law: dict[str, Any], order: int, units: dict[str, LD]) -> list
 
 
 def centre_row(term: dict[str, Any]) -> list[LD]:
-    """w0, w3, T***, w1, T*, w2, T** of F_cent = w0 + w3 e^(-T/T***) + w1 e^(-T/T*) + w2 e^(-T**/T)."""
-    F = 1 if term["law"] == "Lindemann" else term["F_cent"]
+    """w0, w3, T***, w1, T*, w2, T** of F_cent = w0 + w3 e^(-T/T***) + w1 e^(-T/T*) + w2 e^(-T**/T).
+
+    The bracket of SRI, a e^(-b/T) + e^(-T/c), has that shape too.
+    """
+    if "F" in term:
+        a, b, c = (LD(term["F"][key]) for key in "abc")
+        return [LD(0), LD(1), c, LD(0), LD(1), a, b]
+    F = term["F_cent"] if term["law"] == "Troe" else term.get("F_cent", 1)
     if not isinstance(F, dict):
         return [LD(F), LD(0), LD(1), LD(0), LD(1), LD(0), LD(0)]
     a = LD(F["a"])
     return [LD(0), 1 - a, LD(F["T***"]), a, LD(F["T*"]), LD("T**" in F), LD(F.get("T**", 0))]
 
 
+def pressure_table(term: dict[str, Any], order: int, units: dict[str, LD]) -> PressureTable:
+    """Rows by their pressures, which are one where they differ by round-off only (1 atm, 101.325 kPa)."""
+    pairs = [(quantity(row["p"], units["pressure"], PRESSURE), arrhenius_row(row, order, units)) for row in term["rows"]]
+    p: list[LD] = []
+    rows: list[list[list[LD]]] = []
+    for pressure, row in sorted(pairs, key=lambda pair: pair[0]):
+        if not p or pressure > p[-1] * (1 + LD("1e-12")):
+            p.append(pressure)
+            rows.append([])
+        rows[-1].append(row)
+    return PressureTable(np.array(p, dtype=LD), [np.array(one, dtype=LD) for one in rows])
+
+
+def chebyshev(term: dict[str, Any], order: int, units: dict[str, LD]) -> Chebyshev:
+    """The series; its logarithm is that of k in the file's units."""
+    T = np.array([quantity(t, LD(1), TEMPERATURE) for t in term["T"]], dtype=LD)
+    p = np.array([quantity(one, units["pressure"], PRESSURE) for one in term["p"]], dtype=LD)
+    unit = arrhenius_row({"A": 1}, order, units)[0]
+    return Chebyshev(T, p, np.array(term["c"], dtype=LD), unit, term.get("clamp", False))
+
+
 @dataclass
 class Terms:
     """The terms of all reactions in one row: which reaction each belongs to, and their numbers."""
 
+    names: list[str]
+    units: dict[str, LD]
     reaction: list[int] = field(default_factory=list)
     rate: list[list[LD]] = field(default_factory=list)  # k, or k_inf of a fall-off term
     partnered: list[int] = field(default_factory=list)  # terms that contain [M]
     efficiency: list[list[LD]] = field(default_factory=list)  # of each partnered term
     falloff: list[int] = field(default_factory=list)  # places in ``partnered``
-    low: list[list[LD]] = field(default_factory=list)  # k_0 of each fall-off term
+    activated: list[bool] = field(default_factory=list)  # of each fall-off term, as all that follows
+    low: list[list[LD]] = field(default_factory=list)  # k_0
     centre: list[list[LD]] = field(default_factory=list)
+    front: list[list[LD]] = field(default_factory=list)  # d and e of SRI
+    width: list[str] = field(default_factory=list)
+    pressure: list[tuple[int, PressureTable | Chebyshev]] = field(default_factory=list)  # term, law of T and p
 
-    def add(self, j: int, reaction: Reaction, term: dict[str, Any], names: list[str], units: dict) -> None:
+    def add(self, j: int, reaction: Reaction, term: dict[str, Any]) -> None:
         """Append one term of reaction j."""
-        falloff = term["law"] != "Arrhenius"
-        if term["law"] not in LAWS or "width" in term or (falloff and reaction.plus_m):
-            raise NotImplementedError(f"{reaction.equation}: {term['law']}")
-        order = sum(reaction.reactants.values())
+        order, law = sum(reaction.reactants.values()), term["law"]
         self.reaction.append(j)
-        high = term["k_inf"] if falloff else term
-        self.rate.append(arrhenius_row(high, order + reaction.plus_m, units))
-        if falloff or reaction.plus_m:
+        if law == "Arrhenius":
+            self._add(term, order + reaction.plus_m, partner=term if reaction.plus_m else None)
+        elif reaction.plus_m or law not in [*FALL_OFF, "pressure table", "Chebyshev"]:
+            raise NotImplementedError(f"{reaction.equation}: {law}")
+        elif law in FALL_OFF:
+            self._add_falloff(term, order - (law == "activated"))
+        else:
+            read = pressure_table if law == "pressure table" else chebyshev
+            self.pressure.append((len(self.rate), read(term, order, self.units)))
+            self._add({"A": 0}, order)
+
+    def _add(self, law: dict[str, Any], order: int, partner: dict[str, Any] | None = None) -> None:
+        self.rate.append(arrhenius_row(law, order, self.units))
+        if partner is not None:
             self.partnered.append(len(self.rate) - 1)
-            self.efficiency.append(efficiencies(term, names))
-        if falloff:
-            self.falloff.append(len(self.partnered) - 1)
-            self.low.append(arrhenius_row(term["k_0"], order + 1, units))
-            self.centre.append(centre_row(term))
+            self.efficiency.append(efficiencies(partner, self.names))
+
+    def _add_falloff(self, term: dict[str, Any], order: int) -> None:
+        """``order`` is that of k_inf; k_0 is one higher."""
+        stated = {"F_cent", "width", "F"} & set(term)
+        if not stated <= FALL_OFF[term["law"]] or {"F_cent", "F"} <= stated:
+            raise NotImplementedError(f"{term['law']} with {stated}")
+        self._add(term["k_inf"], order, partner=term)
+        self.falloff.append(len(self.partnered) - 1)
+        self.activated.append(term["law"] == "activated")
+        self.low.append(arrhenius_row(term["k_0"], order + 1, self.units))
+        self.centre.append(centre_row(term))
+        F = term.get("F", {})
+        self.front.append([LD(F.get("d", 1)), LD(F.get("e", 0))])
+        self.width.append("SRI" if "F" in term else term.get("width", "Troe"))

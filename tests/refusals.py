@@ -3,11 +3,13 @@
 No such element Q, species or reactions exist and no number is measured.
 """
 
+from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
 import pytest
 
+from bothways import run
 from bothways.cli import main
 
 MECHANISM = """\
@@ -35,7 +37,7 @@ form = "NASA 7-coefficient"
 T = [300.0, 1000.0, 3000.0]
 a = [
   [3.3, 9e-4, -1.2e-6, 8e-10, -1.5e-13, -1014.8, 3.4],
-  [3.1, 6.5e-4, -5e-8, -9e-12, 1.6e-15, -889.2, 4.6],
+  [3.1, 6.5e-4, -5e-8, -9e-12, 1.6e-15, -901.203, 4.6883],
 ]
 
 [species.O2]
@@ -130,6 +132,18 @@ def changed(text: str, *changes: tuple[str, str]) -> str:
         assert text.count(old) == 1, f"{text.count(old)} times in the text: {old}"
         text = text.replace(old, new)
     return text
+
+
+def meddled(with_step: Callable[[int], Any]) -> Callable[..., Any]:
+    """`run` whose every step is told to `with_step` first."""
+    def meddled_run(case: Any, told: Callable[..., None]) -> Any:
+        def both(steps: int, t: float, temperature: float) -> None:
+            with_step(steps)
+            told(steps, t, temperature)
+
+        return run(case, both)
+
+    return meddled_run
 
 
 class Refusals:

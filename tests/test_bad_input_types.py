@@ -63,7 +63,7 @@ WRONG_TYPES = [
     row("number for a published reverse", "{ A = 3e13, Ea = 20.0 }", "3", f"{R2}.published_reverse", "3 is not a table"),
     row("number for the rows", "T = [300.0, 1000.0, 3000.0]\na = [", "T = [300.0, 1000.0, 3000.0]\na = 3\nb = [",
         "species.Q2.potential.a", "3 of coefficients"),
-    row("number for a row", "[3.1, 6.5e-4, -5e-8, -9e-12, 1.6e-15, -889.2, 4.6]", "3.1", "species.Q2.potential.a[2]",
+    row("number for a row", "[3.1, 6.5e-4, -5e-8, -9e-12, 1.6e-15, -901.203, 4.6883]", "3.1", "species.Q2.potential.a[2]",
         "3.1 is not a list"),
     row("number for the ranges", "T = [300.0, 1000.0, 3000.0]", "T = 300", "species.Q2.potential.T", "300 is not a list"),
 ]

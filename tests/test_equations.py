@@ -12,12 +12,16 @@ from bothways.constants import GAS_CONSTANT
 from bothways.contents import Contents
 from bothways.mechanism import build_tables, table_view
 from invented import building_blocks, building_blocks_as_published, building_blocks_in_molecules
+from invented_laws import every_law, every_law_as_published, every_law_in_molecules
 from reference import Reference
 
 SETS = {
     "invented": building_blocks,
     "invented, as published": building_blocks_as_published,
     "invented, in molecules": building_blocks_in_molecules,
+    "every law": every_law,
+    "every law, as published": every_law_as_published,
+    "every law, in molecules": every_law_in_molecules,
     **{name: (lambda name=name: read_mechanism(name).to_dict()) for name in ("hydrogen-oxygen", "methane", "c1-c4", "n-alkanes")},
 }
 CLOSURES = [(holds, heat) for holds in ("volume", "pressure") for heat in ("isothermal", "adiabatic")]
@@ -74,8 +78,30 @@ def test_J_agrees_with_complex_step_differences(name, holds, heat):
         assert np.all(np.abs(ours - theirs) <= 1e-8 * scale)
 
 
+ALONE = [document | {"reaction": [entry]} for document in (building_blocks(), every_law()) for entry in document["reaction"]]
+
+
+@pytest.mark.parametrize("document", ALONE, ids=[one["reaction"][0]["equation"] for one in ALONE])
+def test_each_reaction_alone_agrees_with_the_reference(document):
+    """No fast reaction hides a slow one: forward and reverse rate to 1e-12 of themselves, f and J as above."""
+    mechanism, exact = build_mechanism(document), Reference(document, np.longdouble)
+    rng = np.random.default_rng(21)
+    for k in range(12):
+        y = np.append(10.0 ** rng.uniform(-4, 1, len(mechanism.species)), rng.uniform(320.0, 2900.0))
+        wide, (holds, heat), pressure = y.astype(np.longdouble), CLOSURES[k % 4], 10.0 ** rng.uniform(3.0, 8.2)
+        equations = Equations(mechanism, holds, heat, pressure if holds == "pressure" else 0.0, 0.0)
+        theirs, scale = exact.derivative(wide, holds, heat, pressure)
+        assert np.all(np.abs(equations.f(0.0, y) - theirs) <= 1e-12 * scale)
+        J = exact.jacobian(wide, holds, heat, pressure)
+        size = np.max(np.abs(J), axis=0) + 1e-5 * np.max(scale) / np.sum(y[:-1])  # a column may be a difference that is 0
+        assert np.all(np.abs(equations.J(0.0, y) - J) <= 1e-8 * size)
+        if holds == "volume":
+            for rate, right in zip(equations.reaction_rates(y), exact.net_rates(wide[:-1], wide[-1]), strict=True):
+                assert rate == pytest.approx(float(right[0]), rel=1e-12, abs=1e-300)
+
+
 @pytest.mark.parametrize("holds, heat", CLOSURES)
-@pytest.mark.parametrize("name", ["invented", "methane"])
+@pytest.mark.parametrize("name", ["invented", "every law", "methane"])
 def test_sparse_and_bordered_forms_are_the_same_system(name, holds, heat):
     """J on its own pattern equals the dense one; eliminating the border gives the plain f and J."""
     mechanism, _, _ = pair(name)
@@ -159,12 +185,14 @@ SCRIPT = """
 import numpy as np
 from bothways import Equations, build_mechanism
 from invented import building_blocks
-m = build_mechanism(building_blocks())
-n = len(m.species)
-for holds in ("volume", "pressure"):
-    e = Equations(m, holds, "adiabatic", 2e5)
-    y = np.append(np.linspace(0.0, 1.0, n), 900.0)
-    print(e.f(0.0, y).tobytes().hex(), e.J(0.0, y).tobytes().hex(), e.bordered_J(0.0, e.bordered_state(y)).data.tobytes().hex())
+from invented_laws import every_law
+for m in (build_mechanism(building_blocks()), build_mechanism(every_law())):
+    n = len(m.species)
+    for holds in ("volume", "pressure"):
+        e = Equations(m, holds, "adiabatic", 2e5)
+        y = np.append(np.linspace(0.0, 1.0, n), 900.0)
+        bordered = e.bordered_J(0.0, e.bordered_state(y)).data
+        print(*(x.tobytes().hex() for x in (e.f(0.0, y), e.J(0.0, y), bordered)))
 """
 
 

@@ -165,6 +165,13 @@ def test_label_avoids_lines_and_labels():
     assert other[0] >= box[2] + 3 or other[2] <= box[0] - 3 or other[1] >= box[3] or other[3] <= box[1]
 
 
+def test_labels_side_by_side_have_a_gap():
+    own, below = (dense(np.array([[0.0, y], [100.0, y - 5.0]])) for y in (90.0, 84.0))
+    _, first = best_place(own, below, EXTENT, TEXT, [])
+    _, second = best_place(own, below, EXTENT, TEXT, [first])
+    assert max(first[0], second[0]) - min(first[2], second[2]) >= 3.0
+
+
 def test_label_keeps_away_from_lines_it_could_be_taken_for():
     """Two lines side by side on the left, alone on the right: the label goes right, though the top is left."""
     own = dense(np.array([[0.0, 50.0], [100.0, 40.0]]))

@@ -93,6 +93,159 @@ def test_falloff_without_partners_is_zero_and_linear() -> None:
     assert slope == pytest.approx(2.0 * 0.5 ** (1 / (1 + 1 / 0.14**2)), rel=1e-13)
 
 
+def broadened(M: float, **law: object) -> float:
+    """F of A ⇌ 2 B with k_inf = 10 /s and k_0 = 2 m3/(mol s) at 800 K; P_r = [M]/5."""
+    k = two_species(**law, k_inf={"A": 10.0}, k_0={"A": 2.0}).rate_constant(0, 800.0, M)
+    return k * (5.0 + M) / (10.0 * M)
+
+
+SRI = {"a": 0.45, "b": 1600.0, "c": 400.0}  # at 800 K: 0.45 e^-2 + e^-2
+
+
+@pytest.mark.parametrize("log_P, X", [(0.0, 1.0), (1.0, 0.5), (-1.0, 0.5), (2.0, 0.2), (-3.0, 0.1)])
+def test_sri_by_hand(log_P: float, X: float) -> None:
+    F = (1.45 * np.exp(-2.0)) ** X
+    assert broadened(5.0 * 10**log_P, law="SRI", F=SRI) == pytest.approx(F, rel=1e-13)
+    more = SRI | {"d": 3.0, "e": -0.5}
+    assert broadened(5.0 * 10**log_P, law="SRI", F=more) == pytest.approx(3 * F / np.sqrt(800.0), rel=1e-13)
+
+
+@pytest.mark.parametrize("width, one", [("JPL", 1.0), ("IUPAC", 0.75 - 1.27 * np.log10(0.3))])
+@pytest.mark.parametrize("steps, power", [(0, 1.0), (1, 0.5), (-1, 0.5), (3, 0.1)])
+def test_the_evaluations_widths(width: str, one: float, steps: int, power: float) -> None:
+    """F_cent at P_r = 1, its root one width to either side, its tenth power at three."""
+    F = broadened(5.0 * 10 ** (steps * one), law="Troe", width=width, F_cent=0.3)
+    assert F == pytest.approx(0.3**power, rel=1e-12)
+
+
+def test_a_published_rate_constant_with_the_width_of_its_evaluation() -> None:
+    """OH + NO2 + N2 at 298 K and 1 bar: 9.8e-12 cm3/(molecule s) from k_0 = 3.2e-30 (T/300)^-4.5 [N2],
+    k_inf = 3.0e-11, F_cent = 0.41 (IUPAC Task Group on Atmospheric Chemical Kinetic Data Evaluation, HOx_VOC/NOx
+    sheet NOx13, 2017; doi:10.5194/acp-4-1461-2004)."""
+    law = {"law": "Troe", "width": "IUPAC", "F_cent": 0.41, "k_inf": {"A": 3.0e-11},
+           "k_0": {"A": 3.2e-30, "n": -4.5, "T_ref": 300.0}}
+    document = {"mechanism": {"units": ["cm", "molecule"]}, "species": two_species_document(),
+                "reaction": [{"equation": "2 A ⇌ B", "forward": law}]}
+    k = Reference(document).rate_constant(0, 298.0, 1e5 / (GAS_CONSTANT * 298.0))
+    assert k / 6.02214076e17 == pytest.approx(9.8e-12, abs=0.05e-12)
+
+
+BROADENINGS = [{}, {"F_cent": 0.4}, {"F": SRI}, {"F_cent": 0.4, "width": "IUPAC"}, {"F_cent": 0.4, "width": "JPL"}]
+LAW_OF = {"F_cent": "Troe", "F": "SRI"}
+
+
+@pytest.mark.parametrize("broadening", BROADENINGS)
+def test_limits_of_falloff(broadening: dict) -> None:
+    law = next((LAW_OF[key] for key in broadening if key in LAW_OF), "Lindemann")
+    low, high = (broadened(M, law=law, **broadening) for M in (1e-300, 1e300))
+    assert low == pytest.approx(1, abs=0.02) and high == pytest.approx(1, abs=0.03)
+
+
+# ---- chemical activation
+
+
+def channel(M: float, **broadening: object) -> float:
+    """k of 2 B ⇌ A, activated, with k_0 = 6 m3/(mol s) and k_inf = 2 /s at 800 K; P_r = 3 [M]."""
+    law = {"law": "activated", "k_inf": {"A": 2.0}, "k_0": {"A": 6.0}, **broadening}
+    entry = {"equation": "2 B ⇌ A", "forward": law}
+    return Reference({"mechanism": {}, "species": two_species_document(), "reaction": [entry]}).rate_constant(0, 800.0, M)
+
+
+@pytest.mark.parametrize("broadening, F", [({}, 1.0), ({"F_cent": 0.4}, None), ({"F": SRI}, 1.45 * np.exp(-2.0)),
+                                           ({"F_cent": 0.4, "width": "IUPAC"}, 0.4), ({"F_cent": 0.4, "width": "JPL"}, 0.4)])
+def test_activated_channels_by_hand(broadening: dict, F: float | None) -> None:
+    if F is None:  # the wide form at log P_r = 0: x = c
+        c, N = -0.4 - 0.67 * np.log10(0.4), 0.75 - 1.27 * np.log10(0.4)
+        F = 0.4 ** (1 / (1 + (c / (N - 0.14 * c)) ** 2))
+    assert channel(1 / 3, **broadening) == pytest.approx(3.0 * F, rel=1e-13)
+
+
+def test_activated_channels_at_either_end() -> None:
+    """Nothing is stabilised at [M] = 0: k_0; at high [M] the channel dies as k_inf/[M]."""
+    assert channel(0.0) == 6.0
+    assert channel(1e12) * 1e12 == pytest.approx(2.0, rel=1e-11)
+    assert channel(1j * STEP).imag / STEP == pytest.approx(-18.0, rel=1e-14)
+    assert channel(0.0, F=SRI | {"d": 0.5}) == 3.0
+    assert channel(0.0, F_cent=0.4) == pytest.approx(6 * 0.4 ** (1 / (1 + 1 / 0.14**2)), rel=1e-14)
+
+
+# ---- laws of pressure
+
+
+ROWS = [{"p": "1 bar", "A": 3.0}, {"p": 100.0, "A": 2.0}, {"p": 1e5, "A": 5.0, "n": 1.0, "T_ref": 800.0},
+        {"p": "10 MPa", "A": 5.0, "Ea": 800.0 * GAS_CONSTANT}]
+
+
+@pytest.mark.parametrize("p, k", [(60.0, 2.0), (100.0, 2.0), (np.sqrt(1e7), 4.0), (1e5, 8.0), (1e6, np.sqrt(40 / np.e)),
+                                  (1e7, 5 / np.e), (1e9, 5 / np.e)])
+def test_pressure_table_by_hand(p: float, k: float) -> None:
+    """Geometric means halfway between; 3 and 5 add up at 1 bar; the ends hold."""
+    assert two_species(law="pressure table", rows=ROWS).rate_constant(0, 800.0, p=p) == pytest.approx(k, rel=1e-13)
+
+
+def test_one_pressure_holds_everywhere() -> None:
+    model = two_species(law="pressure table", rows=ROWS[:1])
+    assert {model.rate_constant(0, 500.0, p=p) for p in (1.0, 1e5, 1e9)} == {3.0}
+
+
+C = [[2.0, 0.3, -0.1], [0.5, 0.04, 0.02]]
+
+
+def chebyshev(T: float, p: float, **more: object) -> float:
+    law = {"law": "Chebyshev", "T": [400.0, 1600.0], "p": ["0.01 bar", "100 bar"], "c": C, **more}
+    return float(np.log10(two_species(**law).rate_constant(0, T, p=p)))
+
+
+@pytest.mark.parametrize("T, p, log_k", [
+    (1600.0, 1e7, 2.76), (400.0, 1e7, 1.64), (1600.0, 1e3, 2.08), (400.0, 1e3, 1.12),  # corners: every polynomial is ±1
+    (640.0, 1e5, 2.1), (1600.0, 1e5, 2.58), (640.0, 1e7, 2.2)])  # the middle: 1, 0, -1; 1/640 = (1/400 + 1/1600)/2
+def test_chebyshev_by_hand(T: float, p: float, log_k: float) -> None:
+    assert chebyshev(T, p) == pytest.approx(log_k, rel=1e-13)
+
+
+def test_chebyshev_polynomials_are_cosines() -> None:
+    T, p = 900.0, 3e4
+    x = (2 / T - 1 / 400 - 1 / 1600) / (1 / 1600 - 1 / 400)
+    y = (2 * np.log(p) - np.log(1e3) - np.log(1e7)) / (np.log(1e7) - np.log(1e3))
+    log_k = sum(C[i][j] * np.cos(i * np.arccos(x)) * np.cos(j * np.arccos(y)) for i in range(2) for j in range(3))
+    assert chebyshev(T, p) == pytest.approx(log_k, rel=1e-13)
+
+
+def test_chebyshev_outside_its_window() -> None:
+    assert chebyshev(3000.0, 1e9, clamp=True) == chebyshev(1600.0, 1e7)
+    assert chebyshev(300.0, 1e5, clamp=True) == pytest.approx(1.62, rel=1e-13)
+    assert chebyshev(640.0, 0.0, clamp=True) == pytest.approx(1.6, rel=1e-13)
+    for T, p in [(399.9, 1e5), (1601.0, 1e5), (800.0, 999.0), (800.0, 1.1e7)]:
+        with pytest.raises(ValueError):
+            chebyshev(T, p)
+
+
+def test_chebyshev_is_the_logarithm_of_k_in_the_units_of_the_file() -> None:
+    """10^2 cm3/(mol s) is 10^-4 m3/(mol s)."""
+    law = {"law": "Chebyshev", "T": [400.0, 1600.0], "p": [0.1, 10.0], "c": [[2.0]]}
+    document = {"mechanism": {"units": ["cm", "atm"]}, "species": two_species_document(),
+                "reaction": [{"equation": "2 B ⇌ A", "forward": law}]}
+    assert Reference(document).rate_constant(0, 500.0, p=101325.0) == pytest.approx(1e-4, rel=1e-13)
+
+
+@pytest.mark.parametrize("T", [300.0, 1200.0])
+def test_the_pressure_is_that_of_the_gas_or_the_held_one(T: float) -> None:
+    """k goes as p^(1/2) between 1e2 and 1e6 Pa."""
+    model = two_species(law="pressure table", rows=[{"p": 1e2, "A": 1.0}, {"p": 1e6, "A": 100.0}])
+    c = np.array([2.0, 6.0])
+    k = np.sqrt(8.0 * GAS_CONSTANT * T / 1e2)
+    assert model.net_rates(c, T)[0] == pytest.approx(2.0 * k, rel=1e-13)
+    both = [model.derivative(np.append(c, T), holds, "isothermal", 4e4) for holds in ("volume", "pressure")]
+    gross = [scale[0] / (2 * (at + c[1] ** 2 / model.K_c(T)[0] * by))
+             for scale, at, by in [(both[0][1], 1.0, 0.5), (both[1][1], 1.0, 0.5 * 4e4 / (8.0 * GAS_CONSTANT * T))]]
+    assert gross == pytest.approx([k, 20.0], rel=1e-12)
+    J = model.jacobian(np.append(c, T), "pressure", "isothermal", 4e4)
+    forward = 20.0 * np.array([1.0, 0.0])
+    volume = 8.0 * GAS_CONSTANT * T / 4e4
+    reverse = 20.0 / model.K_c(T)[0] * np.array([-36.0 / 8.0, 12.0 - 36.0 / 8.0]) / volume  # of n_B^2/V, V as the total
+    assert J[0, :2] == pytest.approx(reverse - forward, rel=1e-12)
+
+
 # ---- partners
 
 
@@ -128,7 +281,8 @@ def test_one_partner_alone(model: Reference) -> None:
 
 
 @pytest.mark.parametrize("change", [{"orders": {"X": 1.5}}, {"equation": "0.5 X2 ⇌ X"},
-                                    {"forward": {"law": "SRI", "k_inf": {}, "k_0": {}}}])
+                                    {"forward": {"law": "Eyring", "dH": 50.0, "dS": 0.0}},
+                                    {"forward": {"law": "SRI", "k_inf": {}, "k_0": {}, "F_cent": 0.5}}])
 def test_what_is_not_covered_is_refused(change: dict) -> None:
     document = deepcopy(invented.building_blocks())
     document["reaction"][0] |= change

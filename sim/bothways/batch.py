@@ -8,7 +8,7 @@ from typing import Any
 import numpy as np
 
 from .along import rates_along
-from .case import MARGIN_WARN, Case, temperatures_outside
+from .case import MARGIN_WARN, Case, law_outside, temperatures_outside
 from .integrate import OWN_METHODS, Outcome, Status, integrate
 from .mechanism.toml_writer import to_toml
 from .milestones import milestones
@@ -47,6 +47,7 @@ def run(case: Case, told: Callable[[int, float, float], None] | None = None) -> 
     outcome = integrate(task.problem, case.method, recorder)
     columns = recorder.columns()
     _remark(case, list(columns["temperature"][1:]))
+    _remark_laws(case, columns)
     return _trajectory(case, equations, columns, task, outcome)
 
 
@@ -59,6 +60,14 @@ def _remark(case: Case, temperatures: list[float]) -> None:
         if outside:
             warnings.warn(f"at {temperature:.0f} K the run is outside the range of the thermochemical data of {outside}; "
                           "they continue with constant heat capacity", Remark, stacklevel=3)
+
+
+def _remark_laws(case: Case, columns: dict[str, Any]) -> None:
+    """Warns of a rate law whose window of temperature and pressure the run left."""
+    T, p = columns["temperature"], columns["pressure"]
+    problem = law_outside(case.mechanism, min(T), min(p)) or law_outside(case.mechanism, max(T), max(p))
+    if problem:
+        warnings.warn(f"the run left the window of a rate law, whose edge holds there: {problem}", Remark, stacklevel=3)
 
 
 def _remark_joins(case: Case) -> None:

@@ -93,6 +93,7 @@ def build_case(document: Mapping[str, Any], file: object = None, mechanism: Mech
     start = top.table("start")
     charge = read_charge(start, mechanism, holds, volume)
     _check_temperature(start, mechanism, charge)
+    _check_laws(start, mechanism, charge)
     end = _end(top)
     case = Case(mechanism, holds, heat, charge, end, *_solver(top), inertia, *_output(top, file, end),
                 document=copy_document(document), file=file)
@@ -181,6 +182,23 @@ def _check_temperature(start: Entry, mechanism: Mechanism, charge: Charge) -> No
         raise start.error(f"{charge.temperature:g} K is more than {MARGIN_ERROR:g} K outside the thermochemical data "
                           f"of {outside}", expected="a temperature nearer to the range of the data", key="temperature",
                           remedy="correct it, or use a mechanism whose data reach there")
+
+
+def _check_laws(start: Entry, mechanism: Mechanism, charge: Charge) -> None:
+    problem = law_outside(mechanism, charge.temperature, charge.pressure)
+    if problem:
+        raise start.error(problem, expected="a start where the law holds",
+                          remedy="correct it, or state clamp = true in the law, which keeps the edge's value")
+
+
+def law_outside(mechanism: Mechanism, temperature: float, pressure: float) -> str:
+    """The first rate law that says nothing at T [K] and p [Pa], and why, as text; empty if all hold."""
+    for reaction in mechanism.reactions:
+        for term in reaction.terms:
+            problem = term.law.outside(temperature, pressure)
+            if problem:
+                return f"'{reaction.equation}': {problem}"
+    return ""
 
 
 def temperatures_outside(mechanism: Mechanism, temperature: float, margin: float) -> str:

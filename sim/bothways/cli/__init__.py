@@ -4,6 +4,7 @@ import argparse
 import os
 import sys
 from collections.abc import Sequence
+from pathlib import Path
 from typing import NoReturn
 
 from ..errors import BothwaysError, InputError
@@ -57,6 +58,13 @@ def _show_any_text() -> None:
             stream.reconfigure(errors="backslashreplace")
 
 
+def spare(path: Path, *others: str | Path) -> None:
+    """Refuses to write over a file that is read or written for something else, even where replacing is allowed."""
+    if os.path.realpath(path) in map(os.path.realpath, others):
+        raise InputError("this file is needed for something else", expected="a file of its own to write",
+                         remedy="name another one", file=path)
+
+
 class _Parser(argparse.ArgumentParser):
     """Reports wrong usage as every other error: one line, exit status 2."""
 
@@ -80,8 +88,6 @@ def _parser() -> argparse.ArgumentParser:
 
 class _Version(argparse.Action):
     def __call__(self, parser, namespace, values, option_string=None):  # type: ignore[no-untyped-def]
-        from pathlib import Path
-
         from .. import __version__
 
         print(f"bothways {__version__} ({Path(__file__).resolve().parents[1]}, Python {sys.version.split()[0]})")

@@ -1,12 +1,13 @@
 """bothways plot: the course of a run as a figure."""
 
 import argparse
+import math
 from pathlib import Path
 
-from ..errors import InputError
+from ..errors import InputError, shown
 from ..trajectory import read_trajectory
 from ..units import parse_quantity
-from . import DONE
+from . import DONE, spare
 
 
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
@@ -48,10 +49,12 @@ def act(chosen: argparse.Namespace) -> int:
     """Carries out the verb."""
     from ..plots import check_picture, save_course  # matplotlib takes its time to load: no other verb waits for it
 
+    trajectory = read_trajectory(chosen.run)
     picture = chosen.output or chosen.run.with_suffix(".png")
+    spare(picture, chosen.run)
     between = (_seconds(chosen.between[0]), _seconds(chosen.between[1])) if chosen.between else None
     check_picture(picture, chosen.replace)
-    save_course(read_trajectory(chosen.run), picture, replace=chosen.replace, species=chosen.species,
+    save_course(trajectory, picture, replace=chosen.replace, species=chosen.species,
                 time_axis=chosen.time_axis, width=chosen.width, between=between)
     print(picture)
     return DONE
@@ -60,10 +63,11 @@ def act(chosen: argparse.Namespace) -> int:
 def _seconds(text: str) -> float:
     """A time [s], from a bare number or one with its unit."""
     try:
-        return float(text)
+        seconds = float(text) if text.strip()[-1:].isdigit() else parse_quantity(text, "time")
     except ValueError:
-        pass
-    try:
-        return parse_quantity(text, "time")
+        seconds = math.nan
     except InputError as err:
         raise InputError(err.problem, expected=err.expected, entry="--between") from None
+    if not math.isfinite(seconds):
+        raise InputError(f"{shown(text)} is not a finite number", expected="a time such as '0.4 ms'", entry="--between")
+    return seconds

@@ -1,7 +1,6 @@
 """bothways run: the time course of one case."""
 
 import argparse
-import os
 import signal
 import sys
 import threading
@@ -15,11 +14,10 @@ from tqdm import tqdm
 
 from ..batch import Remark, run
 from ..case import Case, read_case
-from ..errors import InputError
 from ..outfile import check_writable
 from ..report import summary
 from ..trajectory import Trajectory, write_trajectory
-from . import BAD_INPUT, DONE, GAVE_UP, INTERRUPTED
+from . import DONE, GAVE_UP, INTERRUPTED, spare
 
 
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
@@ -59,24 +57,17 @@ def act(chosen: argparse.Namespace) -> int:
 def _files(case: Case, chosen: argparse.Namespace) -> tuple[Path, Path | None]:
     """The files to write, trajectory and picture, both known to be writable."""
     output = chosen.output or case.output or Path(Path(chosen.case).stem + ".h5")
-    _spare_inputs(case, output)
+    inputs = [str(file) for file in (case.file, case.mechanism.file) if file]
+    spare(output, *inputs)
     check_writable(output, chosen.replace)
     if chosen.plot is None:
         return output, None
     from ..plots import check_picture
 
     picture = Path(chosen.plot or output.with_suffix(".png"))
-    _spare_inputs(case, picture, output)
+    spare(picture, output, *inputs)
     check_picture(picture, chosen.replace)
     return output, picture
-
-
-def _spare_inputs(case: Case, path: Path, *also: Path) -> None:
-    """Refuses, even with --replace, to write over what is read or over the other output."""
-    for other in filter(None, (case.file, case.mechanism.file, *also)):
-        if os.path.realpath(path) == os.path.realpath(str(other)):
-            raise InputError("this file is needed for something else", expected="a file of its own to write",
-                             remedy="name another one", file=path)
 
 
 def _title(case: Case, name: str) -> str:
@@ -160,4 +151,4 @@ def _status(case: Case, trajectory: Trajectory, output: Path) -> int:
     return INTERRUPTED if interrupted else GAVE_UP
 
 
-__all__ = ["BAD_INPUT", "act", "add_to", "remarks_shown"]
+__all__ = ["act", "add_to", "remarks_shown"]

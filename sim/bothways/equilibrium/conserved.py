@@ -49,9 +49,11 @@ def extra_conserved(mechanism: Mechanism) -> np.ndarray:
 
 
 def combination_text(mechanism: Mechanism, row: np.ndarray) -> str:
-    """A conserved combination as chemistry: "N2", "2 CH4 + C2H6", "atoms of H", "charge"."""
+    """A conserved combination as chemistry: "N2", "2 CH4 + C2H6", "atoms of H", "amount of all species"."""
     plain = _primitive(np.asarray(row).tolist())
     terms = [(count, name) for count, name in zip(plain, mechanism.names, strict=True) if count]
+    if len(terms) == len(mechanism.species) > 1 and set(plain) == {1}:
+        return "amount of all species"
     if len(terms) > 1:
         for label, own in zip([f"atoms of {e}" for e in mechanism.used_elements] + ["charge"],
                               conserved_by_elements(mechanism), strict=False):
@@ -103,6 +105,11 @@ def _primitive(row: Iterable[Fraction | int]) -> list[int]:
     return [sign * v // divisor for v in whole]
 
 
+def _primitive_rows(numbers: np.ndarray) -> set[tuple[int, ...]]:
+    sign = np.where(np.sum(numbers, axis=1) < 0, -1, 1)
+    return set(map(tuple, (numbers // (sign * np.gcd.reduce(numbers, axis=1))[:, None]).tolist()))
+
+
 def _independent(rows: np.ndarray) -> np.ndarray:
     """Places of the first rows that carry the rank, rising."""
     return np.sort(Components(rows.T, np.arange(len(rows))).basis)
@@ -110,16 +117,19 @@ def _independent(rows: np.ndarray) -> np.ndarray:
 
 def _candidates(mechanism: Mechanism, elements: np.ndarray, null_space: np.ndarray) -> Iterator[np.ndarray]:
     """Conserved combinations, plain ones first: a species that no reaction touches, the atoms within a group of
-    species that reactions link, and then the simplest found by exchanging components of the null space."""
+    species that reactions link, the group's amount where no reaction changes amounts, and then the simplest found by
+    exchanging components of the null space."""
     groups = _linked_groups(mechanism)
     yield from sorted((row for group in groups for row in _within(elements, group)), key=_plainness)
+    if not any(sum(reaction.net.values()) for reaction in mechanism.reactions):
+        yield from (group.astype(np.int64) for group in groups)
     components = Components(null_space, np.arange(null_space.shape[1]))
-    found = {tuple(_primitive(row)) for row in components.numbers.tolist()}
+    found = _primitive_rows(components.numbers)
     for k, j in np.argwhere(components.numbers != 0).tolist():
         if j != components.basis[k]:
             other = components.copy()
             other.exchange(k, j)
-            found |= {tuple(_primitive(row)) for row in other.numbers.tolist()}
+            found |= _primitive_rows(other.numbers)
     yield from sorted((np.array(row) for row in found), key=_plainness)
 
 

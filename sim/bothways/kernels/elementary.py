@@ -2,6 +2,7 @@
 
 from ..compiled import bits_to_float, compiled, float_to_bits
 
+LN10 = 2.302585092994046
 _LOG2E = 1.4426950408889634
 _LN2_HIGH = 0.6931471803691238
 _LN2_LOW = 1.9082149292705877e-10

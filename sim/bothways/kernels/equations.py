@@ -33,7 +33,7 @@ _BLOCK = at.offset_slot(at.WORK, "block")
 _FORWARD = at.offset_slot(at.WORK, "forward")
 _REVERSE = at.offset_slot(at.WORK, "reverse")
 _UNKNOWN = at.offset_slot(at.WORK, "unknown")
-_COLUMN = at.offset_slot(at.WORK, "column")
+_COLUMN = at.offset_slot(at.WORK, "border_column")
 
 
 @compiled

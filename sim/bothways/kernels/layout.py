@@ -9,8 +9,9 @@ from collections.abc import Sequence
 
 from ..compiled import compiled
 
-SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALLOFFS", "GROUPS", "LONG", "BLOCK")
-SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALLOFFS, GROUPS, LONG, BLOCK = range(len(SIZES))
+SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALLOFFS", "GROUPS", "LONG", "BLOCK", "CURVES",
+         "COLUMNS")
+SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALLOFFS, GROUPS, LONG, BLOCK, CURVES, COLUMNS = range(len(SIZES))
 
 INTS = (
     "range_start",      # (N + 1) first temperature range of each species
@@ -22,10 +23,23 @@ INTS = (
     "term_reaction",    # (T) reaction of each term; the first R terms are the reactions' first ones
     "body_term",        # (B) terms multiplied by the concentration of a partner
     "body_group",       # (B) and its group
-    "fall_term",        # (L) terms in fall-off
+    "fall_term",        # (L) terms in fall-off after Lindemann or Troe
     "fall_low",         # (L) expression of their low-pressure limit
     "fall_group",       # (L) partner group
     "fall_kind",        # (L) broadening
+    "curve_term",       # (U) terms on any other curve between two limits
+    "curve_low",        # (U) expression of their low-pressure limit
+    "curve_group",      # (U) partner group
+    "curve_width",      # (U) width rule
+    "curve_activated",  # (U) 1: the product channel of a chemically activated reaction
+    "table_term",       # (P) terms with a pressure table
+    "table_start",      # (P + 1) their first pressure
+    "node_start",       # (nodes + 1) first row at each pressure
+    "row_expression",   # expression of each row
+    "series_term",      # (H) terms with a Chebyshev series
+    "series_rows",      # (H) number of powers in 1/T
+    "series_start",     # (H + 1) first column (power in ln p)
+    "column_start",     # (COLUMNS + 1) first coefficient of each column
     "group_start",      # (G + 1) partner groups: first named species
     "group_species",    # named species of the groups
     "nu_start",         # (N + 1) stoichiometric numbers by species: first entry
@@ -42,6 +56,11 @@ FLOATS = (
     "log_A", "power", "theta",  # (X) expressions
     "term_sign",        # (T)
     "fall_parameter",   # (4 L) broadening
+    "curve_parameter",  # (8 U) centre and factor of F
+    "node_log_p",       # (nodes) ln p
+    "row_sign",         # (rows)
+    "series_window",    # (4 H) 1/T [1/K] and ln p at the low and the high end
+    "column_coefficient",  # column by column
     "group_default",    # (G) efficiency of species not named
     "group_excess",     # efficiency of the named ones above the default
     "nu",               # stoichiometric numbers
@@ -61,10 +80,14 @@ WORK = (
     "log_centre", "log_centre_slope",  # (L) log10 F_cent and its slope
     "centre_exponent", "centre_part",  # (3 L) exponentials of F_cent
     "log_broadening", "broadening",  # (L) F
+    "curve_centre", "curve_centre_slope",  # (U) log10 of the centre and its slope
+    "curve_factor",     # (U) ln of what stands beside it
+    "pressure",         # (1) of the gas [Pa], kept where a law asks for it
+    "column", "column_slope",  # (COLUMNS) Chebyshev sums over the powers in 1/T, and their slopes
     "activity",         # (N + 1) a = c/E
     "partner", "log_partner",  # (G) partner concentrations and their logarithms
     "k",                # (T) forward rate constants of the terms, partner included
-    "k_by_T", "k_by_M",  # (T) their derivatives
+    "k_by_T", "k_by_M",  # (T) their derivatives; of laws of pressure by_M is by the total C
     "k_total", "k_total_by_T",  # (R)
     "bare",             # (R) ΠE_reac (Πa_reac - Πa_prod): the net rate for k one
     "forward", "reverse", "net",  # (R) rates
@@ -73,7 +96,7 @@ WORK = (
     "omega_by_T",       # (N)
     "partial",          # (6 R + m + T) partial derivatives of the rates
     "block",            # (nb + N) species block of the Jacobian, then dω/dC
-    "unknown", "column",  # (N) scratch of the vessel equations
+    "unknown", "border_column",  # (N) scratch of the vessel equations
 )
 
 SIZE_OF = {name: k for k, name in enumerate(SIZES)}

@@ -8,9 +8,10 @@ import math
 
 from . import layout as at
 from ..compiled import compiled
-from .elementary import exp_array
+from .falloff import SMALLEST_PARTNER, fall_off_constants, fall_off_slopes
 from .layout import view
-from .thermal import LN10, set_slopes
+from .pressure import pressure_constants, pressure_slopes
+from .thermal import set_slopes
 
 _REACTANT = at.offset_slot(at.INTS, "reactant")
 _PRODUCT = at.offset_slot(at.INTS, "product")
@@ -20,10 +21,6 @@ _LONG_SIDE = at.offset_slot(at.INTS, "long_side")
 _TERM_REACTION = at.offset_slot(at.INTS, "term_reaction")
 _BODY_TERM = at.offset_slot(at.INTS, "body_term")
 _BODY_GROUP = at.offset_slot(at.INTS, "body_group")
-_FALL_TERM = at.offset_slot(at.INTS, "fall_term")
-_FALL_LOW = at.offset_slot(at.INTS, "fall_low")
-_FALL_GROUP = at.offset_slot(at.INTS, "fall_group")
-_FALL_KIND = at.offset_slot(at.INTS, "fall_kind")
 _GROUP_START = at.offset_slot(at.INTS, "group_start")
 _GROUP_SPECIES = at.offset_slot(at.INTS, "group_species")
 _NU_START = at.offset_slot(at.INTS, "nu_start")
@@ -37,15 +34,10 @@ _NU = at.offset_slot(at.FLOATS, "nu")
 _SUM_WEIGHT = at.offset_slot(at.FLOATS, "sum_weight")
 _INVERSE_SCALE = at.offset_slot(at.WORK, "inverse_scale")
 _LOG_PARTNER = at.offset_slot(at.WORK, "log_partner")
-_LOG_K = at.offset_slot(at.WORK, "log_k")
 _K_LIMIT = at.offset_slot(at.WORK, "k_limit")
 _K_SLOPE = at.offset_slot(at.WORK, "k_slope")
 _REACTANT_SCALE = at.offset_slot(at.WORK, "reactant_scale")
 _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
-_LOG_CENTRE = at.offset_slot(at.WORK, "log_centre")
-_LOG_CENTRE_SLOPE = at.offset_slot(at.WORK, "log_centre_slope")
-_LOG_BROADENING = at.offset_slot(at.WORK, "log_broadening")
-_BROADENING = at.offset_slot(at.WORK, "broadening")
 _ACTIVITY = at.offset_slot(at.WORK, "activity")
 _PARTNER = at.offset_slot(at.WORK, "partner")
 _K = at.offset_slot(at.WORK, "k")
@@ -63,8 +55,6 @@ _OMEGA_BY_T = at.offset_slot(at.WORK, "omega_by_T")
 _PARTIAL = at.offset_slot(at.WORK, "partial")
 _BLOCK = at.offset_slot(at.WORK, "block")
 
-_SMALLEST_PARTNER = 1e-300
-
 
 @compiled
 def _partners(c, total, ints, floats, work):
@@ -77,24 +67,12 @@ def _partners(c, total, ints, floats, work):
         for e in range(start[g], start[g + 1]):
             m += excess[e] * c[species[e]]
         partner[g] = m
-        log_partner[g] = math.log(max(m, _SMALLEST_PARTNER))
+        log_partner[g] = math.log(max(m, SMALLEST_PARTNER))
 
 
 @compiled
-def _broadening(log_reduced, log_centre):
-    """log10 F of Troe's form and its derivatives by log10 P_r and by log10 F_cent (Gilbert, Luther, Troe 1983)."""
-    x = log_reduced - 0.4 - 0.67 * log_centre
-    n = 0.75 - 1.27 * log_centre
-    d = n - 0.14 * x
-    s = d * d + x * x
-    q = d * d / s
-    twist = 2.0 * log_centre * d * x / (s * s)
-    return log_centre * q, -twist * n, q + twist * (0.67 * d - 1.1762 * x)
-
-
-@compiled
-def _rate_constants(ints, floats, work):
-    """k of every term, partner included, from the limits at this temperature."""
+def _rate_constants(total, ints, floats, work):
+    """k of every term, partner included, from the limits at this temperature; total as in `set_rates`."""
     k, limit = view(work, ints, _K), view(work, ints, _K_LIMIT)
     sign, partner = view(floats, ints, _TERM_SIGN), view(work, ints, _PARTNER)
     for t in range(k.size):
@@ -102,27 +80,15 @@ def _rate_constants(ints, floats, work):
     body, group = view(ints, ints, _BODY_TERM), view(ints, ints, _BODY_GROUP)
     for b in range(body.size):
         k[body[b]] *= partner[group[b]]
-    term, low, group = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(ints, ints, _FALL_GROUP)
-    kind, log_k, log_centre = view(ints, ints, _FALL_KIND), view(work, ints, _LOG_K), view(work, ints, _LOG_CENTRE)
-    log_factor, factor = view(work, ints, _LOG_BROADENING), view(work, ints, _BROADENING)
-    log_partner = view(work, ints, _LOG_PARTNER)
-    for q in range(term.size):
-        log_factor[q] = 0.0
-        if kind[q] == 1:
-            log_reduced = log_k[low[q]] + log_partner[group[q]] - log_k[term[q]]
-            log_F, _, _ = _broadening(log_reduced / LN10, log_centre[q])
-            log_factor[q] = LN10 * log_F
-    exp_array(log_factor, factor)
-    for q in range(term.size):
-        t, m = term[q], partner[group[q]]
-        k[t] = limit[low[q]] * m / (1.0 + m * limit[low[q]] / limit[t]) * factor[q]
+    fall_off_constants(ints, floats, work)
+    pressure_constants(total, ints, floats, work)
 
 
 @compiled
 def _rate_constant_slopes(ints, floats, work):
-    """dk/dT at constant partner and dk/d[M] of every term; k must be set."""
+    """dk/dT at constant partner and dk/d[M] of every term (of laws of pressure by the total); k must be set."""
     k, by_T, by_M = view(work, ints, _K), view(work, ints, _K_BY_T), view(work, ints, _K_BY_M)
-    limit, slope, partner = view(work, ints, _K_LIMIT), view(work, ints, _K_SLOPE), view(work, ints, _PARTNER)
+    limit, slope = view(work, ints, _K_LIMIT), view(work, ints, _K_SLOPE)
     sign = view(floats, ints, _TERM_SIGN)
     for t in range(k.size):
         by_T[t] = k[t] * slope[t]
@@ -130,22 +96,8 @@ def _rate_constant_slopes(ints, floats, work):
     body = view(ints, ints, _BODY_TERM)
     for b in range(body.size):
         by_M[body[b]] = sign[body[b]] * limit[body[b]]
-    term, low, group = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(ints, ints, _FALL_GROUP)
-    kind, log_k, log_centre = view(ints, ints, _FALL_KIND), view(work, ints, _LOG_K), view(work, ints, _LOG_CENTRE)
-    centre_slope, factor = view(work, ints, _LOG_CENTRE_SLOPE), view(work, ints, _BROADENING)
-    log_partner = view(work, ints, _LOG_PARTNER)
-    for q in range(term.size):
-        t, l, m = term[q], low[q], partner[group[q]]
-        response = 1.0 / (1.0 + m * limit[l] / limit[t])  # d ln k/d ln P_r
-        per_partner = limit[l] * response * factor[q]  # k/[M]
-        by_centre = 0.0
-        if kind[q] == 1:
-            log_reduced = log_k[l] + log_partner[group[q]] - log_k[t]
-            _, by_reduced, by_log_centre = _broadening(log_reduced / LN10, log_centre[q])
-            response += by_reduced if m > _SMALLEST_PARTNER else 0.0
-            by_centre = LN10 * by_log_centre * centre_slope[q]
-        by_T[t] = k[t] * (slope[t] + (slope[l] - slope[t]) * response + by_centre)
-        by_M[t] = per_partner * response
+    fall_off_slopes(ints, floats, work)
+    pressure_slopes(ints, floats, work)
 
 
 @compiled
@@ -187,7 +139,7 @@ def set_rates(c, total, ints, floats, work):
     c: (N) concentrations [mol/m3], total: their sum as partners see it.
     """
     _partners(c, total, ints, floats, work)
-    _rate_constants(ints, floats, work)
+    _rate_constants(total, ints, floats, work)
     k = view(work, ints, _K_TOTAL)
     _sum_terms(view(work, ints, _K), k, ints)
     _products_of_activities(c, ints, work)

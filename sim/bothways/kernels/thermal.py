@@ -8,11 +8,10 @@ import math
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
 from ..compiled import compiled
-from .elementary import SMALLEST, exp_array
+from .elementary import exp_array
+from .falloff import set_centres
 from .layout import view
-
-LN10 = 2.302585092994046
-_SMALLEST_CENTRE = 1e-30
+from .pressure import set_columns
 
 _RANGE_START = at.offset_slot(at.INTS, "range_start")
 _REACTANT = at.offset_slot(at.INTS, "reactant")
@@ -20,14 +19,12 @@ _PRODUCT = at.offset_slot(at.INTS, "product")
 _LONG_REACTION = at.offset_slot(at.INTS, "long_reaction")
 _LONG_SPECIES = at.offset_slot(at.INTS, "long_species")
 _LONG_SIDE = at.offset_slot(at.INTS, "long_side")
-_FALL_KIND = at.offset_slot(at.INTS, "fall_kind")
 _RANGE_TOP = at.offset_slot(at.FLOATS, "range_top")
 _RANGE_ROW = at.offset_slot(at.FLOATS, "range_row")
 _REDUCTION = at.offset_slot(at.FLOATS, "reduction")
 _LOG_A = at.offset_slot(at.FLOATS, "log_A")
 _POWER = at.offset_slot(at.FLOATS, "power")
 _THETA = at.offset_slot(at.FLOATS, "theta")
-_FALL_PARAMETER = at.offset_slot(at.FLOATS, "fall_parameter")
 _STANDARD = at.offset_slot(at.FLOATS, "standard")
 _SEEN = at.offset_slot(at.WORK, "seen")
 _GIBBS = at.offset_slot(at.WORK, "gibbs")
@@ -43,10 +40,6 @@ _K_LIMIT = at.offset_slot(at.WORK, "k_limit")
 _K_SLOPE = at.offset_slot(at.WORK, "k_slope")
 _REACTANT_SCALE = at.offset_slot(at.WORK, "reactant_scale")
 _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
-_CENTRE_EXPONENT = at.offset_slot(at.WORK, "centre_exponent")
-_CENTRE_PART = at.offset_slot(at.WORK, "centre_part")
-_LOG_CENTRE = at.offset_slot(at.WORK, "log_centre")
-_LOG_CENTRE_SLOPE = at.offset_slot(at.WORK, "log_centre_slope")
 
 
 @compiled
@@ -123,32 +116,6 @@ def _reactant_scales(ints, work):
 
 
 @compiled
-def _centres(T, ints, floats, work):
-    """log10 F_cent and its slope of every fall-off with Troe's broadening."""
-    kind, parameter = view(ints, ints, _FALL_KIND), view(floats, ints, _FALL_PARAMETER)
-    log_centre, slope = view(work, ints, _LOG_CENTRE), view(work, ints, _LOG_CENTRE_SLOPE)
-    exponent, parts = view(work, ints, _CENTRE_EXPONENT), view(work, ints, _CENTRE_PART)
-    for q in range(kind.size):
-        exponent[3 * q] = -T * parameter[4 * q + 1]
-        exponent[3 * q + 1] = -T * parameter[4 * q + 2]
-        exponent[3 * q + 2] = -parameter[4 * q + 3] / T
-    exp_array(exponent, parts)
-    for e in range(parts.size):
-        if exponent[e] < SMALLEST:  # a published T* of 1e-30 means zero, and its slope too
-            parts[e] = 0.0
-    for q in range(kind.size):
-        if kind[q] == 1:
-            a = parameter[4 * q]
-            x3, x1, x2 = (1.0 - a) * parts[3 * q], a * parts[3 * q + 1], parts[3 * q + 2]
-            centre = x3 + x1 + x2
-            centre_slope = -x3 * parameter[4 * q + 1] - x1 * parameter[4 * q + 2] + x2 * parameter[4 * q + 3] / (T * T)
-            if centre < _SMALLEST_CENTRE:
-                centre, centre_slope = _SMALLEST_CENTRE, 0.0
-            log_centre[q] = math.log(centre) / LN10
-            slope[q] = centre_slope / (centre * LN10)
-
-
-@compiled
 def set_temperature(T, ints, floats, work):
     """Brings the thermal parts of `work` to T [K]; nothing is done where they stand for it already."""
     seen = view(work, ints, _SEEN)
@@ -160,7 +127,8 @@ def set_temperature(T, ints, floats, work):
     _scales(T, ints, floats, work)
     _limits(T, ints, floats, work)
     _reactant_scales(ints, work)
-    _centres(T, ints, floats, work)
+    set_centres(T, ints, floats, work)
+    set_columns(T, ints, floats, work)
     seen[0] = T
 
 

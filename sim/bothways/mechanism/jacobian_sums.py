@@ -2,7 +2,7 @@
 
 Entry (i, s) of the block is Σ ν_ij ∂w_j/∂c_s at constant total of the partners, and behind the block stands
 ∂omega_i/∂C, the response to that total. Both are sums over `partial`, whose places kernels/rates.py sets: six
-molecules a reaction, the further molecules of long sides, then ∂w/∂[M] of every term.
+molecules a reaction, the further molecules of long sides, then ∂w/∂[M] of every term (∂w/∂C of laws of pressure).
 """
 
 from collections import defaultdict
@@ -50,7 +50,8 @@ def _add_molecules(n: int, net: list, ints: dict, block: Sums) -> None:
 def _add_partners(net: list, ints: dict, floats: dict, block: Sums, total: Sums) -> None:
     first = 6 * len(net) + len(ints["long_side"])
     pairs = [*zip(ints["body_term"], ints["body_group"], strict=True),
-             *zip(ints["fall_term"], ints["fall_group"], strict=True)]
+             *zip(ints["fall_term"], ints["fall_group"], strict=True),
+             *zip(ints["curve_term"], ints["curve_group"], strict=True)]
     start = ints["group_start"]
     for term, group in pairs:
         for i, count in net[ints["term_reaction"][term]]:
@@ -59,3 +60,6 @@ def _add_partners(net: list, ints: dict, floats: dict, block: Sums, total: Sums)
                 total[i, 0].append((source, count * floats["group_default"][group]))
             for e in range(start[group], start[group + 1]):
                 block[i, int(ints["group_species"][e])].append((source, count * floats["group_excess"][e]))
+    for term in (*ints["table_term"], *ints["series_term"]):  # what pressure does: by the total alone
+        for i, count in net[ints["term_reaction"][term]]:
+            total[i, 0].append((first + int(term), float(count)))

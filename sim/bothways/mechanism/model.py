@@ -70,9 +70,9 @@ class Reaction:
                 nu[name] = nu.get(name, 0) + sign * count
         return {name: count for name, count in nu.items() if count}
 
-    def forward_constant(self, temperature: float, partner: float = 1.0) -> float:
-        """Sum of the terms' k at T [K], each at that partner concentration [mol/m3]; m3, mol, s."""
-        return sum(term.law.k(temperature, partner if term.partner else 1.0) for term in self.terms)
+    def forward_constant(self, temperature: float, partner: float = 1.0, pressure: float = 1e5) -> float:
+        """Sum of the terms' k at T [K], each at that partner concentration [mol/m3] and pressure [Pa]; m3, mol, s."""
+        return sum(term.law.k(temperature, partner if term.partner else 1.0, pressure) for term in self.terms)
 
 
 @dataclass(frozen=True)

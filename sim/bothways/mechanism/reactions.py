@@ -7,15 +7,18 @@ from typing import Any
 
 import numpy as np
 
+from ..constants import GAS_CONSTANT
 from ..entry import Entry
 from ..errors import InputError, hint
-from ..rates import Arrhenius, LawContext, read_law, says_fall_off
+from ..rates import OWN_PARTNER, PRESSURE, Arrhenius, LawContext, partner_of, read_law
 from ..rates.arrhenius import read_expression
 from ..units import UnitSystem
 from .equation import Equation, parse_equation
 from .model import Partner, Reaction, Species, Term
 
 _REVERSE_WORDS = re.compile(r"reverse|backward|(^|_)(rev|k_?(r|b|rev))(_|$)", re.IGNORECASE)
+LARGEST_EFFICIENCY = 1e4
+"""A collision efficiency above this [-] is taken for a slip."""
 _UNLIMITED = 200.0, 3000.0
 """Temperatures [K] that laws are checked over where the potentials' data have no ends."""
 
@@ -109,18 +112,23 @@ def _needless(entry: Entry) -> InputError:
                        remedy="write + M on both sides, use a fall-off law, or leave the key out")
 
 
+_WHY_NO_M = {OWN_PARTNER: ("fall-off reaction", "the law says that a partner takes part"),
+             PRESSURE: ("law of pressure", "the pressure, whatever the gas is made of, stands for partners")}
+
+
 def _term(entry: Entry, equation: Equation, species: Mapping[str, Species], shared: Partner | None,
           several: bool) -> Term:
     _refuse_reverse(entry)
-    fall_off = says_fall_off(entry)
-    if fall_off and equation.partner:
-        raise entry.error("M stands in the equation of a fall-off reaction", expected="no M",
-                          remedy="leave M out of the equation: the law says that a partner takes part")
+    kind = partner_of(entry)
+    if equation.partner and kind in _WHY_NO_M:
+        of, why = _WHY_NO_M[kind]
+        raise entry.error(f"M stands in the equation of a {of}", expected="no M",
+                          remedy=f"leave M out of the equation: {why}")
     order = sum(count for _, count in equation.reactants)
     law = read_law(entry, LawContext(order, equation.partner, several))
     own = _partner_keys(entry, species)
     entry.done()
-    if not (fall_off or equation.partner):
+    if not (kind == OWN_PARTNER or equation.partner):
         if own is not None:
             raise _needless(entry)
         return Term(law)
@@ -129,6 +137,10 @@ def _term(entry: Entry, equation: Equation, species: Mapping[str, Species], shar
 
 def _partner_keys(entry: Entry, species: Mapping[str, Species]) -> Partner | None:
     efficiency = entry.named_numbers("collision_efficiency", "species", species, default=None)
+    for name, value in (efficiency or {}).items():
+        if value > LARGEST_EFFICIENCY:
+            raise entry.error(f"{value:g} for {name}", expected=f"a number from 0 to {LARGEST_EFFICIENCY:g}",
+                              remedy="correct the value", key="collision_efficiency")
     single = entry.text("collision_partner", None)
     if efficiency is not None and single is not None:
         raise entry.error("collision_efficiency and collision_partner are both stated", expected="one of them",
@@ -160,7 +172,7 @@ def _check_laws(reaction: Reaction, entry: Entry, fits: Mapping[str, tuple[float
         if fault:
             raise entry.error(f"{fault.problem} at {fault.temperature:.4g} K", expected=fault.expected,
                               remedy="correct its numbers", key="forward" + (f"[{k}]" if len(reaction.terms) > 1 else ""))
-    if any(e.sign < 0 for term in reaction.terms for e in term.law.expressions()):
+    if len(reaction.terms) > 1 and any(e.sign < 0 for term in reaction.terms for e in term.law.expressions()):
         _check_sum(reaction, entry, temperatures)
 
 
@@ -172,7 +184,8 @@ def _grid(low: float, high: float) -> tuple[float, ...]:
 def _check_sum(reaction: Reaction, entry: Entry, temperatures: Sequence[float]) -> None:
     for temperature in temperatures:
         for partner in (1e-3, 1.0, 1e3):
-            if not reaction.forward_constant(temperature, partner) > 0:
+            pressure = partner * GAS_CONSTANT * temperature
+            if not reaction.forward_constant(temperature, partner, pressure) > 0:
                 raise entry.error(f"the sum of the forward terms is not positive at {temperature:.4g} K",
                                   expected=f"a positive sum from {temperatures[0]:g} to {temperatures[-1]:g} K",
                                   remedy="correct the terms", key="forward")

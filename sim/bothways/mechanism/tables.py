@@ -8,7 +8,8 @@ from ..constants import GAS_CONSTANT
 from ..kernels import layout
 from ..thermo.polynomial import extended
 from .jacobian_sums import jacobian_sums
-from .model import Mechanism, Partner
+from .law_tables import law_tables
+from .model import Mechanism
 
 _REDUCTION_TEMPERATURES = np.array([300.0, 500.0, 1000.0, 2000.0, 3000.0])
 _LARGEST_SUM = 650.0  # of ln E over one side; exp overflows at 709
@@ -44,7 +45,7 @@ def _build(mechanism: Mechanism) -> Tables:
     floats: dict[str, np.ndarray] = {"standard": np.array([mechanism.standard_pressure])}
     _thermo(mechanism, ints, floats)
     sides = _sides(mechanism, ints)
-    _terms(mechanism, ints, floats)
+    law_tables(mechanism, ints, floats)
     _stoichiometry(mechanism, ints, floats)
     jacobian_sums(mechanism, ints, floats)
     packed_ints, packed_floats, work_size = _pack(mechanism, ints, floats)
@@ -102,51 +103,6 @@ def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
     return sides
 
 
-def _terms(mechanism: Mechanism, ints: dict, floats: dict) -> None:
-    """Terms, expressions and partners: the first term of every reaction comes first, in the reactions' order."""
-    ordered = [(j, r.terms[0]) for j, r in enumerate(mechanism.reactions)]
-    ordered += [(j, term) for j, r in enumerate(mechanism.reactions) for term in r.terms[1:]]
-    expressions = [term.law.expressions()[0] for _, term in ordered]
-    groups: dict[tuple, int] = {}
-    bodies, falls, kinds, parameters = [], [], [], []
-    for t, (_, term) in enumerate(ordered):
-        parts = term.law.expressions()
-        if term.partner is None:
-            continue
-        group = groups.setdefault(_group_key(mechanism, term.partner), len(groups))
-        if len(parts) == 1:
-            bodies.append((t, group))
-        else:
-            falls.append((t, len(expressions), group))
-            expressions.append(parts[1])
-            kind, values = term.law.broadening()  # type: ignore[attr-defined]
-            kinds.append(kind)
-            parameters += values
-    ints["term_reaction"] = np.array([j for j, _ in ordered])
-    ints["body_term"], ints["body_group"] = _columns(bodies, 2)
-    ints["fall_term"], ints["fall_low"], ints["fall_group"] = _columns(falls, 3)
-    ints["fall_kind"], floats["fall_parameter"] = np.array(kinds), np.array(parameters)
-    floats["log_A"], floats["power"], floats["theta"], sign = (np.array(c, dtype=float) for c in _columns(expressions, 4))
-    floats["term_sign"] = sign[: len(ordered)]
-    _groups(list(groups), ints, floats)
-
-
-def _columns(rows: list, width: int) -> list[list]:
-    return [[row[k] for row in rows] for k in range(width)]
-
-
-def _group_key(mechanism: Mechanism, partner: Partner) -> tuple:
-    excess = {mechanism.index(name): value - partner.default for name, value in partner.efficiency.items()}
-    return partner.default, tuple(sorted((k, e) for k, e in excess.items() if e))
-
-
-def _groups(keys: list[tuple], ints: dict, floats: dict) -> None:
-    floats["group_default"] = np.array([default for default, _ in keys])
-    ints["group_start"] = np.cumsum([0] + [len(named) for _, named in keys])
-    ints["group_species"] = np.array([k for _, named in keys for k, _ in named])
-    floats["group_excess"] = np.array([e for _, named in keys for _, e in named])
-
-
 def _stoichiometry(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     rows: list[list[tuple[int, int]]] = [[] for _ in mechanism.species]
     for j, reaction in enumerate(mechanism.reactions):
@@ -162,7 +118,7 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
              "EXPRESSIONS": len(floats["log_A"]), "TERMS": len(ints["term_reaction"]),
              "BODIES": len(ints["body_term"]), "FALLOFFS": len(ints["fall_term"]),
              "GROUPS": len(floats["group_default"]), "LONG": len(ints["long_side"]),
-             "BLOCK": len(ints["block_row"])}
+             "BLOCK": len(ints["block_row"]), "CURVES": len(ints["curve_term"]), "COLUMNS": len(ints["column_start"]) - 1}
     header = [sizes[name] for name in layout.SIZES]
     lengths = [[np.size(ints[name]) for name in layout.INTS], [np.size(floats[name]) for name in layout.FLOATS],
                _work_lengths(sizes)]
@@ -175,13 +131,16 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
 
 def _work_lengths(sizes: dict[str, int]) -> list[int]:
     n, r, t, x, fall = (sizes[k] for k in ("SPECIES", "REACTIONS", "TERMS", "EXPRESSIONS", "FALLOFFS"))
-    by_name = {"seen": 2, "log_scale": n + 1, "scale": n + 1, "inverse_scale": n + 1, "scale_slope": n + 1, "activity": n + 1,
+    curves, columns = sizes["CURVES"], sizes["COLUMNS"]
+    by_name = {"seen": 2, "log_scale": n + 1, "scale": n + 1, "inverse_scale": n + 1, "scale_slope": n + 1,
+               "activity": n + 1, "curve_centre": curves, "curve_centre_slope": curves, "curve_factor": curves,
+               "pressure": 1, "column": columns, "column_slope": columns,
                "log_k": x, "k_limit": x, "k_slope": x, "log_centre": fall, "log_centre_slope": fall,
                "centre_exponent": 3 * fall, "centre_part": 3 * fall, "log_broadening": fall, "broadening": fall,
                "partner": sizes["GROUPS"], "log_partner": sizes["GROUPS"], "k": t, "k_by_T": t, "k_by_M": t,
                "partial": 6 * r + sizes["LONG"] + t, "block": sizes["BLOCK"] + n}
     of_species = {"gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T", "unknown",
-                  "column"}
+                  "border_column"}
     return [by_name.get(name, n if name in of_species else r) for name in layout.WORK]
 
 

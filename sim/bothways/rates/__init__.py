@@ -1,16 +1,16 @@
 """Forward rate laws: one file a law, registered here.
 
-A law is a module or class with NAME (the value of `law` in a file), FALL_OFF (whether the law itself says that a
-partner takes part) and read(entry, context), which returns a frozen object after `law.Law`.
+A law is a module or class with NAME (the value of `law` in a file), PARTNER (where its partner stands: see law.py) and
+read(entry, context), which returns a frozen object after `law.Law`.
 """
 
 from ..entry import Entry
-from . import arrhenius, falloff
+from . import activated, arrhenius, chebyshev, falloff, pressure_table, sri
 from .arrhenius import Arrhenius
 from .falloff import FallOff
-from .law import Fault, Law, LawContext
+from .law import IN_EQUATION, OWN_PARTNER, PRESSURE, Fault, Law, LawContext
 
-_LAWS = {law.NAME: law for law in (arrhenius, falloff.Lindemann, falloff.Troe)}
+_LAWS = {law.NAME: law for law in (arrhenius, falloff.Lindemann, falloff.Troe, sri, activated, pressure_table, chebyshev)}
 
 
 def read_law(entry: Entry, context: LawContext) -> Law:
@@ -18,9 +18,9 @@ def read_law(entry: Entry, context: LawContext) -> Law:
     return law_named(entry).read(entry, context)
 
 
-def says_fall_off(entry: Entry) -> bool:
-    """Whether the law that a table names has a partner of its own."""
-    return law_named(entry).FALL_OFF
+def partner_of(entry: Entry) -> str:
+    """Where the partner of the law that a table names stands: IN_EQUATION, OWN_PARTNER or PRESSURE."""
+    return law_named(entry).PARTNER
 
 
 def law_named(entry: Entry):
@@ -28,4 +28,5 @@ def law_named(entry: Entry):
     return _LAWS[entry.text("law", choices=tuple(_LAWS))]
 
 
-__all__ = ["Arrhenius", "FallOff", "Fault", "Law", "LawContext", "read_law", "says_fall_off"]
+__all__ = ["IN_EQUATION", "OWN_PARTNER", "PRESSURE", "Arrhenius", "FallOff", "Fault", "Law", "LawContext", "partner_of",
+           "read_law"]

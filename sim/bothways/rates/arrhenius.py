@@ -11,10 +11,10 @@ from dataclasses import dataclass
 from ..constants import GAS_CONSTANT
 from ..entry import Entry
 from ..errors import shown
-from .law import Expression, Fault, Law, LawContext
+from .law import IN_EQUATION, Expression, Fault, Law, LawContext
 
 NAME = "Arrhenius"
-FALL_OFF = False
+PARTNER = IN_EQUATION
 LARGEST = 1e200
 """A rate constant above this [m3, mol, s of its order] is taken for a slip; products with it could overflow."""
 
@@ -28,7 +28,7 @@ class Arrhenius(Law):
     Ea: float = 0.0
     T_ref: float = 1.0
 
-    def k(self, temperature: float, partner: float = 1.0) -> float:
+    def k(self, temperature: float, partner: float = 1.0, pressure: float = 1e5) -> float:
         """k at a temperature [K] times the concentration of the partner [mol/m3], where there is one."""
         power = (temperature / self.T_ref) ** self.n
         return self.A * power * math.exp(-self.Ea / (GAS_CONSTANT * temperature)) * partner

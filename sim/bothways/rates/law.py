@@ -4,6 +4,9 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 from typing import NamedTuple, Protocol
 
+IN_EQUATION, OWN_PARTNER, PRESSURE = "in the equation", "of its own", "pressure"
+"""Where a law's partner stands: as M in the equation if at all, in the law itself, or nowhere since pressure counts."""
+
 
 class Expression(NamedTuple):
     """One exponential of the kernels: sign · exp(log_A + n ln T - theta/T), SI units, theta [K]."""
@@ -15,10 +18,33 @@ class Expression(NamedTuple):
 
 
 class Broadening(NamedTuple):
-    """How a fall-off curve is broadened: `kind` as the kernel counts them, and its parameters (4 numbers)."""
+    """A fall-off curve after Lindemann or Troe: `kind` as the kernel counts them, and its parameters (4 numbers)."""
 
     kind: int
     parameters: tuple[float, float, float, float]
+
+
+class Curve(NamedTuple):
+    """Any other curve between two limits: width rule as the kernel counts them, whether it is that of a chemically
+    activated channel, and the centre's parameters (8 numbers, see kernels/falloff.py)."""
+
+    width: int
+    activated: bool
+    parameters: tuple[float, ...]
+
+
+class PressureNodes(NamedTuple):
+    """A pressure table: rising ln p (p in Pa), and how many of the law's expressions, in order, belong to each."""
+
+    log_p: tuple[float, ...]
+    counts: tuple[int, ...]
+
+
+class Series(NamedTuple):
+    """A Chebyshev series of ln k: window (1/T low and high end, ln p low and high end), rows in T, columns in p."""
+
+    window: tuple[float, float, float, float]
+    coefficients: tuple[tuple[float, ...], ...]
 
 
 class Fault(NamedTuple):
@@ -41,11 +67,19 @@ class LawContext:
 class Law(Protocol):
     """A rate law: plain k for reading and testing, and its parts for the kernels."""
 
-    def k(self, temperature: float, partner: float = 1.0) -> float:
-        """The forward rate constant at T [K] and partner concentration [mol/m3], in m3, mol, s of the order."""
+    def k(self, temperature: float, partner: float = 1.0, pressure: float = 1e5) -> float:
+        """The forward rate constant at T [K], partner concentration [mol/m3] and pressure [Pa]; m3, mol, s."""
 
     def expressions(self) -> tuple[Expression, ...]:
-        """One exponential, or for fall-off two: the high- and the low-pressure limit."""
+        """One exponential; of a curve two, the high- and the low-pressure limit; of a pressure table one a row."""
+
+    def part(self) -> Broadening | Curve | PressureNodes | Series | None:
+        """What the kernels need besides the expressions; None where k is the expression itself (times a partner)."""
+        return None
+
+    def outside(self, temperature: float, pressure: float) -> str:
+        """What is wrong with starting a run at T [K] and p [Pa]; empty where the law holds there."""
+        return ""
 
     def fault(self, temperatures: Sequence[float]) -> Fault | None:
         """The first fault at one of the rising temperatures [K]; asked once, when a mechanism is read.

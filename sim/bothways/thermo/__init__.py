@@ -6,11 +6,13 @@ A form is a module with NAME (the value of `form` in a file) and read(entry), wh
 
 from typing import Protocol
 
+import numpy as np
+
 from ..entry import Entry
-from . import constant_cp, nasa7
+from . import constant_cp, nasa7, nasa9, shomate
 from .polynomial import LARGEST, Ranges, at, fault
 
-_FORMS = {module.NAME: module for module in (nasa7, constant_cp)}
+_FORMS = {module.NAME: module for module in (nasa7, nasa9, shomate, constant_cp)}
 
 
 class Potential(Protocol):
@@ -28,7 +30,8 @@ def read_potential(entry: Entry, least_cp: float = 0.0) -> Potential:
     module = _FORMS[entry.text("form", choices=tuple(_FORMS))]
     potential = module.read(entry)
     entry.done()
-    problem = fault(potential.ranges(), least_cp)
+    with np.errstate(all="ignore"):  # what leaves the range of floating-point numbers is reported here
+        problem = fault(potential.ranges(), least_cp)
     if problem:
         raise entry.error(problem, expected=f"cp/R above {least_cp:g}, and cp/R, h/RT and s/R within ±{LARGEST:g}",
                           remedy="correct the coefficients or the range")

@@ -67,14 +67,13 @@ def closed(ranges: Ranges) -> tuple[Ranges, tuple[Shift, ...]]:
 
 def fault(ranges: Ranges, least_cp: float) -> str:
     """What makes ranges unusable: cp/R not above `least_cp`, values not finite or absurd; empty if nothing."""
-    with np.errstate(all="ignore"):
-        for k, row in enumerate(ranges.rows):
-            for T in np.linspace(*np.clip(ranges.boundaries[k : k + 2], *LIMITS), 5):
-                values = dict(zip(("cp/R", "h/RT", "s/R"), cp_h_s(row, T), strict=True))
-                wrong = [name for name, value in values.items() if not abs(value) < LARGEST]
-                if wrong or values["cp/R"] <= least_cp:
-                    name = wrong[0] if wrong else "cp/R"
-                    return f"{name} is {values[name]:.4g} at {T:.4g} K"
+    for k, row in enumerate(ranges.rows):
+        for T in np.linspace(*np.clip(ranges.boundaries[k : k + 2], *LIMITS), 5):
+            values = dict(zip(("cp/R", "h/RT", "s/R"), cp_h_s(row, T), strict=True))
+            wrong = [name for name, value in values.items() if not abs(value) < LARGEST]
+            if wrong or values["cp/R"] <= least_cp:
+                name = wrong[0] if wrong else "cp/R"
+                return f"{name} is {values[name]:.4g} at {T:.4g} K"
     return ""
 
 

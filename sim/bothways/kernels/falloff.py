@@ -1,0 +1,205 @@
+"""Fall-off: k between a low- and a high-pressure limit, and its derivatives.
+
+Two groups: Lindemann's and Troe's, which published sets use by the hundred, and every other curve (further width rules,
+Stewart, Larson and Golden's, chemically activated channels), so that the first group's loops ask no more questions.
+rates/falloff.py, rates/sri.py and rates/activated.py state the formulas.
+"""
+
+import math
+
+from ..compiled import compiled
+from . import layout as at
+from .elementary import LN10, SMALLEST, exp_array
+from .layout import view
+
+SMALLEST_PARTNER = 1e-300
+_SMALLEST_CENTRE = 1e-30
+_LARGEST_EXPONENT = 700.0
+
+_FALL_TERM = at.offset_slot(at.INTS, "fall_term")
+_FALL_LOW = at.offset_slot(at.INTS, "fall_low")
+_FALL_GROUP = at.offset_slot(at.INTS, "fall_group")
+_FALL_KIND = at.offset_slot(at.INTS, "fall_kind")
+_CURVE_TERM = at.offset_slot(at.INTS, "curve_term")
+_CURVE_LOW = at.offset_slot(at.INTS, "curve_low")
+_CURVE_GROUP = at.offset_slot(at.INTS, "curve_group")
+_CURVE_WIDTH = at.offset_slot(at.INTS, "curve_width")
+_CURVE_ACTIVATED = at.offset_slot(at.INTS, "curve_activated")
+_FALL_PARAMETER = at.offset_slot(at.FLOATS, "fall_parameter")
+_CURVE_PARAMETER = at.offset_slot(at.FLOATS, "curve_parameter")
+_SEEN = at.offset_slot(at.WORK, "seen")
+_LOG_K = at.offset_slot(at.WORK, "log_k")
+_K_LIMIT = at.offset_slot(at.WORK, "k_limit")
+_K_SLOPE = at.offset_slot(at.WORK, "k_slope")
+_CENTRE_EXPONENT = at.offset_slot(at.WORK, "centre_exponent")
+_CENTRE_PART = at.offset_slot(at.WORK, "centre_part")
+_LOG_CENTRE = at.offset_slot(at.WORK, "log_centre")
+_LOG_CENTRE_SLOPE = at.offset_slot(at.WORK, "log_centre_slope")
+_LOG_BROADENING = at.offset_slot(at.WORK, "log_broadening")
+_BROADENING = at.offset_slot(at.WORK, "broadening")
+_CURVE_CENTRE = at.offset_slot(at.WORK, "curve_centre")
+_CURVE_CENTRE_SLOPE = at.offset_slot(at.WORK, "curve_centre_slope")
+_CURVE_FACTOR = at.offset_slot(at.WORK, "curve_factor")
+_PARTNER = at.offset_slot(at.WORK, "partner")
+_LOG_PARTNER = at.offset_slot(at.WORK, "log_partner")
+_K = at.offset_slot(at.WORK, "k")
+_K_BY_T = at.offset_slot(at.WORK, "k_by_T")
+_K_BY_M = at.offset_slot(at.WORK, "k_by_M")
+
+
+@compiled
+def set_centres(T, ints, floats, work):
+    """log10 F_cent and its slope of every fall-off, as they are at T [K]."""
+    kind, parameter = view(ints, ints, _FALL_KIND), view(floats, ints, _FALL_PARAMETER)
+    log_centre, slope = view(work, ints, _LOG_CENTRE), view(work, ints, _LOG_CENTRE_SLOPE)
+    exponent, parts = view(work, ints, _CENTRE_EXPONENT), view(work, ints, _CENTRE_PART)
+    for q in range(kind.size):
+        exponent[3 * q] = -T * parameter[4 * q + 1]
+        exponent[3 * q + 1] = -T * parameter[4 * q + 2]
+        exponent[3 * q + 2] = -parameter[4 * q + 3] / T
+    exp_array(exponent, parts)
+    for e in range(parts.size):
+        if exponent[e] < SMALLEST:  # a published T* of 1e-30 means zero, and its slope too
+            parts[e] = 0.0
+    for q in range(kind.size):
+        if kind[q] == 1:
+            a = parameter[4 * q]
+            x3, x1, x2 = (1.0 - a) * parts[3 * q], a * parts[3 * q + 1], parts[3 * q + 2]
+            centre = x3 + x1 + x2
+            centre_slope = -x3 * parameter[4 * q + 1] - x1 * parameter[4 * q + 2] + x2 * parameter[4 * q + 3] / (T * T)
+            if centre < _SMALLEST_CENTRE:
+                centre, centre_slope = _SMALLEST_CENTRE, 0.0
+            log_centre[q] = math.log(centre) / LN10
+            slope[q] = centre_slope / (centre * LN10)
+    _set_curve_centres(T, ints, floats, work)
+
+
+@compiled
+def _set_curve_centres(T, ints, floats, work):
+    """log10 of the centre, its slope, and ln of the factor beside it, of every other curve."""
+    parameter, centre = view(floats, ints, _CURVE_PARAMETER), view(work, ints, _CURVE_CENTRE)
+    slope, factor = view(work, ints, _CURVE_CENTRE_SLOPE), view(work, ints, _CURVE_FACTOR)
+    log_T = math.log(T)
+    for u in range(centre.size):
+        p = parameter[8 * u : 8 * u + 8]
+        x1, x2 = p[0] * math.exp(-T * p[1]), p[2] * math.exp(-T * p[3])
+        x3 = p[4] * math.exp(min(-p[5] / T, _LARGEST_EXPONENT))
+        value, by_T = x1 + x2 + x3, x3 * p[5] / (T * T) - x1 * p[1] - x2 * p[3]
+        if value < _SMALLEST_CENTRE:
+            value, by_T = _SMALLEST_CENTRE, 0.0
+        centre[u] = math.log(value) / LN10
+        slope[u] = by_T / (value * LN10)
+        factor[u] = p[6] + p[7] * log_T
+
+
+@compiled
+def _broadening(log_reduced, log_centre):
+    """log10 F of Troe's form and its derivatives by log10 P_r and by log10 F_cent (Gilbert, Luther, Troe 1983)."""
+    x = log_reduced - 0.4 - 0.67 * log_centre
+    n = 0.75 - 1.27 * log_centre
+    d = n - 0.14 * x
+    s = d * d + x * x
+    q = d * d / s
+    twist = 2.0 * log_centre * d * x / (s * s)
+    return log_centre * q, -twist * n, q + twist * (0.67 * d - 1.1762 * x)
+
+
+@compiled
+def _width(rule, log_reduced, log_centre):
+    """log10 F beside its factor, and derivatives as `_broadening`, by a rule: 0 Troe, 1 IUPAC, 2 width 1 (JPL, SRI)."""
+    if rule == 0:
+        return _broadening(log_reduced, log_centre)
+    n, n_slope = (0.75 - 1.27 * log_centre, -1.27) if rule == 1 else (1.0, 0.0)
+    s = n * n + log_reduced * log_reduced
+    q = n * n / s
+    twist = 2.0 * log_centre * n * log_reduced / (s * s)
+    return log_centre * q, -twist * n, q + twist * log_reduced * n_slope
+
+
+@compiled
+def fall_off_constants(ints, floats, work):
+    """k of every term in fall-off, from the limits at this temperature and the partners."""
+    k, limit, partner = view(work, ints, _K), view(work, ints, _K_LIMIT), view(work, ints, _PARTNER)
+    term, low, group = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(ints, ints, _FALL_GROUP)
+    kind, log_k, log_centre = view(ints, ints, _FALL_KIND), view(work, ints, _LOG_K), view(work, ints, _LOG_CENTRE)
+    log_factor, factor = view(work, ints, _LOG_BROADENING), view(work, ints, _BROADENING)
+    log_partner = view(work, ints, _LOG_PARTNER)
+    for q in range(term.size):
+        log_factor[q] = 0.0
+        if kind[q] == 1:
+            log_reduced = log_k[low[q]] + log_partner[group[q]] - log_k[term[q]]
+            log_F, _, _ = _broadening(log_reduced / LN10, log_centre[q])
+            log_factor[q] = LN10 * log_F
+    exp_array(log_factor, factor)
+    for q in range(term.size):
+        t, m = term[q], partner[group[q]]
+        k[t] = limit[low[q]] * m / (1.0 + m * limit[low[q]] / limit[t]) * factor[q]
+    _curve_constants(ints, floats, work)
+
+
+@compiled
+def _curve_constants(ints, floats, work):
+    """k of every term on another curve."""
+    k, limit, partner = view(work, ints, _K), view(work, ints, _K_LIMIT), view(work, ints, _PARTNER)
+    term, low, group = view(ints, ints, _CURVE_TERM), view(ints, ints, _CURVE_LOW), view(ints, ints, _CURVE_GROUP)
+    rule, activated = view(ints, ints, _CURVE_WIDTH), view(ints, ints, _CURVE_ACTIVATED)
+    log_k, log_partner = view(work, ints, _LOG_K), view(work, ints, _LOG_PARTNER)
+    centre, factor = view(work, ints, _CURVE_CENTRE), view(work, ints, _CURVE_FACTOR)
+    for u in range(term.size):
+        t, l, m = term[u], low[u], partner[group[u]]
+        log_reduced = log_k[l] + log_partner[group[u]] - log_k[t]
+        log_F, _, _ = _width(rule[u], log_reduced / LN10, centre[u])
+        F = math.exp(LN10 * log_F + factor[u])
+        k[t] = limit[l] * (1.0 if activated[u] == 1 else m) / (1.0 + m * limit[l] / limit[t]) * F
+
+
+@compiled
+def fall_off_slopes(ints, floats, work):
+    """dk/dT at constant partner and dk/d[M] of every term in fall-off; k must be set."""
+    k, by_T, by_M = view(work, ints, _K), view(work, ints, _K_BY_T), view(work, ints, _K_BY_M)
+    limit, slope, partner = view(work, ints, _K_LIMIT), view(work, ints, _K_SLOPE), view(work, ints, _PARTNER)
+    term, low, group = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(ints, ints, _FALL_GROUP)
+    kind, log_k, log_centre = view(ints, ints, _FALL_KIND), view(work, ints, _LOG_K), view(work, ints, _LOG_CENTRE)
+    centre_slope, factor = view(work, ints, _LOG_CENTRE_SLOPE), view(work, ints, _BROADENING)
+    log_partner = view(work, ints, _LOG_PARTNER)
+    for q in range(term.size):
+        t, l, m = term[q], low[q], partner[group[q]]
+        response = 1.0 / (1.0 + m * limit[l] / limit[t])  # d ln k/d ln P_r
+        per_partner = limit[l] * response * factor[q]  # k/[M]
+        by_centre = 0.0
+        if kind[q] == 1:
+            log_reduced = log_k[l] + log_partner[group[q]] - log_k[t]
+            _, by_reduced, by_log_centre = _broadening(log_reduced / LN10, log_centre[q])
+            response += by_reduced if m > SMALLEST_PARTNER else 0.0
+            by_centre = LN10 * by_log_centre * centre_slope[q]
+        by_T[t] = k[t] * (slope[t] + (slope[l] - slope[t]) * response + by_centre)
+        by_M[t] = per_partner * response
+    _curve_slopes(ints, floats, work)
+
+
+@compiled
+def _curve_slopes(ints, floats, work):
+    """dk/dT and dk/d[M] of every term on another curve.
+
+    An activated channel is the same curve without its factor [M], so d ln k/d ln P_r is less by one.
+    """
+    k, by_T, by_M = view(work, ints, _K), view(work, ints, _K_BY_T), view(work, ints, _K_BY_M)
+    limit, slope, partner = view(work, ints, _K_LIMIT), view(work, ints, _K_SLOPE), view(work, ints, _PARTNER)
+    term, low, group = view(ints, ints, _CURVE_TERM), view(ints, ints, _CURVE_LOW), view(ints, ints, _CURVE_GROUP)
+    rule, activated = view(ints, ints, _CURVE_WIDTH), view(ints, ints, _CURVE_ACTIVATED)
+    log_k, log_partner = view(work, ints, _LOG_K), view(work, ints, _LOG_PARTNER)
+    centre, centre_slope = view(work, ints, _CURVE_CENTRE), view(work, ints, _CURVE_CENTRE_SLOPE)
+    parameter, T = view(floats, ints, _CURVE_PARAMETER), view(work, ints, _SEEN)[0]
+    factor = view(work, ints, _CURVE_FACTOR)
+    for u in range(term.size):
+        t, l, m = term[u], low[u], partner[group[u]]
+        log_reduced = log_k[l] + log_partner[group[u]] - log_k[t]
+        log_F, by_reduced, by_centre = _width(rule[u], log_reduced / LN10, centre[u])
+        by_reduced = by_reduced if m > SMALLEST_PARTNER else 0.0
+        share = 1.0 / (1.0 + m * limit[l] / limit[t])
+        by_T[t] = k[t] * (slope[t] + (slope[l] - slope[t]) * (share + by_reduced)
+                          + LN10 * by_centre * centre_slope[u] + parameter[8 * u + 7] / T)
+        if activated[u] == 1:
+            by_M[t] = k[t] * (by_reduced / max(m, SMALLEST_PARTNER) - share * limit[l] / limit[t])
+        else:
+            by_M[t] = limit[l] * share * math.exp(LN10 * log_F + factor[u]) * (share + by_reduced)
