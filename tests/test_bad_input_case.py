@@ -196,6 +196,26 @@ def test_value(refusals: Refusals, changes: tuple, entry: str, texts: tuple) -> 
     check(refusals, changes, entry, texts)
 
 
+NUMBERS = ["vessel.volume", "vessel.thermal_inertia", "start.temperature", "start.pressure", "start.mole_ratio.Q", "until.time",
+           "solver.rtol", "solver.atol", "start.mass_ratio.Q", "start.amount.Q", "start.concentration.Q", "start.fuel.Q",
+           "start.oxidiser.O2", "start.equivalence_ratio"]
+
+
+@pytest.mark.parametrize("place", NUMBERS)
+@pytest.mark.parametrize("value", [math.nan, math.inf, -math.inf, 10**400, True, [1.0], "x", "nan"])
+def test_number_that_is_none(place: str, value: object) -> None:
+    table, key, *name = place.split(".")
+    document = parse_toml(changed(CASE, ('mechanism = "small.toml"\n', "")))
+    if name or key == "equivalence_ratio":
+        del document["start"]["mole_ratio"]
+    if key in ("fuel", "oxidiser", "equivalence_ratio"):
+        document["start"] |= {"fuel": {"O": 1}, "oxidiser": {"O2": 1}, "equivalence_ratio": 1}
+    document[table][key] = {name[0]: value} if name else value
+    with pytest.raises(InputError) as caught:
+        build_case(document, "c.toml", mechanism=SMALL)
+    assert str(caught.value).startswith(f"c.toml: {place}: ") and "; expected " in str(caught.value)
+
+
 KINDS = [
     row("open vessel", '"adiabatic"', '"open"', "vessel.heat", "'open' is not known", '"isothermal" or "adiabatic"'),
     row("misspelt", '"adiabatic"', '"adiabatik"', "vessel.heat", "'adiabatik' is not known (nearest: adiabatic)"),

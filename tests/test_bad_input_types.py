@@ -9,6 +9,8 @@ from hypothesis import strategies as st
 from bothways import BothwaysError, InputError
 from bothways import build_mechanism as build
 from bothways.mechanism.toml_reader import parse_toml
+from invented import building_blocks
+from invented_laws import every_law
 from mutations import mutated
 from refusals import ARRHENIUS_2, CONSTANT_Q, MECHANISM, R1, R2, R3, R4, Refusals, changed, row
 
@@ -105,11 +107,15 @@ def test_documents_made_in_python(document: object, text: str) -> None:
 # ---- anything anywhere
 
 
-@settings(max_examples=400, deadline=None, suppress_health_check=[HealthCheck.too_slow])
+DOCUMENTS = {"small": parse_toml(MECHANISM), "building blocks": building_blocks(), "every law": every_law()}
+
+
+@pytest.mark.parametrize("name", DOCUMENTS)
+@settings(max_examples=250, deadline=None, suppress_health_check=[HealthCheck.too_slow])
 @given(st.data())
-def test_any_value_anywhere_is_accepted_or_refused_by_one_line(data: st.DataObject) -> None:
-    document = mutated(parse_toml(MECHANISM), data)
+def test_any_value_anywhere_is_accepted_or_refused_by_one_line(name: str, data: st.DataObject) -> None:
+    document = mutated(DOCUMENTS[name], data)
     try:
         build(document, "m.toml")
     except BothwaysError as err:
-        assert str(err).startswith("m.toml: ") and str(err).isprintable()
+        assert str(err).startswith("m.toml: ") and str(err).isprintable() and "; " in str(err)

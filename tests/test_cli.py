@@ -13,9 +13,10 @@ import h5py
 import numpy as np
 import pytest
 
-from bothways import InputError, bundled_cases, bundled_mechanisms, cli, read_case, read_trajectory
+from bothways import InputError, bundled_cases, bundled_mechanisms, cli, read_case, read_trajectory, write_trajectory
 from bothways.cli import _parser, main
 from refusals import CASE, MECHANISM, Refusals, changed, meddled
+from trajectories import made
 
 VERBS = next(list(a.choices) for a in _parser()._actions if isinstance(a, argparse._SubParsersAction))
 
@@ -78,6 +79,12 @@ def test_version_tells_where_it_is_installed(capsys: pytest.CaptureFixture[str])
 def test_wrong_usage(refusals: Refusals, arguments: list[str], text: str) -> None:
     refusals.write()
     assert re.search(text, refusals.line(*arguments))
+
+
+def test_one_line_and_the_status_in_a_process_of_its_own(tmp_path: Path) -> None:
+    done = shell("run", "hydrogen-ketle", cwd=tmp_path)
+    assert (done.returncode, done.stdout, done.stderr.count("\n")) == (2, "", 1) and os.listdir(tmp_path) == []
+    assert done.stderr.startswith("bothways: no bundled case and no file 'hydrogen-ketle' (nearest: hydrogen-kettle")
 
 
 def test_no_verb(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
@@ -166,6 +173,34 @@ def test_output_that_appears_during_the_run_is_not_overwritten(refusals: Refusal
     assert main(["run", "case.toml"]) == 2
     assert "run.h5: the file exists already" in refusals.capsys.readouterr().err
     assert Path("run.h5").read_text() == "of someone else"
+
+
+PLOTS = [
+    ((".",), "cannot be read (Is a directory); expected a trajectory written by bothways"),
+    (("no.h5",), "no.h5: cannot be read (No such file or directory); expected a trajectory written by bothways"),
+    (("case.toml",), "case.toml: is not an HDF5 file; expected a trajectory written by bothways"),
+    (("run.h5", "--output", "x.bmp"), "x.bmp: the suffix is '.bmp'; expected .png"),
+    (("run.h5", "--output", "no/x.png"), "there is no folder"), (("run.h5", "--output", "old.png"), "the file exists already"),
+    (("run.png",), "run.png: this file is needed for something else"),
+    (("run.png", "--replace"), "run.png: this file is needed for something else"),
+    (("run.h5", "--species", "Qx"), "unknown species 'Qx'; nearest: Q"),
+    (("run.h5", "--between", "1"), "argument --between: expected 2 arguments; 'bothways plot --help'"),
+    (("run.h5", "--between", "0", "soon"), "--between: 'soon' is no time; expected a time such as"),
+    (("run.h5", "--between", "0", "1 K"), "--between: '1 K' is no time; expected a time such as"),
+    (("run.h5", "--between", "nan", "1"), "--between: 'nan' is not finite; expected two times"),
+    (("run.h5", "--between", "5", "6"), "nothing to draw between 5 s and 6 s; expected two times"),
+    (("run.h5", "--linear", "--log"), "argument --log: not allowed with argument --linear"),
+]
+
+
+@pytest.mark.parametrize("arguments, text", PLOTS)
+def test_what_cannot_be_plotted(refusals: Refusals, arguments: tuple[str, ...], text: str) -> None:
+    refusals.write()
+    for name in ("run.h5", "run.png"):
+        write_trajectory(name, made())
+    Path("old.png").write_text("of someone else")
+    line = refusals.line("plot", *arguments)
+    assert text in line and "; " in line, line
 
 
 def test_trajectories_of_other_programs_are_refused(tmp_path: Path) -> None:

@@ -4,7 +4,10 @@ Every reverse rate is made from the forward rate and K(T); see `run`, `read_case
 """
 
 from .batch import Remark, program_version, run
+from .along import Contributions, contributions
 from .case import Case, build_case, read_case
+from .endpoint import Verdict, verdict
+from .equilibrium import Equilibrium, equilibrium
 from .errors import BothwaysError, InputError, SolverError
 from .mechanism import Mechanism, bundled_cases, bundled_mechanisms, read_mechanism, write_mechanism
 from .mechanism import build as build_mechanism
@@ -13,6 +16,7 @@ from .vessel import Equations
 
 __version__ = program_version()
 
-__all__ = ["BothwaysError", "Case", "Equations", "InputError", "Mechanism", "Remark", "SolverError", "Trajectory",
-           "build_case", "build_mechanism", "bundled_cases", "bundled_mechanisms", "read_case", "read_mechanism",
-           "read_trajectory", "run", "write_mechanism", "write_trajectory"]
+__all__ = ["BothwaysError", "Case", "Contributions", "Equations", "Equilibrium", "InputError", "Mechanism", "Remark",
+           "SolverError", "Trajectory", "Verdict", "build_case", "build_mechanism", "bundled_cases", "bundled_mechanisms",
+           "contributions", "equilibrium", "read_case", "read_mechanism", "read_trajectory", "run", "verdict",
+           "write_mechanism", "write_trajectory"]

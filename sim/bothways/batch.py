@@ -9,6 +9,7 @@ import numpy as np
 
 from .along import rates_along
 from .case import MARGIN_WARN, Case, law_outside, temperatures_outside
+from .endpoint import CLOSEST, Target, Verdict, target_of, verdict_of_state
 from .integrate import OWN_METHODS, Outcome, Status, integrate
 from .mechanism.toml_writer import to_toml
 from .milestones import milestones
@@ -34,7 +35,12 @@ def program_version() -> str:
 
 
 def run(case: Case, told: Callable[[int, float, float], None] | None = None) -> Trajectory:
-    """Runs a case to its end and returns the trajectory.
+    """Runs a case to its end and returns the trajectory; see `run_and_judge`."""
+    return run_and_judge(case, told)[0]
+
+
+def run_and_judge(case: Case, told: Callable[[int, float, float], None] | None = None) -> tuple[Trajectory, Verdict]:
+    """Runs a case to its end and returns the trajectory, and its end held against the equilibrium.
 
     told : called with (steps, time [s], temperature [K]) at each accepted step.
     A run that the solver gave up, or that Ctrl-C ended, returns what there is with `complete` false and `reason`
@@ -43,12 +49,25 @@ def run(case: Case, told: Callable[[int, float, float], None] | None = None) -> 
     equations = case.equations()
     _remark_joins(case)
     _remark(case, [case.charge.temperature])
-    task, recorder = monitored(case, equations), Recorder(case, equations, told)
+    target = target_of(case)
+    task, recorder = monitored(case, equations, _until(case, target)), Recorder(case, equations, told)
     outcome = integrate(task.problem, case.method, recorder)
     columns = recorder.columns()
     _remark(case, list(columns["temperature"][1:]))
     _remark_laws(case, columns)
-    return _trajectory(case, equations, columns, task, outcome)
+    last = verdict_of_state(target, *(columns[name][-1] for name in ("amount", "temperature", "volume")))
+    return _trajectory(case, equations, columns, task, outcome, last), last
+
+
+def _until(case: Case, target: Target) -> Callable[[float, np.ndarray], bool] | None:
+    """When a run to equilibrium may end: well within the distance that counts as landed."""
+    if not case.to_equilibrium:
+        return None
+
+    def landed(t: float, y: np.ndarray) -> bool:
+        return target.distance(y[:-1] / np.sum(y[:-1]), float(y[-1])) <= 0.3 * CLOSEST
+
+    return landed
 
 
 def _remark(case: Case, temperatures: list[float]) -> None:
@@ -81,7 +100,8 @@ def _remark_joins(case: Case) -> None:
                       Remark, stacklevel=3)
 
 
-def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task: Monitored, outcome: Outcome) -> Trajectory:
+def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task: Monitored, outcome: Outcome,
+                last: Verdict) -> Trajectory:
     name, units = POTENTIALS[case.heat, case.holds]
     rise = float(max(np.max(np.diff(columns["potential"]), initial=0.0), 0.0))
     statistics = {"method": case.method, "rtol": case.rtol, "atol": case.atol, "status": outcome.status.value,
@@ -92,11 +112,14 @@ def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task:
         reactions=tuple(str(r.equation) for r in m.reactions), mechanism_name=m.name, mechanism_text=to_toml(m.document),
         case_text=to_toml(case.document), sources=m.sources, statistics=statistics,
         milestones=milestones(case, equations, columns), program_version=program_version(),
-        complete=outcome.status is Status.FINISHED, reason=outcome.reason, extra=_extra(case, columns))
+        complete=outcome.status is Status.FINISHED, reason=outcome.reason, extra=_extra(case, columns, last))
 
 
-def _extra(case: Case, columns: dict[str, Any]) -> dict[str, Any]:
-    """What the file holds besides, as far as it was asked for."""
-    if not case.rates:
-        return {}
-    return dict(rates_along(case.mechanism, columns["amount"], columns["temperature"], columns["volume"]))
+def _extra(case: Case, columns: dict[str, Any], last: Verdict) -> dict[str, Any]:
+    """Equilibrium and verdict, and rates and affinities if they were asked for."""
+    own = last.target.own
+    extra = {"equilibrium_temperature": own.temperature, "equilibrium_pressure": own.pressure,
+             "equilibrium_volume": own.volume, "equilibrium_amount": own.amount, "verdict": f"{last.kind.value}: {last.sentence}"}
+    if case.rates:
+        extra |= rates_along(case.mechanism, columns["amount"], columns["temperature"], columns["volume"])
+    return extra

@@ -10,7 +10,7 @@ import numpy as np
 
 from .charge import Charge, read_charge
 from .contents import Contents
-from .entry import Entry
+from .entry import REQUIRED, Entry
 from .errors import InputError, hint
 from .integrate import DEFAULT_METHOD, METHODS
 from .kernels.equations import HIGHEST_TEMPERATURE
@@ -21,6 +21,8 @@ from .vessel import HEAT, HOLDS, Equations
 
 MARGIN_WARN, MARGIN_ERROR = 10.0, 500.0
 """Temperatures so far outside a fit's range [K] are remarked on, or refused."""
+FOREVER = 1e30
+"""The last time [s] of a run to equilibrium that states none."""
 MOST_INERTIA = 1e6
 """Thermal inertia above this [-] is taken for a slip."""
 
@@ -32,6 +34,7 @@ class Case:
     own_heat_capacity : [J/K] of the vessel, from the thermal inertia of adiabatic calorimetry.
     atol : mole fraction below which accuracy is not asked [-].
     rates : whether rates and affinities of every reaction go to the file.
+    to_equilibrium : whether the run goes on until it has landed at equilibrium, at the latest until `end`.
     """
 
     mechanism: Mechanism
@@ -46,6 +49,7 @@ class Case:
     output: Path | None = None
     also_at: tuple[float, ...] = ()
     rates: bool = False
+    to_equilibrium: bool = False
     document: Mapping[str, Any] = field(default_factory=dict, repr=False)
     file: object = field(default=None, repr=False, compare=False)
 
@@ -94,9 +98,9 @@ def build_case(document: Mapping[str, Any], file: object = None, mechanism: Mech
     charge = read_charge(start, mechanism, holds, volume)
     _check_temperature(start, mechanism, charge)
     _check_laws(start, mechanism, charge)
-    end = _end(top)
+    end, to_equilibrium = _end(top)
     case = Case(mechanism, holds, heat, charge, end, *_solver(top), inertia, *_output(top, file, end),
-                document=copy_document(document), file=file)
+                to_equilibrium, document=copy_document(document), file=file)
     return case
 
 
@@ -130,11 +134,13 @@ def _mechanism(top: Entry, given: Mechanism | None) -> Mechanism:
         raise
 
 
-def _end(top: Entry) -> float:
+def _end(top: Entry) -> tuple[float, bool]:
+    """The last time [s], and whether the run may stop before, once at equilibrium."""
     until = top.table("until")
-    end = until.quantity("time", "time", sign="positive")
+    to_equilibrium = until.flag("equilibrium")
+    end = until.quantity("time", "time", FOREVER if to_equilibrium else REQUIRED, sign="positive")
     until.done()
-    return end
+    return end, to_equilibrium
 
 
 def _solver(top: Entry) -> tuple[float, float, str]:

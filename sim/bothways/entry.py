@@ -8,7 +8,7 @@ from .errors import InputError, closest, hint, shown
 from .units import UnitSystem, finite, parse_quantity
 
 _SI = UnitSystem()
-_REQUIRED: Any = object()
+REQUIRED: Any = object()
 _SIGNS = {"positive": lambda v: v > 0, "not negative": lambda v: v >= 0, "not zero": lambda v: v != 0,
           "any": lambda v: True}
 _NUMBER = {"positive": "a number above 0", "not negative": "a number that is not negative",
@@ -51,11 +51,11 @@ class Entry:
                                  "header, since what follows a [table] header belongs to that table")
         return self.error(f"unknown {what} {shown(name)}{close}", remedy=remedy, key=key)
 
-    def get(self, key: str, default: Any = _REQUIRED, what: str = "a value") -> Any:
+    def get(self, key: str, default: Any = REQUIRED, what: str = "a value") -> Any:
         """The raw value of `key`, or `default`; an error where it is required and missing."""
         self.known.add(key)
         if key not in self.data:
-            return self._missing(key, what) if default is _REQUIRED else default
+            return self._missing(key, what) if default is REQUIRED else default
         if self.data[key] is None:
             raise self.error("the value is None", expected=what, remedy="or leave the key out", key=key)
         return self.data[key]
@@ -65,12 +65,12 @@ class Entry:
         remedy = f"is '{close[0]}' meant to be it?" if close else "add it"
         raise self.error(f"the key '{key}' is missing", expected=what, remedy=remedy)
 
-    def number(self, key: str, default: Any = _REQUIRED, sign: str = "any") -> Any:
+    def number(self, key: str, default: Any = REQUIRED, sign: str = "any") -> Any:
         """A finite dimensionless number of the given sign."""
         value = self.get(key, default, "a number")
         return value if value is default else self._checked(value, value, key, sign)
 
-    def quantity(self, key: str, kind: str, default: Any = _REQUIRED, sign: str = "any") -> Any:
+    def quantity(self, key: str, kind: str, default: Any = REQUIRED, sign: str = "any") -> Any:
         """The SI value of a number in file units or a string with its unit."""
         value = self.get(key, default, f"a {kind}")
         return value if value is default else self.convert(value, kind, key, sign)
@@ -98,7 +98,7 @@ class Entry:
                              remedy="correct the value", key=key)
         return float(si)
 
-    def text(self, key: str, default: Any = _REQUIRED, choices: Sequence[str] = ()) -> Any:
+    def text(self, key: str, default: Any = REQUIRED, choices: Sequence[str] = ()) -> Any:
         """A string, one of `choices` if these are given."""
         listed = " or ".join([f'"{c}"' for c in choices]) if choices else ""
         value = self.get(key, default, listed or "a text")
@@ -123,14 +123,14 @@ class Entry:
             raise self.error(f"{shown(value)} is neither true nor false", expected="true or false", key=key)
         return value
 
-    def items(self, key: str, default: Any = _REQUIRED, example: str = "") -> tuple[Any, ...]:
+    def items(self, key: str, default: Any = REQUIRED, example: str = "") -> tuple[Any, ...]:
         """The raw members of a list."""
         value = self.get(key, default, example)
         if not isinstance(value, (list, tuple)):
             raise self.error(f"{shown(value)} is not a list", expected=f"a list such as {example}", key=key)
         return tuple(value)
 
-    def texts(self, key: str, default: Any = _REQUIRED) -> tuple[str, ...]:
+    def texts(self, key: str, default: Any = REQUIRED) -> tuple[str, ...]:
         """A list of strings."""
         values = self.items(key, default, '["…", "…"]')
         for value in values:
@@ -139,7 +139,7 @@ class Entry:
             self._check_characters(value, key)
         return values
 
-    def numbers(self, key: str, default: Any = _REQUIRED) -> tuple[float, ...]:
+    def numbers(self, key: str, default: Any = REQUIRED) -> tuple[float, ...]:
         """A list of finite numbers."""
         value = self.get(key, default, "a list of numbers")
         return value if value is default else self.row(value, key)
@@ -153,7 +153,7 @@ class Entry:
                 raise self.error(f"{shown(number)} is not a finite number", expected="a list of finite numbers", key=key)
         return tuple(map(float, value))
 
-    def table(self, key: str, default: Any = _REQUIRED) -> "Entry":
+    def table(self, key: str, default: Any = REQUIRED) -> "Entry":
         """A table within this one."""
         return self.sub(self.get(key, default, "a table"), self._at(key))
 
@@ -162,7 +162,7 @@ class Entry:
         return Entry(data, place, self.file, self.units, self)
 
     def named_numbers(self, key: str, what: str, names: Collection[str] | None = None, kind: str = "",
-                      sign: str = "not negative", default: Any = _REQUIRED) -> Any:
+                      sign: str = "not negative", default: Any = REQUIRED) -> Any:
         """A table of name → number (or quantity of `kind`); `what` a name stands for, and the known `names`."""
         if self.get(key, default, f"a table of numbers, one for each {what}") is default:
             return default

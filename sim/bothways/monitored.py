@@ -1,14 +1,15 @@
 """A case as the integrators take it: plain f and J, and the compiled form with the judge of every step."""
 
+from collections.abc import Callable
 from dataclasses import dataclass, field
 
 import numpy as np
 
 from .case import Case
 from .contents import Contents
+from .equilibrium import conserved_by_reactions
 from .integrate import CompiledSystem, Problem
 from .kernels import callbacks, judge
-from .mechanism import Mechanism
 from .vessel import Equations
 
 TEMPERATURE_ATOL = 1e-12
@@ -30,22 +31,22 @@ class Monitored:
                 "largest_rise_refused": float(head[judge.LARGEST_EXCESS])}
 
 
-def monitored(case: Case, equations: Equations) -> Monitored:
-    """The problem of a case; the state's units are those of `vessel.Equations`."""
+def monitored(case: Case, equations: Equations, until: Callable[[float, np.ndarray], bool] | None = None) -> Monitored:
+    """The problem of a case; the state's units are those of `vessel.Equations`. until : see `integrate.Problem`."""
     charge = case.charge
     part = charge.concentration if case.holds == "volume" else charge.amount
     start = np.append(part, charge.temperature)
     atol = np.append(np.full(part.size, case.atol * float(np.sum(part))), TEMPERATURE_ATOL * charge.temperature)
     ledger, system = _compiled(case, equations, start)
     stops = tuple(t for t in case.also_at if t < case.end)
-    return Monitored(Problem(equations.f, equations.J, start, case.end, case.rtol, atol, stops, system), ledger)
+    return Monitored(Problem(equations.f, equations.J, start, case.end, case.rtol, atol, stops, system, until), ledger)
 
 
 def _compiled(case: Case, equations: Equations, start: np.ndarray) -> tuple[np.ndarray, CompiledSystem]:
     rows, starts = equations.bordered_pattern
     work, n = equations.tables.work(), start.size - 1
     kept = (equations.vessel, equations.tables.ints, equations.tables.floats, work)
-    conserved = conserved_rows(case.mechanism)
+    conserved = np.ascontiguousarray(conserved_by_reactions(case.mechanism), dtype=float)
     energy = Contents(case.mechanism, equations.tables).energy(start[:-1], start[-1], case.holds)
     ledger = judge.ledger_of(conserved, conserved @ start[:-1], energy, start[-1])
     context = np.append(callbacks.context_of(*kept, rows.size), [ledger.ctypes.data, len(conserved)])
@@ -54,10 +55,3 @@ def _compiled(case: Case, equations: Equations, start: np.ndarray) -> tuple[np.n
         equations.mass, 2, np.append(np.arange(n), n + 1), equations.bordered_state(start), (*kept, ledger))
     return ledger, system
 
-
-def conserved_rows(mechanism: Mechanism) -> np.ndarray:
-    """Combinations of amounts that no reaction changes, (m, N): elements, and each species no reaction touches."""
-    touched = np.any(mechanism.stoichiometry != 0, axis=1)
-    rows = [np.where(touched, row, 0.0) for row in mechanism.element_matrix]
-    rows = [row for row in rows if np.any(row)]
-    return np.ascontiguousarray(np.vstack([*rows, np.eye(len(touched))[~touched]]))

@@ -5,6 +5,7 @@ from collections.abc import Iterable
 import numpy as np
 
 from .case import Case, charged
+from .endpoint import Kind, Verdict
 from .trajectory import Trajectory
 
 NOTABLE_RISE = {"temperature": 50.0, "pressure": 1.2}
@@ -14,10 +15,11 @@ CAUTION = ("a model is not a safety case: a rise of temperature or pressure like
 _SHOWN = 8
 
 
-def summary(case: Case, run: Trajectory, title: str = "") -> str:
+def summary(case: Case, run: Trajectory, verdict: Verdict, title: str = "") -> str:
     """The summary of a run, a line a fact, about 80 columns wide."""
     sections = [("mechanism", [_mechanism(case)]), ("vessel", [_vessel(case)]), ("charge", [_charge(case)]),
-                ("milestones", _milestones(run)), ("end", _end(run)), ("balances", [_balances(run)]),
+                ("milestones", _milestones(run)), ("end", _end(run)), ("equilibrium", _equilibrium(verdict)),
+                ("balances", [_balances(run)]),
                 ("solver", [_solver(run)])]
     lines = [title] if title else []
     for name, content in sections:
@@ -88,6 +90,22 @@ def _end(run: Trajectory) -> list[str]:
     x = run.mole_fraction[-1]
     shown = [f"{run.species[k]} {x[k]:.4g}" for k in np.argsort(-x)[: _SHOWN + 4] if x[k] > 1e-12]
     return lines + _wrapped("mole fractions " + ", ".join(shown))
+
+
+def _equilibrium(verdict: Verdict) -> list[str]:
+    """The verdict, and the species of the end beside those of the equilibrium."""
+    own, full = verdict.target.own, verdict.target.full
+    lines = _wrapped(f"{verdict.kind.value}: {verdict.sentence}")
+    if verdict.apart:
+        lines.append(f"(the elements' equilibrium: {full.temperature:.6g} K, {pressure_text(full.pressure)})")
+    lines.append(f"{'':<18}{'run':>12}{'equilibrium':>13}{'deviation':>11}")
+    lines.append(f"{'temperature':<18}{own.temperature * (1 + verdict.temperature_deviation):>12.6g}{own.temperature:>13.6g}"
+                 f"{verdict.temperature_deviation:>11.1e}")
+    for row in verdict.table()[:_SHOWN]:
+        lines.append(f"{row['species']:<18}{row['run']:>12.4g}{row['equilibrium']:>13.4g}{row['deviation']:>11.1e}")
+    if verdict.kind is Kind.NOT_YET:
+        lines += [f"A/RT {affinity:>10.2g}  {equation}" for equation, affinity in verdict.least_relaxed()]
+    return lines
 
 
 def _balances(run: Trajectory) -> str:

@@ -9,7 +9,7 @@ from typing import NoReturn
 
 from ..errors import BothwaysError, InputError
 
-DONE, BAD_INPUT, GAVE_UP, FAULT, INTERRUPTED = 0, 2, 3, 4, 130
+DONE, FAILED_VERDICT, BAD_INPUT, GAVE_UP, FAULT, INTERRUPTED = 0, 1, 2, 3, 4, 130
 """Exit statuses; FAULT is a mistake of the program itself."""
 SHOW_FAULT = "BOTHWAYS_TRACEBACK"
 """Environment variable that lets the traceback of such a fault through."""
@@ -73,7 +73,7 @@ class _Parser(argparse.ArgumentParser):
 
 
 def _parser() -> argparse.ArgumentParser:
-    from . import mechanisms, plot, run
+    from . import equilibrium, mechanisms, plot, run
 
     parser = _Parser(
         prog="bothways", description="What happens in a closed batch reactor, by kinetics that cannot contradict "
@@ -81,7 +81,7 @@ def _parser() -> argparse.ArgumentParser:
         epilog="example: bothways run hydrogen-kettle --plot", allow_abbrev=False)
     parser.add_argument("--version", action=_Version, nargs=0, help="show the version and where it is installed")
     verbs = parser.add_subparsers(required=True, metavar="COMMAND")
-    for verb in (run, plot, mechanisms):
+    for verb in (run, equilibrium, plot, mechanisms):
         verb.add_to(verbs)
     return parser
 

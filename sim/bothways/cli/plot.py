@@ -63,11 +63,9 @@ def act(chosen: argparse.Namespace) -> int:
 def _seconds(text: str) -> float:
     """A time [s], from a bare number or one with its unit."""
     try:
-        seconds = float(text) if text.strip()[-1:].isdigit() else parse_quantity(text, "time")
-    except ValueError:
-        seconds = math.nan
+        seconds = parse_quantity(text if len(text.split()) > 1 else f"{text} s", "time")
     except InputError as err:
-        raise InputError(err.problem, expected=err.expected, entry="--between") from None
+        raise InputError(f"{shown(text)} is no time", expected=err.expected, entry="--between") from None
     if not math.isfinite(seconds):
-        raise InputError(f"{shown(text)} is not a finite number", expected="a time such as '0.4 ms'", entry="--between")
+        raise InputError(f"{shown(text)} is not finite", expected="two times within the run", entry="--between")
     return seconds

@@ -12,12 +12,16 @@ from pathlib import Path
 
 from tqdm import tqdm
 
-from ..batch import Remark, run
+from ..batch import Remark, run_and_judge
 from ..case import Case, read_case
+from ..endpoint import Kind, Verdict
 from ..outfile import check_writable
 from ..report import summary
 from ..trajectory import Trajectory, write_trajectory
-from . import DONE, GAVE_UP, INTERRUPTED, spare
+from . import DONE, FAILED_VERDICT, GAVE_UP, INTERRUPTED, spare
+
+NOT_REACHED = (Kind.NOT_YET, Kind.CANNOT_START)
+"""Verdicts that fail a run which was to go on until equilibrium."""
 
 
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
@@ -42,16 +46,16 @@ def act(chosen: argparse.Namespace) -> int:
     output, picture = _files(case, chosen)
     _compile(case)
     with remarks_shown(), _Patience() as patience:
-        trajectory = _with_progress(case, patience)
+        trajectory, verdict = _with_progress(case, patience)
         write_trajectory(output, trajectory, replace=chosen.replace)
-    print(summary(case, trajectory, _title(case, chosen.case)))
+    print(summary(case, trajectory, verdict, _title(case, chosen.case)))
     print(f"{'file':<12}{output}")
     if picture is not None:
         from ..plots import save_course
 
         save_course(trajectory, picture, replace=chosen.replace)
         print(f"{'plot':<12}{picture}")
-    return _status(case, trajectory, output)
+    return _status(case, trajectory, verdict, output)
 
 
 def _files(case: Case, chosen: argparse.Namespace) -> tuple[Path, Path | None]:
@@ -126,10 +130,10 @@ class _Patience:
             raise KeyboardInterrupt
 
 
-def _with_progress(case: Case, patience: _Patience) -> Trajectory:
+def _with_progress(case: Case, patience: _Patience) -> tuple[Trajectory, Verdict]:
     bar_format = "{desc} {elapsed}"
     with tqdm(desc="starting", bar_format=bar_format, disable=None, leave=False, file=sys.stderr) as bar:
-        return run(case, _teller(bar, patience))
+        return run_and_judge(case, _teller(bar, patience))
 
 
 def _teller(bar: tqdm, patience: _Patience) -> Callable[[int, float, float], None]:
@@ -141,7 +145,10 @@ def _teller(bar: tqdm, patience: _Patience) -> Callable[[int, float, float], Non
     return told
 
 
-def _status(case: Case, trajectory: Trajectory, output: Path) -> int:
+def _status(case: Case, trajectory: Trajectory, verdict: Verdict, output: Path) -> int:
+    if verdict.kind is Kind.WRONG or (trajectory.complete and case.to_equilibrium and verdict.kind in NOT_REACHED):
+        print(f"bothways: {case.file}: until.equilibrium: {verdict.kind.value}: {verdict.sentence}", file=sys.stderr)
+        return FAILED_VERDICT
     if trajectory.complete:
         return DONE
     interrupted = "interrupted" in trajectory.reason

@@ -6,11 +6,12 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from . import rosenbrock as ros
-from .interface import MOST_STEPS, CompiledSystem, Monitor, Outcome, Problem, Status
+from .interface import MOST_STEPS, MOST_STEPS_IF_ASKED, CompiledSystem, Monitor, Outcome, Problem, Status
 from .pattern import SparsePlan, plan
 from .rosenbrock_tables import RODAS5P, RosenbrockTable
 
-CHUNK = 64
+CHUNK, CHUNK_IF_ASKED = 64, 8
+"""Steps between returns to Python, and where the problem wants to be asked whether to end."""
 SMALLEST_STEP = 1e-15
 """Of the time reached; below, a step no longer moves the clock."""
 _REASONS = {
@@ -40,8 +41,9 @@ class Stepper:
         self.atol = np.full(self.z.size, np.inf)
         self.atol[system.places] = self.problem.atol
         self.memory[ros.SMALLEST_STEP] = SMALLEST_STEP
-        self.counts[ros.STEP_LIMIT] = MOST_STEPS
-        self.times, self.states = np.empty(CHUNK), np.empty((CHUNK, self.z.size))
+        self.counts[ros.STEP_LIMIT] = MOST_STEPS if self.problem.until is None else MOST_STEPS_IF_ASKED
+        chunk = CHUNK if self.problem.until is None else CHUNK_IF_ASKED
+        self.times, self.states = np.empty(chunk), np.empty((chunk, self.z.size))
         self.packed = self.table.packed()
 
     @property
@@ -77,11 +79,11 @@ def integrate(problem: Problem, monitor: Monitor) -> Outcome:
     try:
         status = ros.REACHED if stepper.begin() else ros.NOT_FINITE
         for stop in (*problem.stops, problem.end):
-            if status == ros.REACHED:
+            if status == ros.REACHED and not _ended(problem, outcome, stepper):
                 status = _until(stop, stepper, monitor, outcome)
         if status != ros.REACHED:
             outcome.status = Status.GAVE_UP
-            outcome.reason = f"at {outcome.time:.6g} s " + _REASONS[status].format(steps=MOST_STEPS)
+            outcome.reason = f"at {outcome.time:.6g} s " + _REASONS[status].format(steps=stepper.counts[ros.STEP_LIMIT])
     except KeyboardInterrupt:
         outcome.status, outcome.reason = Status.INTERRUPTED, f"interrupted at {outcome.time:.6g} s"
     outcome.counts |= stepper.work() | {"seconds": time.perf_counter() - began}
@@ -96,4 +98,11 @@ def _until(stop: float, stepper: Stepper, monitor: Monitor, outcome: Outcome) ->
         for t, z in zip(stepper.times[:written], stepper.states[:written], strict=True):
             outcome.time = float(t)
             monitor.accepted(outcome.time, z[stepper.system.places])
+        if status == ros.BUFFER_FULL and _ended(stepper.problem, outcome, stepper):
+            return ros.REACHED
     return status
+
+
+def _ended(problem: Problem, outcome: Outcome, stepper: Stepper) -> bool:
+    """Whether the problem may end where it is."""
+    return problem.until is not None and problem.until(outcome.time, stepper.z[stepper.system.places])

@@ -42,6 +42,7 @@ class Problem:
     start : y at time 0. end : last time [s].
     rtol : relative tolerance [-]. atol : (n) absolute tolerances, units of y.
     stops : rising times within (0, end) that a step must land on [s].
+    until : (t, y) -> whether the integration may end here, asked after accepted steps, of some solvers only now and then.
     """
 
     f: Callable[[float, np.ndarray], np.ndarray]
@@ -52,6 +53,7 @@ class Problem:
     atol: np.ndarray
     stops: tuple[float, ...] = ()
     compiled: CompiledSystem | None = None
+    until: Callable[[float, np.ndarray], bool] | None = None
 
 
 class Monitor(Protocol):
@@ -81,3 +83,5 @@ class Outcome:
 
 MOST_STEPS = 1_000_000
 """An endless run is refused after so many steps."""
+MOST_STEPS_IF_ASKED = 20_000
+"""The same for a problem that asks whether to end: what has not come by then will not."""

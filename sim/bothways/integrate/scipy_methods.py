@@ -6,6 +6,7 @@ and Radau IIA of order 5 (E. Hairer, G. Wanner, Solving Ordinary Differential Eq
 
 import time
 import warnings
+from collections.abc import Callable
 
 from typing import Any
 
@@ -33,7 +34,7 @@ def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
             solver = _solver_class(method)(problem.f, 0.0, problem.start, problem.end, rtol=problem.rtol,
                                      atol=problem.atol, jac=problem.J)
             for stop in (*problem.stops, problem.end):
-                steps = _advance(solver, stop, monitor, outcome, steps)
+                steps = _advance(solver, stop, monitor, outcome, steps, problem.until)
     except KeyboardInterrupt:
         outcome.status, outcome.reason = Status.INTERRUPTED, f"interrupted at {outcome.time:.6g} s"
     outcome.counts |= {"steps": steps, "seconds": time.perf_counter() - began}
@@ -43,10 +44,11 @@ def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
     return outcome
 
 
-def _advance(solver: Any, stop: float, monitor: Monitor, outcome: Outcome, steps: int) -> int:
-    """Steps until `stop`, unless the solver gave up before."""
+def _advance(solver: Any, stop: float, monitor: Monitor, outcome: Outcome, steps: int,
+             until: Callable[[float, np.ndarray], bool] | None) -> int:
+    """Steps until `stop`, unless the solver gave up before or may end."""
     solver.t_bound = stop
-    if outcome.status is not Status.FINISHED:
+    if outcome.status is not Status.FINISHED or (until is not None and until(outcome.time, solver.y)):
         return steps
     solver.status = "running"
     while solver.status == "running":
@@ -58,4 +60,6 @@ def _advance(solver: Any, stop: float, monitor: Monitor, outcome: Outcome, steps
         steps += 1
         outcome.time = float(solver.t)
         monitor.accepted(outcome.time, solver.y.copy())
+        if until is not None and until(outcome.time, solver.y):
+            break
     return steps

@@ -1,0 +1,119 @@
+"""bothways equilibrium: where a case must end, by a route that shares no kinetics."""
+
+import argparse
+import csv
+import io
+from collections.abc import Sequence
+from pathlib import Path
+
+import numpy as np
+
+from ..case import Case, read_case
+from ..contents import Contents
+from ..endpoint import Target, target_of
+from ..equilibrium import Equilibrium, equilibria
+from ..errors import InputError
+from ..outfile import check_writable, write_whole
+from ..report import pressure_text, volume_text
+from ..units import parse_quantity
+from . import DONE
+
+SHOWN_ABOVE = 1e-12
+"""Species below this mole fraction everywhere are left out of tables [-]."""
+_COLUMNS = 6
+
+
+def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
+    """Adds the verb to the parser."""
+    parser = verbs.add_parser(
+        "equilibrium", help="state where a batch must end", formatter_class=argparse.RawDescriptionHelpFormatter,
+        description="Works out the equilibrium of a case's charge in its vessel, from the species' chemical potentials alone.\n"
+        "With a list of temperatures or pressures: a table, each at that temperature or pressure, the rest as the case says.",
+        epilog="examples:\n  bothways equilibrium hydrogen-kettle\n"
+        "  bothways equilibrium methane-drum --temperatures 1000 1500 '2000 K' --csv methane.csv", allow_abbrev=False)
+    parser.add_argument("case", metavar="CASE", help="a case file, or the name of a bundled case")
+    parser.add_argument("--elements", action="store_true", help="hold only the elements, not what else the reactions conserve")
+    lists = parser.add_mutually_exclusive_group()
+    lists.add_argument("--temperatures", nargs="+", metavar="T", help="temperatures (K, or quoted with their unit)")
+    lists.add_argument("--pressures", nargs="+", metavar="P", help="pressures (Pa, or quoted with their unit)")
+    parser.add_argument("--csv", metavar="FILE", type=Path, help="write the composition of every state as CSV")
+    parser.add_argument("--replace", action="store_true", help="overwrite a file that exists")
+    parser.set_defaults(act=act)
+
+
+def act(chosen: argparse.Namespace) -> int:
+    """Carries out the verb."""
+    case = read_case(chosen.case)
+    if chosen.csv is not None:
+        check_writable(chosen.csv, chosen.replace)
+    target = target_of(case)
+    found = _found(case, target, chosen)
+    print("\n".join(_single(case, target, found[0], chosen.elements) if len(found) == 1 else _table(found)))
+    if chosen.csv is not None:
+        write_whole(chosen.csv, _csv(found).encode(), chosen.replace)
+        print(f"{'file':<14}{chosen.csv}")
+    return DONE
+
+
+def _found(case: Case, target: Target, chosen: argparse.Namespace) -> list[Equilibrium]:
+    single = target.full if chosen.elements else target.own
+    conserved = "elements" if chosen.elements else target.own.conserved
+    if chosen.temperatures is None and chosen.pressures is None:
+        return [single]
+    c = case.charge
+    if chosen.temperatures is not None:
+        held = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
+        return equilibria(case.mechanism, c.amount, conserved=conserved,
+                          temperature=_quantities(chosen.temperatures, "temperature"), **held)
+    pressures = _quantities(chosen.pressures, "pressure")
+    if case.heat == "isothermal":
+        return equilibria(case.mechanism, c.amount, conserved=conserved, temperature=c.temperature, pressure=pressures)
+    enthalpy = Contents(case.mechanism).enthalpy(c.amount, c.temperature)
+    return equilibria(case.mechanism, c.amount, conserved=conserved, enthalpy=enthalpy, pressure=pressures,
+                      own_heat_capacity=case.own_heat_capacity, reference_temperature=c.temperature)
+
+
+def _quantities(words: Sequence[str], kind: str) -> list[float]:
+    values = []
+    for word in words:
+        try:
+            value = float(word)
+        except ValueError:
+            value = parse_quantity(word, kind)
+        if not (np.isfinite(value) and value > 0):
+            raise InputError(f"{kind} {word}", expected="a positive number", entry=f"--{kind}s", remedy="correct it")
+        values.append(value)
+    return values
+
+
+def _single(case: Case, target: Target, found: Equilibrium, elements: bool) -> list[str]:
+    c = case.charge
+    heat = found.enthalpy - Contents(case.mechanism).enthalpy(c.amount, c.temperature)
+    lines = [f"{'equilibrium':<14}{case.mechanism.name}, {'elements' if elements else 'what the reactions conserve'} held; "
+             f"{case.heat}, constant {case.holds}",
+             f"{'state':<14}{found.temperature:.6f} K, {pressure_text(found.pressure)}, {volume_text(found.volume)}",
+             f"{'change of H':<14}{heat:.6g} J from the charge"]
+    if target.apart and not elements:
+        lines.append(f"{'held apart by':<14}{', '.join(target.apart)} (without that, --elements: {target.full.temperature:.6g} K)")
+    lines.append(f"{'':<14}{'mole fraction':>16}{'amount / mol':>16}")
+    names, x = case.mechanism.names, found.mole_fraction
+    lines += [f"{names[k]:<14}{x[k]:>16.6e}{found.amount[k]:>16.6e}" for k in np.argsort(-x) if x[k] > SHOWN_ABOVE]
+    return lines
+
+
+def _table(found: Sequence[Equilibrium]) -> list[str]:
+    """T, p and the most abundant species of several equilibria, a line a state."""
+    x = np.array([e.mole_fraction for e in found])
+    top = np.argsort(-x.max(axis=0))[:_COLUMNS]
+    names = found[0].mechanism.names
+    lines = [f"{'T / K':>10}{'p / bar':>12}" + "".join(f"{names[k]:>12}" for k in top)]
+    return lines + [f"{e.temperature:>10.2f}{e.pressure / 1e5:>12.5g}" + "".join(f"{e.mole_fraction[k]:>12.4e}" for k in top)
+                    for e in found]
+
+
+def _csv(found: Sequence[Equilibrium]) -> str:
+    text = io.StringIO()
+    rows = csv.writer(text, lineterminator="\n")
+    rows.writerow(["temperature/K", "pressure/Pa", "volume/m3", "enthalpy/J", *(f"x({n})" for n in found[0].mechanism.names)])
+    rows.writerows([e.temperature, e.pressure, e.volume, e.enthalpy, *e.mole_fraction.tolist()] for e in found)
+    return text.getvalue()

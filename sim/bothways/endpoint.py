@@ -1,0 +1,249 @@
+"""The verdict: the end of a run held against an equilibrium that shares no kinetics with it.
+
+Two equilibria are worked out: the one the elements allow, and the one the mechanism's own stoichiometry allows from this
+charge. The run must land on the second; where that differs from the first, what keeps them apart is named.
+"""
+
+from dataclasses import dataclass, field, replace
+from enum import Enum
+from functools import cached_property
+
+import numpy as np
+
+from .along import affinities
+from .case import Case
+from .constants import GAS_CONSTANT as R
+from .contents import Contents
+from .equilibrium import Equilibrium, combination_text, conserved_by_reactions, equilibrium, extra_conserved
+from .mechanism import Mechanism
+from .reach import reachable
+from .relaxation import further_rows, relaxation_times
+from .trajectory import Trajectory
+from .vessel import Equations
+
+TRACE = 1e-12
+"""Species below this mole fraction at equilibrium are not compared [-]."""
+CLOSEST = 1e-6
+"""Relative deviation from equilibrium that counts as landed, or ten times rtol where that is larger [-]."""
+RELAXED = 1e-9
+"""Where every |A|/RT is below this the reactions have nothing left to do [-]."""
+
+
+class Kind(Enum):
+    """The five verdicts."""
+
+    LANDED = "at equilibrium"
+    NOT_YET = "not yet at equilibrium"
+    APART = "held apart from full equilibrium"
+    CANNOT_START = "cannot start"
+    WRONG = "wrong"
+
+
+@dataclass(frozen=True)
+class Target:
+    """Where a case must end, before it is run.
+
+    own : the equilibrium of the reactions that can proceed from the charge; full : that of the elements.
+    running : (reactions) mask of those that can proceed. restricted : the mechanism with these alone.
+    """
+
+    case: Case
+    own: Equilibrium
+    full: Equilibrium
+    running: np.ndarray
+    restricted: Mechanism
+
+    def deviations(self, mole_fraction: np.ndarray) -> np.ndarray:
+        """x/x_eq - 1 of each species (N), 0 of those that are traces in both."""
+        return _relative(mole_fraction, self.own.mole_fraction)
+
+    def distance(self, mole_fraction: np.ndarray, temperature: float) -> float:
+        """The largest deviation of a species or of T [-]."""
+        return max(float(np.max(np.abs(self.deviations(mole_fraction)))), abs(temperature / self.own.temperature - 1.0))
+
+    @cached_property
+    def apart(self) -> tuple[str, ...]:
+        """What keeps own and full equilibrium apart, as chemistry; empty where they agree."""
+        gap = max(np.max(np.abs(_relative(self.own.mole_fraction, self.full.mole_fraction))),
+                  abs(self.own.temperature / self.full.temperature - 1.0))
+        if gap < CLOSEST:
+            return ()
+        extra = [row for row in extra_conserved(self.restricted) if self._matters(row)]
+        return tuple(combination_text(self.restricted, row) for row in extra)
+
+    def _matters(self, row: np.ndarray) -> bool:
+        """Whether the full equilibrium would change this combination."""
+        charge, size = self.case.charge.amount, np.abs(row) @ (self.case.charge.amount + self.full.amount)
+        return bool(abs(row @ (self.full.amount - charge)) > 1e-9 * size)
+
+    def relaxation_time(self, mole_fraction: np.ndarray) -> float:
+        """The slowest relaxation time at the own equilibrium [s]; 0 where nothing can change, inf if unresolved.
+
+        Species that are traces both there and in the state (N) follow the others.
+        """
+        case, own = self.case, self.own
+        equations = Equations(self.restricted, "volume", "isothermal")
+        forward, reverse = equations.reaction_rates(np.append(own.amount / own.volume, own.temperature))
+        rates = np.sqrt(forward * reverse) * own.volume
+        present, nu = own.amount > 0, self.restricted.stoichiometry
+        rank = int(np.sum(present)) - int(np.linalg.matrix_rank(own.conserved[:, present].astype(float)))
+        rows = further_rows(Contents(self.restricted), own.amount, own.temperature, case.holds, case.heat,
+                            case.own_heat_capacity)
+        times = relaxation_times(nu, rates, own.amount, rank, rows,
+                                 (own.mole_fraction < TRACE) & (mole_fraction < TRACE))
+        return float(times[0]) if times.size else 0.0
+
+
+def _relative(x: np.ndarray, reference: np.ndarray) -> np.ndarray:
+    seen = (reference > TRACE) | (x > TRACE)
+    with np.errstate(divide="ignore", invalid="ignore"):
+        return np.where(seen, x / reference - 1.0, 0.0)
+
+
+def target_of(case: Case) -> Target:
+    """Where a case must end."""
+    _, running = reachable(case.mechanism, case.charge.amount)
+    restricted = case.mechanism if running.all() else _restrict(case.mechanism, running)
+    own = _equilibrium(case, conserved_by_reactions(restricted))
+    return Target(case, own, _equilibrium(case, "elements"), running, restricted)
+
+
+def _restrict(mechanism: Mechanism, running: np.ndarray) -> Mechanism:
+    kept = tuple(r for r, goes in zip(mechanism.reactions, running, strict=True) if goes)
+    return replace(mechanism, reactions=kept)
+
+
+def _equilibrium(case: Case, conserved: str | np.ndarray) -> Equilibrium:
+    c = case.charge
+    held = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
+    if case.heat == "isothermal":
+        return equilibrium(case.mechanism, c.amount, temperature=c.temperature, conserved=conserved, **held)
+    energy = Contents(case.mechanism).energy(c.amount, c.temperature, case.holds)
+    name = "internal_energy" if case.holds == "volume" else "enthalpy"
+    return equilibrium(case.mechanism, c.amount, conserved=conserved, own_heat_capacity=case.own_heat_capacity,
+                       reference_temperature=c.temperature, **{name: energy}, **held)
+
+
+@dataclass(frozen=True)
+class Verdict:
+    """How the end of a run compares.
+
+    mole_fraction : (N) at the end. deviation : (N) x/x_eq - 1 of species above TRACE there or at equilibrium, 0 of others.
+    temperature_deviation : T/T_eq - 1. affinity : (reactions) A/RT at the end, NaN where a species is absent.
+    apart : what keeps it from the elements' equilibrium.
+    frozen : equations of the reactions that cannot proceed from this charge.
+    """
+
+    kind: Kind
+    target: Target = field(repr=False)
+    mole_fraction: np.ndarray = field(repr=False)
+    deviation: np.ndarray = field(repr=False)
+    temperature_deviation: float
+    affinity: np.ndarray = field(repr=False)
+    apart: tuple[str, ...]
+    frozen: tuple[str, ...]
+
+    @cached_property
+    def relaxation_time(self) -> float:
+        """The slowest relaxation time at the equilibrium [s]."""
+        return self.target.relaxation_time(self.mole_fraction)
+
+    @property
+    def furthest(self) -> int:
+        """The place of the species furthest off: by amount among those far off, else by relative deviation."""
+        size = np.abs(self.deviation)
+        far = size > 1.0
+        gap = np.abs(self.mole_fraction - self.target.own.mole_fraction)
+        return int(np.argmax(np.where(far, gap, 0.0) if far.any() else size))
+
+    @property
+    def largest_deviation(self) -> float:
+        """Of a species or of T, absolute [-]."""
+        return max(float(np.max(np.abs(self.deviation))), abs(self.temperature_deviation))
+
+    @property
+    def sentence(self) -> str:
+        """The verdict in a sentence."""
+        return _SENTENCES[self.kind](self)
+
+    def table(self) -> list[dict[str, float | str]]:
+        """Plain records, one a species: mole fraction at the end and at equilibrium, deviation; the most abundant first."""
+        own, end = self.target.own.mole_fraction, self.mole_fraction
+        return [{"species": self.target.case.mechanism.names[k], "run": float(end[k]), "equilibrium": float(own[k]),
+                 "deviation": float(self.deviation[k])}
+                for k in np.argsort(-np.maximum(own, end)) if max(own[k], end[k]) > TRACE]
+
+    def least_relaxed(self, count: int = 5) -> list[tuple[str, float]]:
+        """The reactions with the largest |A|/RT at the end, with it."""
+        size = np.where(np.isfinite(self.affinity), np.abs(self.affinity), -1.0)
+        reactions = self.target.case.mechanism.reactions
+        return [(str(reactions[j].equation), float(self.affinity[j])) for j in np.argsort(-size)[:count] if size[j] >= 0]
+
+
+def verdict(case: Case, trajectory: Trajectory) -> Verdict:
+    """The verdict over the end of a run of this case."""
+    return verdict_of_state(target_of(case), trajectory.amount[-1], float(trajectory.temperature[-1]),
+                            float(trajectory.volume[-1]))
+
+
+def verdict_of_state(target: Target, amount: np.ndarray, temperature: float, volume: float) -> Verdict:
+    """The verdict over a state: amount (N) [mol], temperature [K], volume [m3]."""
+    case = target.case
+    fraction = amount / np.sum(amount)
+    deviation = target.deviations(fraction)
+    affinity = affinities(case.mechanism, amount[None], np.array([temperature]), np.array([volume]))[0] / (R * temperature)
+    kind = _kind(target, amount, temperature, affinity)
+    frozen = tuple(str(r.equation) for r, goes in zip(case.mechanism.reactions, target.running, strict=True) if not goes)
+    return Verdict(kind, target, fraction, deviation, temperature / target.own.temperature - 1.0, affinity, target.apart,
+                   frozen)
+
+
+def tolerance(case: Case) -> float:
+    """The distance from equilibrium that counts as landed [-]."""
+    return max(CLOSEST, 10.0 * case.rtol)
+
+
+def _kind(target: Target, amount: np.ndarray, temperature: float, affinity: np.ndarray) -> Kind:
+    if not target.running.any():
+        return Kind.CANNOT_START if target.apart else Kind.LANDED
+    distance = target.distance(amount / np.sum(amount), temperature)
+    if distance <= tolerance(target.case):
+        return Kind.APART if target.apart else Kind.LANDED
+    at_work = np.abs(affinity[target.running])
+    if not np.any(np.isnan(at_work)) and np.max(at_work) < min(RELAXED, 1e-3 * distance):
+        return Kind.WRONG
+    return Kind.NOT_YET
+
+
+def _landed(v: Verdict) -> str:
+    return f"each species within {v.largest_deviation:.1e} of the equilibrium worked out apart from the kinetics"
+
+
+def _not_yet(v: Verdict) -> str:
+    worst = v.least_relaxed(1)
+    where = f"; least relaxed is {worst[0][0]} with A/RT = {worst[0][1]:.2g}" if worst else ""
+    return f"{_off(v)}{where}; near equilibrium the slowest relaxation takes {v.relaxation_time:.3g} s"
+
+
+def _off(v: Verdict) -> str:
+    k = v.furthest
+    x, x_eq = v.mole_fraction[k], v.target.own.mole_fraction[k]
+    return f"{v.target.case.mechanism.names[k]} is at mole fraction {x:.4g} instead of {x_eq:.4g}"
+
+
+def _apart(v: Verdict) -> str:
+    return f"{_landed(v)}; the elements alone would allow another, which is kept away by " + _why(v)
+
+
+def _why(v: Verdict) -> str:
+    kept = ", ".join(v.apart[:4]) + (f" and {len(v.apart) - 4} more" if len(v.apart) > 4 else "")
+    return f"what no reaction changes: {kept}" + (f"; {len(v.frozen)} reactions never start" if v.frozen else "")
+
+
+_SENTENCES = {
+    Kind.LANDED: _landed, Kind.NOT_YET: _not_yet, Kind.APART: _apart,
+    Kind.CANNOT_START: lambda v: "no reaction of the mechanism can proceed from this charge: of each, both sides lack a "
+                                 "species. Charge a little of one, or add the step that makes it",
+    Kind.WRONG: lambda v: f"every reaction is relaxed, yet {_off(v)}: this is a fault of the program; please report it "
+                          "with the file",
+}
