@@ -9,7 +9,7 @@ from typing import Any
 
 import pytest
 
-from bothways import run
+from bothways import batch
 from bothways.cli import main
 
 MECHANISM = """\
@@ -135,15 +135,15 @@ def changed(text: str, *changes: tuple[str, str]) -> str:
 
 
 def meddled(with_step: Callable[[int], Any]) -> Callable[..., Any]:
-    """`run` whose every step is told to `with_step` first."""
-    def meddled_run(case: Any, told: Callable[..., None]) -> Any:
+    """The command's `run_and_judge`, but every step is told to `with_step` first."""
+    def run_and_judge(case: Any, told: Callable[..., None]) -> Any:
         def both(steps: int, t: float, temperature: float) -> None:
             with_step(steps)
             told(steps, t, temperature)
 
-        return run(case, both)
+        return batch.run_and_judge(case, both)
 
-    return meddled_run
+    return run_and_judge
 
 
 class Refusals:

@@ -169,7 +169,7 @@ def test_unwritable_picture(refusals: Refusals, plot: str, text: str) -> None:
 
 def test_output_that_appears_during_the_run_is_not_overwritten(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
     refusals.write()
-    monkeypatch.setattr(cli.run, "run", meddled(lambda steps: Path("run.h5").write_text("of someone else")))
+    monkeypatch.setattr(cli.run, "run_and_judge", meddled(lambda steps: Path("run.h5").write_text("of someone else")))
     assert main(["run", "case.toml"]) == 2
     assert "run.h5: the file exists already" in refusals.capsys.readouterr().err
     assert Path("run.h5").read_text() == "of someone else"
@@ -183,12 +183,12 @@ PLOTS = [
     (("run.h5", "--output", "no/x.png"), "there is no folder"), (("run.h5", "--output", "old.png"), "the file exists already"),
     (("run.png",), "run.png: this file is needed for something else"),
     (("run.png", "--replace"), "run.png: this file is needed for something else"),
-    (("run.h5", "--species", "Qx"), "unknown species 'Qx'; nearest: Q"),
+    (("run.h5", "--output", "x.png", "--species", "Qx"), "unknown species 'Qx'; nearest: Q"),
     (("run.h5", "--between", "1"), "argument --between: expected 2 arguments; 'bothways plot --help'"),
     (("run.h5", "--between", "0", "soon"), "--between: 'soon' is no time; expected a time such as"),
     (("run.h5", "--between", "0", "1 K"), "--between: '1 K' is no time; expected a time such as"),
     (("run.h5", "--between", "nan", "1"), "--between: 'nan' is not finite; expected two times"),
-    (("run.h5", "--between", "5", "6"), "nothing to draw between 5 s and 6 s; expected two times"),
+    (("run.h5", "--output", "x.png", "--between", "5", "6"), "nothing to draw between 5 s and 6 s; expected two times"),
     (("run.h5", "--linear", "--log"), "argument --log: not allowed with argument --linear"),
 ]
 

@@ -105,7 +105,7 @@ def ordinary_interrupts() -> Iterator[None]:
 @pytest.mark.parametrize("at", [1, 5])
 def test_ctrl_c_ends_the_run_at_the_end_of_the_step(refusals: Refusals, monkeypatch: pytest.MonkeyPatch, at: int) -> None:
     refusals.write()
-    monkeypatch.setattr(cli.run, "run", meddled(interrupting(at)))
+    monkeypatch.setattr(cli.run, "run_and_judge", meddled(interrupting(at)))
     assert "run it again for the rest" in assert_kept(refusals, 130, "interrupted at ")
     assert len(read_trajectory("run.h5")) == at + 1
     assert signal.getsignal(signal.SIGINT) is signal.default_int_handler
@@ -127,7 +127,7 @@ def test_a_second_ctrl_c_does_not_wait(refusals: Refusals, monkeypatch: pytest.M
         interrupting(0, times=2)(0)
 
     refusals.write()
-    monkeypatch.setattr(cli.run, "run", stuck)
+    monkeypatch.setattr(cli.run, "run_and_judge", stuck)
     assert refusals.line("run", "case.toml", status=130) == "interrupted"
 
 
@@ -140,7 +140,7 @@ def test_ctrl_c_before_the_run_writes_nothing(refusals: Refusals, monkeypatch: p
 def test_ignored_interrupts_stay_ignored(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
     refusals.write()
     signal.signal(signal.SIGINT, signal.SIG_IGN)
-    monkeypatch.setattr(cli.run, "run", meddled(interrupting(3)))
+    monkeypatch.setattr(cli.run, "run_and_judge", meddled(interrupting(3)))
     assert main(["run", "case.toml"]) == 0
 
 

@@ -206,3 +206,15 @@ def test_bounds_are_kept_and_interpreted_kernels_agree(switch, tmp_path):
 
     for plain, other in zip(run({}), run({**switch, "NUMBA_CACHE_DIR": str(tmp_path)}), strict=True):
         assert np.allclose(plain, other, rtol=1e-12, atol=1e-12 * np.max(np.abs(plain)))
+
+
+@pytest.mark.parametrize("fraction", [1e-3, 1e-9, 1e-15])
+def test_partners_beside_much_of_a_species_that_is_none(fraction):
+    """A species of efficiency 0 makes up nearly all: [M] must come from the rest, not from a difference of totals."""
+    mechanism, exact, _ = pair("invented")
+    y = np.append(np.full(len(mechanism.species), fraction), 900.0)
+    y[mechanism.index("QX2")] = 1.0
+    forward, _ = equations_of(mechanism, "volume", "isothermal").reaction_rates(y)
+    theirs, _ = exact.net_rates(y[:-1].astype(np.longdouble), np.longdouble(900.0))
+    j = [str(r.equation) for r in mechanism.reactions].index("Q + X ⇌ QX")
+    assert abs(forward[j] / theirs[j] - 1) < 1e-12

@@ -9,7 +9,7 @@ from ..contents import Contents
 from ..errors import InputError, SolverError
 from .components import Components
 from .continuation import compose
-from .newton import Point, Task, balances, jacobian, log_amounts
+from .newton import Point, Task, balances, jacobian, log_amounts, log_sides
 
 LOWEST, HIGHEST = 50.0, 20000.0
 """Where the temperature of an adiabatic vessel is sought [K]."""
@@ -99,7 +99,7 @@ def _with_energy(point: Point, task: Task, temperature: float, energy: np.ndarra
     """
     components = point.components
     log_n = log_amounts(point, task)
-    _, weight, fraction = balances(point, task, components.totals(task.charge))
+    _, weight, fraction = balances(point, task, log_n, log_sides(components.totals(task.charge)))
     formation = energy - energy[components.basis] @ components.formation
     forced = weight @ formation
     if task.swells:
@@ -107,7 +107,7 @@ def _with_energy(point: Point, task: Task, temperature: float, energy: np.ndarra
     shift = -np.linalg.solve(jacobian(point, task, weight, fraction), forced)
     slope = formation + shift[: components.basis.size] @ components.formation
     if task.swells:
-        slope += (1.0 - np.sum(components.formation, axis=0)) * shift[-1]
+        slope += components.expansion * shift[-1]
     n = np.exp(log_n)
     total = float(n @ (energy * slope + heat_capacity))
     round_off = _ROUND_OFF * float(n @ np.abs(energy)) / total

@@ -64,7 +64,7 @@ class Components:
         """Makes species j the component k; numbers[k, j] must not be zero."""
         self._eliminate(k, j)
         self.basis[k] = j
-        for name in ("formation", "logarithms"):
+        for name in ("formation", "expansion", "logarithms"):
             self.__dict__.pop(name, None)
 
     def _eliminate(self, k: int, j: int) -> None:
@@ -81,6 +81,11 @@ class Components:
     def formation(self) -> np.ndarray:
         """a (r, n): how much of component k forms species j."""
         return np.asarray(self.numbers / self.divisor, dtype=float)
+
+    @cached_property
+    def expansion(self) -> np.ndarray:
+        """1 - Σ_k a_kj, (n): molecules gained as one of species j forms."""
+        return 1.0 - self.formation.sum(axis=0)
 
     @cached_property
     def logarithms(self) -> tuple[np.ndarray, np.ndarray]:

@@ -3,6 +3,7 @@
 import math
 from collections.abc import Iterable, Iterator, Mapping
 from fractions import Fraction
+from itertools import islice
 
 import numpy as np
 
@@ -26,7 +27,8 @@ def conserved_by_reactions(mechanism: Mechanism) -> np.ndarray:
     if not mechanism.reactions:
         return np.eye(len(mechanism.species), dtype=np.int64)
     elements = conserved_by_elements(mechanism)
-    return np.vstack([elements[_independent(elements)], extra_conserved(mechanism)])
+    span = _Span()
+    return np.vstack([*(row for row in elements if span.grows(row)), extra_conserved(mechanism)])
 
 
 def extra_conserved(mechanism: Mechanism) -> np.ndarray:
@@ -35,17 +37,11 @@ def extra_conserved(mechanism: Mechanism) -> np.ndarray:
     Together with the elements they span the left null space of the stoichiometry; none is implied by the others.
     """
     elements = conserved_by_elements(mechanism)
-    chosen = elements[_independent(elements)]
-    n_elements = len(chosen)
     null_space = left_null_space((r.net for r in mechanism.reactions), mechanism.names)
-    if len(null_space) > n_elements:
-        for row in _candidates(mechanism, elements, null_space):
-            if len(chosen) == len(null_space):
-                break
-            extended = np.vstack([chosen, row])
-            if len(_independent(extended)) == len(extended):
-                chosen = extended
-    return chosen[n_elements:]
+    span = _Span()
+    extra = len(null_space) - sum(span.grows(row) for row in elements)
+    candidates = (row for row in _candidates(mechanism, elements, null_space) if span.grows(row))
+    return np.array(list(islice(candidates, extra)), dtype=np.int64).reshape(extra, len(mechanism.species))
 
 
 def combination_text(mechanism: Mechanism, row: np.ndarray) -> str:
@@ -110,9 +106,23 @@ def _primitive_rows(numbers: np.ndarray) -> set[tuple[int, ...]]:
     return set(map(tuple, (numbers // (sign * np.gcd.reduce(numbers, axis=1))[:, None]).tolist()))
 
 
-def _independent(rows: np.ndarray) -> np.ndarray:
-    """Places of the first rows that carry the rank, rising."""
-    return np.sort(Components(rows.T, np.arange(len(rows))).basis)
+class _Span:
+    """The span of integer rows, kept in echelon form with exact integers."""
+
+    def __init__(self) -> None:
+        self._echelon: list[tuple[int, np.ndarray]] = []
+
+    def grows(self, row: np.ndarray) -> bool:
+        """Takes a row up; whether it was independent of those before."""
+        rest = row.astype(object)
+        for pivot, known in self._echelon:
+            if rest[pivot]:
+                rest = rest * known[pivot] - known * rest[pivot]
+        if not np.any(rest):
+            return False
+        rest = np.array(_primitive(rest.tolist()), dtype=object)
+        self._echelon.append((int(np.flatnonzero(rest)[0]), rest))
+        return True
 
 
 def _candidates(mechanism: Mechanism, elements: np.ndarray, null_space: np.ndarray) -> Iterator[np.ndarray]:

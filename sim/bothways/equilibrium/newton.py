@@ -49,19 +49,20 @@ class Task:
 
 def solve(point: Point, task: Task, most: int) -> tuple[bool, int]:
     """Moves `point` to the solution of `task` in at most `most` iterations; whether it came there, and the count."""
-    totals = None
+    log_totals, n_rows = None, point.log_component.size
     for count in range(1, most + 1):
-        if _take_most_abundant(point, task) or totals is None:
-            totals = point.components.totals(task.charge)
-        misfit, weight, fraction = balances(point, task, totals)
+        log_n, exchanged = _take_most_abundant(point, task)
+        if exchanged or log_totals is None:
+            log_totals = log_sides(point.components.totals(task.charge))
+        misfit, weight, fraction = balances(point, task, log_n, log_totals)
         try:
             step = np.linalg.solve(jacobian(point, task, weight, fraction), misfit)
         except np.linalg.LinAlgError:
             return False, count
-        largest = float(np.max(np.abs(step)))
+        largest = float(np.abs(step).max())
         if not largest < _FARTHEST:  # NaN included
             return False, count
-        point.log_component = point.log_component - step[: totals.size]
+        point.log_component = point.log_component - step[:n_rows]
         if task.swells:
             point.log_total -= float(step[-1])
         if largest < _LAST_STEP:
@@ -75,36 +76,40 @@ def log_amounts(point: Point, task: Task) -> np.ndarray:
     own = task.g[components.basis] @ components.formation - task.g
     result = own + point.log_component @ components.formation
     if task.swells:
-        result += (1.0 - np.sum(components.formation, axis=0)) * point.log_total
+        result += components.expansion * point.log_total
     result[components.basis] = point.log_component
     return result
 
 
-def _take_most_abundant(point: Point, task: Task) -> bool:
-    """Exchanges components until none is rarer by e than a species formed from it; whether any was exchanged."""
+def _take_most_abundant(point: Point, task: Task) -> tuple[np.ndarray, bool]:
+    """Exchanges components until none is rarer by e than a species formed from it; ln n, and whether any was."""
     changed = False
     while True:
         log_n = log_amounts(point, task)
         lead = point.components.logarithms[1] + log_n - point.log_component[:, None]
-        k, j = divmod(int(np.argmax(lead)), lead.shape[1])
+        k, j = divmod(int(lead.argmax()), log_n.size)
         if not lead[k, j] > _EXCHANGE_ABOVE:
-            return changed
+            return log_n, changed
         point.components.exchange(k, j)
         point.log_component[k] = log_n[j]
         changed = True
 
 
-def balances(point: Point, task: Task, totals: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+def log_sides(totals: np.ndarray) -> np.ndarray:
+    """ln of the totals as terms of the balances, (2 r): on the positive side where negative, and the reverse."""
+    sides = np.concatenate([-totals, totals])
+    logarithms = np.full(sides.size, -np.inf)
+    np.log(sides, out=logarithms, where=sides > 0)
+    return logarithms
+
+
+def balances(point: Point, task: Task, log_n: np.ndarray, log_totals: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     """Misfits ln(positive) - ln(negative) of the balances, (r) or with ln Σn - ζ (r + 1); their slopes against ln n
-    of the species, (r, n); mole fractions (n)."""
-    components, n_rows = point.components, totals.size
-    log_n = log_amounts(point, task)
+    of the species, (r, n); mole fractions (n). log_totals : from `log_sides`."""
+    n_rows = point.log_component.size
     terms = np.empty((2 * n_rows, log_n.size + 1))
-    terms[:, :-1] = components.logarithms[0] + log_n
-    with np.errstate(divide="ignore"):
-        size = np.log(np.abs(totals))
-    terms[:n_rows, -1] = np.where(totals < 0, size, -np.inf)
-    terms[n_rows:, -1] = np.where(totals > 0, size, -np.inf)
+    terms[:, :-1] = point.components.logarithms[0] + log_n
+    terms[:, -1] = log_totals
     terms -= np.concatenate([point.log_component, point.log_component])[:, None]
     log_sum, share = _log_sums(terms)
     misfit = log_sum[:n_rows] - log_sum[n_rows:]
@@ -117,9 +122,9 @@ def balances(point: Point, task: Task, totals: np.ndarray) -> tuple[np.ndarray, 
 
 def _log_sums(terms: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
     """ln Σ exp of each row, and each term's share in its sum, safe against overflow and underflow."""
-    top = np.max(terms, axis=1)
+    top = terms.max(axis=1)
     exponentials = np.exp(terms - top[:, None])
-    sums = np.sum(exponentials, axis=1)
+    sums = exponentials.sum(axis=1)
     return top + np.log(sums), exponentials / sums[:, None]
 
 
@@ -132,7 +137,7 @@ def jacobian(point: Point, task: Task, weight: np.ndarray, fraction: np.ndarray)
     n_rows = len(inner)
     whole = np.empty((n_rows + 1, n_rows + 1))
     whole[:-1, :-1] = inner
-    expansion = 1.0 - np.sum(components.formation, axis=0)
+    expansion = components.expansion
     whole[:-1, -1] = weight @ expansion
     whole[-1, :-1] = components.formation @ fraction
     whole[-1, -1] = expansion @ fraction - 1.0

@@ -56,6 +56,23 @@ _PARTIAL = at.offset_slot(at.WORK, "partial")
 _BLOCK = at.offset_slot(at.WORK, "block")
 
 
+CANCELLED = 0.01
+"""A partner's concentration below this part of the total has lost digits to the difference, and is summed anew [-]."""
+
+
+@compiled
+def _sum_of_partners(c, named, excess, default):
+    """Σ efficiency · c without a difference; named: (k) rising places of the species with an efficiency of their own."""
+    total, e = 0.0, 0
+    for i in range(c.size):
+        if e < named.size and named[e] == i:
+            total += (default + excess[e]) * c[i]
+            e += 1
+        else:
+            total += default * c[i]
+    return total
+
+
 @compiled
 def _partners(c, total, ints, floats, work):
     """Concentration of the partner of each group: default · total + Σ excess · c, [mol/m3]."""
@@ -66,6 +83,8 @@ def _partners(c, total, ints, floats, work):
         m = default[g] * total
         for e in range(start[g], start[g + 1]):
             m += excess[e] * c[species[e]]
+        if m < CANCELLED * default[g] * total:
+            m = _sum_of_partners(c, species[start[g] : start[g + 1]], excess[start[g] : start[g + 1]], default[g])
         partner[g] = m
         log_partner[g] = math.log(max(m, SMALLEST_PARTNER))
 
