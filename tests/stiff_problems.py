@@ -30,7 +30,8 @@ def problem(f, J, start, end, rtol, atol, stops=(), judge=0, context=None):
         _call(J, y, out, context)
         return out.reshape(n, n).T.copy()
 
-    return Problem(plain_f, plain_J, start, end, rtol, np.broadcast_to(np.asarray(atol, float), (n,)).copy(), tuple(stops), system)
+    tolerances = np.broadcast_to(np.asarray(atol, float), (n,)).copy()
+    return Problem(plain_f, plain_J, start, end, rtol, tolerances, tuple(stops), system)
 
 
 def _call(function, given, out, context):

@@ -196,9 +196,9 @@ def test_value(refusals: Refusals, changes: tuple, entry: str, texts: tuple) -> 
     check(refusals, changes, entry, texts)
 
 
-NUMBERS = ["vessel.volume", "vessel.thermal_inertia", "start.temperature", "start.pressure", "start.mole_ratio.Q", "until.time",
-           "solver.rtol", "solver.atol", "start.mass_ratio.Q", "start.amount.Q", "start.concentration.Q", "start.fuel.Q",
-           "start.oxidiser.O2", "start.equivalence_ratio"]
+NUMBERS = ["vessel.volume", "vessel.thermal_inertia", "start.temperature", "start.pressure", "start.mole_ratio.Q",
+           "until.time", "solver.rtol", "solver.atol", "start.mass_ratio.Q", "start.amount.Q", "start.concentration.Q",
+           "start.fuel.Q", "start.oxidiser.O2", "start.equivalence_ratio"]
 
 
 @pytest.mark.parametrize("place", NUMBERS)

@@ -5,7 +5,17 @@ import warnings
 import numpy as np
 import pytest
 
-from bothways import InputError, Remark, build_case, build_mechanism, bundled_cases, read_case, read_trajectory, run, write_trajectory
+from bothways import (
+    InputError,
+    Remark,
+    build_case,
+    build_mechanism,
+    bundled_cases,
+    read_case,
+    read_trajectory,
+    run,
+    write_trajectory,
+)
 from bothways.integrate import METHODS
 from bothways.mechanism.files import parse_toml
 from bothways.recorder import repaired

@@ -180,10 +180,11 @@ PLOTS = [
     (("no.h5",), "no.h5: cannot be read (No such file or directory); expected a trajectory written by bothways"),
     (("case.toml",), "case.toml: is not an HDF5 file; expected a trajectory written by bothways"),
     (("run.h5", "--output", "x.bmp"), "x.bmp: the suffix is '.bmp'; expected .png"),
-    (("run.h5", "--output", "no/x.png"), "there is no folder"), (("run.h5", "--output", "old.png"), "the file exists already"),
+    (("run.h5", "--output", "no/x.png"), "there is no folder"),
+    (("run.h5", "--output", "old.png"), "the file exists already"),
     (("run.png",), "run.png: this file is needed for something else"),
     (("run.png", "--replace"), "run.png: this file is needed for something else"),
-    (("run.h5", "--output", "x.png", "--species", "Qx"), "unknown species 'Qx'; nearest: Q"),
+    (("run.h5", "--output", "x.png", "--species", "Qx"), "unknown species 'Qx'; known: H2, H2O, O2"),
     (("run.h5", "--between", "1"), "argument --between: expected 2 arguments; 'bothways plot --help'"),
     (("run.h5", "--between", "0", "soon"), "--between: 'soon' is no time; expected a time such as"),
     (("run.h5", "--between", "0", "1 K"), "--between: '1 K' is no time; expected a time such as"),
@@ -197,7 +198,7 @@ PLOTS = [
 def test_what_cannot_be_plotted(refusals: Refusals, arguments: tuple[str, ...], text: str) -> None:
     refusals.write()
     for name in ("run.h5", "run.png"):
-        write_trajectory(name, made())
+        write_trajectory(name, made(time=np.linspace(0.0, 1.0, 6)))
     Path("old.png").write_text("of someone else")
     line = refusals.line("plot", *arguments)
     assert text in line and "; " in line, line

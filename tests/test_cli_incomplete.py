@@ -16,7 +16,7 @@ import h5py
 import numpy as np
 import pytest
 
-from bothways import build_case, build_mechanism, cli, read_trajectory, run, write_trajectory
+from bothways import Equations, build_case, build_mechanism, cli, read_trajectory, run, write_trajectory
 from bothways.cli import main
 from bothways.mechanism.toml_reader import parse_toml
 from refusals import CASE, MECHANISM, Refusals, changed, meddled
@@ -74,12 +74,23 @@ forward = { law = "Arrhenius", A = 1e3 }
 
 
 def test_a_case_that_leaves_every_range_of_temperature(refusals: Refusals) -> None:
-    """1.5 MJ/mol set free at 12.7 J/(mol K) would heat the vessel beyond 1e5 K, where the equations are not stated."""
+    """1.5 MJ/mol set free at 12.7 J/(mol K) would heat the vessel beyond 1e5 K: refused before the run."""
     case = changed(CASE, ("{ Q = 0.1, O2 = 1 }", "{ A = 1 }"), ("thermal_inertia = 1.2", ""), ('"1 us"', '"1 s"'))
     refusals.write(RUNAWAY, case)
+    assert "is out of reach" in refusals.line("run", "case.toml")
+
+
+@pytest.mark.parametrize("method", ["BDF", "Radau"])
+def test_equations_that_fail(refusals: Refusals, monkeypatch: pytest.MonkeyPatch, method: str) -> None:
+    """A right-hand side that is NaN from 0.3 us on stops any solver before."""
+    def failing(self: Equations, t: float, y: np.ndarray) -> np.ndarray:
+        return f(self, t, y) if t < 3e-7 else np.full(y.size, np.nan)
+
+    f = Equations.f
+    refusals.write(case=changed(CASE, ("rtol = 1e-6", f'method = "{method}"'), ('also_at = ["0.1 us", 5e-7]', "")))
+    monkeypatch.setattr(Equations, "f", failing)
     assert_kept(refusals, 3, "at ")
-    temperature = read_trajectory("run.h5").temperature
-    assert temperature[0] == 1200 and 1e4 < temperature[-1] <= 1e5
+    assert 1e-8 < read_trajectory("run.h5").time[-1] <= 3e-7
 
 
 # ---- Ctrl-C: status 130, the file is kept

@@ -7,7 +7,8 @@ from bothways import build_case, build_mechanism
 from bothways.endpoint import target_of
 from bothways.relaxation import singular_values
 
-BLOCK = {"elements": {"Q": "20 g/mol"}}
+HEAD = {"mechanism": {"name": "invented", "phase": "ideal gas", "standard_pressure": "1 bar"},
+        "elements": {"Q": "20 g/mol"}}
 
 
 def chain(constants, g, start, temperature=500.0):
@@ -15,10 +16,10 @@ def chain(constants, g, start, temperature=500.0):
     names = "ABCDE"[: len(g)]
     species = {n: {"formula": "Q", "potential": {"form": "constant heat capacity", "at": temperature, "H": 0.0,
                                                  "G": value, "cp": 30.0}} for n, value in zip(names, g, strict=True)}
-    document = {"mechanism": {"name": "invented", "phase": "ideal gas", "standard_pressure": "1 bar"}, **BLOCK, "species": species,
+    document = {**HEAD, "species": species,
                 "reaction": [{"equation": f"{a} = {b}", "forward": {"law": "Arrhenius", "A": k}} for a, b, k in constants]}
-    return build_case({"vessel": {"heat": "isothermal"}, "start": {"temperature": temperature, "pressure": "1 bar", "mole_ratio": start},
-                       "until": {"time": 1.0}}, mechanism=build_mechanism(document))
+    return build_case({"vessel": {"heat": "isothermal"},
+                       "start": {"temperature": temperature, "pressure": "1 bar", "mole_ratio": start}, "until": {"time": 1.0}}, mechanism=build_mechanism(document))
 
 
 def slowest(case):
@@ -46,9 +47,10 @@ def test_cycle():
 def dissociation(holds):
     """N2O4 ⇌ 2 NO2 as building blocks with K = 0.148428 bar at 298.15 K, first order with kf = 1 1/s."""
     g = -8.31446261815324 * 298.15 * np.log(0.148428)
-    species = {n: {"composition": {"Q": k}, "potential": {"form": "constant heat capacity", "at": 298.15, "H": h, "G": value, "cp": 40.0}}
+    species = {n: {"composition": {"Q": k}, "potential": {"form": "constant heat capacity", "at": 298.15, "H": h, "G": value,
+                                                          "cp": 40.0}}
                for n, k, h, value in (("D", 2, 0.0, 0.0), ("N", 1, 28.6e3, 0.5 * g))}
-    document = {"mechanism": {"name": "invented", "phase": "ideal gas", "standard_pressure": "1 bar"}, **BLOCK, "species": species,
+    document = {**HEAD, "species": species,
                 "reaction": [{"equation": "D = 2 N", "forward": {"law": "Arrhenius", "A": 1.0}}]}
     return build_case({"vessel": {"heat": "isothermal", "holds": holds}, "start": {"temperature": 298.15, "pressure": "1 atm",
                        "mole_ratio": {"D": 1}}, "until": {"time": 1.0}}, mechanism=build_mechanism(document))
@@ -72,7 +74,8 @@ def test_dissociation_at_constant_pressure():
 def test_against_the_eigenvalues_of_J(heat, holds):
     """Where double precision still resolves them, the eigenvalues of J at equilibrium tell the same."""
     case = build_case({"case": {"mechanism": "hydrogen-oxygen"}, "vessel": {"heat": heat, "holds": holds},
-                       "start": {"temperature": 2500.0, "pressure": 1e5, "mole_ratio": {"H2": 2, "O2": 1}}, "until": {"time": 1.0}})
+                       "start": {"temperature": 2500.0, "pressure": 1e5, "mole_ratio": {"H2": 2, "O2": 1}},
+                       "until": {"time": 1.0}})
     target = target_of(case)
     part = target.own.amount / (case.charge.volume if holds == "volume" else 1.0)
     J = case.equations().J(0.0, np.append(part, target.own.temperature))

@@ -3,8 +3,8 @@
 Every reverse rate is made from the forward rate and K(T); see `run`, `read_case`, `read_mechanism`.
 """
 
-from .batch import Remark, program_version, run
 from .along import Contributions, contributions
+from .batch import Remark, program_version, run
 from .case import Case, build_case, read_case
 from .endpoint import Verdict, verdict
 from .equilibrium import Equilibrium, equilibrium

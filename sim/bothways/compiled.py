@@ -62,7 +62,7 @@ def compiled(function: Callable[..., Any]) -> Callable[..., Any]:
         return numba.njit(cache=True, nogil=True, error_model="numpy")(function)
 
 
-class callback:  # noqa: N801 - used as a decorator
+class callback:
     """A function of three pointers, (float64*, float64*, int64*) -> int64, whose `address` `call` takes.
 
     Passing an address as a number keeps caller and callee apart: the caller is compiled and cached once, whatever it

@@ -7,6 +7,7 @@ charge. The run must land on the second; where that differs from the first, what
 from dataclasses import dataclass, field, replace
 from enum import Enum
 from functools import cached_property
+from typing import Any
 
 import numpy as np
 
@@ -115,13 +116,13 @@ def _restrict(mechanism: Mechanism, running: np.ndarray) -> Mechanism:
 
 def _equilibrium(case: Case, conserved: str | np.ndarray) -> Equilibrium:
     c = case.charge
-    held = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
+    held: dict[str, Any] = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
     if case.heat == "isothermal":
         return equilibrium(case.mechanism, c.amount, temperature=c.temperature, conserved=conserved, **held)
     energy = Contents(case.mechanism).energy(c.amount, c.temperature, case.holds)
-    name = "internal_energy" if case.holds == "volume" else "enthalpy"
+    held["internal_energy" if case.holds == "volume" else "enthalpy"] = energy
     return equilibrium(case.mechanism, c.amount, conserved=conserved, own_heat_capacity=case.own_heat_capacity,
-                       reference_temperature=c.temperature, **{name: energy}, **held)
+                       reference_temperature=c.temperature, **held)
 
 
 @dataclass(frozen=True)

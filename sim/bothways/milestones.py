@@ -1,6 +1,6 @@
 """What a practitioner looks for in a course: steepest rise, half-conversion, peaks of intermediates."""
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 
 import numpy as np
 
@@ -59,6 +59,10 @@ def _half_conversions(case: Case, course: Course) -> dict[str, float]:
     return found
 
 
+def _rate_of(course: Course, k: int) -> Callable[[float, np.ndarray], float]:
+    return lambda t, y: float(course.f(t, y)[k])
+
+
 def _peaks(case: Case, course: Course, amounts: np.ndarray) -> dict[str, float]:
     """Species that rise from less than half their peak and fall below it again by a tenth."""
     found = {}
@@ -69,7 +73,7 @@ def _peaks(case: Case, course: Course, amounts: np.ndarray) -> dict[str, float]:
         high = amounts[top, k]
         if x[top] < SMALLEST_PEAK or amounts[0, k] > 0.5 * high or amounts[-1, k] > 0.9 * high:
             continue
-        peak = course.peak(top, lambda t, y, k=k: float(course.f(t, y)[k]))
+        peak = course.peak(top, _rate_of(course, k))
         t, state = peak if peak else (float(course.times[top]), course.states[top])
         found[f"peak of {name}"] = t
         found[f"peak mole fraction of {name}"] = float(state[k] / np.sum(state[:-1]))

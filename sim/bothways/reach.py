@@ -1,6 +1,6 @@
 """Which reactions can proceed from a charge: a matter of what is there, not of how fast."""
 
-from collections.abc import Iterable
+from collections.abc import Iterable, Mapping
 
 import numpy as np
 
@@ -33,7 +33,7 @@ def _starts(mechanism: Mechanism, reaction: Reaction, sides: list[set[int]], pre
                for term in reaction.terms)
 
 
-def _has_partner(mechanism: Mechanism, default: float, efficiency: dict, present: set[int]) -> bool:
+def _has_partner(mechanism: Mechanism, default: float, efficiency: Mapping[str, float], present: set[int]) -> bool:
     return any(efficiency.get(mechanism.names[k], default) > 0 for k in present)
 
 

@@ -51,7 +51,7 @@ def notable(run: Trajectory) -> bool:
 
 def _mechanism(case: Case) -> str:
     m = case.mechanism
-    return f"{m.name}: {len(m.species)} species, {len(m.reactions)} reactions, {m.phase}"
+    return f"{m.name}: {len(m.species)} species, {counted(len(m.reactions), 'reaction')}, {m.phase}"
 
 
 def _vessel(case: Case) -> str:
@@ -111,13 +111,18 @@ def _equilibrium(verdict: Verdict) -> list[str]:
 def _balances(run: Trajectory) -> str:
     text = f"elements within {np.max(np.abs(run.element_residual)):.1e}"
     if np.any(run.energy_residual):
-        text += f", energy within {np.max(np.abs(run.energy_residual)):.1e} before it sets the temperature"
+        text += f", energy within {np.max(np.abs(run.energy_residual)):.1e} in the states of the solver"
     return text + f"; entropy produced {run.entropy_produced[-1]:.4g} J/K"
 
 
 def _solver(run: Trajectory) -> str:
     s = run.statistics
     return f"{s['method']}, relative tolerance {s['rtol']:g}, {s['steps']} steps in {float(s['seconds']):.2g} s"
+
+
+def counted(count: int, noun: str) -> str:
+    """"1 reaction", "2 reactions"."""
+    return f"{count} {noun}{'' if count == 1 else 's'}"
 
 
 def time_text(seconds: float) -> str:

@@ -13,10 +13,10 @@ from functools import cached_property
 import numpy as np
 from scipy.sparse import csc_array
 
+from .compiled import in_cache
 from .constants import GAS_CONSTANT as _R
 from .errors import InputError
 from .kernels import equations as kernel
-from .compiled import in_cache
 from .mechanism import Mechanism, Tables, build_tables, table_view
 
 HEAT = ("isothermal", "adiabatic")
@@ -137,9 +137,15 @@ class Equations:
         return np.empty(self.bordered_pattern[0].size)
 
     @cached_property
+    def _block(self) -> tuple[np.ndarray, np.ndarray]:
+        """Column starts and rows of the species block."""
+        start, rows = (table_view(self.tables, name).astype(np.int64) for name in ("block_start", "block_row"))
+        return start, rows
+
+    @cached_property
     def bordered_pattern(self) -> tuple[np.ndarray, np.ndarray]:
         """Row indices and column starts of the bordered Jacobian (compressed columns), its diagonal included."""
-        start, rows = table_view(self.tables, "block_start").astype(np.int64), table_view(self.tables, "block_row").astype(np.int64)
+        start, rows = self._block
         n = self.size - 1
         columns = [[*rows[start[s] : start[s + 1]], n, n + 1] for s in range(n)] + [list(range(n + 2))] * 2
         return np.concatenate(columns).astype(np.int32), np.cumsum([0] + [len(c) for c in columns]).astype(np.int32)
@@ -147,7 +153,7 @@ class Equations:
     @cached_property
     def pattern(self) -> tuple[np.ndarray, np.ndarray]:
         """Row indices and column starts of the plain Jacobian: rows with a partner or expansion are full."""
-        start, rows = table_view(self.tables, "block_start").astype(np.int64), table_view(self.tables, "block_row").astype(np.int64)
+        start, rows = self._block
         n, full = self.size - 1, self._full_rows
         columns = [sorted({*rows[start[s] : start[s + 1]].tolist(), *full, n}) for s in range(n)] + [list(range(n + 1))]
         return np.concatenate(columns).astype(np.int32), np.cumsum([0] + [len(c) for c in columns]).astype(np.int32)

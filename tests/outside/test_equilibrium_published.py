@@ -103,7 +103,7 @@ def test_dissociation_of_carbon_dioxide(T):
 
 
 # N2 + 3 H2 to ammonia, ideal gas, per cent NH3 [R] from TP-2002; beside them the measured A.T. Larson, R.L. Dodge, J. Am.
-# Chem. Soc. 45 (1923) 2918, doi:10.1021/ja01665a017 [M], which real gases meet within 8 %.
+# Chem. Soc. 45 (1923) 2918 [M], which real gases meet within 8 %.
 AMMONIA = {(10, 350): (7.93, 7.35), (10, 400): (4.08, 3.85), (10, 500): (1.27, 1.20), (30, 400): (10.63, 10.09),
            (50, 350): (25.77, 25.11), (50, 450): (9.48, 9.17), (100, 400): (24.97, 24.91), (100, 500): (10.47, 10.40)}
 

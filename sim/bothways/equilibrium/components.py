@@ -46,18 +46,17 @@ class Components:
         self.independent_rows = np.array(pivots, dtype=np.intp)
 
     def copy(self) -> "Components":
-        """An independent copy."""
-        return self._twin(self.numbers, self.basis.copy(), self.independent_rows)
+        """An independent copy; arrays other than `basis` are shared, since none is ever written into."""
+        twin = object.__new__(Components)
+        twin.__dict__.update(self.__dict__, basis=self.basis.copy())
+        return twin
 
     def without(self, excluded: np.ndarray) -> "Components":
         """The components of the columns that are left, (n) mask; a component that is excluded takes its row along."""
-        rows = ~excluded[self.basis]
-        place = np.cumsum(~excluded) - 1
-        return self._twin(self.numbers[rows][:, ~excluded], place[self.basis[rows]], self.independent_rows[rows])
-
-    def _twin(self, numbers: np.ndarray, basis: np.ndarray, independent_rows: np.ndarray) -> "Components":
+        rows, place = ~excluded[self.basis], np.cumsum(~excluded) - 1
         twin = object.__new__(Components)
-        twin.numbers, twin.divisor, twin.basis, twin.independent_rows = numbers, self.divisor, basis, independent_rows
+        twin.numbers, twin.divisor = self.numbers[rows][:, ~excluded], self.divisor
+        twin.basis, twin.independent_rows = place[self.basis[rows]], self.independent_rows[rows]
         return twin
 
     def exchange(self, k: int, j: int) -> None:

@@ -2,7 +2,6 @@
 
 from collections.abc import Mapping, Sequence
 from dataclasses import replace
-from itertools import repeat
 
 import numpy as np
 
@@ -42,9 +41,10 @@ class GibbsMinimiser:
               own_heat_capacity: float = 0.0, reference_temperature: float = 298.15,
               near: Equilibrium | None = None) -> Equilibrium:
         """The equilibrium of a charge; the arguments of `equilibrium`, and `near`, one to start from."""
-        given = {"temperature": temperature, "pressure": pressure, "volume": volume,
+        asked = {"temperature": temperature, "pressure": pressure, "volume": volume,
                  "internal_energy": internal_energy, "enthalpy": enthalpy}
-        held = _checked({name: value for name, value in given.items() if value is not None})
+        given = {name: value for name, value in asked.items() if value is not None}
+        held = _checked(given)
         _check_vessel(own_heat_capacity, reference_temperature)
         charged = self._amounts(amount)
         stock = self._stock(charged)
@@ -52,8 +52,8 @@ class GibbsMinimiser:
         if temperature is not None:
             state = at_temperature(stock, held, float(temperature), start)
         else:
-            energy = internal_energy if enthalpy is None else enthalpy
-            state = at_energy(stock, held, float(energy), own_heat_capacity, reference_temperature, start)
+            energy = float(given["internal_energy"] if enthalpy is None else enthalpy)
+            state = at_energy(stock, held, energy, own_heat_capacity, reference_temperature, start)
         return finish(self.mechanism, stock, held, state, self.conserved, charged)
 
     def _is_alike(self, near: Equilibrium, stock: Stock) -> bool:
@@ -124,10 +124,11 @@ def equilibria(mechanism: Mechanism, amount: Amounts, *, conserved: str | np.nda
     lengths = {np.size(value) for value in stated.values() if np.ndim(value) > 0}
     if len(lengths) > 1:
         raise InputError(f"lists of {' and '.join(map(str, sorted(lengths)))} values", expected="lists of one length")
-    lists = [value if np.ndim(value) > 0 else repeat(value) for value in stated.values()]
-    minimiser, found = _minimiser(mechanism, conserved), []
-    for _, *values in zip(range(max(lengths, default=1)), *lists, strict=False):
-        found.append(minimiser.solve(amount, **dict(zip(stated, map(float, values), strict=True)),
+    length, minimiser = max(lengths, default=1), _minimiser(mechanism, conserved)
+    lists = {name: np.broadcast_to(np.asarray(value, dtype=float), length) for name, value in stated.items()}
+    found: list[Equilibrium] = []
+    for k in range(length):
+        found.append(minimiser.solve(amount, **{name: float(values[k]) for name, values in lists.items()},
                                      own_heat_capacity=own_heat_capacity, reference_temperature=reference_temperature,
                                      near=found[-1] if found else None))
     return found

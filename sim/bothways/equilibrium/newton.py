@@ -103,7 +103,8 @@ def log_sides(totals: np.ndarray) -> np.ndarray:
     return logarithms
 
 
-def balances(point: Point, task: Task, log_n: np.ndarray, log_totals: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+def balances(point: Point, task: Task, log_n: np.ndarray,
+             log_totals: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     """Misfits ln(positive) - ln(negative) of the balances, (r) or with ln Σn - ζ (r + 1); their slopes against ln n
     of the species, (r, n); mole fractions (n). log_totals : from `log_sides`."""
     n_rows = point.log_component.size

@@ -1,6 +1,6 @@
 """An equilibrium and its functions of state."""
 
-from dataclasses import dataclass, field
+from dataclasses import dataclass
 
 import numpy as np
 
@@ -9,7 +9,7 @@ from ..mechanism.model import Mechanism
 from .closures import Held, State, Stock
 
 
-@dataclass(frozen=True, repr=False)
+@dataclass(frozen=True, repr=False, eq=False)
 class Equilibrium:
     """The composition of least Gibbs energy, and the state it is in.
 
@@ -44,7 +44,7 @@ class Equilibrium:
     balance_residual: float
     potential_residual: float
     energy_residual: float
-    state: State = field(compare=False)
+    state: State
 
     @property
     def helmholtz_energy(self) -> float:

@@ -7,7 +7,6 @@ and Radau IIA of order 5 (E. Hairer, G. Wanner, Solving Ordinary Differential Eq
 import time
 import warnings
 from collections.abc import Callable
-
 from typing import Any
 
 import numpy as np

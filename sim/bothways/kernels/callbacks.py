@@ -9,7 +9,7 @@ from numba import carray
 
 from ..compiled import callback, compiled, float64_pointer, uint32_pointer
 from . import layout as at
-from .equations import VESSEL_SIZE, bordered_jacobian, border_of, rates_of_change
+from .equations import VESSEL_SIZE, border_of, bordered_jacobian, rates_of_change
 
 VESSEL, INTS, FLOATS, WORK, N_INTS, N_FLOATS, N_WORK, N_DATA = range(8)
 CONTEXT_SIZE = 8

@@ -9,9 +9,9 @@ volume J/(m3 K)], unused.
 
 import numpy as np
 
+from ..compiled import compiled
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
-from ..compiled import compiled
 from .layout import view
 from .rates import set_derivatives, set_production
 from .thermal import set_temperature
@@ -163,7 +163,7 @@ def bordered_jacobian(z, vessel, ints, floats, work, data):
         data[:] = np.nan
         return
     volume = _columns(z, border, T, vessel, ints, floats, work)
-    start, row, block = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), view(work, ints, _BLOCK)
+    start, block = view(ints, ints, _BLOCK_START), view(work, ints, _BLOCK)
     p = 0
     for s in range(n):
         for e in range(start[s], start[s + 1]):

@@ -62,19 +62,19 @@ def weighted_solve(rows, weights, right, matrix, out):
     """λ of (Σ_i rows_ki w_i rows_li) λ_l = right_k by Cholesky's method; rows that weigh nothing get λ = 0."""
     m, n = rows.shape
     for k in range(m):
-        for l in range(k + 1):
+        for q in range(k + 1):
             total = 0.0
             for i in range(n):
-                total += rows[k, i] * weights[i] * rows[l, i]
-            matrix[k, l] = total
+                total += rows[k, i] * weights[i] * rows[q, i]
+            matrix[k, q] = total
     for k in range(m):
         scale = matrix[k, k]
-        for l in range(k + 1):
-            total = matrix[k, l]
-            for j in range(l):
-                total -= matrix[k, j] * matrix[l, j]
-            if l < k:
-                matrix[k, l] = total / matrix[l, l] if matrix[l, l] > 0.0 else 0.0
+        for q in range(k + 1):
+            total = matrix[k, q]
+            for j in range(q):
+                total -= matrix[k, j] * matrix[q, j]
+            if q < k:
+                matrix[k, q] = total / matrix[q, q] if matrix[q, q] > 0.0 else 0.0
             else:
                 matrix[k, k] = math.sqrt(total) if total > 1e-12 * scale else 0.0
     for k in range(m):
@@ -82,8 +82,7 @@ def weighted_solve(rows, weights, right, matrix, out):
         for j in range(k):
             total -= matrix[k, j] * out[j]
         out[k] = total / matrix[k, k] if matrix[k, k] > 0.0 else 0.0
-    for q in range(m):
-        k = m - 1 - q
+    for k in range(m - 1, -1, -1):
         total = out[k]
         for j in range(k + 1, m):
             total -= matrix[j, k] * out[j]
@@ -142,7 +141,7 @@ def temperature_of(amount, T, vessel, ints, floats, head, gibbs, enthalpy, cp, s
         step = (head[ENERGY] / R - energy) / heat
         if attempt == 0:
             head[LARGEST_ENERGY_DRIFT] = max(head[LARGEST_ENERGY_DRIFT], abs(step) / T)
-        if abs(step) <= 2e-16 * T or abs(step) >= previous and abs(step) < 1e-13 * T:
+        if abs(step) <= 2e-16 * T or (abs(step) >= previous and abs(step) < 1e-13 * T):
             return T
         previous = abs(step)
         T += max(min(step, 0.5 * T), -0.3 * T)

@@ -6,8 +6,8 @@ at equilibrium; no reverse rate constant is formed (balance.py states the rule i
 
 import math
 
-from . import layout as at
 from ..compiled import compiled
+from . import layout as at
 from .falloff import SMALLEST_PARTNER, fall_off_constants, fall_off_slopes
 from .layout import view
 from .pressure import pressure_constants, pressure_slopes

@@ -5,9 +5,9 @@ Kept in `work` while the temperature stays, since isothermal runs and Newton ite
 
 import math
 
+from ..compiled import compiled
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
-from ..compiled import compiled
 from .elementary import exp_array
 from .falloff import set_centres
 from .layout import view

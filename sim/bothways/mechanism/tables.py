@@ -96,8 +96,8 @@ def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
             molecules = [mechanism.index(name) for name, count in terms for _ in range(count)]
             sides[side].append(molecules)
             long += [(j, k, side) for k in molecules[3:]]
-    for key, molecules in zip(("reactant", "product"), sides, strict=True):
-        ints[key] = np.array([(m + [n, n, n])[:3] for m in molecules]).ravel()
+    for key, lists in zip(("reactant", "product"), sides, strict=True):
+        ints[key] = np.array([[*m, n, n, n][:3] for m in lists]).ravel()
     for column, key in enumerate(("long_reaction", "long_species", "long_side")):
         ints[key] = np.array([row[column] for row in long])
     return sides
@@ -123,7 +123,7 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
     lengths = [[np.size(ints[name]) for name in layout.INTS], [np.size(floats[name]) for name in layout.FLOATS],
                _work_lengths(sizes)]
     for first, list_of_lengths in zip((layout.HEADER, 0, 0), lengths, strict=True):
-        header += list(first + np.cumsum([0] + list_of_lengths))
+        header += list(first + np.cumsum([0, *list_of_lengths]))
     all_ints = np.concatenate([header] + [np.asarray(ints[name]).ravel() for name in layout.INTS])
     all_floats = np.concatenate([np.asarray(floats[name], dtype=float).ravel() for name in layout.FLOATS])
     return all_ints.astype(np.uint32), all_floats, sum(lengths[2])
