@@ -7,6 +7,7 @@ import pytest
 
 from bothways import Equations, build_case, build_mechanism, run
 from bothways.constants import GAS_CONSTANT as R
+from bothways.reach import reachable
 from laws import LAWS, document, law_of
 
 CLOSURES = [(holds, heat) for holds in ("volume", "pressure") for heat in ("isothermal", "adiabatic")]
@@ -112,6 +113,15 @@ def test_net_rate_vanishes_at_equilibrium_whatever_the_law(name):
     ratio = np.sqrt(forward[0] / reverse[0])  # c_B for c_A = 1 is smaller by that
     forward, reverse = eq.reaction_rates(np.array([1.0, 1.0 / ratio, 5.0, T]))
     assert forward[0] == pytest.approx(reverse[0], rel=1e-13)
+
+
+@pytest.mark.parametrize("name", [name for name, terms in LAWS.items() if "collision_partner" in terms[0]])
+def test_whether_a_reaction_runs_without_its_partner(name):
+    """An activated channel does, at k_0; fall-off and several terms of it do not, or by the other terms."""
+    eq = equations(LAWS[name])
+    runs = eq.reaction_rates(np.array([0.0, 1.0, 0.0, 700.0]))[0][0] > 0
+    assert runs == bool(reachable(eq.mechanism, np.array([0.0, 1.0, 0.0]))[1][0])
+    assert runs == (name in ("activated, JPL, one partner", "several terms"))
 
 
 # ---- by hand

@@ -26,7 +26,11 @@ class Course:
         """The interpolant, time [s] -> state (n), from step k to k + 1."""
         start, h = self.times[k], self.times[k + 1] - self.times[k]
         data = np.array([v for j in (k, k + 1) for v in (self.states[j], h * self.slopes[j], h * h * self.curvatures[j])])
-        return lambda t: _hermite((t - start) / h) @ data
+
+        def state(t: float) -> np.ndarray:
+            return _hermite((t - start) / h) @ data
+
+        return state
 
     def first_crossing(self, values: np.ndarray, component: int, level: float) -> float | None:
         """The first time at which a falling component reaches a level; values: the component at the times."""
@@ -44,9 +48,13 @@ class Course:
                 piece = self.between(first)
                 start, end = self.times[first], self.times[first + 1]
                 if rate(start, self.states[first]) > 0 >= rate(end, self.states[first + 1]):
-                    t = _root(lambda s, piece=piece: rate(s, piece(s)), start, end)
-                    return t, piece(t)
+                    return self._turn(piece, rate, start, end)
         return None
+
+    def _turn(self, piece: Callable[[float], np.ndarray], rate: Callable[[float, np.ndarray], float], start: float,
+              end: float) -> tuple[float, np.ndarray]:
+        t = _root(lambda s: rate(s, piece(s)), start, end)
+        return t, piece(t)
 
 
 def _hermite(x: float) -> np.ndarray:

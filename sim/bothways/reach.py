@@ -29,8 +29,8 @@ def reachable(mechanism: Mechanism, charge: np.ndarray) -> tuple[np.ndarray, np.
 def _starts(mechanism: Mechanism, reaction: Reaction, sides: list[set[int]], present: set[int]) -> bool:
     if not any(side <= present for side in sides):
         return False
-    return any(term.partner is None or _has_partner(mechanism, term.partner.default, term.partner.efficiency, present)
-               for term in reaction.terms)
+    return any(term.partner is None or not term.law.needs_partner
+               or _has_partner(mechanism, term.partner.default, term.partner.efficiency, present) for term in reaction.terms)
 
 
 def _has_partner(mechanism: Mechanism, default: float, efficiency: Mapping[str, float], present: set[int]) -> bool:

@@ -18,6 +18,7 @@ Amounts = np.ndarray | Sequence[float] | Mapping[str, float]
 _PAIRS = "temperature with volume, temperature with pressure, internal_energy with volume, or enthalpy with pressure"
 _POSITIVE = ("temperature", "pressure", "volume")
 _KEPT = 8
+_LARGEST = 1e300  # mol: sums stay finite
 
 
 class GibbsMinimiser:
@@ -69,7 +70,7 @@ class GibbsMinimiser:
         if values.shape != (len(self.mechanism.species),):
             raise InputError(f"amounts of shape {values.shape}",
                              expected=f"one for each of the {len(self.mechanism.species)} species")
-        wrong = np.flatnonzero(~(np.isfinite(values) & (values >= 0)))
+        wrong = np.flatnonzero(~((values >= 0) & (values <= _LARGEST)))
         if wrong.size:
             k = int(wrong[0])
             raise InputError(f"amount {values[k]:g} mol of {self.mechanism.names[k]}",

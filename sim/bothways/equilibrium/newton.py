@@ -18,7 +18,7 @@ import numpy as np
 from .components import Components
 
 _EXCHANGE_ABOVE = 1.0  # in ln n
-_FARTHEST = 1e4  # in ln n: beyond it the iteration runs away
+_FARTHEST = 1e6  # in ln n: beyond it the iteration runs away
 _LAST_STEP = 1e-8  # in ln n: its square, the error left by it, is round-off
 
 

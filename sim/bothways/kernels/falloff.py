@@ -146,11 +146,11 @@ def _curve_constants(ints, floats, work):
     log_k, log_partner = view(work, ints, _LOG_K), view(work, ints, _LOG_PARTNER)
     centre, factor = view(work, ints, _CURVE_CENTRE), view(work, ints, _CURVE_FACTOR)
     for u in range(term.size):
-        t, l, m = term[u], low[u], partner[group[u]]
-        log_reduced = log_k[l] + log_partner[group[u]] - log_k[t]
+        t, e, m = term[u], low[u], partner[group[u]]
+        log_reduced = log_k[e] + log_partner[group[u]] - log_k[t]
         log_F, _, _ = _width(rule[u], log_reduced / LN10, centre[u])
         F = math.exp(LN10 * log_F + factor[u])
-        k[t] = limit[l] * (1.0 if activated[u] == 1 else m) / (1.0 + m * limit[l] / limit[t]) * F
+        k[t] = limit[e] * (1.0 if activated[u] == 1 else m) / (1.0 + m * limit[e] / limit[t]) * F
 
 
 @compiled
@@ -163,16 +163,16 @@ def fall_off_slopes(ints, floats, work):
     centre_slope, factor = view(work, ints, _LOG_CENTRE_SLOPE), view(work, ints, _BROADENING)
     log_partner = view(work, ints, _LOG_PARTNER)
     for q in range(term.size):
-        t, l, m = term[q], low[q], partner[group[q]]
-        response = 1.0 / (1.0 + m * limit[l] / limit[t])  # d ln k/d ln P_r
-        per_partner = limit[l] * response * factor[q]  # k/[M]
+        t, e, m = term[q], low[q], partner[group[q]]
+        response = 1.0 / (1.0 + m * limit[e] / limit[t])  # d ln k/d ln P_r
+        per_partner = limit[e] * response * factor[q]  # k/[M]
         by_centre = 0.0
         if kind[q] == 1:
-            log_reduced = log_k[l] + log_partner[group[q]] - log_k[t]
+            log_reduced = log_k[e] + log_partner[group[q]] - log_k[t]
             _, by_reduced, by_log_centre = _broadening(log_reduced / LN10, log_centre[q])
             response += by_reduced if m > SMALLEST_PARTNER else 0.0
             by_centre = LN10 * by_log_centre * centre_slope[q]
-        by_T[t] = k[t] * (slope[t] + (slope[l] - slope[t]) * response + by_centre)
+        by_T[t] = k[t] * (slope[t] + (slope[e] - slope[t]) * response + by_centre)
         by_M[t] = per_partner * response
     _curve_slopes(ints, floats, work)
 
@@ -192,14 +192,14 @@ def _curve_slopes(ints, floats, work):
     parameter, T = view(floats, ints, _CURVE_PARAMETER), view(work, ints, _SEEN)[0]
     factor = view(work, ints, _CURVE_FACTOR)
     for u in range(term.size):
-        t, l, m = term[u], low[u], partner[group[u]]
-        log_reduced = log_k[l] + log_partner[group[u]] - log_k[t]
+        t, e, m = term[u], low[u], partner[group[u]]
+        log_reduced = log_k[e] + log_partner[group[u]] - log_k[t]
         log_F, by_reduced, by_centre = _width(rule[u], log_reduced / LN10, centre[u])
         by_reduced = by_reduced if m > SMALLEST_PARTNER else 0.0
-        share = 1.0 / (1.0 + m * limit[l] / limit[t])
-        by_T[t] = k[t] * (slope[t] + (slope[l] - slope[t]) * (share + by_reduced)
+        share = 1.0 / (1.0 + m * limit[e] / limit[t])
+        by_T[t] = k[t] * (slope[t] + (slope[e] - slope[t]) * (share + by_reduced)
                           + LN10 * by_centre * centre_slope[u] + parameter[8 * u + 7] / T)
         if activated[u] == 1:
-            by_M[t] = k[t] * (by_reduced / max(m, SMALLEST_PARTNER) - share * limit[l] / limit[t])
+            by_M[t] = k[t] * (by_reduced / max(m, SMALLEST_PARTNER) - share * limit[e] / limit[t])
         else:
-            by_M[t] = limit[l] * share * math.exp(LN10 * log_F + factor[u]) * (share + by_reduced)
+            by_M[t] = limit[e] * share * math.exp(LN10 * log_F + factor[u]) * (share + by_reduced)

@@ -36,13 +36,25 @@ def formula(name: str, molar_mass: float) -> str:
 
 def margin(curves: Sequence[Curve], size: Size) -> float:
     """Width that labels of these curves take beside a panel [mm]."""
-    widest = max((text_width(curve.name, size.text) for curve in curves), default=0.0)
+    widest = max((_extent(curve.name, size)[0] * POINT for curve in curves), default=0.0)
     return widest + (LEADER + 7.0) * POINT if curves else 0.0
 
 
-def least_height(count: int, size: Size) -> float:
-    """Height of a panel beside which so many labels fit [mm]."""
-    return (count + 0.5) * LEADING * size.text * POINT
+def least_height(curves: Sequence[Curve], size: Size) -> float:
+    """Height of a panel beside which the labels of these curves fit [mm]."""
+    names = [curve.name for curve in curves if curve.name]
+    return (len(names) * _most_lines(names) + 0.5) * LEADING * size.text * POINT
+
+
+def _most_lines(names: Sequence[str]) -> int:
+    return max((name.count("\n") + 1 for name in names), default=1)
+
+
+def _extent(name: str, size: Size) -> Array:
+    """(2) width of a label, and height of its ink [pt]."""
+    lines = name.split("\n")
+    width = max(text_width(line, size.text) for line in lines) / POINT
+    return np.array([width, (_INK_HEIGHT + LEADING * (len(lines) - 1)) * size.text])
 
 
 @dataclass(frozen=True, eq=False)
@@ -73,28 +85,37 @@ class Drawn:
         """(n, 2) points along the line, about 1 pt apart."""
         return dense(self.path)
 
+    def peak(self) -> float:
+        """Where the line is furthest from its right end [pt]."""
+        y = self.path[:, 1] if len(self.path) else np.zeros(1)
+        return float(y[np.argmax(np.abs(y - y[-1]))])
+
     def height_at_edge(self) -> float | None:
-        """Where the line leaves the axes at the right, or ends within them [pt]; None if out of sight there."""
-        if not len(self.path):
-            return None
+        """Where the line leaves the axes at the right [pt]; None if it is out of sight there or ends before."""
         width, height = self.extent
+        if not len(self.path) or (len(self.path) > 1 and self.path[-1, 0] < width - 0.5):
+            return None
         y = float(np.interp(width, self.path[:, 0], self.path[:, 1]))
         return y if -0.5 <= y <= height + 0.5 else None
 
 
-def label_row(row: Sequence[Sequence[Drawn]], size: Size) -> None:
-    """Labels every curve of a panel once; row: the drawn curves, view by view.
+def label_row(row: Sequence[Sequence[Drawn]], size: Size, ends: bool = True) -> None:
+    """Labels every curve of a panel that has a name once; row: the drawn curves, view by view.
 
     Beside the last view where the line is in sight at its edge, else at the line within a view if there is a free
-    place, else beside the last view with a sample of the line.
+    place, else beside the last view with a sample of the line. Where the right ends do not tell the curves apart
+    (`ends` false) all labels stand beside the last view with samples, each as near as may be to its line's peak.
     """
     taken: list[list[Box]] = [[] for _ in row]
     beside: list[tuple[Drawn, float | None]] = []
-    for k in range(len(row[0])):
+    for k in (k for k, drawn in enumerate(row[0]) if drawn.curve.name):
+        if not ends:
+            beside.append((row[-1][k], None))
+            continue
         height = row[-1][k].height_at_edge()
         if height is not None or not _label_within(k, row, taken, size):
             beside.append((row[-1][k], height))
-    _label_beside(beside, size)
+    _label_beside(beside, size, ends)
 
 
 def _label_within(k: int, row: Sequence[Sequence[Drawn]], taken: Sequence[list[Box]], size: Size) -> bool:
@@ -102,8 +123,7 @@ def _label_within(k: int, row: Sequence[Sequence[Drawn]], taken: Sequence[list[B
     places = []
     for j, view in enumerate(row):
         others = np.concatenate([np.empty((0, 2)), *(drawn.ink for drawn in view if drawn is not view[k])])
-        text = np.array([text_width(view[k].curve.name, size.text) / POINT, _INK_HEIGHT * size.text])
-        found = best_place(view[k].ink, others, view[k].extent, text, taken[j])
+        found = best_place(view[k].ink, others, view[k].extent, _extent(view[k].curve.name, size), taken[j])
         places += [(found[0], j, found[1])] if found else []
     if not places:
         return False
@@ -119,17 +139,22 @@ def _write_within(drawn: Drawn, box: Box, size: Size) -> None:
 
 
 def _write(drawn: Drawn, xy: Array, ha: str, size: Size) -> None:
-    """The name with its baseline at xy, in shares of the axes."""
-    drawn.axes.annotate(drawn.curve.name, xy=(float(xy[0]), float(xy[1])), xycoords="axes fraction", ha=ha, va="baseline",
-                        fontsize=size.text, color=darker(drawn.curve.colour), annotation_clip=False)
+    """The name with its baseline at xy, in shares of the axes; several lines round the place of one."""
+    lines = drawn.curve.name.split("\n")
+    for k, line in enumerate(lines):
+        up = (0.5 * (len(lines) - 1) - k) * LEADING * size.text / drawn.extent[1]
+        drawn.axes.annotate(line, xy=(float(xy[0]), float(xy[1]) + up), xycoords="axes fraction", ha=ha, va="baseline",
+                            fontsize=size.text, color=darker(drawn.curve.colour), annotation_clip=False)
 
 
-def _label_beside(beside: Sequence[tuple[Drawn, float | None]], size: Size) -> None:
+def _label_beside(beside: Sequence[tuple[Drawn, float | None]], size: Size, ends: bool) -> None:
     if not beside:
         return
-    height, half = float(beside[0][0].extent[1]), 0.5 * size.text
-    wanted = [-half if y is None else y for _, y in beside]  # those out of sight go below the others
-    places = spread(wanted, LEADING * size.text, half, height - half)
+    lines = _most_lines([drawn.curve.name for drawn, _ in beside])
+    height, half = float(beside[0][0].extent[1]), 0.5 * lines * size.text
+    out_of_sight = [-half if ends else drawn.peak() for drawn, _ in beside]  # below the others, or at the peak
+    wanted = [out if y is None else y for out, (_, y) in zip(out_of_sight, beside, strict=True)]
+    places = spread(wanted, lines * LEADING * size.text, half, height - half)
     for (drawn, y), place in zip(beside, map(float, places), strict=True):
         if y is None:
             _lead(drawn, place, place, drawn.curve.dashes, size.line)

@@ -36,7 +36,7 @@ def draw_panels(abscissa: Array, panels: Sequence[Panel], views: Sequence[View],
 
 def _height(panel: Panel, size: Size) -> float:
     """[mm], such that all labels fit beside the panel."""
-    needed = least_height(len(panel.curves), size) if panel.named else 0.0
+    needed = least_height(panel.curves, size) if panel.named else 0.0
     return max(panel.height * size.scale, needed)
 
 
@@ -54,6 +54,8 @@ def _numbers_width(panel: Panel, size: Size) -> float:
     """The width of the widest number beside the ordinate [mm]."""
     if panel.scale == "log":
         return style.text_width("10⁻¹⁰", size.text)
+    if panel.scale == "symlog":
+        return style.text_width("−10⁻¹⁰", size.text)
     formatter = ScalarFormatter(useOffset=False)
     formatter.create_dummy_axis()
     formatter.axis.set_view_interval(*panel.limits)  # type: ignore[union-attr]
@@ -81,7 +83,7 @@ def _draw(row: Sequence[Axes], panel: Panel, abscissa: Array, views: Sequence[Vi
     for axes in row[1:]:
         axes.tick_params(labelleft=False)
     if panel.named:
-        label_row(drawn, size)
+        label_row(drawn, size, panel.ends)
 
 
 def _draw_curves(axes: Axes, panel: Panel, x: Array, size: Size) -> list[Drawn]:
@@ -93,14 +95,16 @@ def _draw_curves(axes: Axes, panel: Panel, x: Array, size: Size) -> list[Drawn]:
 
 def _set_axes(axes: Axes, panel: Panel, view: View) -> None:
     axes.set_xscale(view.scale)
-    axes.set_yscale(panel.scale)
+    axes.set_yscale(panel.scale, **({"linthresh": panel.linear_within} if panel.scale == "symlog" else {}))
     axes.set_xlim(*view.on_axis(np.array([view.start, view.end])))
     axes.set_ylim(*panel.limits)
     axes.tick_params(labelbottom=False)
     if panel.scale == "log":
         _set_decades(axes, round(math.log10(panel.limits[1] / panel.limits[0])))
-    else:
+    elif panel.scale == "linear":
         axes.yaxis.set_major_locator(_locator(panel))
+    if panel.limits[0] < 0 < panel.limits[1] and panel.zero:
+        axes.axhline(0.0, color=style.GREY, linewidth=0.5, zorder=1)
 
 
 def _set_decades(axes: Axes, decades: int) -> None:

@@ -13,7 +13,7 @@ Array = NDArray[np.float64]
 
 @dataclass(frozen=True)
 class Curve:
-    """One line of a panel: its name as shown and its values (nt)."""
+    """One line of a panel: its name as shown, in lines, and its values (nt); one without a name is not labelled."""
 
     name: str
     values: Array
@@ -31,6 +31,9 @@ class Panel:
     height: float
     scale: str = "linear"
     named: bool = True  # whether its curves are labelled by their names
+    ends: bool = True  # whether the curves' right ends tell them apart
+    zero: bool = False  # whether zero is marked by a line
+    linear_within: float = 1.0  # of a scale "symlog": up to here it is linear
 
 
 @dataclass(frozen=True)

@@ -53,26 +53,26 @@ def _index(trajectory: Trajectory, name: str) -> int:
 def _mattering(trajectory: Trajectory) -> Selection:
     x = trajectory.mole_fraction
     top, change = x.max(axis=0), np.ptp(x, axis=0)
-    diluent = _is_diluent(trajectory.amount)
+    diluent = is_diluent(trajectory.amount)
     active = ~diluent & (top > 0)
     if not active.any() or change[active].max() == 0:
-        return Selection(_largest(top, top > 0, MOST_MAJOR), ())
+        return Selection(largest(top, top > 0, MOST_MAJOR), ())
     passing = (x[0] < 0.5 * top) & (x[-1] < 0.9 * top)
     notable = active & (change >= NOTABLE * change[active].max())
-    major = _largest(change, notable & (~passing | (top > LARGE_INTERMEDIATE * top[active].max())), MOST_MAJOR)
+    major = largest(change, notable & (~passing | (top > LARGE_INTERMEDIATE * top[active].max())), MOST_MAJOR)
     rest = active & (top >= SMALLEST)
     rest[list(major)] = False
     rest &= top >= SPAN * max(top[rest], default=0.0)
-    return Selection(major, _largest(top, rest, MOST_TRACE), _largest(top, diluent, len(top)))
+    return Selection(major, largest(top, rest, MOST_TRACE), largest(top, diluent, len(top)))
 
 
-def _is_diluent(amount: NDArray[np.float64]) -> NDArray[np.bool_]:
+def is_diluent(amount: NDArray[np.float64]) -> NDArray[np.bool_]:
     """Charged, hardly reacting (by 5 % at most), and not what reacts most, as in a run of low conversion."""
     change = np.ptp(amount, axis=0)
     return (amount[0] > 0) & (change <= 0.05 * amount[0]) & (change < 0.2 * change.max())
 
 
-def _largest(values: NDArray[np.float64], allowed: NDArray[np.bool_], count: int) -> tuple[int, ...]:
+def largest(values: NDArray[np.float64], allowed: NDArray[np.bool_], count: int) -> tuple[int, ...]:
     """Indices of the largest allowed values, the largest first."""
     order = np.argsort(-np.where(allowed, values, -np.inf), kind="stable")
     return tuple(int(k) for k in order[: min(count, int(allowed.sum()))])

@@ -12,10 +12,10 @@ from .sheet import Words
 NOT_A_SAFETY_CASE = "A model is not a safety case."
 
 
-def words(trajectory: Trajectory, left_out: Sequence[str], shown: View) -> Words:
+def words(trajectory: Trajectory, left_out: Sequence[str], shown: View, remarks: Sequence[str] = ()) -> Words:
     """Header and footer; left_out : names of the species that are charged, hardly react and are not drawn."""
-    return Words(_title(trajectory), _facts(trajectory), _alert(trajectory), _notes(trajectory, left_out, shown),
-                 f"bothways {trajectory.program_version}")
+    notes = " ".join([*remarks, *_notes(trajectory, left_out, shown)])
+    return Words(_title(trajectory), _facts(trajectory), _alert(trajectory), notes, f"bothways {trajectory.program_version}")
 
 
 def instants(milestones: Mapping[str, float]) -> dict[str, float]:
@@ -23,7 +23,8 @@ def instants(milestones: Mapping[str, float]) -> dict[str, float]:
     return {f"{name}, {time_text(float(t))}": float(t) for name, t in milestones.items() if name.startswith("steepest")}
 
 
-def _case(trajectory: Trajectory) -> dict[str, Any]:
+def case_of(trajectory: Trajectory) -> dict[str, Any]:
+    """The case's document; empty if its text is none."""
     try:
         return tomllib.loads(trajectory.case_text)
     except tomllib.TOMLDecodeError:
@@ -32,14 +33,14 @@ def _case(trajectory: Trajectory) -> dict[str, Any]:
 
 def _title(trajectory: Trajectory) -> str:
     """The case's title, begun with a capital unless its first word is a symbol or carries one (n-heptane, pH)."""
-    title = str(_case(trajectory).get("case", {}).get("title", "")) or f"{trajectory.mechanism_name}: course of a batch"
+    title = str(case_of(trajectory).get("case", {}).get("title", "")) or f"{trajectory.mechanism_name}: course of a batch"
     first = title.split(" ", 1)[0]
     return title[:1].upper() + title[1:] if first.isalpha() and first.islower() else title
 
 
 def _facts(trajectory: Trajectory) -> str:
     """Mechanism, vessel, start."""
-    vessel = _case(trajectory).get("vessel", {})
+    vessel = case_of(trajectory).get("vessel", {})
     held = [str(vessel.get("heat", "")), f"constant {vessel['holds']}" if "holds" in vessel else ""]
     start = f"{trajectory.temperature[0]:.6g} K and {pressure_text(float(trajectory.pressure[0]))} at the start"
     size = f"{len(trajectory.species)} species, {len(trajectory.reactions)} reactions"
@@ -54,7 +55,7 @@ def _alert(trajectory: Trajectory) -> str:
     return f"Incomplete run, ended at {time_text(float(trajectory.time[-1]))}{reason}"
 
 
-def _notes(trajectory: Trajectory, left_out: Sequence[str], shown: View) -> str:
+def _notes(trajectory: Trajectory, left_out: Sequence[str], shown: View) -> list[str]:
     parts = []
     if left_out:
         parts.append(f"Not drawn: {', '.join(left_out)} ({'hardly reacts' if len(left_out) == 1 else 'hardly react'}).")
@@ -62,4 +63,4 @@ def _notes(trajectory: Trajectory, left_out: Sequence[str], shown: View) -> str:
         parts.append(f"The run goes on to {time_text(float(trajectory.time[-1]))}.")
     if notable(trajectory):
         parts.append(NOT_A_SAFETY_CASE)
-    return " ".join(parts)
+    return parts

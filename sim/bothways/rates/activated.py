@@ -8,6 +8,7 @@ dimension then. F = 1, or with F_cent as in Troe's law (and its width rules), or
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from typing import ClassVar
 
 from ..entry import Entry
 from .falloff import FallOff, read_broadening, read_limits
@@ -21,6 +22,8 @@ PARTNER = OWN_PARTNER
 @dataclass(frozen=True)
 class Activated(Law):
     """limits: k_inf (one order below the reaction's), k_0 (the reaction's order) and the broadening of the curve."""
+
+    needs_partner: ClassVar[bool] = False
 
     limits: FallOff
 

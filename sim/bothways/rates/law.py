@@ -2,7 +2,7 @@
 
 from collections.abc import Sequence
 from dataclasses import dataclass
-from typing import NamedTuple, Protocol
+from typing import ClassVar, NamedTuple, Protocol
 
 IN_EQUATION, OWN_PARTNER, PRESSURE = "in the equation", "of its own", "pressure"
 """Where a law's partner stands: as M in the equation if at all, in the law itself, or nowhere since pressure counts."""
@@ -65,7 +65,12 @@ class LawContext:
 
 
 class Law(Protocol):
-    """A rate law: plain k for reading and testing, and its parts for the kernels."""
+    """A rate law: plain k for reading and testing, and its parts for the kernels.
+
+    needs_partner : whether k vanishes where the term's partner is absent.
+    """
+
+    needs_partner: ClassVar[bool] = True
 
     def k(self, temperature: float, partner: float = 1.0, pressure: float = 1e5) -> float:
         """The forward rate constant at T [K], partner concentration [mol/m3] and pressure [Pa]; m3, mol, s."""

@@ -68,7 +68,8 @@ def closed(ranges: Ranges) -> tuple[Ranges, tuple[Shift, ...]]:
 def fault(ranges: Ranges, least_cp: float) -> str:
     """What makes ranges unusable: cp/R not above `least_cp`, values not finite or absurd; empty if nothing."""
     for k, row in enumerate(ranges.rows):
-        for T in np.linspace(*np.clip(ranges.boundaries[k : k + 2], *LIMITS), 5):
+        low, high = np.clip(ranges.boundaries[k : k + 2], *LIMITS)
+        for T in np.linspace(low, high, 5):
             values = dict(zip(("cp/R", "h/RT", "s/R"), cp_h_s(row, T), strict=True))
             wrong = [name for name, value in values.items() if not abs(value) < LARGEST]
             if wrong or values["cp/R"] <= least_cp:
