@@ -8,7 +8,7 @@ from bothways import build_mechanism
 LIMITS = {"k_inf": {"A": 2e5, "n": 0.3, "Ea": 9e3}, "k_0": {"A": 7e9, "n": -2.1, "Ea": 4e3}}
 CENTRE = {"a": 0.6, "T***": 120.0, "T*": 1500.0, "T**": 4e3}
 SRI = {"a": 0.45, "b": 800.0, "c": 950.0, "d": 1.1, "e": 0.06}
-WITH_PARTNERS = {"collision_efficiency": {"A": 6.0, "B": 0.4}}
+WITH_PARTNERS = {"collision_efficiency": {"A": 6.0, "B": 0.0}}
 ALONE = {"collision_partner": "Z"}
 ACTIVATED = {"k_inf": {"A": 3e7, "n": 0.1, "Ea": 2e4}, "k_0": {"A": 4e6, "n": -0.5, "Ea": 3e3}}
 ROWS = [{"p": "10 bar", "A": 5e5, "n": 0.2, "Ea": 9e3}, {"p": 1e3, "A": 2e3, "n": 0.1, "Ea": 3e3},

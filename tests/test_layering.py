@@ -28,7 +28,7 @@ LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("equilibrium", "trajectory"),
     ("along", "charge", "course", "reach", "relaxation"),
     ("case",),
-    ("endpoint", "monitored", "recorder", "milestones"),
+    ("endpoint", "monitored", "recorder", "remarks", "milestones"),
     ("batch",),
     ("report",),
     ("plots", "audit", "compare", "sweep"),

@@ -6,7 +6,7 @@ import numpy as np
 import pytest
 
 import invented
-from bothways import Mechanism, build_mechanism
+from bothways import InputError, Mechanism, build_mechanism
 from bothways.mechanism.elements import ATOMIC_MASS, parse_formula
 
 
@@ -82,3 +82,11 @@ def test_charge_of_ions() -> None:
     m = build_mechanism({"mechanism": head, "species": species, "reaction": [entry]})
     assert [s.charge for s in m.species] == [0, 1, 0, -1]
     assert m.element_matrix[-1].tolist() == [0, 1, 0, -1] and not np.any(m.element_matrix @ m.stoichiometry)
+
+
+def test_formation_and_absolute_entropies_do_not_mix() -> None:
+    """G counts from the elements, S from zero: beside each other they would falsify every K."""
+    document = invented.building_blocks()
+    document["species"]["Q"]["potential"] = {"form": "constant heat capacity", "at": 298.15, "H": 230.0, "G": 186.8, "cp": 0.0212}
+    with pytest.raises(InputError, match=r"Q states G \(of formation\), Z an absolute entropy"):
+        build_mechanism(document)

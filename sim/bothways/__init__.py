@@ -4,13 +4,14 @@ Every reverse rate is made from the forward rate and K(T); see `run`, `read_case
 """
 
 from .along import Contributions, contributions
-from .batch import Remark, program_version, run
+from .batch import program_version, run
 from .case import Case, build_case, read_case
 from .endpoint import Verdict, verdict
 from .equilibrium import Equilibrium, equilibrium
 from .errors import BothwaysError, InputError, SolverError
 from .mechanism import Mechanism, bundled_cases, bundled_mechanisms, read_mechanism, write_mechanism
 from .mechanism import build as build_mechanism
+from .remarks import Remark
 from .trajectory import Trajectory, read_trajectory, write_trajectory
 from .vessel import Equations
 

@@ -5,6 +5,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from . import balance
 from .constants import GAS_CONSTANT as R
 from .contents import Contents
 from .errors import InputError, nearest
@@ -33,14 +34,8 @@ def rates_along(mechanism: Mechanism, amount: np.ndarray, temperature: np.ndarra
 def affinities(mechanism: Mechanism, amount: np.ndarray, temperature: np.ndarray, volume: np.ndarray) -> np.ndarray:
     """A = -Σ ν_i μ_i [J/mol] of every reaction in many states, (nt, reactions)."""
     contents, nu = Contents(mechanism), mechanism.stoichiometry
-    out = np.empty((len(amount), nu.shape[1]))
-    taking, giving = (nu < 0).T.astype(float), (nu > 0).T.astype(float)
-    for k, (n, T, V) in enumerate(zip(amount, temperature, volume, strict=True)):
-        mu, absent = contents.chemical_potentials(n, T, V), n <= 0
-        out[k] = -R * T * (nu.T @ np.where(absent, 0.0, mu))
-        starved, free = taking @ absent > 0, giving @ absent > 0
-        out[k] = np.where(starved & free, np.nan, np.where(starved, -np.inf, np.where(free, np.inf, out[k])))
-    return out
+    states = zip(amount, temperature, volume, strict=True)
+    return np.array([R * T * balance.affinities(nu, contents.chemical_potentials(n, T, V)) for n, T, V in states])
 
 
 def mechanism_of(trajectory: Trajectory) -> Mechanism:

@@ -1,6 +1,5 @@
 """A batch run: the equations of a case integrated under the recorder's eyes, and the trajectory that results."""
 
-import warnings
 from collections.abc import Callable
 from importlib.metadata import PackageNotFoundError, version
 from typing import Any
@@ -8,22 +7,16 @@ from typing import Any
 import numpy as np
 
 from .along import rates_along
-from .case import MARGIN_WARN, Case, law_outside, temperatures_outside
+from .case import Case
 from .endpoint import CLOSEST, Target, Verdict, target_of, verdict_of_state
 from .integrate import OWN_METHODS, Outcome, Status, integrate
 from .mechanism.toml_writer import to_toml
 from .milestones import milestones
 from .monitored import Monitored, monitored
 from .recorder import POTENTIALS, Recorder
+from .remarks import remark_at_end, remark_at_start
 from .trajectory import Trajectory
 from .vessel import Equations
-
-TOLD_JOINS = 1e-2
-"""Joins shifted by more than this in h/RT or s/R are remarked on at a run."""
-
-
-class Remark(UserWarning):
-    """Something a user should know of a run that did not stop it."""
 
 
 def program_version() -> str:
@@ -47,14 +40,12 @@ def run_and_judge(case: Case, told: Callable[[int, float, float], None] | None =
     saying why. Remarks (species outside the range of their data, joins far apart) are given as warnings.
     """
     equations = case.equations()
-    _remark_joins(case)
-    _remark(case, [case.charge.temperature])
+    remark_at_start(case)
     target = target_of(case)
     task, recorder = monitored(case, equations, _until(case, target)), Recorder(case, equations, told)
     outcome = integrate(task.problem, case.method, recorder)
     columns = recorder.columns()
-    _remark(case, list(columns["temperature"][1:]))
-    _remark_laws(case, columns)
+    remark_at_end(case, columns)
     last = verdict_of_state(target, *(columns[name][-1] for name in ("amount", "temperature", "volume")))
     return _trajectory(case, equations, columns, task, outcome, last), last
 
@@ -68,36 +59,6 @@ def _until(case: Case, target: Target) -> Callable[[float, np.ndarray], bool] | 
         return target.distance(y[:-1] / np.sum(y[:-1]), float(y[-1])) <= 0.3 * CLOSEST
 
     return landed
-
-
-def _remark(case: Case, temperatures: list[float]) -> None:
-    """Warns of species whose data end more than MARGIN_WARN before the temperatures met, once each way."""
-    if not temperatures:
-        return
-    for temperature in {min(temperatures), max(temperatures)}:
-        outside = temperatures_outside(case.mechanism, temperature, MARGIN_WARN)
-        if outside:
-            warnings.warn(f"at {temperature:.0f} K the run is outside the range of the thermochemical data of {outside}; "
-                          "they continue with constant heat capacity", Remark, stacklevel=3)
-
-
-def _remark_laws(case: Case, columns: dict[str, Any]) -> None:
-    """Warns of a rate law whose window of temperature and pressure the run left."""
-    T, p = columns["temperature"], columns["pressure"]
-    problem = law_outside(case.mechanism, min(T), min(p)) or law_outside(case.mechanism, max(T), max(p))
-    if problem:
-        warnings.warn(f"the run left the window of a rate law, whose edge holds there: {problem}", Remark, stacklevel=3)
-
-
-def _remark_joins(case: Case) -> None:
-    """Warns of fits whose ranges do not meet: closed if nothing else was asked for."""
-    shifts = case.mechanism.join_shifts
-    worst = max(shifts, key=lambda item: max(abs(item[1].h), abs(item[1].s)), default=None)
-    if worst is not None and max(abs(worst[1].h), abs(worst[1].s)) > TOLD_JOINS:
-        name, shift = worst
-        warnings.warn(f"the fitted ranges of {len({n for n, _ in shifts})} species do not meet and were closed, by up to "
-                      f"{abs(shift.h):.2g} in h/RT and {abs(shift.s):.2g} in s/R ({name} at {shift.temperature:.0f} K)",
-                      Remark, stacklevel=3)
 
 
 def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task: Monitored, outcome: Outcome,

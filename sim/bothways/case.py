@@ -183,7 +183,7 @@ def _check_temperature(start: Entry, mechanism: Mechanism, charge: Charge) -> No
             expected = "potentials nearer to each other: no temperature is possible with this mechanism"
         raise start.error(f"{charge.temperature:g} K", expected=expected, key="temperature",
                           remedy="beyond, rates and equilibrium constants leave the range of the arithmetic")
-    outside = temperatures_outside(mechanism, charge.temperature, MARGIN_ERROR)
+    outside = listed(species_outside(mechanism, charge.temperature, MARGIN_ERROR))
     if outside:
         raise start.error(f"{charge.temperature:g} K is more than {MARGIN_ERROR:g} K outside the thermochemical data "
                           f"of {outside}", expected="a temperature nearer to the range of the data", key="temperature",
@@ -207,12 +207,15 @@ def law_outside(mechanism: Mechanism, temperature: float, pressure: float) -> st
     return ""
 
 
-def temperatures_outside(mechanism: Mechanism, temperature: float, margin: float) -> str:
-    """The species whose data end more than `margin` [K] before a temperature [K], as text; empty if none."""
-    names = [s.name for s in mechanism.species
-             if not s.fit_range[0] - margin <= temperature <= s.fit_range[1] + margin]
-    more = f" and {len(names) - 6} more" if len(names) > 6 else ""
-    return ", ".join(names[:6]) + more
+def species_outside(mechanism: Mechanism, temperature: float, margin: float) -> list[str]:
+    """The species whose data end more than `margin` [K] before a temperature [K]."""
+    return [s.name for s in mechanism.species
+            if not s.fit_range[0] - margin <= temperature <= s.fit_range[1] + margin]
+
+
+def listed(names: list[str]) -> str:
+    """Some names as text, the first six of many."""
+    return ", ".join(names[:6]) + (f" and {len(names) - 6} more" if len(names) > 6 else "")
 
 
 def charged(case: Case) -> dict[str, float]:

@@ -4,6 +4,7 @@ from functools import cached_property
 
 import numpy as np
 
+from .balance import log_equilibrium_constants, reverse_constants
 from .constants import GAS_CONSTANT as R
 from .kernels.thermal import polynomials, polynomials_at
 from .mechanism import Mechanism, Tables, build_tables, table_view
@@ -28,6 +29,16 @@ class Contents:
         out = np.empty((4, len(self.mechanism.species)))
         polynomials(temperature, *self._arrays, *out)
         return out[0], out[1], out[2]
+
+    def equilibrium_constants(self, temperature: float) -> np.ndarray:
+        """K° of every reaction of the mechanism [-], (reactions), at its standard pressure."""
+        return np.exp(log_equilibrium_constants(self.mechanism.stoichiometry, self.molar(temperature)[0]))
+
+    def reverse_constants(self, temperature: float, partner: float = 1.0) -> np.ndarray:
+        """Derived reverse rate constants (m3, mol, s), (reactions), the forward ones at a partner's [mol/m3]."""
+        m = self.mechanism
+        forward = np.array([r.forward_constant(temperature, partner) for r in m.reactions])
+        return reverse_constants(forward, m.stoichiometry, self.molar(temperature)[0], temperature, m.standard_pressure)
 
     def enthalpy(self, n: np.ndarray, temperature: float) -> float:
         """H [J]."""

@@ -16,6 +16,7 @@ from .case import Case
 from .constants import GAS_CONSTANT as R
 from .contents import Contents
 from .equilibrium import Equilibrium, combination_text, conserved_by_reactions, equilibrium, extra_conserved
+from .errors import InputError
 from .mechanism import Mechanism
 from .reach import reachable
 from .relaxation import further_rows, relaxation_times
@@ -105,8 +106,12 @@ def target_of(case: Case) -> Target:
     """Where a case must end."""
     _, running = reachable(case.mechanism, case.charge.amount)
     restricted = case.mechanism if running.all() else _restrict(case.mechanism, running)
-    own = _equilibrium(case, conserved_by_reactions(restricted))
-    return Target(case, own, _equilibrium(case, "elements"), running, restricted)
+    try:
+        own = _equilibrium(case, conserved_by_reactions(restricted))
+        return Target(case, own, _equilibrium(case, "elements"), running, restricted)
+    except InputError as err:
+        raise InputError(f"no equilibrium: {err.problem}", expected=err.expected, file=case.file, entry="start",
+                         remedy=err.remedy or "correct the charge or its temperature") from None
 
 
 def _restrict(mechanism: Mechanism, running: np.ndarray) -> Mechanism:

@@ -12,10 +12,11 @@ from pathlib import Path
 
 from tqdm import tqdm
 
-from ..batch import Remark, run_and_judge
+from ..batch import run_and_judge
 from ..case import Case, read_case
 from ..endpoint import Kind, Verdict
 from ..outfile import check_writable
+from ..remarks import Remark
 from ..report import summary
 from ..trajectory import Trajectory, write_trajectory
 from . import DONE, FAILED_VERDICT, GAVE_UP, INTERRUPTED, spare

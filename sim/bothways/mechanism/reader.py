@@ -62,8 +62,20 @@ def _species(top: Entry, units: UnitSystem, masses: Mapping[str, float], standar
     table = top.table("species")
     if not table.data:
         raise top.error("no species", expected="at least one table [species.NAME]", key="species")
-    return tuple(_one_species(Entry(data, f"species.{name}", top.file, units), name, masses, standard, least)
-                 for name, data in table.data.items())
+    species = tuple(_one_species(Entry(data, f"species.{name}", top.file, units), name, masses, standard, least)
+                    for name, data in table.data.items())
+    _check_scales(table)
+    return species
+
+
+def _check_scales(table: Entry) -> None:
+    """ΔfG° holds the entropies of the elements, S° does not: mixed in one mechanism they would falsify every K."""
+    by_G = [name for name, data in table.data.items() if "G" in data["potential"]]
+    others = [name for name in table.data if name not in by_G]
+    if by_G and others:
+        raise table.error(f"{by_G[0]} states G (of formation), {others[0]} an absolute entropy: their potentials count from "
+                          "different zeros", expected="one kind for all species", key=f"{by_G[0]}.potential.G",
+                          remedy="state S, the standard entropy, instead of G")
 
 
 def _one_species(entry: Entry, name: str, masses: Mapping[str, float], standard: float, least: float) -> Species:

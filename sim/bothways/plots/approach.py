@@ -37,8 +37,9 @@ SHORTEST = 0.04
 """A stretch over less than this share of the time axis is not named [-]."""
 HEIGHT = 36.0
 """Of a panel [mm, on a page]."""
-LATE, DECADES = 10.0, 5.0
-"""If all is over before `LATE` times the instant of the steepest rise, a second view counts from there, over `DECADES`."""
+LATE, NEARLY, DECADES = 10.0, 1e-6, 5.0
+"""If but this share `NEARLY` of the potential's fall is left at `LATE` times the instant of the steepest rise, a second view
+counts from there, over `DECADES`."""
 
 
 @dataclass(frozen=True)
@@ -127,18 +128,19 @@ def _views(trajectory: Trajectory, found: Distance) -> list[View]:
     if len(seen) < 2:
         start = float(time[0])
         return [time_view(start, max(float(time[-1]), start + 1e-9))]
-    end, first = float(time[min(seen[-1] + 1, len(time) - 1)]), _first_change(time, found.potential)
-    whole = time_view(max(float(time[seen[0]]), 10.0 ** math.floor(math.log10(first) - 1.0)), end, "log")
+    first, soon = (_fallen(time, found.potential, share) for share in (BEGUN, 1.0 - NEARLY))
+    start, end = max(float(time[seen[0]]), 10.0 ** math.floor(math.log10(first) - 1.0)), float(time[seen[-1]])
+    whole = time_view(start if start < end else float(time[seen[0]]), end, "log")
     for name, t in trajectory.milestones.items():
-        if name.startswith("steepest") and whole.start < t < end < LATE * t:
+        if name.startswith("steepest") and whole.start < t < min(end, soon) and soon < LATE * t:
             return [whole, time_view(t + (end - t) * 10.0**-DECADES, end, "log", t, f"the {name}")]
     return [whole]
 
 
-def _first_change(time: Array, potential: Array) -> float:
-    """The time by which the potential has fallen by a share of `BEGUN`, or the first after the start [s]."""
-    fallen = np.flatnonzero((potential < (1.0 - BEGUN) * potential[0]) & (time > 0))
-    return float(time[fallen[0]]) if fallen.size else float(time[time > 0][0])
+def _fallen(time: Array, potential: Array, share: float) -> float:
+    """The first time after the start by which the potential has fallen by that share, or round-off hides it [s]."""
+    fallen = np.flatnonzero(~(potential > (1.0 - share) * potential[0]) & (time > 0))
+    return float(time[fallen[0] if fallen.size else -1])
 
 
 def _panel(label: str, curves: tuple[Curve, ...]) -> Panel:

@@ -1,4 +1,4 @@
-"""A constant heat capacity: h = H + cp (T - T₀), s = S + cp ln(T/T₀).
+"""A constant heat capacity: h = H + cp (T - T₀), s = S + cp ln(T/T₀), or with G, S = (H - G)/T₀.
 
 Textbook relations of an ideal substance with cp independent of T; good over narrow ranges only. No range limits.
 """
