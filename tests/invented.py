@@ -91,7 +91,7 @@ def _with_partner() -> list[tuple[int, Document]]:
     ]
 
 
-def _falloff() -> list[tuple[int, Document]]:
+def _fall_off() -> list[tuple[int, Document]]:
     """Fall-off: order of k_inf, entry."""
     return [
         (2, {"equation": "Q + X ⇌ QX", "collision_efficiency": {"Z": 0.7, "QX2": 0.0},
@@ -127,7 +127,7 @@ def _document(entries: list[tuple[int, Document]]) -> Document:
 
 def building_blocks() -> Document:
     """The invented mechanism as a dict with the keys of a mechanism file; units mol/dm3, kJ/mol and bar."""
-    return _document(_plain() + _with_partner() + _falloff())
+    return _document(_plain() + _with_partner() + _fall_off())
 
 
 def building_blocks_as_published() -> Document:
@@ -153,7 +153,7 @@ def _restate_term(term: Document, order: int) -> None:
 
 def building_blocks_in_molecules() -> Document:
     """The same mechanism, its bare numbers restated in cm, molecule, s, K and atm."""
-    entries = deepcopy(_plain() + _with_partner() + _falloff())
+    entries = deepcopy(_plain() + _with_partner() + _fall_off())
     for order, entry in entries:
         forward = entry["forward"]
         for term in forward if isinstance(forward, list) else [forward]:

@@ -21,7 +21,7 @@ def _form(form: str, composition: dict[str, int], T: list[float], *rows: list[fl
     return _fit(composition, T, *rows, **more) | {"potential": {"form": form, "T": T, "a": list(rows)}}
 
 
-def _nasa9(*data: Any, **more: Any) -> Document:
+def _nine(*data: Any, **more: Any) -> Document:
     return _form("NASA 9-coefficient", *data, **more)
 
 
@@ -33,11 +33,11 @@ def species() -> Document:
     """Those of ``invented.py`` on other forms. No fit meets at its joins; ranges are one, two and three."""
     return {
         "Z": _constant({"Z": 1}, H="0 kJ/mol", S="150 J/(mol K)", cp="20.8 J/(mol K)"),
-        "X": _nasa9({"X": 1}, [200.0, 1000.0, 6000.0],
+        "X": _nine({"X": 1}, [200.0, 1000.0, 6000.0],
                     [-120.0, 1.8, 2.51, -3e-5, 4e-8, -2e-11, 3e-15, 23296.5, -0.457],
                     [9000.0, -60.0, 2.6, -4e-5, 9e-9, -1e-12, 5e-17, 23803.7, -1.316]),
         "Q": _shomate({"Q": 1}, [298.15, 2500.0], [21.6, -1.4, 0.9, -0.15, -0.03, 223.514, 171.349, 230.0]),
-        "X2": _nasa9({"X": 2}, [200.0, 1000.0, 6000.0],
+        "X2": _nine({"X": 2}, [200.0, 1000.0, 6000.0],
                      [2.1e4, -370.0, 5.9, -7e-3, 1.2e-5, -9e-9, 2.4e-12, 641.2, -17.355],
                      [5.4e5, -1900.0, 5.8, -5e-4, 1.1e-7, -1.2e-11, 6e-16, 10925.3, -21.086]),
         "Q2": _shomate({"Q": 2}, [300.0, 900.0, 3000.0],
@@ -46,7 +46,7 @@ def species() -> Document:
         "QX": _fit({"Q": 1, "X": 1}, [300.0, 1000.0, 3000.0],
                    [3.7, -5e-4, 1.4e-6, -3e-10, -1.2e-13, 4319.6, 0.056],
                    [3.2, 1.2e-3, -3.2e-7, 4.4e-11, -2.4e-15, 4783.4, 2.126], standard_pressure="101.325 kPa"),
-        "QX2": _nasa9({"Q": 1, "X": 2}, [200.0, 800.0, 1600.0, 4000.0],
+        "QX2": _nine({"Q": 1, "X": 2}, [200.0, 800.0, 1600.0, 4000.0],
                       [-3.9e4, 570.0, 1.1, 7e-3, -5e-6, 1.7e-9, -1e-13, -33082.6, 16.397],
                       [8e5, -1900.0, 5.2, 1.1e-3, -2e-7, 2e-11, -8e-16, -17448.5, -10.181],
                       [1e6, -2400.0, 4.6, 2.2e-3, -6e-7, 8e-11, -4.8e-15, -13786.4, -7.551]),
@@ -57,7 +57,7 @@ def species() -> Document:
     }
 
 
-def _falloff() -> list[tuple[int, Document]]:
+def _fall_off() -> list[tuple[int, Document]]:
     """SRI and the narrower widths: order of the forward law (of k_inf), entry."""
     return [
         (2, {"equation": "Q + X ⇌ QX", "collision_efficiency": {"Z": 0.7, "QX2": 0.0},
@@ -168,7 +168,7 @@ def _document(entries: list[tuple[int, Document]], units: list[str]) -> Document
 
 
 def _entries() -> list[tuple[int, Document]]:
-    return deepcopy(_falloff() + _activated() + _tables() + _chebyshev())
+    return deepcopy(_fall_off() + _activated() + _tables() + _chebyshev())
 
 
 def every_law() -> Document:

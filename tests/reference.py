@@ -34,7 +34,7 @@ from reference_file import (
     s_of,
     units_of,
 )
-from reference_laws import ARRHENIUS_WIDTH, CENTRE_WIDTH, activated, arrhenius, broadening, centre, falloff, front
+from reference_laws import ARRHENIUS_WIDTH, CENTRE_WIDTH, activated, arrhenius, broadening, centre, fall_off, front
 
 # ---- the whole
 
@@ -100,7 +100,7 @@ class Reference:
                 terms.add(j, one, term)
         self._of = np.array(terms.reaction, dtype=int)
         self._partnered = np.array(terms.partnered, dtype=int)
-        self._falloff = np.array(terms.falloff, dtype=int)
+        self._fall_off = np.array(terms.fall_off, dtype=int)
         self._rate, self._low = (self._kept(rows, ARRHENIUS_WIDTH) for rows in (terms.rate, terms.low))
         self._efficiency = self._kept(terms.efficiency, self.n)
         self._centre, self._front = self._kept(terms.centre, CENTRE_WIDTH), self._kept(terms.front, 2)
@@ -180,10 +180,10 @@ class Reference:
     def _term_constants(self, at: Thermal, M: Array, p: Any) -> Array:
         """k of each term; ``M`` of each partnered term. A +M term: k of one order higher, not times [M]."""
         k = at.k.astype(np.result_type(at.k, M, p))
-        falling, M = self._partnered[self._falloff], M[self._falloff]
+        falling, M = self._partnered[self._fall_off], M[self._fall_off]
         k_inf = at.k[falling]
         F = at.front * broadening(self._width, at.centre, at.k_0 * M / k_inf)
-        laws = activated(k_inf, at.k_0, F, M), falloff(k_inf, at.k_0, F, M)
+        laws = activated(k_inf, at.k_0, F, M), fall_off(k_inf, at.k_0, F, M)
         k[falling] = np.where(self._activated, *laws)
         for i, law in self._pressure_laws:
             k[i] = law.k(at.T, p)
@@ -201,7 +201,7 @@ class Reference:
         """Forward and reverse rates, and the sum of both without regard to sign [mol/(m3 s)]."""
         M = (self._efficiency * c).sum(axis=1)
         k = self._term_constants(at, M, p)
-        plain = np.setdiff1d(np.arange(len(M)), self._falloff)
+        plain = np.setdiff1d(np.arange(len(M)), self._fall_off)
         k[self._partnered[plain]] *= M[plain]
         padded = np.append(c, c.dtype.type(1))
         forward, reverse = (padded[places].prod(axis=1) for places in self._molecules)

@@ -85,7 +85,7 @@ def closed_rows(T: Array, rows: Array) -> Array:
     return rows
 
 
-def from_nasa7(a: Array) -> Array:
+def from_seven(a: Array) -> Array:
     """Rows (m, 9) of rows (m, 7): the two lowest powers are missing."""
     return np.hstack([np.zeros((len(a), 2), dtype=LD), a])
 
@@ -101,7 +101,7 @@ def from_shomate(a: Array) -> Array:
     return np.array([E * k**2, 0 * E, A, B / k, C / k**2, D / k**3, 0 * D, F * k, G - A * np.log(k)]).T / R
 
 
-FITS = {"NASA 7-coefficient": (7, from_nasa7), "NASA 9-coefficient": (9, np.copy), "Shomate": (8, from_shomate)}
+FITS = {"NASA 7-coefficient": (7, from_seven), "NASA 9-coefficient": (9, np.copy), "Shomate": (8, from_shomate)}
 
 
 def fit(potential: dict[str, Any], joins: str) -> tuple[Array, Array]:
@@ -244,7 +244,7 @@ class Terms:
     rate: list[list[LD]] = field(default_factory=list)  # k, or k_inf of a fall-off term
     partnered: list[int] = field(default_factory=list)  # terms that contain [M]
     efficiency: list[list[LD]] = field(default_factory=list)  # of each partnered term
-    falloff: list[int] = field(default_factory=list)  # places in ``partnered``
+    fall_off: list[int] = field(default_factory=list)  # places in ``partnered``
     activated: list[bool] = field(default_factory=list)  # of each fall-off term, as all that follows
     low: list[list[LD]] = field(default_factory=list)  # k_0
     centre: list[list[LD]] = field(default_factory=list)
@@ -261,7 +261,7 @@ class Terms:
         elif reaction.plus_m or law not in [*FALL_OFF, "pressure table", "Chebyshev"]:
             raise NotImplementedError(f"{reaction.equation}: {law}")
         elif law in FALL_OFF:
-            self._add_falloff(term, order - (law == "activated"))
+            self._add_fall_off(term, order - (law == "activated"))
         else:
             read = pressure_table if law == "pressure table" else chebyshev
             self.pressure.append((len(self.rate), read(term, order, self.units)))
@@ -273,13 +273,13 @@ class Terms:
             self.partnered.append(len(self.rate) - 1)
             self.efficiency.append(efficiencies(partner, self.names))
 
-    def _add_falloff(self, term: dict[str, Any], order: int) -> None:
+    def _add_fall_off(self, term: dict[str, Any], order: int) -> None:
         """``order`` is that of k_inf; k_0 is one higher."""
         stated = {"F_cent", "width", "F"} & set(term)
         if not stated <= FALL_OFF[term["law"]] or {"F_cent", "F"} <= stated:
             raise NotImplementedError(f"{term['law']} with {stated}")
         self._add(term["k_inf"], order, partner=term)
-        self.falloff.append(len(self.partnered) - 1)
+        self.fall_off.append(len(self.partnered) - 1)
         self.activated.append(term["law"] == "activated")
         self.low.append(arrhenius_row(term["k_0"], order + 1, self.units))
         self.centre.append(centre_row(term))

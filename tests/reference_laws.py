@@ -63,7 +63,7 @@ def broadening(width: Array, base: Array, P_r: Array) -> Array:
     return np.exp(np.log(base) * np.where(present, power, limit))
 
 
-def falloff(k_inf: Array, k_0: Array, F: Array, M: Array) -> Array:
+def fall_off(k_inf: Array, k_0: Array, F: Array, M: Array) -> Array:
     """k_inf F P_r/(1 + P_r) = k_0 [M] F/(1 + P_r) with P_r = k_0 [M]/k_inf; linear in [M] below 0."""
     return M * activated(k_inf, k_0, F, M)
 

@@ -7,7 +7,7 @@ from bothways import Equations, build_mechanism, read_mechanism
 from bothways.constants import GAS_CONSTANT as R
 from bothways.contents import Contents
 from bothways.thermo import at
-from bothways.thermo.nasa9 import Nasa9
+from bothways.thermo.nine_coefficients import NineCoefficients
 from bothways.thermo.shomate import Shomate
 
 WATER = (30.09200, 6.832514, 6.793435, -2.534480, 0.082139, -250.8810, 223.3967, -241.8264)
@@ -44,7 +44,7 @@ def test_nine_coefficients_give_the_reports_own_values():
 def test_nine_coefficients_by_their_formula():
     a1, a2, a3, a4, a5, a6, a7, b1, b2 = row = (1e4, -150.0, 3.4, 2e-3, -1e-6, 3e-10, -4e-14, 9e3, 6.7)
     T = 700.0
-    cp, h, s = at(Nasa9((200.0, 1000.0), (row,)).ranges(), T)
+    cp, h, s = at(NineCoefficients((200.0, 1000.0), (row,)).ranges(), T)
     assert cp == pytest.approx(a1 / T**2 + a2 / T + a3 + a4 * T + a5 * T**2 + a6 * T**3 + a7 * T**4, rel=1e-14)
     assert h == pytest.approx(-a1 / T**2 + a2 * np.log(T) / T + a3 + a4 * T / 2 + a5 * T**2 / 3 + a6 * T**3 / 4
                               + a7 * T**4 / 5 + b1 / T, rel=1e-14)

@@ -55,17 +55,17 @@ def two_species_document() -> dict:
     return {"A": {"potential": data}, "B": {"potential": data}}
 
 
-def falloff(F_cent: object, M: float) -> float:
+def fall_off(F_cent: object, M: float) -> float:
     """k of A ⇌ 2 B with k_inf = 10 /s and k_0 = 2 m3/(mol s) at 800 K."""
     shape = {"law": "Lindemann"} if F_cent is None else {"law": "Troe", "F_cent": F_cent}
     return two_species(**shape, k_inf={"A": 10.0}, k_0={"A": 2.0}).rate_constant(0, 800.0, M)
 
 
 def test_lindemann_limits_and_middle() -> None:
-    assert falloff(None, 5.0) == pytest.approx(5.0, rel=1e-14)  # P_r = 1: half of k_inf
-    assert falloff(None, 1e-9) == pytest.approx(2e-9, rel=1e-9)
-    assert falloff(None, 1e12) == pytest.approx(10.0, rel=1e-9)
-    assert falloff(None, 5.0) == falloff(1.0, 5.0)
+    assert fall_off(None, 5.0) == pytest.approx(5.0, rel=1e-14)  # P_r = 1: half of k_inf
+    assert fall_off(None, 1e-9) == pytest.approx(2e-9, rel=1e-9)
+    assert fall_off(None, 1e12) == pytest.approx(10.0, rel=1e-9)
+    assert fall_off(None, 5.0) == fall_off(1.0, 5.0)
 
 
 @pytest.mark.parametrize("x_over_N, power", [(0.0, 1.0), (1 / 1.14, 0.5), (-1 / 0.86, 0.5)])
@@ -74,22 +74,22 @@ def test_broadening_where_it_is_a_plain_power_of_its_centre(x_over_N: float, pow
     F_cent = 0.3
     N, c = 0.75 - 1.27 * np.log10(F_cent), -0.4 - 0.67 * np.log10(F_cent)
     P_r = 10 ** (x_over_N * N - c)
-    assert falloff(F_cent, 5.0 * P_r) == pytest.approx(10 * P_r / (1 + P_r) * F_cent**power, rel=1e-13)
+    assert fall_off(F_cent, 5.0 * P_r) == pytest.approx(10 * P_r / (1 + P_r) * F_cent**power, rel=1e-13)
 
 
 def test_centre_from_its_parameters() -> None:
     """At 800 K: T* = T*** = 800 K leave e^-1 alone; T** = 1600 K adds e^-2; a parts the two."""
     e = np.exp(-1.0)
-    assert falloff({"a": 0.3, "T***": 800.0, "T*": 800.0}, 7.0) == pytest.approx(falloff(e, 7.0), rel=1e-13)
-    assert falloff({"a": 0.3, "T***": 800.0, "T*": 800.0, "T**": 1600.0}, 7.0) == pytest.approx(
-        falloff(e + e**2, 7.0), rel=1e-13)
-    assert falloff({"a": 0.3, "T***": 1e-30, "T*": 1e30}, 7.0) == pytest.approx(falloff(0.3, 7.0), rel=1e-13)
-    assert falloff({"a": 0.3, "T***": 1e30, "T*": 1e-30}, 7.0) == pytest.approx(falloff(0.7, 7.0), rel=1e-13)
+    assert fall_off({"a": 0.3, "T***": 800.0, "T*": 800.0}, 7.0) == pytest.approx(fall_off(e, 7.0), rel=1e-13)
+    assert fall_off({"a": 0.3, "T***": 800.0, "T*": 800.0, "T**": 1600.0}, 7.0) == pytest.approx(
+        fall_off(e + e**2, 7.0), rel=1e-13)
+    assert fall_off({"a": 0.3, "T***": 1e-30, "T*": 1e30}, 7.0) == pytest.approx(fall_off(0.3, 7.0), rel=1e-13)
+    assert fall_off({"a": 0.3, "T***": 1e30, "T*": 1e-30}, 7.0) == pytest.approx(fall_off(0.7, 7.0), rel=1e-13)
 
 
-def test_falloff_without_partners_is_zero_and_linear() -> None:
-    assert falloff(0.5, 0.0) == 0.0
-    slope = falloff(0.5, 1j * STEP).imag / STEP
+def test_fall_off_without_partners_is_zero_and_linear() -> None:
+    assert fall_off(0.5, 0.0) == 0.0
+    slope = fall_off(0.5, 1j * STEP).imag / STEP
     assert slope == pytest.approx(2.0 * 0.5 ** (1 / (1 + 1 / 0.14**2)), rel=1e-13)
 
 
@@ -135,7 +135,7 @@ LAW_OF = {"F_cent": "Troe", "F": "SRI"}
 
 
 @pytest.mark.parametrize("broadening", BROADENINGS)
-def test_limits_of_falloff(broadening: dict) -> None:
+def test_limits_of_fall_off(broadening: dict) -> None:
     law = next((LAW_OF[key] for key in broadening if key in LAW_OF), "Lindemann")
     low, high = (broadened(M, law=law, **broadening) for M in (1e-300, 1e300))
     assert low == pytest.approx(1, abs=0.02) and high == pytest.approx(1, abs=0.03)

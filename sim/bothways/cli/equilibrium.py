@@ -16,7 +16,7 @@ from ..errors import InputError
 from ..outfile import check_writable, write_whole
 from ..report import pressure_text, volume_text
 from ..units import parse_quantity
-from . import DONE
+from . import DONE, spare
 
 SHOWN_ABOVE = 1e-12
 """Species below this mole fraction everywhere are left out of tables [-]."""
@@ -30,13 +30,16 @@ def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
         description="Works out the equilibrium of a case's charge in its vessel, from the species' chemical potentials alone.\n"
         "With a list of temperatures or pressures: a table, each at that temperature or pressure, the rest as the case says.",
         epilog="examples:\n  bothways equilibrium hydrogen-kettle\n"
-        "  bothways equilibrium methane-drum --temperatures 1000 1500 '2000 K' --csv methane.csv", allow_abbrev=False)
+        "  bothways equilibrium methane-drum --temperatures 1000 1500 '2000 K' --csv methane.csv\n"
+        "  bothways equilibrium methane-drum --temperatures 600 3000 --plot methane.pdf", allow_abbrev=False)
     parser.add_argument("case", metavar="CASE", help="a case file, or the name of a bundled case")
     parser.add_argument("--elements", action="store_true", help="hold only the elements, not what else the reactions conserve")
     lists = parser.add_mutually_exclusive_group()
     lists.add_argument("--temperatures", nargs="+", metavar="T", help="temperatures (K, or quoted with their unit)")
     lists.add_argument("--pressures", nargs="+", metavar="P", help="pressures (Pa, or quoted with their unit)")
     parser.add_argument("--csv", metavar="FILE", type=Path, help="write the composition of every state as CSV")
+    parser.add_argument("--plot", metavar="FILE", type=Path, help="draw the composition against the temperatures (PNG, SVG or "
+                        "PDF); two temperatures are the ends of a range")
     parser.add_argument("--replace", action="store_true", help="overwrite a file that exists")
     parser.set_defaults(act=act)
 
@@ -46,13 +49,38 @@ def act(chosen: argparse.Namespace) -> int:
     case = read_case(chosen.case)
     if chosen.csv is not None:
         check_writable(chosen.csv, chosen.replace)
+    if chosen.plot is not None:
+        _check_plot(chosen)
     target = target_of(case)
     found = _found(case, target, chosen)
     print("\n".join(_single(case, target, found[0], chosen.elements) if len(found) == 1 else _table(found)))
     if chosen.csv is not None:
         write_whole(chosen.csv, _csv(found).encode(), chosen.replace)
         print(f"{'file':<14}{chosen.csv}")
+    if chosen.plot is not None:
+        _draw(case, found, chosen)
+        print(f"{'plot':<14}{chosen.plot}")
     return DONE
+
+
+def _check_plot(chosen: argparse.Namespace) -> None:
+    from ..plots import check_picture
+
+    if chosen.temperatures is None:
+        raise InputError("--plot without --temperatures", expected="temperatures to draw the equilibrium against",
+                         remedy="such as --temperatures 600 3000")
+    spare(chosen.plot, *([chosen.csv] if chosen.csv else []))
+    check_picture(chosen.plot, chosen.replace)
+
+
+def _draw(case: Case, found: Sequence[Equilibrium], chosen: argparse.Namespace) -> None:
+    from ..plots import save_equilibrium_course
+
+    c = case.charge
+    held = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
+    save_equilibrium_course(case.mechanism, c.amount, [state.temperature for state in found], chosen.plot, chosen.replace,
+                            conserved="elements" if chosen.elements else found[0].conserved,
+                            title=str(case.document.get("case", {}).get("title", "")), **held)
 
 
 def _found(case: Case, target: Target, chosen: argparse.Namespace) -> list[Equilibrium]:
@@ -94,7 +122,8 @@ def _single(case: Case, target: Target, found: Equilibrium, elements: bool) -> l
              f"{'state':<14}{found.temperature:.6f} K, {pressure_text(found.pressure)}, {volume_text(found.volume)}",
              f"{'change of H':<14}{heat:.6g} J from the charge"]
     if target.apart and not elements:
-        lines.append(f"{'held apart by':<14}{', '.join(target.apart)} (without that, --elements: {target.full.temperature:.6g} K)")
+        lines.append(f"{'held apart by':<14}{', '.join(target.apart)} (without that, --elements: "
+                     f"{target.full.temperature:.6g} K)")
     lines.append(f"{'':<14}{'mole fraction':>16}{'amount / mol':>16}")
     names, x = case.mechanism.names, found.mole_fraction
     lines += [f"{names[k]:<14}{x[k]:>16.6e}{found.amount[k]:>16.6e}" for k in np.argsort(-x) if x[k] > SHOWN_ABOVE]

@@ -1,11 +1,11 @@
-"""bothways plot: the course of a run as a figure."""
+"""bothways plot: a run as a figure: its course, its approach to equilibrium, or one species' rates."""
 
 import argparse
 import math
 from pathlib import Path
 
 from ..errors import InputError, shown
-from ..trajectory import read_trajectory
+from ..trajectory import Trajectory, read_trajectory
 from ..units import parse_quantity
 from . import DONE, spare
 
@@ -13,19 +13,29 @@ from . import DONE, spare
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser(
-        "plot", help="draw a run's course", formatter_class=argparse.RawDescriptionHelpFormatter,
+        "plot", help="draw a run's course, approach to equilibrium or rates", formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Draws temperature, pressure and composition of a trajectory against time. Which species, which\n"
-        "stretch of time and whether its axis is linear or logarithmic follow from the course, unless said.",
+        "stretch of time and whether its axis is linear or logarithmic follow from the course, unless said. Or the approach\n"
+        "to equilibrium, or what the reactions contribute to the rate of formation of one species.",
         epilog="examples:\n  bothways plot hydrogen-kettle.h5\n  bothways plot hydrogen-kettle.h5 --output ignition.pdf "
-        "--column --species H2 O2 OH --between '0.49 ms' '0.53 ms'", allow_abbrev=False)
+        "--column --species H2 O2 OH --between '0.49 ms' '0.53 ms'\n"
+        "  bothways plot hydrogen-kettle.h5 --contributions OH --output rates-of-OH.svg", allow_abbrev=False)
     parser.add_argument("run", metavar="RUN.h5", type=Path, help="a trajectory file")
-    parser.add_argument("--output", metavar="FILE", type=Path, help="the picture: .png, .svg or .pdf (default: RUN.png "
-                        "beside the trajectory)")
+    parser.add_argument("--output", metavar="FILE", type=Path, help="the picture: .png, .svg or .pdf (default: beside the "
+                        "trajectory RUN.png, RUN-approach.png or RUN-contributions.png)")
+    _add_kinds(parser)
     parser.add_argument("--species", nargs="+", metavar="NAME", help="the species to draw (default: those that matter)")
     _add_times(parser)
     _add_widths(parser)
     parser.add_argument("--replace", action="store_true", help="overwrite a file that exists")
     parser.set_defaults(act=act)
+
+
+def _add_kinds(parser: argparse.ArgumentParser) -> None:
+    kind = parser.add_mutually_exclusive_group()
+    kind.add_argument("--approach", action="store_true", help="draw how far the run is from equilibrium instead")
+    kind.add_argument("--contributions", metavar="SPECIES", help="draw the rates of formation of a species by the most "
+                      "important reactions instead")
 
 
 def _add_times(parser: argparse.ArgumentParser) -> None:
@@ -47,17 +57,42 @@ def _add_widths(parser: argparse.ArgumentParser) -> None:
 
 def act(chosen: argparse.Namespace) -> int:
     """Carries out the verb."""
-    from ..plots import check_picture, save_course  # matplotlib takes its time to load: no other verb waits for it
+    _check_options(chosen)
+    from ..plots import check_picture  # matplotlib takes its time to load: no other verb waits for it
 
     trajectory = read_trajectory(chosen.run)
-    picture = chosen.output or chosen.run.with_suffix(".png")
+    picture = chosen.output or chosen.run.with_name(f"{chosen.run.stem}{_ending(chosen)}.png")
     spare(picture, chosen.run)
     between = (_seconds(chosen.between[0]), _seconds(chosen.between[1])) if chosen.between else None
     check_picture(picture, chosen.replace)
-    save_course(trajectory, picture, replace=chosen.replace, species=chosen.species,
-                time_axis=chosen.time_axis, width=chosen.width, between=between)
+    _draw(trajectory, picture, chosen, between)
     print(picture)
     return DONE
+
+
+def _check_options(chosen: argparse.Namespace) -> None:
+    """An InputError for options that say how the course is drawn, beside one that asks for another figure."""
+    given = {"--species": chosen.species, "--between": chosen.between, f"--{chosen.time_axis}": chosen.time_axis}
+    unused = [name for name, value in given.items() if value]
+    if _ending(chosen) and unused:
+        raise InputError(f"{unused[0]} beside -{_ending(chosen)}", expected="options of the course with the course alone",
+                         remedy="leave one out")
+
+
+def _ending(chosen: argparse.Namespace) -> str:
+    return "-approach" if chosen.approach else "-contributions" if chosen.contributions is not None else ""
+
+
+def _draw(trajectory: Trajectory, picture: Path, chosen: argparse.Namespace, between: tuple[float, float] | None) -> None:
+    from .. import plots
+
+    how = {"replace": chosen.replace, "width": chosen.width}
+    if chosen.approach:
+        plots.save_approach(trajectory, picture, **how)
+    elif chosen.contributions is not None:
+        plots.save_contributions(trajectory, chosen.contributions, picture, **how)
+    else:
+        plots.save_course(trajectory, picture, species=chosen.species, time_axis=chosen.time_axis, between=between, **how)
 
 
 def _seconds(text: str) -> float:

@@ -9,9 +9,9 @@ from collections.abc import Sequence
 
 from ..compiled import compiled
 
-SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALLOFFS", "GROUPS", "LONG", "BLOCK", "CURVES",
+SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALL_OFFS", "GROUPS", "LONG", "BLOCK", "CURVES",
          "COLUMNS")
-SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALLOFFS, GROUPS, LONG, BLOCK, CURVES, COLUMNS = range(len(SIZES))
+SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALL_OFFS, GROUPS, LONG, BLOCK, CURVES, COLUMNS = range(len(SIZES))
 
 INTS = (
     "range_start",      # (N + 1) first temperature range of each species

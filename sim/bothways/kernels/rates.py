@@ -8,7 +8,7 @@ import math
 
 from ..compiled import compiled
 from . import layout as at
-from .falloff import SMALLEST_PARTNER, fall_off_constants, fall_off_slopes
+from .fall_off import SMALLEST_PARTNER, fall_off_constants, fall_off_slopes
 from .layout import view
 from .pressure import pressure_constants, pressure_slopes
 from .thermal import set_slopes

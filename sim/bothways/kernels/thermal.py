@@ -9,7 +9,7 @@ from ..compiled import compiled
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
 from .elementary import exp_array
-from .falloff import set_centres
+from .fall_off import set_centres
 from .layout import view
 from .pressure import set_columns
 

@@ -116,7 +116,7 @@ def _stoichiometry(mechanism: Mechanism, ints: dict, floats: dict) -> None:
 def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, np.ndarray, int]:
     sizes = {"SPECIES": len(mechanism.species), "REACTIONS": len(mechanism.reactions),
              "EXPRESSIONS": len(floats["log_A"]), "TERMS": len(ints["term_reaction"]),
-             "BODIES": len(ints["body_term"]), "FALLOFFS": len(ints["fall_term"]),
+             "BODIES": len(ints["body_term"]), "FALL_OFFS": len(ints["fall_term"]),
              "GROUPS": len(floats["group_default"]), "LONG": len(ints["long_side"]),
              "BLOCK": len(ints["block_row"]), "CURVES": len(ints["curve_term"]), "COLUMNS": len(ints["column_start"]) - 1}
     header = [sizes[name] for name in layout.SIZES]
@@ -130,7 +130,7 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
 
 
 def _work_lengths(sizes: dict[str, int]) -> list[int]:
-    n, r, t, x, fall = (sizes[k] for k in ("SPECIES", "REACTIONS", "TERMS", "EXPRESSIONS", "FALLOFFS"))
+    n, r, t, x, fall = (sizes[k] for k in ("SPECIES", "REACTIONS", "TERMS", "EXPRESSIONS", "FALL_OFFS"))
     curves, columns = sizes["CURVES"], sizes["COLUMNS"]
     by_name = {"seen": 2, "log_scale": n + 1, "scale": n + 1, "inverse_scale": n + 1, "scale_slope": n + 1,
                "activity": n + 1, "curve_centre": curves, "curve_centre_slope": curves, "curve_factor": curves,

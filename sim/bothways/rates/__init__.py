@@ -5,12 +5,12 @@ read(entry, context), which returns a frozen object after `law.Law`.
 """
 
 from ..entry import Entry
-from . import activated, arrhenius, chebyshev, falloff, pressure_table, sri
+from . import activated, arrhenius, chebyshev, fall_off, pressure_table, sri
 from .arrhenius import Arrhenius
-from .falloff import FallOff
+from .fall_off import FallOffLaw
 from .law import IN_EQUATION, OWN_PARTNER, PRESSURE, Fault, Law, LawContext
 
-_LAWS = {law.NAME: law for law in (arrhenius, falloff.Lindemann, falloff.Troe, sri, activated, pressure_table, chebyshev)}
+_LAWS = {law.NAME: law for law in (arrhenius, fall_off.Lindemann, fall_off.Troe, sri, activated, pressure_table, chebyshev)}
 
 
 def read_law(entry: Entry, context: LawContext) -> Law:
@@ -28,5 +28,5 @@ def law_named(entry: Entry):
     return _LAWS[entry.text("law", choices=tuple(_LAWS))]
 
 
-__all__ = ["IN_EQUATION", "OWN_PARTNER", "PRESSURE", "Arrhenius", "FallOff", "Fault", "Law", "LawContext", "partner_of",
+__all__ = ["IN_EQUATION", "OWN_PARTNER", "PRESSURE", "Arrhenius", "FallOffLaw", "Fault", "Law", "LawContext", "partner_of",
            "read_law"]

@@ -11,7 +11,7 @@ from dataclasses import dataclass
 from typing import ClassVar
 
 from ..entry import Entry
-from .falloff import FallOff, read_broadening, read_limits
+from .fall_off import FallOffLaw, read_broadening, read_limits
 from .law import OWN_PARTNER, Curve, Expression, Fault, Law, LawContext
 from .sri import read_sri
 
@@ -25,7 +25,7 @@ class Activated(Law):
 
     needs_partner: ClassVar[bool] = False
 
-    limits: FallOff
+    limits: FallOffLaw
 
     def k(self, temperature: float, partner: float = 1.0, pressure: float = 1e5) -> float:
         """k at T [K] and partner concentration [mol/m3]."""
@@ -53,8 +53,8 @@ def read(entry: Entry, context: LawContext) -> Activated:
         raise entry.error("F and F_cent are both stated", expected="one broadening: F (SRI) or F_cent (Troe), or none",
                           remedy="leave out either")
     if "F" in entry.data:
-        return Activated(FallOff(*limits, read_sri(entry), "SRI"))
+        return Activated(FallOffLaw(*limits, read_sri(entry), "SRI"))
     if "F_cent" in entry.data or "width" in entry.data:
-        return Activated(FallOff(*limits, *read_broadening(entry)))
+        return Activated(FallOffLaw(*limits, *read_broadening(entry)))
     entry.known.update(("F", "F_cent", "width"))
-    return Activated(FallOff(*limits))
+    return Activated(FallOffLaw(*limits))

@@ -26,7 +26,7 @@ class Broadening(NamedTuple):
 
 class Curve(NamedTuple):
     """Any other curve between two limits: width rule as the kernel counts them, whether it is that of a chemically
-    activated channel, and the centre's parameters (8 numbers, see kernels/falloff.py)."""
+    activated channel, and the centre's parameters (8 numbers, see kernels/fall_off.py)."""
 
     width: int
     activated: bool

@@ -9,7 +9,7 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 from ..entry import Entry
-from .falloff import LARGEST_CENTRE, FallOff, read_limits
+from .fall_off import LARGEST_CENTRE, FallOffLaw, read_limits
 from .law import OWN_PARTNER, Fault, LawContext
 
 NAME = "SRI"
@@ -65,6 +65,6 @@ def read_sri(entry: Entry) -> SriCentre:
     return centre
 
 
-def read(entry: Entry, context: LawContext) -> FallOff:
+def read(entry: Entry, context: LawContext) -> FallOffLaw:
     """The law from its table."""
-    return FallOff(*read_limits(entry, context.order), read_sri(entry), "SRI")
+    return FallOffLaw(*read_limits(entry, context.order), read_sri(entry), "SRI")

@@ -9,10 +9,10 @@ from typing import Protocol
 import numpy as np
 
 from ..entry import Entry
-from . import constant_cp, nasa7, nasa9, shomate
+from . import constant_cp, nine_coefficients, seven_coefficients, shomate
 from .polynomial import LARGEST, Ranges, at, fault
 
-_FORMS = {module.NAME: module for module in (nasa7, nasa9, shomate, constant_cp)}
+_FORMS = {module.NAME: module for module in (seven_coefficients, nine_coefficients, shomate, constant_cp)}
 
 
 class Potential(Protocol):

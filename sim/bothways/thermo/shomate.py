@@ -12,8 +12,8 @@ import numpy as np
 
 from ..constants import GAS_CONSTANT
 from ..entry import Entry
-from .nasa7 import coefficient_rows, rising_temperatures
 from .polynomial import N_COEFFICIENTS, Ranges
+from .seven_coefficients import coefficient_rows, rising_temperatures
 
 NAME = "Shomate"
 _WIDTH = 8

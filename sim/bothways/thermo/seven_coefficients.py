@@ -18,7 +18,7 @@ _COLUMNS = [2, 3, 4, 5, 6, 7, 8]
 
 
 @dataclass(frozen=True)
-class Nasa7:
+class SevenCoefficients:
     """Boundaries T [K] and a row of a1…a7 for each range."""
 
     T: tuple[float, ...]
@@ -31,10 +31,10 @@ class Nasa7:
         return Ranges(np.array(self.T), rows)
 
 
-def read(entry: Entry) -> Nasa7:
+def read(entry: Entry) -> SevenCoefficients:
     """The form from its table; errors: boundaries not rising, wrong counts, numbers not finite."""
     T = rising_temperatures(entry)
-    return Nasa7(T, coefficient_rows(entry, len(T) - 1, 7))
+    return SevenCoefficients(T, coefficient_rows(entry, len(T) - 1, 7))
 
 
 def rising_temperatures(entry: Entry) -> tuple[float, ...]:

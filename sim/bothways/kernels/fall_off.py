@@ -2,7 +2,7 @@
 
 Two groups: Lindemann's and Troe's, which published sets use by the hundred, and every other curve (further width rules,
 Stewart, Larson and Golden's, chemically activated channels), so that the first group's loops ask no more questions.
-rates/falloff.py, rates/sri.py and rates/activated.py state the formulas.
+rates/fall_off.py, rates/sri.py and rates/activated.py state the formulas.
 """
 
 import math

@@ -9,14 +9,14 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..entry import Entry
-from .nasa7 import coefficient_rows, rising_temperatures
 from .polynomial import N_COEFFICIENTS, Ranges
+from .seven_coefficients import coefficient_rows, rising_temperatures
 
 NAME = "NASA 9-coefficient"
 
 
 @dataclass(frozen=True)
-class Nasa9:
+class NineCoefficients:
     """Boundaries T [K] and a row of a1…a7, b1, b2 for each range."""
 
     T: tuple[float, ...]
@@ -27,7 +27,7 @@ class Nasa9:
         return Ranges(np.array(self.T), np.array(self.a))
 
 
-def read(entry: Entry) -> Nasa9:
+def read(entry: Entry) -> NineCoefficients:
     """The form from its table; errors: boundaries not rising, wrong counts, numbers not finite."""
     T = rising_temperatures(entry)
-    return Nasa9(T, coefficient_rows(entry, len(T) - 1, N_COEFFICIENTS))
+    return NineCoefficients(T, coefficient_rows(entry, len(T) - 1, N_COEFFICIENTS))

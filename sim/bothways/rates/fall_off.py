@@ -51,7 +51,7 @@ def _plain(log_reduced: float, log_centre: float) -> float:
 WIDTHS: dict[str, Callable[[float, float], float]] = {"Troe": _troe, "IUPAC": _iupac, "JPL": _plain, "SRI": _plain}
 """log F/log F_cent as a function of log10 P_r and log10 F_cent, by the rule's name."""
 NUMBER_OF_WIDTH = {"Troe": 0, "IUPAC": 1, "JPL": 2, "SRI": 2}
-"""The rules as kernels/falloff.py counts them."""
+"""The rules as kernels/fall_off.py counts them."""
 
 
 class AnyCentre(Protocol):
@@ -118,7 +118,7 @@ class Centre:
 
 
 @dataclass(frozen=True)
-class FallOff(Law):
+class FallOffLaw(Law):
     """Both limits, and F_cent with its width rule (None: Lindemann)."""
 
     k_inf: Arrhenius
@@ -184,9 +184,9 @@ class Lindemann:
     NAME, PARTNER = "Lindemann", OWN_PARTNER
 
     @staticmethod
-    def read(entry: Entry, context: LawContext) -> FallOff:
+    def read(entry: Entry, context: LawContext) -> FallOffLaw:
         """The law from its table."""
-        return FallOff(*read_limits(entry, context.order))
+        return FallOffLaw(*read_limits(entry, context.order))
 
 
 class Troe:
@@ -195,9 +195,9 @@ class Troe:
     NAME, PARTNER = "Troe", OWN_PARTNER
 
     @staticmethod
-    def read(entry: Entry, context: LawContext) -> FallOff:
+    def read(entry: Entry, context: LawContext) -> FallOffLaw:
         """The law from its table."""
-        return FallOff(*read_limits(entry, context.order), *read_broadening(entry))
+        return FallOffLaw(*read_limits(entry, context.order), *read_broadening(entry))
 
 
 def read_broadening(entry: Entry) -> tuple[Centre, str]:
