@@ -9,7 +9,7 @@ import numpy as np
 from .along import rates_along
 from .case import Case
 from .endpoint import CLOSEST, Target, Verdict, target_of, verdict_of_state
-from .integrate import OWN_METHODS, Outcome, Status, integrate
+from .integrate import OWN_METHODS, Outcome, Status, integrate, warm_up
 from .mechanism.toml_writer import to_toml
 from .milestones import milestones
 from .monitored import Monitored, monitored
@@ -25,6 +25,20 @@ def program_version() -> str:
         return version("bothways")
     except PackageNotFoundError:
         return "0 (not installed)"
+
+
+def prepare(case: Case, say: Callable[[str], None] = lambda text: None) -> bool:
+    """Compiles, or fetches from the cache, all that a run of this case uses, so that no run's time holds it.
+
+    say : told before it takes long. Returns whether the machine had no compiled kernels.
+    """
+    equations = case.equations()
+    new = equations.prepare(say)
+    task = monitored(case, equations)
+    if case.method in OWN_METHODS:
+        warm_up(task.problem)
+    Recorder(case, equations).columns()
+    return new
 
 
 def run(case: Case, told: Callable[[int, float, float], None] | None = None) -> Trajectory:

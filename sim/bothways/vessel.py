@@ -76,7 +76,7 @@ class Equations:
         """
         new = not in_cache()
         if new:
-            say("compiling the numerical kernels, once on this machine (about half a minute)")
+            say("compiling the numerical kernels, once on this machine (about a minute)")
         y = np.append(np.ones(self.size - 1), 1000.0)
         self.f(0.0, y)
         self.J(0.0, y)

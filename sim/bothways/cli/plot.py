@@ -13,7 +13,8 @@ from . import DONE, spare
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser(
-        "plot", help="draw a run's course, approach to equilibrium or rates", formatter_class=argparse.RawDescriptionHelpFormatter,
+        "plot", help="draw a run's course, approach to equilibrium or rates",
+        formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Draws temperature, pressure and composition of a trajectory against time. Which species, which\n"
         "stretch of time and whether its axis is linear or logarithmic follow from the course, unless said. Or the approach\n"
         "to equilibrium, or what the reactions contribute to the rate of formation of one species.",

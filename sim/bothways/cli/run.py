@@ -12,7 +12,7 @@ from pathlib import Path
 
 from tqdm import tqdm
 
-from ..batch import run_and_judge
+from ..batch import prepare, run_and_judge
 from ..case import Case, read_case
 from ..endpoint import Kind, Verdict
 from ..outfile import check_writable
@@ -86,7 +86,7 @@ def _compile(case: Case) -> None:
         print(f"bothways: {text}", file=sys.stderr, flush=True)
 
     began = time.perf_counter()
-    if case.equations().prepare(say):
+    if prepare(case, say):
         say(f"compiled in {time.perf_counter() - began:.0f} s")
 
 

@@ -19,7 +19,7 @@ from ..trajectory import Trajectory
 from . import style
 from .labels import formula
 from .panels import draw_panels
-from .parts import Array, Curve, Panel, View
+from .parts import Array, Curve, Panel, View, power_of_ten
 from .saving import check_picture, save
 from .views import time_view
 from .words import case_of, instants, words
@@ -37,7 +37,7 @@ SHORTEST = 0.04
 """A stretch over less than this share of the time axis is not named [-]."""
 HEIGHT = 36.0
 """Of a panel [mm, on a page]."""
-LATE, NEARLY, DECADES = 10.0, 1e-6, 5.0
+LATE, NEARLY, DECADES = 10.0, 1e-6, 5
 """If but this share `NEARLY` of the potential's fall is left at `LATE` times the instant of the steepest rise, a second view
 counts from there, over `DECADES`."""
 
@@ -46,7 +46,8 @@ counts from there, over `DECADES`."""
 class Distance:
     """How far a run is from its equilibrium, NaN where round-off hides it; all (nt).
 
-    potential : above its minimum [J or J/K]. affinity : largest |A|/RT of the reactions of which no species is absent [-].
+    potential : above its minimum [J or J/K].
+    affinity : largest |A|/RT of the reactions whose species are all above TRACE in that state [-]: below, amounts are noise.
     deviation : largest |x/x_eq - 1| of the species above TRACE at equilibrium [-]. furthest : the place of that species.
     """
 
@@ -113,7 +114,8 @@ def _potential(trajectory: Trajectory, mechanism: Mechanism) -> Array:
 def _affinity(trajectory: Trajectory, mechanism: Mechanism) -> Array:
     """Largest |A|/RT; its round-off is that of the potentials it is made of."""
     found = affinities(mechanism, trajectory.amount, trajectory.temperature, trajectory.volume)
-    size = np.where(np.isfinite(found), np.abs(found), 0.0) / (R * trajectory.temperature[:, None])
+    lacking = (trajectory.mole_fraction <= TRACE).astype(float) @ (mechanism.stoichiometry != 0) > 0
+    size = np.where(np.isfinite(found) & ~lacking, np.abs(found), 0.0) / (R * trajectory.temperature[:, None])
     extra = trajectory.extra
     mu = Contents(mechanism).chemical_potentials(extra["equilibrium_amount"], float(extra["equilibrium_temperature"]),
                                                  float(extra["equilibrium_volume"]))
@@ -129,12 +131,17 @@ def _views(trajectory: Trajectory, found: Distance) -> list[View]:
         start = float(time[0])
         return [time_view(start, max(float(time[-1]), start + 1e-9))]
     first, soon = (_fallen(time, found.potential, share) for share in (BEGUN, 1.0 - NEARLY))
-    start, end = max(float(time[seen[0]]), 10.0 ** math.floor(math.log10(first) - 1.0)), float(time[seen[-1]])
-    whole = time_view(start if start < end else float(time[seen[0]]), end, "log")
+    start, end = max(float(time[seen[0]]), _decade(first, 1)), float(time[seen[-1]])
+    whole = time_view(_decade(min(start, 0.9 * end)), end, "log")
     for name, t in trajectory.milestones.items():
         if name.startswith("steepest") and whole.start < t < min(end, soon) and soon < LATE * t:
-            return [whole, time_view(t + (end - t) * 10.0**-DECADES, end, "log", t, f"the {name}")]
+            return [whole, time_view(t + _decade(end - t, DECADES - 1), end, "log", t, f"the {name}")]
     return [whole]
+
+
+def _decade(value: float, before: int = 0) -> float:
+    """The power of ten at or below a value, or one that lies so many before."""
+    return 10.0 ** (math.floor(math.log10(value)) - before)
 
 
 def _fallen(time: Array, potential: Array, share: float) -> float:
@@ -188,4 +195,6 @@ def _remarks(trajectory: Trajectory, found: Distance) -> list[str]:
     """What a reader must know: where curves stop, and what the run's verdict was."""
     verdict = str(trajectory.extra.get("verdict", "")).partition(":")[0]
     hidden = any(np.isnan(line[-1]) for line in (found.potential, found.affinity, found.deviation))
-    return [f"Verdict: {verdict}."] * bool(verdict) + ["Curves stop where round-off hides the distance."] * hidden
+    return [f"Verdict: {verdict}."] * bool(verdict) + [
+        "Curves stop where round-off hides the distance."] * hidden + [
+        f"Affinities and deviations: of what is above mole fraction {power_of_ten(round(math.log10(TRACE)))}."]

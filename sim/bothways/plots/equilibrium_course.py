@@ -20,6 +20,7 @@ from .parts import Array, Curve, Panel, View
 from .saving import check_picture, save
 from .selection import MOST_MAJOR, MOST_TRACE, NOTABLE, SMALLEST, SPAN, Selection, is_diluent, largest
 from .sheet import Words
+from .words import capitalised
 
 POINTS = 120
 """Temperatures between two that are given, for a smooth line."""
@@ -49,8 +50,8 @@ def equilibrium_course(mechanism: Mechanism, amount: Amounts, temperatures: Sequ
     chosen = _named(mechanism, found, species) if species else _mattering(charge, found)
     facts = "; ".join([f"mechanism {mechanism.name} ({len(mechanism.species)} species)", _held(pressure, volume),
                        _charge_text(mechanism, charge)])
-    notes = _notes([_shown_name(mechanism, k) for k in chosen.diluents])
-    texts = Words(title or f"Equilibrium of {mechanism.name}", facts, notes=notes, program=f"bothways {program_version()}")
+    notes = " ".join(_notes(mechanism, chosen, T))
+    texts = Words(capitalised(title or f"equilibrium of {mechanism.name}"), facts, notes=notes, program=f"bothways {program_version()}")
     return draw_panels(T, _panels(mechanism, found, chosen), [_view(T)], size, texts)
 
 
@@ -142,6 +143,13 @@ def _charge_text(mechanism: Mechanism, charge: Array) -> str:
     return f"charge by amount {parts}" + (f" and {len(order) - SHOWN} more" if len(order) > SHOWN else "")
 
 
-def _notes(left_out: Sequence[str]) -> str:
-    how = "hardly reacts" if len(left_out) == 1 else "hardly react"
-    return f"Not drawn: {', '.join(left_out)} ({how})." if left_out else ""
+def _notes(mechanism: Mechanism, chosen: Selection, T: Array) -> list[str]:
+    """What is left out, and what is drawn though its data do not reach there."""
+    notes, left_out = [], [_shown_name(mechanism, k) for k in chosen.diluents]
+    if left_out:
+        notes.append(f"Not drawn: {', '.join(left_out)} ({'hardly reacts' if len(left_out) == 1 else 'hardly react'}).")
+    ranges = {k: mechanism.species[k].fit_range for k in chosen.major + chosen.trace}
+    beyond = [_shown_name(mechanism, k) for k, (low, high) in ranges.items() if T[0] < low or T[-1] > high]
+    if beyond:
+        notes.append(f"Temperatures reach beyond the thermochemical data of {', '.join(beyond)}.")
+    return notes

@@ -71,7 +71,7 @@ def _locator(panel: Panel) -> MaxNLocator:
 def _labels(views: Sequence[View], size: Size, aside: float) -> list[list[str]]:
     """The abscissae's labels in lines; aside : width of both margins [mm]."""
     room = (size.width - aside) / len(views)
-    return [style.wrapped(view.label, size.text, room) for view in views]
+    return [style.wrapped(view.label.replace(" / ", "\u00a0/\u00a0"), size.text, room) for view in views]
 
 
 def _draw(row: Sequence[Axes], panel: Panel, abscissa: Array, views: Sequence[View], size: Size) -> None:
@@ -119,10 +119,12 @@ def _set_abscissae(sheet: Sheet, views: Sequence[View]) -> None:
     labels = _labels(views, sheet.size, sheet.margins.left + sheet.margins.right)
     for k, (view, label) in enumerate(zip(views, labels, strict=True)):
         sheet.axes[-1][k].tick_params(labelbottom=True)
-        sheet.axes[-1][k].set_xlabel("\n".join(label))
+        sheet.axes[-1][k].set_xlabel("\n".join(label).replace("\u00a0", " "))
         for row in sheet.axes:
             if view.scale == "linear":
                 row[k].xaxis.set_major_locator(MaxNLocator(_numbers(sheet, len(views)), steps=STEPS, min_n_ticks=3))
+            else:
+                row[k].xaxis.set_minor_formatter(NullFormatter())
             if k:
                 row[0].axvspan(*views[0].on_axis(np.array([view.start, view.end])), color=style.PALE, linewidth=0, zorder=0)
 

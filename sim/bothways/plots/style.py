@@ -5,6 +5,7 @@ Colours: the palette of M. Okabe and K. Ito, Color Universal Design (2008), as p
 """
 
 import functools
+import re
 from collections.abc import Callable, Iterator
 from dataclasses import dataclass
 from typing import Any, ParamSpec
@@ -103,9 +104,9 @@ def text_width(text: str, points: float, weight: str = "normal") -> float:
 
 
 def wrapped(text: str, points: float, width: float, weight: str = "normal") -> list[str]:
-    """The text in lines no wider than `width` [mm], broken at spaces."""
+    """The text in lines no wider than `width` [mm], broken at spaces, but not at those that do not break."""
     lines: list[str] = []
-    for word in text.split():
+    for word in filter(None, re.split(r"[ \t\r\n]+", text)):
         if lines and text_width(f"{lines[-1]} {word}", points, weight) <= width:
             lines[-1] += f" {word}"
         else:

@@ -32,8 +32,13 @@ def case_of(trajectory: Trajectory) -> dict[str, Any]:
 
 
 def _title(trajectory: Trajectory) -> str:
-    """The case's title, begun with a capital unless its first word is a symbol or carries one (n-heptane, pH)."""
+    """The case's title, or one made from the mechanism's name."""
     title = str(case_of(trajectory).get("case", {}).get("title", "")) or f"{trajectory.mechanism_name}: course of a batch"
+    return capitalised(title)
+
+
+def capitalised(title: str) -> str:
+    """Begun with a capital unless the first word is a symbol or carries one (n-heptane, pH)."""
     first = title.split(" ", 1)[0]
     return title[:1].upper() + title[1:] if first.isalpha() and first.islower() else title
 
