@@ -157,3 +157,13 @@ def test_equilibrium_command(tmp_path, capsys, monkeypatch):
     assert main(["equilibrium", "methane-drum", "--pressures", "-1"]) == 2
     assert main(["equilibrium", "methane-drum", "--pressures", "1", "--csv", "m.csv"]) == 2
     assert "--replace" in capsys.readouterr().err
+
+
+def test_what_double_precision_cannot_resolve_ends_with_a_verdict():
+    """The pool of n-heptane's set relaxes in 1e25 s: a run to equilibrium stops by itself and says not yet."""
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore", Remark)
+        result, last = run_and_judge(to_equilibrium(read_case("heptane-bench")))
+    assert last.kind is Kind.NOT_YET and last.relaxation_time > 1e20 and result.time[-1] > 1e6
+    assert result.complete and "too slow for double precision" in result.statistics["status"]
+    assert np.max(np.abs(result.element_residual)) < 1e-12

@@ -87,7 +87,7 @@ def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task:
         reactions=tuple(str(r.equation) for r in m.reactions), mechanism_name=m.name, mechanism_text=to_toml(m.document),
         case_text=to_toml(case.document), sources=m.sources, statistics=statistics,
         milestones=milestones(case, equations, columns), program_version=program_version(),
-        complete=outcome.status is Status.FINISHED, reason=outcome.reason, extra=_extra(case, columns, last))
+        complete=outcome.status in (Status.FINISHED, Status.STALLED), reason=outcome.reason, extra=_extra(case, columns, last))
 
 
 def _extra(case: Case, columns: dict[str, Any], last: Verdict) -> dict[str, Any]:

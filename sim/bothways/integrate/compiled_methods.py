@@ -6,7 +6,7 @@ from dataclasses import dataclass, field
 import numpy as np
 
 from . import rosenbrock as ros
-from .interface import MOST_STEPS, MOST_STEPS_IF_ASKED, CompiledSystem, Monitor, Outcome, Problem, Status
+from .interface import MOST_REFUSED, MOST_STEPS, MOST_STEPS_IF_ASKED, CompiledSystem, Monitor, Outcome, Problem, Status
 from .pattern import SparsePlan, plan
 from .rosenbrock_tables import RODAS5P, RosenbrockTable
 
@@ -14,7 +14,10 @@ CHUNK, CHUNK_IF_ASKED = 64, 8
 """Steps between returns to Python, and where the problem wants to be asked whether to end."""
 SMALLEST_STEP = 1e-15
 """Of the time reached; below, a step no longer moves the clock."""
+STALLED = -1
 _REASONS = {
+    STALLED: f"{MOST_REFUSED} steps were refused: round-off drives them, and what is left is too slow for double precision "
+             "to tell from it; shorten the time",
     ros.TOO_SMALL: "the step became too small to move on; the tolerances may be tighter than double precision can meet: "
                    "loosen rtol, or raise atol",
     ros.NOT_FINITE: "the right-hand side is not finite at the start: check charge and temperature",
@@ -81,7 +84,9 @@ def integrate(problem: Problem, monitor: Monitor) -> Outcome:
         for stop in (*problem.stops, problem.end):
             if status == ros.REACHED and not _ended(problem, outcome, stepper):
                 status = _until(stop, stepper, monitor, outcome)
-        if status != ros.REACHED:
+        if status == STALLED and problem.until is not None:
+            outcome.status = Status.STALLED
+        elif status != ros.REACHED:
             outcome.status = Status.GAVE_UP
             outcome.reason = f"at {outcome.time:.6g} s " + _REASONS[status].format(steps=stepper.counts[ros.STEP_LIMIT])
     except KeyboardInterrupt:
@@ -98,6 +103,8 @@ def _until(stop: float, stepper: Stepper, monitor: Monitor, outcome: Outcome) ->
         for t, z in zip(stepper.times[:written], stepper.states[:written], strict=True):
             outcome.time = float(t)
             monitor.accepted(outcome.time, z[stepper.system.places])
+        if stepper.counts[ros.JUDGED_AGAINST] > MOST_REFUSED:
+            return STALLED
         if status == ros.BUFFER_FULL and _ended(stepper.problem, outcome, stepper):
             return ros.REACHED
     return status

@@ -69,6 +69,7 @@ class Status(Enum):
     FINISHED = "finished"
     INTERRUPTED = "interrupted by the user"
     GAVE_UP = "the solver gave up"
+    STALLED = "what was left to do is too slow for double precision to resolve"
 
 
 @dataclass
@@ -85,3 +86,5 @@ MOST_STEPS = 1_000_000
 """An endless run is refused after so many steps."""
 MOST_STEPS_IF_ASKED = 20_000
 """The same for a problem that asks whether to end: what has not come by then will not."""
+MOST_REFUSED = 150
+"""So many steps refused by the judge mean that round-off drives them: what is left is too slow to be told from it."""

@@ -135,7 +135,7 @@ def _views(trajectory: Trajectory, found: Distance) -> list[View]:
     whole = time_view(_decade(min(start, 0.9 * end)), end, "log")
     for name, t in trajectory.milestones.items():
         if name.startswith("steepest") and whole.start < t < min(end, soon) and soon < LATE * t:
-            return [whole, time_view(t + _decade(end - t, DECADES - 1), end, "log", t, f"the {name}")]
+            return [whole, time_view(t + 0.4 * _decade(end - t, DECADES - 1), end, "log", t, f"the {name}")]
     return [whole]
 
 

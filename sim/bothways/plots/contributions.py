@@ -20,10 +20,12 @@ from .words import instants, words
 
 MOST = 6
 """Reactions drawn each for itself; the others as one sum."""
+SMALL = 1e-3
+"""A reaction with less than this share of what the first has, at an instant and in all, is never drawn for itself [-]."""
 HIDDEN = 0.02
 """Rates below this share of the largest cannot be read on a linear axis [-]."""
 MOSTLY = 0.5
-"""If more than this share of all that is turned over is turned over at such rates, the axis is not linear [-]."""
+"""If more than this share of all that is turned over is turned over at such rates, both axes are logarithmic [-]."""
 DECADES = 4
 """Of a symmetric logarithmic axis, on either side of its linear part."""
 ROOM = 0.36
@@ -44,7 +46,7 @@ def contributions(trajectory: Trajectory, species: str, width: str = "page") -> 
     found = along.contributions(trajectory, species)
     lines = _lines(trajectory, found, size)
     scale = _linear_within(found)
-    views = time_views(trajectory.time, [_as_seen(lines, scale)], trajectory.milestones)
+    views = time_views(trajectory.time, [_as_seen(lines, scale)], trajectory.milestones, "log" if scale else None)
     name = formula(species, float(trajectory.molar_mass[trajectory.species.index(species)]))
     texts = words(trajectory, (), views[0], _remarks(found, scale))
     panel = _panel(name, lines, scale, _shown(trajectory.time, views))
@@ -63,7 +65,7 @@ def important(time: Array, rate: Array) -> list[int]:
         return []
     peak, area = np.max(np.abs(rate), axis=0), np.trapezoid(np.abs(rate), time, axis=0)
     weight = np.maximum(peak / (peak.max() or 1.0), area / (area.max() or 1.0))
-    return [int(k) for k in np.argsort(-weight, kind="stable")[:MOST] if weight[k] > 0]
+    return [int(k) for k in np.argsort(-weight, kind="stable")[:MOST] if weight[k] > SMALL]
 
 
 def _lines(trajectory: Trajectory, found: along.Contributions, size: Size) -> list[Curve]:

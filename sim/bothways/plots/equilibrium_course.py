@@ -51,7 +51,8 @@ def equilibrium_course(mechanism: Mechanism, amount: Amounts, temperatures: Sequ
     facts = "; ".join([f"mechanism {mechanism.name} ({len(mechanism.species)} species)", _held(pressure, volume),
                        _charge_text(mechanism, charge)])
     notes = " ".join(_notes(mechanism, chosen, T))
-    texts = Words(capitalised(title or f"equilibrium of {mechanism.name}"), facts, notes=notes, program=f"bothways {program_version()}")
+    heading = capitalised(title or f"equilibrium of {mechanism.name}")
+    texts = Words(heading, facts, notes=notes, program=f"bothways {program_version()}")
     return draw_panels(T, _panels(mechanism, found, chosen), [_view(T)], size, texts)
 
 

@@ -7,7 +7,7 @@ from typing import Any
 import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.figure import Figure
-from matplotlib.ticker import LogLocator, MaxNLocator, NullFormatter, ScalarFormatter
+from matplotlib.ticker import FixedLocator, LogLocator, MaxNLocator, NullFormatter, NullLocator, ScalarFormatter
 
 from . import style
 from .labels import Drawn, label_row, least_height, margin
@@ -101,10 +101,20 @@ def _set_axes(axes: Axes, panel: Panel, view: View) -> None:
     axes.tick_params(labelbottom=False)
     if panel.scale == "log":
         _set_decades(axes, round(math.log10(panel.limits[1] / panel.limits[0])))
-    elif panel.scale == "linear":
+    elif panel.scale == "symlog":
+        axes.yaxis.set_major_locator(FixedLocator(_symmetric_decades(panel)))
+        axes.yaxis.set_minor_locator(NullLocator())
+    else:
         axes.yaxis.set_major_locator(_locator(panel))
     if panel.limits[0] < 0 < panel.limits[1] and panel.zero:
         axes.axhline(0.0, color=style.GREY, linewidth=0.5, zorder=1)
+
+
+def _symmetric_decades(panel: Panel) -> list[float]:
+    """Zero and the powers of ten on either side of the linear part, five a side at most."""
+    first, last = (round(math.log10(x)) for x in (panel.linear_within, max(map(abs, panel.limits))))
+    powers = [10.0**k for k in range(first, last + 1, max(1, math.ceil((last - first) / 4)))]
+    return [x for x in (*(-p for p in powers), 0.0, *powers) if panel.limits[0] <= x <= panel.limits[1]]
 
 
 def _set_decades(axes: Axes, decades: int) -> None:

@@ -38,7 +38,7 @@ _FAMILY = "DejaVu Sans"  # comes with matplotlib: the same figure everywhere
 _FONTS = {weight: FontProperties(family=_FAMILY, weight=weight) for weight in ("normal", "bold")}
 _TICKS = {"major.pad": 2.0, "major.size": 2.6, "minor.size": 1.5, "major.width": 0.5, "minor.width": 0.4}
 _RC = {
-    "font.family": _FAMILY, "mathtext.fontset": "dejavusans",
+    "font.family": _FAMILY, "mathtext.fontset": "dejavusans", "text.hinting": "no_hinting",  # as wide as `text_width` says
     "axes.linewidth": 0.5, "axes.edgecolor": "#333333", "axes.labelpad": 2.5, "axes.formatter.useoffset": False,
     "axes.spines.top": False, "axes.spines.right": False, "axes.xmargin": 0.0,
     **{f"{x}tick.{name}": value for x in "xy" for name, value in _TICKS.items()},

@@ -48,7 +48,7 @@ def _facts(trajectory: Trajectory) -> str:
     vessel = case_of(trajectory).get("vessel", {})
     held = [str(vessel.get("heat", "")), f"constant {vessel['holds']}" if "holds" in vessel else ""]
     start = f"{trajectory.temperature[0]:.6g} K and {pressure_text(float(trajectory.pressure[0]))} at the start"
-    size = f"{len(trajectory.species)} species, {len(trajectory.reactions)} reactions"
+    size = f"{len(trajectory.species)} species, {len(trajectory.reactions)} reaction{'s' * (len(trajectory.reactions) != 1)}"
     mechanism = f"mechanism {trajectory.mechanism_name} ({size})"
     return "; ".join(filter(None, (mechanism, ", ".join(filter(None, held)), start)))
 
