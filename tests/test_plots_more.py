@@ -102,6 +102,11 @@ def test_the_vessels_own_entropy_counts(heavy):
     assert found.potential[0] > 0.1 and np.isnan(found.potential[-1])
 
 
+def test_helmholtz_energy_has_its_minimum_at_the_equilibrium():
+    found = distance(bothways.run(bothways.read_case("hot-air")))
+    assert 100.0 < found.potential[0] < 1e3 and np.isnan(found.potential[-1])
+
+
 @pytest.mark.parametrize("name, label", [("Helmholtz energy", "$(A - A_\\mathrm{eq})$ / J"),
                                          ("negative entropy", "$(S_\\mathrm{eq} - S)$ / (J K$^{-1}$)")])
 def test_potential_has_its_own_label(flask, kettle, name, label):
@@ -243,6 +248,17 @@ def test_every_line_is_labelled_once_and_zero_is_marked(kettle):
     assert sorted(named) == sorted(lines(rows(figure)[0][0]))
     for axes in figure.axes:
         assert any(np.all(np.asarray(line.get_ydata()) == 0) and line.get_label().startswith("_") for line in axes.lines)
+
+
+def test_equations_stand_beside_the_panel(kettle):
+    beside = [text for axes in plots.contributions(kettle, "OH").axes for text in axes.texts if "⇌" in text.get_text()]
+    assert len(beside) == 6 and all(text.xy[0] > 1.0 for text in beside)
+
+
+def test_labels_of_rates_have_samples_of_their_lines_instead_of_leaders(kettle):
+    axes = plots.contributions(kettle, "OH").axes[-1]
+    samples = [line for line in axes.get_children() if getattr(line, "get_label", str)() == "_leader"]
+    assert len(samples) == 8 and all(np.ptp(line.get_ydata()) == 0 for line in samples)
 
 
 def test_the_important_are_large_at_an_instant_or_in_all():

@@ -5,7 +5,6 @@ NASA/TP-2002-211556 or from NIST-JANAF tables.
 """
 
 from collections.abc import Mapping, Sequence
-from dataclasses import replace
 from functools import cache
 
 import numpy as np
@@ -16,7 +15,7 @@ from bothways.contents import Contents
 from bothways.equilibrium import Equilibrium, equilibrium
 
 from .small import R, atm, bar, bundled
-from .tp2002 import ROWS, Glenn
+from .tp2002 import ROWS, potential
 
 AIR = {"O2": 1.0, "N2": 3.76}
 PRODUCTS = ("H2", "O2", "H", "O", "OH", "H2O", "HO2", "H2O2", "N2", "NO", "N", "NO2", "N2O", "NH3")
@@ -34,8 +33,7 @@ def _gas(species: Mapping[str, Mapping[str, int]], **potentials: Mapping[str, ob
 @cache
 def _glenn(*names: str) -> Contents:
     """Species with the potentials of NASA/TP-2002-211556."""
-    gas = _gas({name: ROWS[name][0] for name in names})
-    return Contents(replace(gas, species=tuple(replace(s, potential=Glenn(s.name)) for s in gas.species)))
+    return Contents(_gas({name: ROWS[name][0] for name in names}, **{name: potential(name) for name in names}))
 
 
 def _at(temperature: float, gibbs: Mapping[str, tuple[Mapping[str, int], float]]) -> Mechanism:

@@ -73,7 +73,7 @@ def _lines(trajectory: Trajectory, found: along.Contributions, size: Size) -> li
     chosen = important(found.time, found.rate)
     others = np.setdiff1d(np.flatnonzero(np.any(found.rate != 0, axis=0)), chosen)
     styles = [pair for pair in style.line_styles() if pair[0] != style.BLACK]
-    curves = [Curve("net", found.rate[:, :3].sum(axis=1), style.BLACK)]
+    curves = [Curve("net", found.rate.sum(axis=1), style.BLACK)]
     for k, pair in zip(chosen, styles, strict=False):
         curves.append(Curve(equation_text(trajectory, found.reactions[k], size), found.rate[:, k], *pair))
     if others.size:
