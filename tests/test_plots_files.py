@@ -114,7 +114,7 @@ def test_command_replaces_only_if_asked(tmp_path, capsys):
 
 @pytest.mark.parametrize("options, message", [
     (["--species", "H22"], "unknown species 'H22'; nearest: H2"),
-    (["--between", "1 kg", "2"], "--between: '1 kg': kg is a unit of mass, not of time"),
+    (["--between", "1 kg", "2"], "--between: '1 kg' is no time; expected a time"),
     (["--between", "3", "2"], "nothing to draw between 3 s and 2 s"),
     (["--output", "x.bmp"], "x.bmp: the suffix is '.bmp'"),
 ])
