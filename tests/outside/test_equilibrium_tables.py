@@ -25,7 +25,7 @@ PRINTED = 6e-6
 # equation: (its multiple of the reaction of the printed K, JANAF's allowed departure in log10 K up to 1000 K and above,
 #            {T [K]: log10 K at 1 bar by (TP-2002-211556 [R], JANAF from ΔfG°)}).
 # The departures are those of the two evaluations once ΔfH° is made equal, rounded up. Larger ones: CH4 of JANAF is a rigid
-# rotor and harmonic oscillator, NH3, C2H2 and I2 differ when hot, NO2 and N2O4 in their anharmonicity, SO3 and HBr in S°.
+# rotor and harmonic oscillator; H2O, NH3, C2H2 and I2 differ when hot, NO2 and N2O4 in cp°, SO3 and Br2 in S°.
 REACTIONS = {
     "CO + H2O ⇌ CO2 + H2": (1, (0.001, 0.007), {
         298.15: (5.01405, 5.0182), 500: (2.13642, 2.1389), 1000: (0.15653, 0.1578), 1500: (-0.41298, -0.4119),

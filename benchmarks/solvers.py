@@ -1,0 +1,181 @@
+"""Work and precision of the integrators, side by side in one run, as Markdown tables on stdout.
+
+    python benchmarks/solvers.py [hydrogen-oxygen methane c1-c4 n-alkanes]
+
+Every solver is given the same compiled f and J. Achieved error: the largest relative error of T and of species above mole
+fraction 1e-3, at five times around ignition and at the end, against our own method at rtol 1e-11. Times are medians of
+five; those of the others include their callbacks to Python, whose cost is given separately (calls × the time of an empty
+call), so that nobody wins by it alone.
+"""
+
+import sys
+import time
+import warnings
+from collections.abc import Callable
+from itertools import pairwise
+
+import numpy as np
+from scipy.integrate import solve_ivp
+
+from bothways import Case, build_case
+from bothways.integrate import integrate, warm_up
+from bothways.monitored import monitored
+
+CASES = {  # fuel, K, pressure, end [s]
+    "hydrogen-oxygen": ("H2", 1000.0, "1 atm", 2e-3), "methane": ("CH4", 1400.0, "1 atm", 20e-3),
+    "c1-c4": ("C2H4", 1200.0, "1 atm", 20e-3), "n-alkanes": ("NC7H16", 1200.0, "10 atm", 2e-3)}
+TOLERANCES = [10.0**-k for k in range(3, 10)]
+TARGETS = (1e-4, 1e-6)
+Answer = tuple[np.ndarray, int]
+
+
+def case_of(name: str, rtol: float, also_at: tuple[float, ...] = ()) -> Case:
+    """Stoichiometric with air, adiabatic, constant volume."""
+    fuel, temperature, pressure, end = CASES[name]
+    return build_case({
+        "case": {"mechanism": name}, "vessel": {"heat": "adiabatic"}, "until": {"time": end},
+        "start": {"temperature": temperature, "pressure": pressure, "fuel": {fuel: 1}, "oxidiser": {"O2": 1, "N2": 3.76},
+                  "equivalence_ratio": 1.0},
+        "solver": {"rtol": rtol, "atol": min(1e-12, 1e-6 * rtol)}, "output": {"also_at": list(also_at)}})
+
+
+class Kept:
+    """A monitor that keeps the states at given times."""
+
+    def __init__(self, times: tuple[float, ...]) -> None:
+        self.times, self.states, self.course = times, [], []
+
+    def accepted(self, t: float, y: np.ndarray) -> None:
+        """Told of each step."""
+        self.course.append((t, y[-1]))
+        if t in self.times:
+            self.states.append(y)
+
+
+def ours(name: str, rtol: float, times: tuple[float, ...]) -> Callable[[], Answer]:
+    """Rodas5P with its judge."""
+    case = case_of(name, rtol, times)
+    equations = case.equations()
+
+    def solve() -> Answer:
+        task, kept = monitored(case, equations), Kept(times)
+        integrate(task.problem, "Rosenbrock", kept)
+        return np.array(kept.states), 0
+
+    warm_up(monitored(case, equations).problem)
+    return solve
+
+
+def scipys(method: str) -> Callable[[str, float, tuple[float, ...]], Callable[[], Answer]]:
+    """One of scipy's methods, with our f and J."""
+    def prepare(name: str, rtol: float, times: tuple[float, ...]) -> Callable[[], Answer]:
+        problem = monitored(case_of(name, rtol, times), case_of(name, rtol).equations()).problem
+
+        def solve() -> Answer:
+            done = solve_ivp(problem.f, (0.0, times[-1]), problem.start, method=method, jac=problem.J, t_eval=times,
+                             rtol=rtol, atol=problem.atol)
+            return done.y.T, done.nfev + done.njev
+
+        return solve
+
+    return prepare
+
+
+def cvode(linear: str) -> Callable[[str, float, tuple[float, ...]], Callable[[], Answer]]:
+    """CVODE of SUNDIALS through scikit-sundae, with our f and J."""
+    from sksundae.cvode import CVODE
+
+    def prepare(name: str, rtol: float, times: tuple[float, ...]) -> Callable[[], Answer]:
+        equations = case_of(name, rtol).equations()
+        problem = monitored(case_of(name, rtol, times), equations).problem
+
+        def rates(t: float, y: np.ndarray, out: np.ndarray) -> None:
+            out[:] = equations.f(t, y)
+
+        def jacobian(t: float, y: np.ndarray, yp: np.ndarray, out: np.ndarray) -> None:
+            out[:] = equations.J(t, y)
+
+        def solve() -> Answer:
+            solver = CVODE(rates, jacfn=jacobian, rtol=rtol, atol=problem.atol, max_num_steps=1_000_000, linsolver=linear)
+            done = solver.solve(np.array([0.0, *times]), problem.start)
+            return done.y[1:], int(done.nfev) + int(done.njev)
+
+        return solve
+
+    return prepare
+
+
+SOLVERS = {"ours": ours, "scipy BDF": scipys("BDF"), "scipy Radau": scipys("Radau"), "LSODA": scipys("LSODA"),
+           "CVODE dense": cvode("dense"), "CVODE LAPACK": cvode("lapackdense")}
+
+
+def instants(name: str) -> tuple[float, ...]:
+    """Five times around ignition, and the end."""
+    case, kept = case_of(name, 1e-8), Kept(())
+    integrate(monitored(case, case.equations()).problem, "Rosenbrock", kept)
+    t, T = np.array(kept.course).T
+    k = int(np.argmax(np.diff(T) / np.diff(t)))
+    return (*(float(t[k] * factor) for factor in (0.5, 0.9, 0.98, 1.02, 1.1)), case.end)
+
+
+def error(states: np.ndarray, exact: np.ndarray) -> float:
+    """Largest relative error of T and of major species."""
+    if states.shape != exact.shape:
+        return np.inf
+    x = exact[:, :-1] / exact[:, :-1].sum(axis=1, keepdims=True)
+    major = np.column_stack([x > 1e-3, np.ones(len(x), dtype=bool)])
+    return float(np.max(np.abs(states / np.where(major, exact, 1.0) - 1.0)[major]))
+
+
+def measured(name: str, solver: str, times: tuple[float, ...], exact: np.ndarray,
+             repeats: int = 5) -> list[tuple[float, float, int]]:
+    """Achieved error, median seconds and callbacks at each tolerance."""
+    rows = []
+    for rtol in TOLERANCES:
+        try:
+            solve = SOLVERS[solver](name, rtol, times)
+            states, calls = solve()
+        except Exception as problem:
+            print(f"<!-- {name}, {solver}, rtol {rtol:g}: {problem} -->")
+            continue
+        seconds = []
+        for _ in range(repeats):
+            began = time.perf_counter()
+            solve()
+            seconds.append(time.perf_counter() - began)
+            if seconds[-1] > 5.0:
+                break
+        rows.append((error(states, exact), float(np.median(seconds)), calls))
+    return rows
+
+
+def seconds_at(rows: list[tuple[float, float, int]], target: float) -> float:
+    """Time to reach an achieved error: the best of the runs that do, interpolated in logarithms between neighbours."""
+    found = [s for e, s, _ in rows if e <= target]
+    ordered = sorted(rows)
+    for (e0, s0, _), (e1, s1, _) in pairwise(ordered):
+        if e0 <= target < e1 < np.inf and e0 > 0:
+            found.append(float(np.exp(np.interp(np.log(target), np.log([e0, e1]), np.log([s0, s1])))))
+    return min(found, default=np.inf)
+
+
+def main(names: list[str]) -> None:
+    """Measures and prints."""
+    warnings.simplefilter("ignore")
+    for name in names or list(CASES):
+        times = instants(name)
+        exact, _ = ours(name, 1e-11, times)()
+        print(f"\n## {name}\n\n| solver | " + " | ".join(f"ms to {t:g} | ratio" for t in TARGETS)
+              + " | runs: achieved error, ms, callbacks |\n|---|" + "---|---|" * len(TARGETS) + "---|")
+        base: list[float] = []
+        for solver in SOLVERS:
+            rows = measured(name, solver, times, exact)
+            needed = [seconds_at(rows, t) for t in TARGETS]
+            base = base or needed
+            shown = "; ".join(f"{e:.0e}, {1e3 * s:.3g}, {c}" for e, s, c in rows)
+            cells = " | ".join(f"{1e3 * s:.3g} | {s / b:.2g}" for s, b in zip(needed, base, strict=True))
+            print(f"| {solver} | {cells} | {shown} |", flush=True)
+
+
+if __name__ == "__main__":
+    main(sys.argv[1:])
