@@ -104,12 +104,12 @@ def test_outside_its_range_a_fit_keeps_the_heat_capacity_of_its_end(model: Refer
 
 
 def test_constant_heat_capacity_by_hand(model: Reference) -> None:
-    """X: H = 200 kJ/mol, S = 115, cp = 20.9 J/(mol K) at 298.15 K; Q states G = 186.8 kJ/mol."""
+    """X: H = 200 kJ/mol, S = 115, cp = 20.9 J/(mol K) at 298.15 K; Q: 230 kJ/mol, S = 145."""
     X, Q = model.names.index("X"), model.names.index("Q")
     assert model.h_RT(298.15)[X] * GAS_CONSTANT * 298.15 == pytest.approx(200e3, rel=1e-14)
     assert model.h_RT(398.15)[X] * GAS_CONSTANT * 398.15 == pytest.approx(202090.0, rel=1e-14)
     assert model.s_R(298.15)[X] * GAS_CONSTANT == pytest.approx(115.0, rel=1e-14)
-    assert model.g_RT(298.15)[Q] * GAS_CONSTANT * 298.15 == pytest.approx(186.8e3, rel=1e-13)
+    assert model.g_RT(298.15)[Q] * GAS_CONSTANT * 298.15 == pytest.approx(230e3 - 298.15 * 145.0, rel=1e-13)
 
 
 # ---- equilibrium

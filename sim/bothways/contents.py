@@ -31,8 +31,13 @@ class Contents:
         return out[0], out[1], out[2]
 
     def equilibrium_constants(self, temperature: float) -> np.ndarray:
-        """K° of every reaction of the mechanism [-], (reactions), at its standard pressure."""
-        return np.exp(log_equilibrium_constants(self.mechanism.stoichiometry, self.molar(temperature)[0]))
+        """K° of every reaction of the mechanism [-], (reactions), at its standard pressure; inf where ln K passes 709."""
+        with np.errstate(over="ignore"):
+            return np.exp(self.log_equilibrium_constants(temperature))
+
+    def log_equilibrium_constants(self, temperature: float) -> np.ndarray:
+        """ln K° of every reaction of the mechanism [-], (reactions), at its standard pressure."""
+        return log_equilibrium_constants(self.mechanism.stoichiometry, self.molar(temperature)[0])
 
     def reverse_constants(self, temperature: float, partner: float = 1.0) -> np.ndarray:
         """Derived reverse rate constants (m3, mol, s), (reactions), the forward ones at a partner's [mol/m3]."""
