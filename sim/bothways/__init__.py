@@ -1,7 +1,10 @@
 """bothways: closed batch reactors by kinetics that cannot contradict thermodynamics.
 
-Every reverse rate is made from the forward rate and K(T); see `run`, `read_case`, `read_mechanism`.
+Every reverse rate is made from the forward rate and K(T); see `run`, `read_case`, `read_mechanism`. Figures are in
+`bothways.plots`, which is loaded when it is first used.
 """
+
+from typing import Any
 
 from .along import Contributions, contributions
 from .batch import program_version, run
@@ -21,3 +24,12 @@ __all__ = ["BothwaysError", "Case", "Contributions", "Equations", "Equilibrium",
            "SolverError", "Trajectory", "Verdict", "build_case", "build_mechanism", "bundled_cases", "bundled_mechanisms",
            "contributions", "equilibrium", "read_case", "read_mechanism", "read_trajectory", "run", "verdict",
            "write_mechanism", "write_trajectory"]
+
+
+def __getattr__(name: str) -> Any:
+    """`plots` when it is first asked for: matplotlib takes longer to load than a run takes."""
+    if name != "plots":
+        raise AttributeError(f"module 'bothways' has no attribute '{name}'")
+    import bothways.plots as plots
+
+    return plots

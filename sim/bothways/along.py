@@ -14,8 +14,6 @@ from .mechanism.files import parse_toml
 from .trajectory import Trajectory
 from .vessel import Equations
 
-RATES = ("rate_forward", "rate_reverse", "affinity")
-
 
 def rates_along(mechanism: Mechanism, amount: np.ndarray, temperature: np.ndarray, volume: np.ndarray) -> dict[str, np.ndarray]:
     """Forward and reverse rates [mol/(m3 s)] and affinities A = -Σ ν_i μ_i [J/mol] of many states, (nt, reactions) each.

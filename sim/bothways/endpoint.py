@@ -228,7 +228,9 @@ def _landed(v: Verdict) -> str:
 def _not_yet(v: Verdict) -> str:
     worst = v.least_relaxed(1)
     where = f"; least relaxed is {worst[0][0]} with A/RT = {worst[0][1]:.2g}" if worst else ""
-    return f"{_off(v)}{where}; near equilibrium the slowest relaxation takes {v.relaxation_time:.3g} s"
+    time = v.relaxation_time
+    slowest = f"takes {time:.3g} s" if np.isfinite(time) else "is slower than double precision resolves"
+    return f"{_off(v)}{where}; near equilibrium the slowest relaxation {slowest}"
 
 
 def _off(v: Verdict) -> str:
@@ -243,13 +245,17 @@ def _apart(v: Verdict) -> str:
 
 def _why(v: Verdict) -> str:
     kept = ", ".join(v.apart[:4]) + (f" and {len(v.apart) - 4} more" if len(v.apart) > 4 else "")
-    return f"what no reaction changes: {kept}" + (f"; {len(v.frozen)} reactions never start" if v.frozen else "")
+    return f"what no reaction changes: {kept}" + _never(len(v.frozen))
+
+
+def _never(frozen: int) -> str:
+    return f"; {frozen} reaction{'' if frozen == 1 else 's'} never start{'s' if frozen == 1 else ''}" if frozen else ""
 
 
 _SENTENCES = {
     Kind.LANDED: _landed, Kind.NOT_YET: _not_yet, Kind.APART: _apart,
     Kind.CANNOT_START: lambda v: "no reaction of the mechanism can proceed from this charge: of each, both sides lack a "
-                                 "species. Charge a little of one, or add the step that makes it",
+                                 "species, or every partner is missing. Charge a little of one, or add the step that makes it",
     Kind.WRONG: lambda v: f"every reaction is relaxed, yet {_off(v)}: this is a fault of the program; please report it "
                           "with the file",
 }

@@ -5,6 +5,7 @@ import csv
 import io
 from collections.abc import Sequence
 from pathlib import Path
+from typing import Any
 
 import numpy as np
 
@@ -77,7 +78,7 @@ def _draw(case: Case, found: Sequence[Equilibrium], chosen: argparse.Namespace) 
     from ..plots import save_equilibrium_course
 
     c = case.charge
-    held = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
+    held: dict[str, Any] = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
     save_equilibrium_course(case.mechanism, c.amount, [state.temperature for state in found], chosen.plot, chosen.replace,
                             conserved="elements" if chosen.elements else found[0].conserved,
                             title=str(case.document.get("case", {}).get("title", "")), **held)
@@ -117,6 +118,8 @@ def _quantities(words: Sequence[str], kind: str) -> list[float]:
 def _single(case: Case, target: Target, found: Equilibrium, elements: bool) -> list[str]:
     c = case.charge
     heat = found.enthalpy - Contents(case.mechanism).enthalpy(c.amount, c.temperature)
+    if abs(heat) < 1e-12 * found.heat_capacity * found.temperature:
+        heat = 0.0  # round-off of a difference of totals
     lines = [f"{'equilibrium':<14}{case.mechanism.name}, {'elements' if elements else 'what the reactions conserve'} held; "
              f"{case.heat}, constant {case.holds}",
              f"{'state':<14}{found.temperature:.6f} K, {pressure_text(found.pressure)}, {volume_text(found.volume)}",

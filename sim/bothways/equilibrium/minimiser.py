@@ -189,6 +189,8 @@ def _checked(given: Mapping[str, float]) -> Held:
     if set(given) not in pairs:
         raise InputError(f"given: {', '.join(given) or 'nothing'}", expected=_PAIRS)
     for name, value in given.items():
+        if isinstance(value, str):
+            raise InputError(f"{name.replace('_', ' ')} '{value}' is a text", expected="a number, in SI units")
         if not np.isfinite(value) or (name in _POSITIVE and value <= 0):
             raise InputError(f"{name.replace('_', ' ')} {value:g}",
                              expected="a positive number" if name in _POSITIVE else "a finite number")
