@@ -78,6 +78,8 @@ def random_cases(name: str, count: int, seed: int) -> Iterator[tuple[str, np.nda
     random, of = np.random.default_rng(seed), contents(name)
     for k in range(count):
         n = random_charge(random, of.mechanism)
+        while not np.any(n):  # of a small set, leaving out an element may leave nothing
+            n = random_charge(random, of.mechanism)
         T, p = random.uniform(300.0, 3500.0), 10 ** random.uniform(-3.0, np.log10(300.0)) * ATM
         V = float(np.sum(n)) * R * T / p
         given = ({"temperature": T, "volume": V}, {"temperature": T, "pressure": p},

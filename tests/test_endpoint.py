@@ -25,7 +25,7 @@ def landed(case):
     assert last.kind is Kind.LANDED, last.sentence
     own = target_of(case).own
     x, seen = result.mole_fraction[-1], own.mole_fraction > 1e-12
-    assert np.max(np.abs(x / own.mole_fraction - 1)[seen]) < 1e-6
+    assert np.max(np.abs(x[seen] / own.mole_fraction[seen] - 1)) < 1e-6
     assert abs(result.temperature[-1] / own.temperature - 1) < 1e-7
     assert result.complete and result.extra["verdict"].startswith("at equilibrium")
     return result
@@ -167,3 +167,11 @@ def test_what_double_precision_cannot_resolve_ends_with_a_verdict():
     assert last.kind is Kind.NOT_YET and last.relaxation_time > 1e20 and result.time[-1] > 1e6
     assert result.complete and "too slow for double precision" in result.statistics["status"]
     assert np.max(np.abs(result.element_residual)) < 1e-12
+
+
+def test_equilibrium_command_minds_the_range_of_the_data(capsys):
+    """A little outside is remarked on, far outside refused, as in a run."""
+    assert main(["equilibrium", "hydrogen-kettle", "--temperatures", "250"]) == 0
+    assert "outside the range of the thermochemical data" in capsys.readouterr().err
+    assert main(["equilibrium", "hydrogen-kettle", "--temperatures", "8000"]) == 2
+    assert "8000" in capsys.readouterr().err

@@ -15,7 +15,8 @@ from bothways.equilibrium.newton import Task, solve
 from bothways.equilibrium.possible import possible_species
 from equilibria import ATM, R, amounts, contents, minimiser
 
-SHARES = {"hydrogen-oxygen": 0.3, "methane": 0.35, "c1-c4": 0.25, "n-alkanes": 0.1}
+SHARES = {"hydrogen-oxygen": 0.3, "methane": 0.3, "c1-c4": 0.2, "n-alkanes": 0.1, "thermal-no": 0.05,
+          "nitrogen-dioxide": 0.05}
 AIR = {"O2": 1.0, "N2": 3.76}
 
 
@@ -238,6 +239,7 @@ BAD = {
     "an odd pair": ({"internal_energy": 0.0, "pressure": 1.0}, r"given: pressure, internal_energy"),
     "no pressure": ({"temperature": 300.0, "pressure": 0.0}, r"pressure 0; expected a positive number"),
     "temperature not a number": ({"temperature": np.nan, "pressure": 1.0}, r"temperature nan"),
+    "a text": ({"temperature": "300 K", "pressure": 1.0}, r"temperature '300 K' is a text; expected a number"),
     "energy infinite": ({"enthalpy": np.inf, "pressure": 1.0}, r"enthalpy inf; expected a finite number"),
     "too much energy": ({"enthalpy": 1e9, "pressure": ATM}, r"enthalpy 1e\+09 J is out of reach at constant pressure; "
                                                             r"expected at most .* at 20000 K"),

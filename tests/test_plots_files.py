@@ -30,6 +30,11 @@ def test_needs_no_display_and_no_global_figures():
     assert subprocess.run([sys.executable, "-c", code], check=False).returncode == 0
 
 
+def test_the_package_has_its_plots_but_loads_them_when_first_used():
+    code = "import sys, bothways; early = 'matplotlib' in sys.modules; bothways.plots.course; sys.exit(early)"
+    assert subprocess.run([sys.executable, "-c", code], check=False).returncode == 0
+
+
 @pytest.mark.parametrize("width, pixels", [("page", 180 / 25.4 * 300), ("column", 85 / 25.4 * 300)])
 def test_png_has_the_width_at_300_dpi(tmp_path, width, pixels):
     plots.save_course(decay(), tmp_path / "x.png", width=width)

@@ -227,7 +227,7 @@ def _landed(v: Verdict) -> str:
 
 def _not_yet(v: Verdict) -> str:
     worst = v.least_relaxed(1)
-    where = f"; least relaxed is {worst[0][0]} with A/RT = {worst[0][1]:.2g}" if worst else ""
+    where = f"; least relaxed is {worst[0][0]} with A/RT = {worst[0][1]:.3g}" if worst else ""
     time = v.relaxation_time
     slowest = f"takes {time:.3g} s" if np.isfinite(time) else "is slower than double precision resolves"
     return f"{_off(v)}{where}; near equilibrium the slowest relaxation {slowest}"

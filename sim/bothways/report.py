@@ -104,7 +104,7 @@ def _equilibrium(verdict: Verdict) -> list[str]:
     for row in verdict.table()[:_SHOWN]:
         lines.append(f"{row['species']:<18}{row['run']:>12.4g}{row['equilibrium']:>13.4g}{row['deviation']:>11.1e}")
     if verdict.kind is Kind.NOT_YET:
-        lines += [f"A/RT {affinity:>10.2g}  {equation}" for equation, affinity in verdict.least_relaxed()]
+        lines += [f"A/RT {affinity:>10.3g}  {equation}" for equation, affinity in verdict.least_relaxed()]
     return lines
 
 

@@ -87,7 +87,7 @@ class Trajectory:
     mechanism_text, case_text : the files (TOML) as they were read.
     sources : references of the data, one line each.
     statistics : what the solver did: numbers and words by name.
-    milestones : numbers of interest by name.
+    milestones : by name, times [s] and peak mole fractions [-]; see `milestones.milestones`.
     complete, reason : whether the run reached its end, and if not why.
     created : ISO 8601 time, now if not given.
     extra : optional variables of `VARIABLES` by name, such as `affinity` (nt, nr) [J/mol].

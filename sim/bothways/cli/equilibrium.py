@@ -3,13 +3,14 @@
 import argparse
 import csv
 import io
+import sys
 from collections.abc import Sequence
 from pathlib import Path
 from typing import Any
 
 import numpy as np
 
-from ..case import Case, read_case
+from ..case import MARGIN_ERROR, MARGIN_WARN, Case, listed, read_case, species_outside
 from ..contents import Contents
 from ..endpoint import Target, target_of
 from ..equilibrium import Equilibrium, equilibria
@@ -54,7 +55,8 @@ def act(chosen: argparse.Namespace) -> int:
         _check_plot(chosen)
     target = target_of(case)
     found = _found(case, target, chosen)
-    print("\n".join(_single(case, target, found[0], chosen.elements) if len(found) == 1 else _table(found)))
+    _check_ranges(case, found, chosen.temperatures is not None)
+    print("\n".join(_single(case, target, found[0], chosen) if len(found) == 1 else _table(found)))
     if chosen.csv is not None:
         write_whole(chosen.csv, _csv(found).encode(), chosen.replace)
         print(f"{'file':<14}{chosen.csv}")
@@ -62,6 +64,21 @@ def act(chosen: argparse.Namespace) -> int:
         _draw(case, found, chosen)
         print(f"{'plot':<14}{chosen.plot}")
     return DONE
+
+
+def _check_ranges(case: Case, found: Sequence[Equilibrium], stated: bool) -> None:
+    """Says which states lie outside the thermochemical data, as `run` does; a stated one far outside is refused."""
+    ends = sorted({f([e.temperature for e in found]) for f in (min, max)})
+    for temperature in ends:
+        far = species_outside(case.mechanism, temperature, MARGIN_ERROR)
+        if far and stated:
+            raise InputError(f"{temperature:g} K is more than {MARGIN_ERROR:g} K outside the thermochemical data of "
+                             f"{listed(far)}", entry="--temperatures", remedy="correct it",
+                             expected="a temperature nearer to the range of the data")
+        left = species_outside(case.mechanism, temperature, MARGIN_WARN)
+        if left:
+            print(f"bothways: note: {temperature:.0f} K is outside the range of the thermochemical data of {listed(left)}; "
+                  "they continue with constant heat capacity", file=sys.stderr)
 
 
 def _check_plot(chosen: argparse.Namespace) -> None:
@@ -115,13 +132,15 @@ def _quantities(words: Sequence[str], kind: str) -> list[float]:
     return values
 
 
-def _single(case: Case, target: Target, found: Equilibrium, elements: bool) -> list[str]:
-    c = case.charge
+def _single(case: Case, target: Target, found: Equilibrium, chosen: argparse.Namespace) -> list[str]:
+    c, elements = case.charge, chosen.elements
+    heat_held = case.heat if chosen.temperatures is None else "given temperature"
+    held = case.holds if chosen.pressures is None else "pressure"
     heat = found.enthalpy - Contents(case.mechanism).enthalpy(c.amount, c.temperature)
     if abs(heat) < 1e-12 * found.heat_capacity * found.temperature:
         heat = 0.0  # round-off of a difference of totals
     lines = [f"{'equilibrium':<14}{case.mechanism.name}, {'elements' if elements else 'what the reactions conserve'} held; "
-             f"{case.heat}, constant {case.holds}",
+             f"{heat_held}, constant {held}",
              f"{'state':<14}{found.temperature:.6f} K, {pressure_text(found.pressure)}, {volume_text(found.volume)}",
              f"{'change of H':<14}{heat:.6g} J from the charge"]
     if target.apart and not elements:

@@ -5,6 +5,7 @@ import textwrap
 
 from ..mechanism import bundled_cases, bundled_mechanisms, read_mechanism
 from ..mechanism.files import read_toml
+from ..report import counted
 from . import DONE
 
 
@@ -20,7 +21,7 @@ def act(chosen: argparse.Namespace) -> int:
     """Carries out the verb."""
     for name in bundled_mechanisms():
         m = read_mechanism(name)
-        print(f"{name:<18}{m.phase}, {len(m.species)} species, {len(m.reactions)} reactions")
+        print(f"{name:<18}{m.phase}, {len(m.species)} species, {counted(len(m.reactions), 'reaction')}")
         for source in m.sources:
             print(textwrap.indent(textwrap.fill(source, 90), " " * 18))
     print("\nbundled cases (an invented scenario), for 'bothways run NAME':")

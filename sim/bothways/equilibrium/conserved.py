@@ -24,6 +24,13 @@ def conserved_by_reactions(mechanism: Mechanism) -> np.ndarray:
     Small integers: the independent ones among the elements, then the combinations of `extra_conserved`. Without any
     reaction every species is conserved by itself.
     """
+    kept = mechanism.__dict__  # exact elimination takes longer than a run; a mechanism never changes
+    if "_conserved" not in kept:
+        kept["_conserved"] = _conserved(mechanism)
+    return kept["_conserved"]
+
+
+def _conserved(mechanism: Mechanism) -> np.ndarray:
     if not mechanism.reactions:
         return np.eye(len(mechanism.species), dtype=np.int64)
     elements = conserved_by_elements(mechanism)

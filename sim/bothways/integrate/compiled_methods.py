@@ -2,6 +2,7 @@
 
 import time
 from dataclasses import dataclass, field
+from functools import lru_cache
 
 import numpy as np
 
@@ -25,6 +26,12 @@ _REASONS = {
 }
 
 
+@lru_cache(maxsize=16)
+def _plan(rows: bytes, starts: bytes, tail: int) -> SparsePlan:
+    """The plan of a pattern, made once: many runs share one."""
+    return plan(np.frombuffer(rows, np.uint32), np.frombuffer(starts, np.uint32).astype(np.int64), tail)
+
+
 @dataclass
 class Stepper:
     """A compiled Rosenbrock integration between chunks: tables, memory and counters; `advance` goes on."""
@@ -37,7 +44,7 @@ class Stepper:
     def __post_init__(self) -> None:
         system = self.system
         self.rows, self.starts = (part.astype(np.uint32) for part in system.pattern)
-        self.plan: SparsePlan = plan(*system.pattern, system.tail)
+        self.plan = _plan(self.rows.tobytes(), self.starts.tobytes(), system.tail)
         columns = np.repeat(np.arange(len(self.starts) - 1), np.diff(system.pattern[1]))
         self.own = np.flatnonzero(self.rows == columns).astype(np.uint32)
         self.z = system.start.copy()

@@ -5,8 +5,6 @@ pivoting two things may go wrong, and both are watched: growth of entries, and c
 `factor` return False, and the caller takes the pivoted dense way.
 """
 
-import numpy as np
-
 from ..compiled import compiled
 
 CANCELLED = 1e-9
@@ -122,7 +120,3 @@ def dense_solve(matrix, pivots, right, x):
             total -= matrix[i, j] * x[j]
         x[i] = total / matrix[i, i]
 
-
-def empty_factors(n: int, fill: int) -> tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray]:
-    """lu, row, dense matrix and pivots for `factor` and `dense_factor`."""
-    return np.zeros(fill), np.zeros(n), np.zeros((n, n)), np.zeros(n, dtype=np.int64)

@@ -99,7 +99,6 @@ WORK = (
     "unknown", "border_column",  # (N) scratch of the vessel equations
 )
 
-SIZE_OF = {name: k for k, name in enumerate(SIZES)}
 _INT_OFFSETS = len(SIZES)
 _FLOAT_OFFSETS = _INT_OFFSETS + len(INTS) + 1
 _WORK_OFFSETS = _FLOAT_OFFSETS + len(FLOATS) + 1

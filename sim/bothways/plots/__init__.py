@@ -1,6 +1,6 @@
 """Figures of runs, for a page (180 mm) or a column (85 mm); needs no display.
 
-One file a figure; `style`, `views`, `labels`, `selection`, `composition`, `words` and `saving` are what they share.
+One file a figure; the other modules are what they share.
 """
 
 from .approach import approach, save_approach
