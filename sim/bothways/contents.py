@@ -112,12 +112,14 @@ class Contents:
 
         own_heat_capacity [J/K] is the vessel's, counted from the reference temperature [K].
         """
-        T, less = near.astype(float), 1.0 if holds == "volume" else 0.0
+        T, less, before = near.astype(float), 1.0 if holds == "volume" else 0.0, np.inf
         for _ in range(50):
             _, h, cp = self.molar_at(T)
             held = R * T * np.einsum("ki,ki->k", n, h - less) + own_heat_capacity * (T - reference)
             step = (energy - held) / (R * np.einsum("ki,ki->k", n, cp - less) + own_heat_capacity)
             T = np.clip(T + step, 0.5 * T, 2.0 * T)
-            if np.all(np.abs(step) <= 4e-16 * T):
+            size = float(np.max(np.abs(step) / T))
+            if size <= 4e-16 or (size >= before and size < 1e-13):  # round-off moves it about from here on
                 break
+            before = size
         return T

@@ -2,7 +2,7 @@
 
 The methods' tables stand in rosenbrock_tables.py. Unknowns may be differential (mass 1) or tied by a linear row of
 the Jacobian (mass 0: a border that keeps the linear system sparse; E. Hairer, G. Wanner, Solving Ordinary
-Differential Equations II, 2nd ed., 1996, IV.7 for the transformed step formulas, IV.8 for the first step and IV.2 for
+Differential Equations II, 2nd ed., 1996, IV.7 for the transformed step formulas and IV.8 for
 the controller with memory, after K. Gustafsson, ACM Trans. Math. Softw. 20 (1994) 496, doi:10.1145/198429.198437).
 """
 
@@ -14,8 +14,8 @@ from ..compiled import call, compiled
 from .sparse_lu import dense_factor, dense_solve, factor, solve, unpermute
 
 REACHED, BUFFER_FULL, TOO_SMALL, NOT_FINITE, TOO_MANY = range(5)
-TIME, STEP, LAST_STEP, LAST_ERROR, SMALLEST_STEP, LARGEST_STEP = range(6)
-MEMORY_SIZE = 6
+TIME, STEP, LAST_STEP, LAST_ERROR, SMALLEST_STEP = range(5)
+MEMORY_SIZE = 5
 STEPS, REJECTED, F_CALLS, J_CALLS, FACTORISATIONS, SOLVES, DENSE, JUDGED_AGAINST, STEP_LIMIT = range(9)
 COUNTS_SIZE = 9
 _SAFETY, _SHRINK, _GROW = 0.9, 0.2, 6.0

@@ -1,8 +1,8 @@
 """Numeric part of the sparse LU: compiled index loops on a static pattern, diagonal pivots, watched.
 
 Row by row (I.S. Duff, A.M. Erisman, J.K. Reid, Direct Methods for Sparse Matrices, 2nd ed., 2017, ch. 10). Without
-pivoting two things may go wrong, and both are watched: growth of entries, and cancellation in a pivot. Either makes
-`factor` return False, and the caller takes the pivoted dense way.
+pivoting a pivot may lose its digits to cancellation, and what it divides then grows. That is watched: `factor` returns
+False, and the caller takes the pivoted dense way.
 """
 
 from ..compiled import compiled
@@ -47,7 +47,7 @@ def factor(values, order, start, column, diagonal, target, lu, row):
 
 @compiled
 def solve(lu, order, start, column, diagonal, right, x):
-    """Solves for one right-hand side (n), both in the original order; x: (n) result, scratch in between."""
+    """Solves for one right-hand side (n) in the original order; x: (n) result in the permuted one, see `unpermute`."""
     n = diagonal.size
     for i in range(n):
         total = right[order[i]]
