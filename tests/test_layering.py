@@ -29,7 +29,7 @@ LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("along", "charge", "course", "reach", "relaxation"),
     ("case",),
     ("endpoint", "monitored", "recorder", "remarks", "milestones"),
-    ("batch",),
+    ("batch", "grid"),
     ("report",),
     ("plots", "audit", "compare", "sweep"),
     ("",),

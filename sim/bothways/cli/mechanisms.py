@@ -3,6 +3,7 @@
 import argparse
 import textwrap
 
+from ..grid import bundled_grids
 from ..mechanism import bundled_cases, bundled_mechanisms, read_mechanism
 from ..mechanism.files import read_toml
 from ..report import counted
@@ -11,9 +12,9 @@ from . import DONE
 
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
-    parser = verbs.add_parser("mechanisms", help="list the bundled mechanisms and cases",
+    parser = verbs.add_parser("mechanisms", help="list the bundled mechanisms, cases and grids",
                               description="Lists the bundled mechanisms with phase, size and source, and the bundled "
-                              "cases.", epilog="example: bothways mechanisms", allow_abbrev=False)
+                              "cases and grids.", epilog="example: bothways mechanisms", allow_abbrev=False)
     parser.set_defaults(act=act)
 
 
@@ -27,4 +28,7 @@ def act(chosen: argparse.Namespace) -> int:
     print("\nbundled cases (an invented scenario), for 'bothways run NAME':")
     for name, path in bundled_cases().items():
         print(f"{name:<28}{read_toml(path)['case'].get('title', '')}")
+    print("\nbundled grids (invented too), for 'bothways sweep NAME':")
+    for name, path in bundled_grids().items():
+        print(f"{name:<28}{read_toml(path)['grid'].get('title', '')}")
     return DONE
