@@ -129,6 +129,24 @@ def call(typing_context, address, given, result, context_array):  # type: ignore
     return types.int64(types.int64, given, result, context_array), generate
 
 
+@intrinsic
+def _span(typing_context, array, first, last):  # type: ignore[no-untyped-def]
+    result = array.copy(readonly=False)
+
+    def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
+        base = context.make_array(signature.args[0])(context, builder, arguments[0])
+        first, last = (context.cast(builder, value, kind, types.intp)
+                       for value, kind in zip(arguments[1:], signature.args[1:], strict=True))
+        made = context.make_array(result)(context, builder)
+        size = builder.sub(last, first)
+        width = context.get_constant(types.intp, context.get_abi_sizeof(context.get_data_type(result.dtype)))
+        context.populate_array(made, data=builder.gep(base.data, [first]), shape=(size,), strides=(width,), itemsize=width,
+                               meminfo=None, parent=None)
+        return made._getvalue()
+
+    return result(array, first, last), generate
+
+
 def _pointer_to(item):  # type: ignore[no-untyped-def]
     @intrinsic
     def pointer(typing_context, address):  # type: ignore[no-untyped-def]
@@ -146,9 +164,13 @@ float64_pointer, uint32_pointer = _pointer_to(types.float64), _pointer_to(types.
 """An address as a pointer to float64 or uint32, for numba's carray."""
 
 if JIT:
-    bits_to_float, float_to_bits = _bits_to_float, _float_to_bits
+    bits_to_float, float_to_bits, span = _bits_to_float, _float_to_bits, _span
 else:
     import struct
+
+    def span(array, first, last):  # type: ignore[no-untyped-def]
+        """array[first:last] (interpreted kernels)."""
+        return array[first:last]
 
     def bits_to_float(bits: int) -> float:
         """The float64 of these 64 bits (interpreted kernels)."""

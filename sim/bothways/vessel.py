@@ -161,9 +161,10 @@ class Equations:
     @cached_property
     def _full_rows(self) -> set[int]:
         if self.holds == "pressure":
-            return set(np.flatnonzero(np.diff(table_view(self.tables, "nu_start").astype(np.int64))).tolist())
-        sums, n = table_view(self.tables, "sum_start").astype(np.int64), self.size - 1
-        return set(np.flatnonzero(np.diff(sums)[-n:]).tolist())
+            touched = np.diff(table_view(self.tables, "nu_start").astype(np.int64)).reshape(-1, 2).sum(axis=1)
+            return set(np.flatnonzero(touched).tolist())
+        places = table_view(self.tables, "extra_place").astype(np.int64) - len(self._block[1])
+        return set(places[places >= 0].tolist())
 
     def reaction_rates(self, y: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
         """Forward and reverse rates [mol/(m3 s)] of every reaction in a plain state, (R) each."""

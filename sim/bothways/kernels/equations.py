@@ -12,8 +12,9 @@ import numpy as np
 from ..compiled import compiled
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
+from .elementary import dot, total_of
 from .layout import view
-from .rates import set_derivatives, set_production
+from .rates import one_way_rates, set_derivatives, set_production
 from .thermal import set_temperature
 
 VESSEL_SIZE = 5
@@ -30,9 +31,9 @@ _CP_SLOPE = at.offset_slot(at.WORK, "heat_capacity_slope")
 _OMEGA = at.offset_slot(at.WORK, "omega")
 _OMEGA_BY_T = at.offset_slot(at.WORK, "omega_by_T")
 _BLOCK = at.offset_slot(at.WORK, "block")
-_FORWARD = at.offset_slot(at.WORK, "forward")
-_REVERSE = at.offset_slot(at.WORK, "reverse")
-_UNKNOWN = at.offset_slot(at.WORK, "unknown")
+_SEEN = at.offset_slot(at.WORK, "seen")
+_CONCENTRATION = at.offset_slot(at.WORK, "concentration")
+_ENERGY = at.offset_slot(at.WORK, "energy")
 _COLUMN = at.offset_slot(at.WORK, "border_column")
 
 
@@ -40,17 +41,22 @@ _COLUMN = at.offset_slot(at.WORK, "border_column")
 def _produce(y, border, T, vessel, ints, floats, work):
     """Sets rates and omega for the species part y of a state; returns the volume in units of the state.
 
-    At constant volume the state is per volume (1); border is the total concentration or the volume.
+    At constant volume the state is per volume (1); border is the total concentration or the volume. Nothing is done
+    where the rates stand for this state already: J is asked for where f was.
     """
-    n = ints[at.SPECIES]
-    c = view(work, ints, _UNKNOWN)
+    c, seen = view(work, ints, _CONCENTRATION), view(work, ints, _SEEN)
     volume, total = 1.0, border
     if vessel[HOLDS] == PRESSURE_HELD:
         volume, total = border, vessel[PRESSURE] / (R * T)
-    for i in range(n):
-        c[i] = y[i] / volume
     set_temperature(T, ints, floats, work)
-    set_production(c, total, ints, floats, work)
+    changed = 0 if seen[at.SEEN_TOTAL] == total else 1
+    for i in range(c.size):
+        value = y[i] / volume
+        changed += 0 if value == c[i] else 1
+        c[i] = value
+    if changed > 0:
+        set_production(c, total, ints, floats, work)
+        seen[at.SEEN_TOTAL] = total
     return volume
 
 
@@ -62,9 +68,7 @@ def _usable(T):
 @compiled
 def border_of(y, n, vessel):
     """The border unknown that belongs to a plain state: total concentration, or volume."""
-    total = 0.0
-    for i in range(n):
-        total += y[i]
+    total = total_of(y[:n])
     if vessel[HOLDS] == PRESSURE_HELD:
         return total * R * y[n] / vessel[PRESSURE]
     return total
@@ -74,11 +78,8 @@ def border_of(y, n, vessel):
 def _heat_capacity(y, vessel, ints, work):
     """Heat capacity at constant volume or pressure of contents and vessel, per unit of the state, over R."""
     cp = view(work, ints, _CP)
-    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
-    total = vessel[HEAT_CAPACITY] / R
-    for i in range(cp.size):
-        total += y[i] * (cp[i] - less)
-    return total
+    own = vessel[HEAT_CAPACITY] / R + dot(y[: cp.size], cp)
+    return own - total_of(y[: cp.size]) if vessel[HOLDS] == VOLUME_HELD else own
 
 
 @compiled
@@ -86,12 +87,18 @@ def _heating(y, T, volume, vessel, ints, work):
     """dT/dt [K/s] of an adiabatic vessel from the production rates, 0 of an isothermal one."""
     if vessel[HEAT] == ISOTHERMAL:
         return 0.0
-    enthalpy, omega = view(work, ints, _ENTHALPY), view(work, ints, _OMEGA)
-    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
-    released = 0.0
-    for i in range(omega.size):
-        released -= (enthalpy[i] - less) * omega[i]
+    released = -dot(_energies(vessel, ints, work), view(work, ints, _OMEGA))
     return released * volume * T / _heat_capacity(y, vessel, ints, work)
+
+
+@compiled
+def _energies(vessel, ints, work):
+    """u/RT at constant volume, h/RT at constant pressure, (N)."""
+    enthalpy, energy = view(work, ints, _ENTHALPY), view(work, ints, _ENERGY)
+    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    for i in range(energy.size):
+        energy[i] = enthalpy[i] - less
+    return energy
 
 
 @compiled
@@ -119,11 +126,9 @@ def bordered_rates_of_change(z, vessel, ints, floats, work, out):
         return
     volume = _produce(z, border, T, vessel, ints, floats, work)
     omega = view(work, ints, _OMEGA)
-    total = 0.0
     for i in range(n):
         out[i] = volume * omega[i]
-        total += z[i]
-    out[n] = total - (border if vessel[HOLDS] == VOLUME_HELD else vessel[PRESSURE] * border / (R * T))
+    out[n] = total_of(z[:n]) - (border if vessel[HOLDS] == VOLUME_HELD else vessel[PRESSURE] * border / (R * T))
     out[n + 1] = _heating(z, T, volume, vessel, ints, work)
 
 
@@ -139,7 +144,7 @@ def _columns(y, border, T, vessel, ints, floats, work):
         for i in range(n):
             column[i] = block[size + i]
         return volume
-    start, row, c = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), view(work, ints, _UNKNOWN)
+    start, row, c = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), view(work, ints, _CONCENTRATION)
     total = vessel[PRESSURE] / (R * T)
     for i in range(n):
         column[i] = omega[i]
@@ -189,27 +194,27 @@ def _temperature_row(y, T, volume, vessel, ints, work, data):
     internal energies at constant volume, the enthalpies at constant pressure.
     """
     n = ints[at.SPECIES]
-    start, row = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW)
-    enthalpy, cp, cp_slope = view(work, ints, _ENTHALPY), view(work, ints, _CP), view(work, ints, _CP_SLOPE)
-    omega = view(work, ints, _OMEGA)
+    start, row, energy = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), _energies(vessel, ints, work)
+    cp, cp_slope, omega = view(work, ints, _CP), view(work, ints, _CP_SLOPE), view(work, ints, _OMEGA)
     less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
     adiabatic = 1.0 if vessel[HEAT] == ADIABATIC else 0.0
     heat = _heat_capacity(y, vessel, ints, work)
     f = _heating(y, T, volume, vessel, ints, work)
     p = 0
     for s in range(n):
-        total = 0.0
-        for e in range(start[s], start[s + 1]):
-            total += (enthalpy[row[e]] - less) * data[p]
+        even, odd = 0.0, 0.0
+        e, last = start[s], start[s + 1]
+        while e + 1 < last:
+            even += energy[row[e]] * data[p]
+            odd += energy[row[e + 1]] * data[p + 1]
+            e, p = e + 2, p + 2
+        if e < last:
+            even += energy[row[e]] * data[p]
             p += 1
-        data[p + 1] = -adiabatic * (T * total + f * (cp[s] - less)) / heat
+        data[p + 1] = -adiabatic * (T * (even + odd) + f * (cp[s] - less)) / heat
         p += 2
-    by_border, by_T, own, change = 0.0, 0.0, 0.0, 0.0
-    for i in range(n):
-        by_border += (enthalpy[i] - less) * data[p + i]
-        by_T += (enthalpy[i] - less) * data[p + n + 2 + i]
-        own += (cp[i] - less) * omega[i] * volume
-        change += y[i] * cp_slope[i]
+    by_border, by_T = dot(energy, data[p : p + n]), dot(energy, data[p + n + 2 : p + 2 * n + 2])
+    own, change = volume * (dot(cp, omega) - less * total_of(omega)), dot(y[:n], cp_slope)
     data[p + n + 1] = -adiabatic * T * by_border / heat
     data[p + 2 * n + 3] = -adiabatic * (T * by_T + own + f * change / T) / heat
 
@@ -255,5 +260,4 @@ def reaction_rates(y, vessel, ints, floats, work, forward, reverse):
     """Forward and reverse rates [mol/(m3 s)] of every reaction in a plain state; outputs (R)."""
     n = ints[at.SPECIES]
     _produce(y, border_of(y, n, vessel), y[n], vessel, ints, floats, work)
-    forward[:] = view(work, ints, _FORWARD)
-    reverse[:] = view(work, ints, _REVERSE)
+    one_way_rates(ints, work, forward, reverse)

@@ -9,7 +9,7 @@ import math
 
 from ..compiled import compiled
 from . import layout as at
-from .elementary import LN10, SMALLEST, exp_array
+from .elementary import LN10, SMALLEST, exp_array, log_array
 from .layout import view
 
 SMALLEST_PARTNER = 1e-300
@@ -19,7 +19,6 @@ _LARGEST_EXPONENT = 700.0
 _FALL_TERM = at.offset_slot(at.INTS, "fall_term")
 _FALL_LOW = at.offset_slot(at.INTS, "fall_low")
 _FALL_GROUP = at.offset_slot(at.INTS, "fall_group")
-_FALL_KIND = at.offset_slot(at.INTS, "fall_kind")
 _CURVE_TERM = at.offset_slot(at.INTS, "curve_term")
 _CURVE_LOW = at.offset_slot(at.INTS, "curve_low")
 _CURVE_GROUP = at.offset_slot(at.INTS, "curve_group")
@@ -35,6 +34,13 @@ _CENTRE_EXPONENT = at.offset_slot(at.WORK, "centre_exponent")
 _CENTRE_PART = at.offset_slot(at.WORK, "centre_part")
 _LOG_CENTRE = at.offset_slot(at.WORK, "log_centre")
 _LOG_CENTRE_SLOPE = at.offset_slot(at.WORK, "log_centre_slope")
+_CENTRE = at.offset_slot(at.WORK, "centre")
+_RATIO = at.offset_slot(at.WORK, "fall_ratio")
+_LOG_RATIO = at.offset_slot(at.WORK, "fall_log_ratio")
+_FALL_PARTNER = at.offset_slot(at.WORK, "fall_partner")
+_REDUCED = at.offset_slot(at.WORK, "fall_reduced")
+_BY_REDUCED = at.offset_slot(at.WORK, "fall_by_reduced")
+_BY_CENTRE = at.offset_slot(at.WORK, "fall_by_centre")
 _LOG_BROADENING = at.offset_slot(at.WORK, "log_broadening")
 _BROADENING = at.offset_slot(at.WORK, "broadening")
 _CURVE_CENTRE = at.offset_slot(at.WORK, "curve_centre")
@@ -49,29 +55,44 @@ _K_BY_M = at.offset_slot(at.WORK, "k_by_M")
 
 @compiled
 def set_centres(T, ints, floats, work):
-    """log10 F_cent and its slope of every fall-off, as they are at T [K]."""
-    kind, parameter = view(ints, ints, _FALL_KIND), view(floats, ints, _FALL_PARAMETER)
+    """What of every fall-off hangs on T [K] alone: log10 F_cent with its slope, k_0/k_inf and its log10.
+
+    parameters: (4 L) a, 1/T***, 1/T*, T**, one kind after another. Lindemann's F_cent comes out as 1 exactly.
+    """
+    parameter, centre = view(floats, ints, _FALL_PARAMETER), view(work, ints, _CENTRE)
     log_centre, slope = view(work, ints, _LOG_CENTRE), view(work, ints, _LOG_CENTRE_SLOPE)
     exponent, parts = view(work, ints, _CENTRE_EXPONENT), view(work, ints, _CENTRE_PART)
-    for q in range(kind.size):
-        exponent[3 * q] = -T * parameter[4 * q + 1]
-        exponent[3 * q + 1] = -T * parameter[4 * q + 2]
-        exponent[3 * q + 2] = -parameter[4 * q + 3] / T
+    n = centre.size
+    for q in range(2 * n):
+        exponent[q] = -T * parameter[n + q]
+    for q in range(n):
+        exponent[2 * n + q] = -parameter[3 * n + q] / T
     exp_array(exponent, parts)
     for e in range(parts.size):
-        if exponent[e] < SMALLEST:  # a published T* of 1e-30 means zero, and its slope too
-            parts[e] = 0.0
-    for q in range(kind.size):
-        if kind[q] == 1:
-            a = parameter[4 * q]
-            x3, x1, x2 = (1.0 - a) * parts[3 * q], a * parts[3 * q + 1], parts[3 * q + 2]
-            centre = x3 + x1 + x2
-            centre_slope = -x3 * parameter[4 * q + 1] - x1 * parameter[4 * q + 2] + x2 * parameter[4 * q + 3] / (T * T)
-            if centre < _SMALLEST_CENTRE:
-                centre, centre_slope = _SMALLEST_CENTRE, 0.0
-            log_centre[q] = math.log(centre) / LN10
-            slope[q] = centre_slope / (centre * LN10)
+        parts[e] = parts[e] if exponent[e] >= SMALLEST else 0.0  # a published T* of 1e-30 means zero, its slope too
+    for q in range(n):
+        a = parameter[q]
+        x3, x1, x2 = (1.0 - a) * parts[q], a * parts[n + q], parts[2 * n + q]
+        value = x3 + x1 + x2
+        by_T = x2 * parameter[3 * n + q] / (T * T) - x3 * parameter[n + q] - x1 * parameter[2 * n + q]
+        centre[q] = max(value, _SMALLEST_CENTRE)
+        slope[q] = by_T / (value * LN10) if value > _SMALLEST_CENTRE else 0.0
+    log_array(centre, log_centre)
+    for q in range(n):
+        log_centre[q] *= 1.0 / LN10
+    _set_ratios(ints, work)
     _set_curve_centres(T, ints, floats, work)
+
+
+@compiled
+def _set_ratios(ints, work):
+    """k_0/k_inf of every fall-off and its log10."""
+    log_k, limit = view(work, ints, _LOG_K), view(work, ints, _K_LIMIT)
+    term, low = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW)
+    ratio, log_ratio = view(work, ints, _RATIO), view(work, ints, _LOG_RATIO)
+    for q in range(term.size):
+        ratio[q] = limit[low[q]] / limit[term[q]]
+        log_ratio[q] = (log_k[low[q]] - log_k[term[q]]) / LN10
 
 
 @compiled
@@ -119,22 +140,29 @@ def _width(rule, log_reduced, log_centre):
 @compiled
 def fall_off_constants(ints, floats, work):
     """k of every term in fall-off, from the limits at this temperature and the partners."""
-    k, limit, partner = view(work, ints, _K), view(work, ints, _K_LIMIT), view(work, ints, _PARTNER)
-    term, low, group = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(ints, ints, _FALL_GROUP)
-    kind, log_k, log_centre = view(ints, ints, _FALL_KIND), view(work, ints, _LOG_K), view(work, ints, _LOG_CENTRE)
+    partner, log_partner = view(work, ints, _PARTNER), view(work, ints, _LOG_PARTNER)
+    group, log_ratio = view(ints, ints, _FALL_GROUP), view(work, ints, _LOG_RATIO)
+    m, reduced = view(work, ints, _FALL_PARTNER), view(work, ints, _REDUCED)
+    for q in range(m.size):
+        m[q] = partner[group[q]]
+        reduced[q] = log_ratio[q] + log_partner[group[q]] / LN10
     log_factor, factor = view(work, ints, _LOG_BROADENING), view(work, ints, _BROADENING)
-    log_partner = view(work, ints, _LOG_PARTNER)
-    for q in range(term.size):
-        log_factor[q] = 0.0
-        if kind[q] == 1:
-            log_reduced = log_k[low[q]] + log_partner[group[q]] - log_k[term[q]]
-            log_F, _, _ = _broadening(log_reduced / LN10, log_centre[q])
-            log_factor[q] = LN10 * log_F
+    _log_broadenings(reduced, view(work, ints, _LOG_CENTRE), log_factor)
     exp_array(log_factor, factor)
-    for q in range(term.size):
-        t, m = term[q], partner[group[q]]
-        k[t] = limit[low[q]] * m / (1.0 + m * limit[low[q]] / limit[t]) * factor[q]
+    k, limit, ratio = view(work, ints, _K), view(work, ints, _K_LIMIT), view(work, ints, _RATIO)
+    term, low = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW)
+    for q in range(m.size):
+        k[term[q]] = limit[low[q]] * m[q] / (1.0 + m[q] * ratio[q]) * factor[q]
     _curve_constants(ints, floats, work)
+
+
+@compiled
+def _log_broadenings(reduced, log_centre, out):
+    """ln F of many; the value alone of `_broadening`."""
+    for q in range(out.size):
+        x = reduced[q] - 0.4 - 0.67 * log_centre[q]
+        d = 0.75 - 1.27 * log_centre[q] - 0.14 * x
+        out[q] = LN10 * log_centre[q] * (d * d / (d * d + x * x))
 
 
 @compiled
@@ -157,24 +185,25 @@ def _curve_constants(ints, floats, work):
 def fall_off_slopes(ints, floats, work):
     """dk/dT at constant partner and dk/d[M] of every term in fall-off; k must be set."""
     k, by_T, by_M = view(work, ints, _K), view(work, ints, _K_BY_T), view(work, ints, _K_BY_M)
-    limit, slope, partner = view(work, ints, _K_LIMIT), view(work, ints, _K_SLOPE), view(work, ints, _PARTNER)
-    term, low, group = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(ints, ints, _FALL_GROUP)
-    kind, log_k, log_centre = view(ints, ints, _FALL_KIND), view(work, ints, _LOG_K), view(work, ints, _LOG_CENTRE)
+    limit, slope, ratio = view(work, ints, _K_LIMIT), view(work, ints, _K_SLOPE), view(work, ints, _RATIO)
+    term, low, m = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(work, ints, _FALL_PARTNER)
     centre_slope, factor = view(work, ints, _LOG_CENTRE_SLOPE), view(work, ints, _BROADENING)
-    log_partner = view(work, ints, _LOG_PARTNER)
-    for q in range(term.size):
-        t, e, m = term[q], low[q], partner[group[q]]
-        response = 1.0 / (1.0 + m * limit[e] / limit[t])  # d ln k/d ln P_r
-        per_partner = limit[e] * response * factor[q]  # k/[M]
-        by_centre = 0.0
-        if kind[q] == 1:
-            log_reduced = log_k[e] + log_partner[group[q]] - log_k[t]
-            _, by_reduced, by_log_centre = _broadening(log_reduced / LN10, log_centre[q])
-            response += by_reduced if m > SMALLEST_PARTNER else 0.0
-            by_centre = LN10 * by_log_centre * centre_slope[q]
-        by_T[t] = k[t] * (slope[t] + (slope[e] - slope[t]) * response + by_centre)
-        by_M[t] = per_partner * response
+    by_reduced, by_centre = view(work, ints, _BY_REDUCED), view(work, ints, _BY_CENTRE)
+    _broadening_slopes(view(work, ints, _REDUCED), view(work, ints, _LOG_CENTRE), by_reduced, by_centre)
+    for q in range(m.size):
+        t, e = term[q], low[q]
+        alone = 1.0 / (1.0 + m[q] * ratio[q])
+        response = alone + (by_reduced[q] if m[q] > SMALLEST_PARTNER else 0.0)  # d ln k/d ln P_r
+        by_T[t] = k[t] * (slope[t] + (slope[e] - slope[t]) * response + LN10 * by_centre[q] * centre_slope[q])
+        by_M[t] = limit[e] * alone * factor[q] * response
     _curve_slopes(ints, floats, work)
+
+
+@compiled
+def _broadening_slopes(reduced, log_centre, by_reduced, by_centre):
+    """Derivatives of log10 F by log10 P_r and by log10 F_cent, of many."""
+    for q in range(reduced.size):
+        _, by_reduced[q], by_centre[q] = _broadening(reduced[q], log_centre[q])
 
 
 @compiled

@@ -7,16 +7,17 @@ of a list spans offset k to offset k + 1. `view` is the one way to them.
 
 from collections.abc import Sequence
 
-from ..compiled import compiled
+from ..compiled import compiled, span
 
 SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALL_OFFS", "GROUPS", "LONG", "BLOCK", "CURVES",
-         "COLUMNS")
-SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALL_OFFS, GROUPS, LONG, BLOCK, CURVES, COLUMNS = range(len(SIZES))
+         "COLUMNS", "RESPONSES")
+(SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALL_OFFS, GROUPS, LONG, BLOCK, CURVES, COLUMNS,
+ RESPONSES) = range(len(SIZES))
 
 INTS = (
     "range_start",      # (N + 1) first temperature range of each species
-    "reactant",         # (3 R) up to three reactant molecules, padded with N
-    "product",          # (3 R) likewise products
+    "reactant0", "reactant1",  # (R) first and second reactant molecule, N where there is none
+    "product0", "product1",  # (R) likewise products
     "long_reaction",    # (m) further molecules of long sides: their reaction,
     "long_species",     # (m) species,
     "long_side",        # (m) and side, 0 reactants 1 products
@@ -26,7 +27,6 @@ INTS = (
     "fall_term",        # (L) terms in fall-off after Lindemann or Troe
     "fall_low",         # (L) expression of their low-pressure limit
     "fall_group",       # (L) partner group
-    "fall_kind",        # (L) broadening
     "curve_term",       # (U) terms on any other curve between two limits
     "curve_low",        # (U) expression of their low-pressure limit
     "curve_group",      # (U) partner group
@@ -42,12 +42,15 @@ INTS = (
     "column_start",     # (COLUMNS + 1) first coefficient of each column
     "group_start",      # (G + 1) partner groups: first named species
     "group_species",    # named species of the groups
-    "nu_start",         # (N + 1) stoichiometric numbers by species: first entry
-    "nu_reaction",      # their reactions
+    "nu_start",         # (2 N + 1) by species: where the reactions that make it start, then those that take it
+    "nu_reaction",      # these reactions, as often as molecules of it come or go
     "block_start",      # (N + 1) columns of the species block of the Jacobian
     "block_row",        # its rows
-    "sum_start",        # (nb + N + 1) how each of its entries, then dω/dC, is summed
-    "sum_source",       # partial derivatives that go into the sums
+    "target",           # (16 R) where the partials by the four molecules go in `block`, four rows each
+    "response_start",   # (2 P + 1) responses of a species to the partners of a group: terms that make, that take it
+    "response_term",    # these terms
+    "extra_place",      # places in `block` of what else adds to it,
+    "extra_source",     # and the partials
 )
 FLOATS = (
     "range_top",        # upper temperature of each range [K]
@@ -63,12 +66,12 @@ FLOATS = (
     "column_coefficient",  # column by column
     "group_default",    # (G) efficiency of species not named
     "group_excess",     # efficiency of the named ones above the default
-    "nu",               # stoichiometric numbers
-    "sum_weight",       # weights in the sums of the Jacobian
+    "extra_weight",     # weights of the partials named by extra_source
     "standard",         # (1) standard pressure [Pa]
 )
 WORK = (
-    "seen",             # (2) temperature the thermal parts stand for, and that of their slopes
+    "seen",             # (5) see SEEN_…: what the parts of this table stand for
+    "active",           # (9 N) coefficients in force, power by power
     "gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope",  # (N) g/RT reduced, h/RT, cp/R, T dcp/dT/R
     "log_scale", "scale",  # (N + 1) E
     "inverse_scale",    # (N + 1) 1/E
@@ -78,7 +81,11 @@ WORK = (
     "reactant_scale",   # (R) product of E over the reactants
     "reverse_slope",    # (R) d ln (ΠE_reac/ΠE_prod)/dT
     "log_centre", "log_centre_slope",  # (L) log10 F_cent and its slope
-    "centre_exponent", "centre_part",  # (3 L) exponentials of F_cent
+    "centre_exponent", "centre_part",  # (3 L) exponentials of F_cent, one kind after another
+    "centre",           # (L) F_cent
+    "fall_ratio", "fall_log_ratio",  # (L) k_0/k_inf and its log10, at T
+    "fall_partner", "fall_reduced",  # (L) [M] and log10 of the reduced pressure
+    "fall_by_reduced", "fall_by_centre",  # (L) d log10 F by log10 of the reduced pressure and of F_cent
     "log_broadening", "broadening",  # (L) F
     "curve_centre", "curve_centre_slope",  # (U) log10 of the centre and its slope
     "curve_factor",     # (U) ln of what stands beside it
@@ -89,15 +96,24 @@ WORK = (
     "k",                # (T) forward rate constants of the terms, partner included
     "k_by_T", "k_by_M",  # (T) their derivatives; of laws of pressure by_M is by the total C
     "k_total", "k_total_by_T",  # (R)
+    "forward", "reverse",  # (R) Πa over the reactants and over the products
+    "net",              # (R) net rates
     "bare",             # (R) ΠE_reac (Πa_reac - Πa_prod): the net rate for k one
-    "forward", "reverse", "net",  # (R) rates
     "net_by_T",         # (R)
     "omega",            # (N) production rates
     "omega_by_T",       # (N)
-    "partial",          # (6 R + m + T) partial derivatives of the rates
-    "block",            # (nb + N) species block of the Jacobian, then dω/dC
-    "unknown", "border_column",  # (N) scratch of the vessel equations
+    "partial",          # (4 R + m + T + P) by molecules, further molecules, partners of terms; then the responses
+    "block",            # (nb + N + 16) species block of the Jacobian, dω/dC, and places for what is not wanted
+    "concentration",    # (N) for which the rates stand
+    "energy",           # (N) molar energy or enthalpy over RT
+    "border_column",    # (N) scratch of the vessel equations
 )
+
+SEEN_T, SEEN_SLOPES, FITS_FROM, FITS_TO, SEEN_TOTAL = range(5)
+"""Places in `seen`: T of the thermal parts, T of their slopes, range of T of the coefficients in force, total of the
+rates. Each part is kept while what it stands for stays."""
+NOT_WANTED = 16
+"""Places behind the block: one for each pair of a molecule and a row, so that no addition waits for another's."""
 
 _INT_OFFSETS = len(SIZES)
 _FLOAT_OFFSETS = _INT_OFFSETS + len(INTS) + 1
@@ -113,5 +129,6 @@ def offset_slot(names: Sequence[str], name: str) -> int:
 
 @compiled
 def view(array, ints, slot):
-    """The named array whose offset stands at `slot`, as a view."""
-    return array[ints[slot] : ints[slot + 1]]
+    """The named array whose offset stands at `slot`, as a view that costs next to nothing: no bounds are asked for and
+    nothing is counted, so `array` must outlive it."""
+    return span(array, ints[slot], ints[slot + 1])

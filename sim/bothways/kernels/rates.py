@@ -8,13 +8,16 @@ import math
 
 from ..compiled import compiled
 from . import layout as at
+from .elementary import sum_at
 from .fall_off import SMALLEST_PARTNER, fall_off_constants, fall_off_slopes
 from .layout import view
 from .pressure import pressure_constants, pressure_slopes
 from .thermal import set_slopes
 
-_REACTANT = at.offset_slot(at.INTS, "reactant")
-_PRODUCT = at.offset_slot(at.INTS, "product")
+_REACTANT0 = at.offset_slot(at.INTS, "reactant0")
+_REACTANT1 = at.offset_slot(at.INTS, "reactant1")
+_PRODUCT0 = at.offset_slot(at.INTS, "product0")
+_PRODUCT1 = at.offset_slot(at.INTS, "product1")
 _LONG_REACTION = at.offset_slot(at.INTS, "long_reaction")
 _LONG_SPECIES = at.offset_slot(at.INTS, "long_species")
 _LONG_SIDE = at.offset_slot(at.INTS, "long_side")
@@ -25,13 +28,15 @@ _GROUP_START = at.offset_slot(at.INTS, "group_start")
 _GROUP_SPECIES = at.offset_slot(at.INTS, "group_species")
 _NU_START = at.offset_slot(at.INTS, "nu_start")
 _NU_REACTION = at.offset_slot(at.INTS, "nu_reaction")
-_SUM_START = at.offset_slot(at.INTS, "sum_start")
-_SUM_SOURCE = at.offset_slot(at.INTS, "sum_source")
+_TARGET = at.offset_slot(at.INTS, "target")
+_RESPONSE_START = at.offset_slot(at.INTS, "response_start")
+_RESPONSE_TERM = at.offset_slot(at.INTS, "response_term")
+_EXTRA_PLACE = at.offset_slot(at.INTS, "extra_place")
+_EXTRA_SOURCE = at.offset_slot(at.INTS, "extra_source")
 _TERM_SIGN = at.offset_slot(at.FLOATS, "term_sign")
 _GROUP_DEFAULT = at.offset_slot(at.FLOATS, "group_default")
 _GROUP_EXCESS = at.offset_slot(at.FLOATS, "group_excess")
-_NU = at.offset_slot(at.FLOATS, "nu")
-_SUM_WEIGHT = at.offset_slot(at.FLOATS, "sum_weight")
+_EXTRA_WEIGHT = at.offset_slot(at.FLOATS, "extra_weight")
 _INVERSE_SCALE = at.offset_slot(at.WORK, "inverse_scale")
 _LOG_PARTNER = at.offset_slot(at.WORK, "log_partner")
 _K_LIMIT = at.offset_slot(at.WORK, "k_limit")
@@ -132,16 +137,16 @@ def _sum_terms(values, total, ints):
 @compiled
 def _products_of_activities(c, ints, work):
     """Πa over the reactants, into `forward`, and over the products, into `reverse`, of each reaction."""
-    n = ints[at.SPECIES]
     a, inverse_scale = view(work, ints, _ACTIVITY), view(work, ints, _INVERSE_SCALE)
-    for i in range(n):
+    for i in range(c.size):
         a[i] = c[i] * inverse_scale[i]
-    a[n] = 1.0
-    reactant, product = view(ints, ints, _REACTANT), view(ints, ints, _PRODUCT)
+    a[c.size] = 1.0
+    r0, r1 = view(ints, ints, _REACTANT0), view(ints, ints, _REACTANT1)
+    p0, p1 = view(ints, ints, _PRODUCT0), view(ints, ints, _PRODUCT1)
     forward, reverse = view(work, ints, _FORWARD), view(work, ints, _REVERSE)
     for j in range(forward.size):
-        forward[j] = a[reactant[3 * j]] * a[reactant[3 * j + 1]] * a[reactant[3 * j + 2]]
-        reverse[j] = a[product[3 * j]] * a[product[3 * j + 1]] * a[product[3 * j + 2]]
+        forward[j] = a[r0[j]] * a[r1[j]]
+        reverse[j] = a[p0[j]] * a[p1[j]]
     side, species = view(ints, ints, _LONG_SIDE), view(ints, ints, _LONG_SPECIES)
     reaction = view(ints, ints, _LONG_REACTION)
     for m in range(side.size):
@@ -153,7 +158,7 @@ def _products_of_activities(c, ints, work):
 
 @compiled
 def set_rates(c, total, ints, floats, work):
-    """Forward, reverse and net rates [mol/(m3 s)] of every reaction; the thermal parts must stand for T.
+    """Net rates [mol/(m3 s)] of every reaction, from Πa of both sides; the thermal parts must stand for T.
 
     c: (N) concentrations [mol/m3], total: their sum as partners see it.
     """
@@ -162,73 +167,74 @@ def set_rates(c, total, ints, floats, work):
     k = view(work, ints, _K_TOTAL)
     _sum_terms(view(work, ints, _K), k, ints)
     _products_of_activities(c, ints, work)
-    scale, net, bare = view(work, ints, _REACTANT_SCALE), view(work, ints, _NET), view(work, ints, _BARE)
+    scale, net = view(work, ints, _REACTANT_SCALE), view(work, ints, _NET)
     forward, reverse = view(work, ints, _FORWARD), view(work, ints, _REVERSE)
     for j in range(net.size):
-        bare[j] = scale[j] * (forward[j] - reverse[j])
-        net[j] = k[j] * bare[j]
-        forward[j] = k[j] * (scale[j] * forward[j])
-        reverse[j] = k[j] * (scale[j] * reverse[j])
+        net[j] = k[j] * (scale[j] * (forward[j] - reverse[j]))
 
 
 @compiled
-def _gather(rates, out, ints, floats):
+def one_way_rates(ints, work, forward, reverse):
+    """Forward and reverse rates [mol/(m3 s)] of every reaction, (R) each; the rates must be set."""
+    k, scale = view(work, ints, _K_TOTAL), view(work, ints, _REACTANT_SCALE)
+    of_reactants, of_products = view(work, ints, _FORWARD), view(work, ints, _REVERSE)
+    for j in range(k.size):
+        forward[j] = k[j] * (scale[j] * of_reactants[j])
+        reverse[j] = k[j] * (scale[j] * of_products[j])
+
+
+@compiled
+def _gather(rates, out, ints):
     """Σ_j ν_ij rates_j for every species."""
-    start, reaction, nu = view(ints, ints, _NU_START), view(ints, ints, _NU_REACTION), view(floats, ints, _NU)
+    start, reaction = view(ints, ints, _NU_START), view(ints, ints, _NU_REACTION)
     for i in range(out.size):
-        total = 0.0
-        for e in range(start[i], start[i + 1]):
-            total += nu[e] * rates[reaction[e]]
-        out[i] = total
+        first, middle, last = start[2 * i], start[2 * i + 1], start[2 * i + 2]
+        out[i] = sum_at(rates, reaction, first, middle) - sum_at(rates, reaction, middle, last)
 
 
 @compiled
 def set_production(c, total, ints, floats, work):
     """Rates and the production rates omega [mol/(m3 s)] of every species."""
     set_rates(c, total, ints, floats, work)
-    _gather(view(work, ints, _NET), view(work, ints, _OMEGA), ints, floats)
+    _gather(view(work, ints, _NET), view(work, ints, _OMEGA), ints)
 
 
 @compiled
 def _set_partials(ints, work):
     """∂w/∂c of every molecule of every reaction [1/s, at constant partner], into `partial`."""
-    reactant, product = view(ints, ints, _REACTANT), view(ints, ints, _PRODUCT)
+    r0, r1 = view(ints, ints, _REACTANT0), view(ints, ints, _REACTANT1)
+    p0, p1 = view(ints, ints, _PRODUCT0), view(ints, ints, _PRODUCT1)
     a, inverse_scale = view(work, ints, _ACTIVITY), view(work, ints, _INVERSE_SCALE)
     k, scale, out = view(work, ints, _K_TOTAL), view(work, ints, _REACTANT_SCALE), view(work, ints, _PARTIAL)
     for j in range(k.size):
-        o = 3 * j
-        r0, r1, r2 = reactant[o], reactant[o + 1], reactant[o + 2]
-        p0, p1, p2 = product[o], product[o + 1], product[o + 2]
-        out[2 * o] = k[j] * (scale[j] * inverse_scale[r0] * a[r1] * a[r2])
-        out[2 * o + 1] = k[j] * (scale[j] * inverse_scale[r1] * a[r0] * a[r2])
-        out[2 * o + 2] = k[j] * (scale[j] * inverse_scale[r2] * a[r0] * a[r1])
-        out[2 * o + 3] = -k[j] * (scale[j] * inverse_scale[p0] * a[p1] * a[p2])
-        out[2 * o + 4] = -k[j] * (scale[j] * inverse_scale[p1] * a[p0] * a[p2])
-        out[2 * o + 5] = -k[j] * (scale[j] * inverse_scale[p2] * a[p0] * a[p1])
+        whole, o = k[j] * scale[j], 4 * j
+        out[o] = whole * inverse_scale[r0[j]] * a[r1[j]]
+        out[o + 1] = whole * inverse_scale[r1[j]] * a[r0[j]]
+        out[o + 2] = -whole * inverse_scale[p0[j]] * a[p1[j]]
+        out[o + 3] = -whole * inverse_scale[p1[j]] * a[p0[j]]
     _set_long_partials(ints, work)
 
 
 @compiled
 def _set_long_partials(ints, work):
-    """Completes the partials of sides with more than three molecules: each times the others' activities."""
-    reactant, product = view(ints, ints, _REACTANT), view(ints, ints, _PRODUCT)
+    """Completes the partials of sides with more than two molecules: each times the others' activities."""
+    r0, r1 = view(ints, ints, _REACTANT0), view(ints, ints, _REACTANT1)
+    p0, p1 = view(ints, ints, _PRODUCT0), view(ints, ints, _PRODUCT1)
     reaction, species = view(ints, ints, _LONG_REACTION), view(ints, ints, _LONG_SPECIES)
     side = view(ints, ints, _LONG_SIDE)
     a, inverse_scale = view(work, ints, _ACTIVITY), view(work, ints, _INVERSE_SCALE)
     k, scale, out = view(work, ints, _K_TOTAL), view(work, ints, _REACTANT_SCALE), view(work, ints, _PARTIAL)
-    first_long = 6 * k.size
+    first_long = 4 * k.size
     for m in range(side.size):
         j, s = reaction[m], side[m]
-        for q in range(3):
-            out[6 * j + 3 * s + q] *= a[species[m]]
-        molecules = reactant if s == 0 else product
+        for q in range(2):
+            out[4 * j + 2 * s + q] *= a[species[m]]
         value = k[j] * (scale[j] * inverse_scale[species[m]])
-        for q in range(3):
-            value *= a[molecules[3 * j + q]]
+        value *= a[r0[j]] * a[r1[j]] if s == 0 else -(a[p0[j]] * a[p1[j]])
         for other in range(side.size):
             if other != m and reaction[other] == j and side[other] == s:
                 value *= a[species[other]]
-        out[first_long + m] = value if s == 0 else -value
+        out[first_long + m] = value
 
 
 @compiled
@@ -239,35 +245,56 @@ def set_derivatives(T, ints, floats, work):
     """
     set_slopes(T, ints, floats, work)
     _rate_constant_slopes(ints, floats, work)
+    bare, scale = view(work, ints, _BARE), view(work, ints, _REACTANT_SCALE)
+    forward, reverse = view(work, ints, _FORWARD), view(work, ints, _REVERSE)
+    for j in range(bare.size):
+        bare[j] = scale[j] * (forward[j] - reverse[j])
     _set_partials(ints, work)
-    k_by_T = view(work, ints, _K_TOTAL_BY_T)
-    _sum_terms(view(work, ints, _K_BY_T), k_by_T, ints)
-    _temperature_derivatives(k_by_T, ints, floats, work)
+    _temperature_derivatives(ints, work)
     _partner_derivatives(ints, work)
-    start, source = view(ints, ints, _SUM_START), view(ints, ints, _SUM_SOURCE)
-    weight, partial, block = view(floats, ints, _SUM_WEIGHT), view(work, ints, _PARTIAL), view(work, ints, _BLOCK)
-    for b in range(block.size):
-        total = 0.0
-        for e in range(start[b], start[b + 1]):
-            total += weight[e] * partial[source[e]]
-        block[b] = total
+    _fill_block(ints, floats, work)
 
 
 @compiled
-def _temperature_derivatives(k_by_T, ints, floats, work):
-    """∂omega/∂T: bare·dk/dT - reverse·d ln(ΠE_reac/ΠE_prod)/dT, summed over the reactions."""
+def _fill_block(ints, floats, work):
+    """The block from the partials, as mechanism/jacobian_sums.py lays them out."""
+    partial, block, target = view(work, ints, _PARTIAL), view(work, ints, _BLOCK), view(ints, ints, _TARGET)
+    block[:] = 0.0
+    for q in range(target.size // 4):
+        d, o = partial[q], 4 * q
+        block[target[o]] -= d
+        block[target[o + 1]] -= d
+        block[target[o + 2]] += d
+        block[target[o + 3]] += d
+    place, source = view(ints, ints, _EXTRA_PLACE), view(ints, ints, _EXTRA_SOURCE)
+    weight = view(floats, ints, _EXTRA_WEIGHT)
+    for e in range(place.size):
+        block[place[e]] += weight[e] * partial[source[e]]
+
+
+@compiled
+def _temperature_derivatives(ints, work):
+    """∂omega/∂T: bare·dk/dT - reverse rate·d ln(ΠE_reac/ΠE_prod)/dT, summed over the reactions."""
+    k, scale, k_by_T = view(work, ints, _K_TOTAL), view(work, ints, _REACTANT_SCALE), view(work, ints, _K_TOTAL_BY_T)
     bare, reverse, by_T = view(work, ints, _BARE), view(work, ints, _REVERSE), view(work, ints, _NET_BY_T)
     reverse_slope = view(work, ints, _REVERSE_SLOPE)
+    _sum_terms(view(work, ints, _K_BY_T), k_by_T, ints)
     for j in range(by_T.size):
-        by_T[j] = bare[j] * k_by_T[j] - reverse[j] * reverse_slope[j]
-    _gather(by_T, view(work, ints, _OMEGA_BY_T), ints, floats)
+        by_T[j] = bare[j] * k_by_T[j] - k[j] * (scale[j] * reverse[j]) * reverse_slope[j]
+    _gather(by_T, view(work, ints, _OMEGA_BY_T), ints)
 
 
 @compiled
 def _partner_derivatives(ints, work):
-    """∂w/∂[M] of every term, behind the other partials; zero for terms without a partner."""
+    """∂w/∂[M] of every term, behind the other partials, zero for terms without a partner; then the responses."""
     by_M, bare, out = view(work, ints, _K_BY_M), view(work, ints, _BARE), view(work, ints, _PARTIAL)
-    reaction = view(ints, ints, _TERM_REACTION)
-    first = out.size - by_M.size
+    reaction, start = view(ints, ints, _TERM_REACTION), view(ints, ints, _RESPONSE_START)
+    term = view(ints, ints, _RESPONSE_TERM)
+    responses = start.size // 2
+    first = out.size - by_M.size - responses
+    by_terms = out[first : first + by_M.size]
     for t in range(by_M.size):
-        out[first + t] = by_M[t] * bare[reaction[t]]
+        by_terms[t] = by_M[t] * bare[reaction[t]]
+    for p in range(responses):
+        low, middle, high = start[2 * p], start[2 * p + 1], start[2 * p + 2]
+        out[first + by_M.size + p] = sum_at(by_terms, term, low, middle) - sum_at(by_terms, term, middle, high)

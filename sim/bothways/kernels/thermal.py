@@ -5,6 +5,8 @@ Kept in `work` while the temperature stays, since isothermal runs and Newton ite
 
 import math
 
+import numpy as np
+
 from ..compiled import compiled
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
@@ -14,8 +16,10 @@ from .layout import view
 from .pressure import set_columns
 
 _RANGE_START = at.offset_slot(at.INTS, "range_start")
-_REACTANT = at.offset_slot(at.INTS, "reactant")
-_PRODUCT = at.offset_slot(at.INTS, "product")
+_REACTANT0 = at.offset_slot(at.INTS, "reactant0")
+_REACTANT1 = at.offset_slot(at.INTS, "reactant1")
+_PRODUCT0 = at.offset_slot(at.INTS, "product0")
+_PRODUCT1 = at.offset_slot(at.INTS, "product1")
 _LONG_REACTION = at.offset_slot(at.INTS, "long_reaction")
 _LONG_SPECIES = at.offset_slot(at.INTS, "long_species")
 _LONG_SIDE = at.offset_slot(at.INTS, "long_side")
@@ -27,6 +31,7 @@ _POWER = at.offset_slot(at.FLOATS, "power")
 _THETA = at.offset_slot(at.FLOATS, "theta")
 _STANDARD = at.offset_slot(at.FLOATS, "standard")
 _SEEN = at.offset_slot(at.WORK, "seen")
+_ACTIVE = at.offset_slot(at.WORK, "active")
 _GIBBS = at.offset_slot(at.WORK, "gibbs")
 _ENTHALPY = at.offset_slot(at.WORK, "enthalpy")
 _HEAT_CAPACITY = at.offset_slot(at.WORK, "heat_capacity")
@@ -43,27 +48,62 @@ _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
 
 
 @compiled
-def polynomials(T, range_start, range_top, rows, gibbs, enthalpy, heat_capacity, slope):
-    """g/RT, h/RT, cp/R and T·d(cp/R)/dT [-] of every species at T [K].
+def select(T, range_start, range_top, rows, active):
+    """The coefficients in force at T [K], into active (9 N), power by power; returns the range of T they hold in.
 
     rows: (9 per range) a1…a7 of the powers -2…4, b1, b2 (NASA/TP-2002-211556, eqs. 1-3).
     """
-    log_T = math.log(T)
-    inverse = 1.0 / T
-    for i in range(gibbs.size):
+    n, low, high = range_start.size - 1, 0.0, np.inf
+    for i in range(n):
         k = range_start[i]
         while T >= range_top[k]:
             k += 1
-        o = 9 * k
-        t1, t2 = rows[o] * inverse * inverse, rows[o + 1] * inverse
-        t3, t4 = rows[o + 2], rows[o + 3] * T
-        t5, t6, t7 = rows[o + 4] * T * T, rows[o + 5] * T * T * T, rows[o + 6] * T * T * T * T
-        h = -t1 + t2 * log_T + t3 + t4 / 2.0 + t5 / 3.0 + t6 / 4.0 + t7 / 5.0 + rows[o + 7] * inverse
-        s = -t1 / 2.0 - t2 + t3 * log_T + t4 + t5 / 2.0 + t6 / 3.0 + t7 / 4.0 + rows[o + 8]
-        enthalpy[i] = h
-        gibbs[i] = h - s
-        heat_capacity[i] = t1 + t2 + t3 + t4 + t5 + t6 + t7
-        slope[i] = -2.0 * t1 - t2 + t4 + 2.0 * t5 + 3.0 * t6 + 4.0 * t7
+        if k > range_start[i]:
+            low = max(low, range_top[k - 1])
+        high = min(high, range_top[k])
+        for q in range(9):
+            active[q * n + i] = rows[9 * k + q]
+    return low, high
+
+
+@compiled
+def _weighted(a, w0, w1, w2, w3, w4, w5, w6, w7, w8, out):
+    """Σ_q w_q a_q for every species; a: (9, N)."""
+    for i in range(out.size):
+        out[i] = ((w0 * a[0, i] + w1 * a[1, i]) + (w2 * a[2, i] + w3 * a[3, i]) + (w4 * a[4, i] + w5 * a[5, i])
+                  + (w6 * a[6, i] + w7 * a[7, i]) + w8 * a[8, i])
+
+
+@compiled
+def evaluate(T, active, gibbs, enthalpy, heat_capacity, slope):
+    """g/RT, h/RT, cp/R and T·d(cp/R)/dT [-] of every species at T [K] from the coefficients in force."""
+    a = active.reshape((9, gibbs.size))
+    log_T, r, T2 = math.log(T), 1.0 / T, T * T
+    T3, T4, r2 = T2 * T, T2 * T2, r * r
+    _weighted(a, -r2, log_T * r, 1.0, T / 2.0, T2 / 3.0, T3 / 4.0, T4 / 5.0, r, 0.0, enthalpy)
+    _weighted(a, -r2 / 2.0, -r, log_T, T, T2 / 2.0, T3 / 3.0, T4 / 4.0, 0.0, 1.0, gibbs)
+    for i in range(gibbs.size):
+        gibbs[i] = enthalpy[i] - gibbs[i]
+    _weighted(a, r2, r, 1.0, T, T2, T3, T4, 0.0, 0.0, heat_capacity)
+    _weighted(a, -2.0 * r2, -r, 0.0, T, 2.0 * T2, 3.0 * T3, 4.0 * T4, 0.0, 0.0, slope)
+
+
+@compiled
+def polynomials(T, range_start, range_top, rows, gibbs, enthalpy, heat_capacity, slope):
+    """`evaluate` at any T [K], without coefficients kept from before."""
+    active = np.empty(9 * gibbs.size)
+    select(T, range_start, range_top, rows, active)
+    evaluate(T, active, gibbs, enthalpy, heat_capacity, slope)
+
+
+@compiled
+def standard_state(T, ints, floats, work, gibbs, enthalpy, heat_capacity, slope):
+    """`evaluate` at T [K]; the coefficients in force are kept in `work` while they hold."""
+    seen, active = view(work, ints, _SEEN), view(work, ints, _ACTIVE)
+    if not seen[at.FITS_FROM] <= T < seen[at.FITS_TO]:
+        seen[at.FITS_FROM], seen[at.FITS_TO] = select(
+            T, view(ints, ints, _RANGE_START), view(floats, ints, _RANGE_TOP), view(floats, ints, _RANGE_ROW), active)
+    evaluate(T, active, gibbs, enthalpy, heat_capacity, slope)
 
 
 @compiled
@@ -105,9 +145,10 @@ def _limits(T, ints, floats, work):
 @compiled
 def _reactant_scales(ints, work):
     """Product of E over the reactants of each reaction."""
-    reactant, scale, out = view(ints, ints, _REACTANT), view(work, ints, _SCALE), view(work, ints, _REACTANT_SCALE)
+    first, second = view(ints, ints, _REACTANT0), view(ints, ints, _REACTANT1)
+    scale, out = view(work, ints, _SCALE), view(work, ints, _REACTANT_SCALE)
     for j in range(out.size):
-        out[j] = scale[reactant[3 * j]] * scale[reactant[3 * j + 1]] * scale[reactant[3 * j + 2]]
+        out[j] = scale[first[j]] * scale[second[j]]
     side, species = view(ints, ints, _LONG_SIDE), view(ints, ints, _LONG_SPECIES)
     reaction = view(ints, ints, _LONG_REACTION)
     for m in range(side.size):
@@ -119,24 +160,24 @@ def _reactant_scales(ints, work):
 def set_temperature(T, ints, floats, work):
     """Brings the thermal parts of `work` to T [K]; nothing is done where they stand for it already."""
     seen = view(work, ints, _SEEN)
-    if seen[0] == T:
+    if seen[at.SEEN_T] == T:
         return
-    polynomials(T, view(ints, ints, _RANGE_START), view(floats, ints, _RANGE_TOP), view(floats, ints, _RANGE_ROW),
-                view(work, ints, _GIBBS), view(work, ints, _ENTHALPY), view(work, ints, _HEAT_CAPACITY),
-                view(work, ints, _HEAT_CAPACITY_SLOPE))
+    standard_state(T, ints, floats, work, view(work, ints, _GIBBS), view(work, ints, _ENTHALPY),
+                   view(work, ints, _HEAT_CAPACITY), view(work, ints, _HEAT_CAPACITY_SLOPE))
     _scales(T, ints, floats, work)
     _limits(T, ints, floats, work)
     _reactant_scales(ints, work)
     set_centres(T, ints, floats, work)
     set_columns(T, ints, floats, work)
-    seen[0] = T
+    seen[at.SEEN_T] = T
+    seen[at.SEEN_TOTAL] = np.nan  # the rates stand for another temperature
 
 
 @compiled
 def set_slopes(T, ints, floats, work):
     """Brings the temperature slopes of scales and limits to T [K]; the thermal parts must stand for T."""
     seen = view(work, ints, _SEEN)
-    if seen[1] == T:
+    if seen[at.SEEN_SLOPES] == T:
         return
     n = ints[at.SPECIES]
     enthalpy, slope = view(work, ints, _ENTHALPY), view(work, ints, _SCALE_SLOPE)
@@ -148,18 +189,17 @@ def set_slopes(T, ints, floats, work):
     for e in range(k_slope.size):
         k_slope[e] = (power[e] + theta[e] / T) / T
     _reverse_slopes(ints, work, slope)
-    seen[1] = T
+    seen[at.SEEN_SLOPES] = T
 
 
 @compiled
 def _reverse_slopes(ints, work, slope):
     """d ln(ΠE_reac/ΠE_prod)/dT of every reaction."""
-    reactant, product = view(ints, ints, _REACTANT), view(ints, ints, _PRODUCT)
+    r0, r1 = view(ints, ints, _REACTANT0), view(ints, ints, _REACTANT1)
+    p0, p1 = view(ints, ints, _PRODUCT0), view(ints, ints, _PRODUCT1)
     out = view(work, ints, _REVERSE_SLOPE)
     for j in range(out.size):
-        k = 3 * j
-        out[j] = (slope[reactant[k]] + slope[reactant[k + 1]] + slope[reactant[k + 2]]
-                  - slope[product[k]] - slope[product[k + 1]] - slope[product[k + 2]])
+        out[j] = (slope[r0[j]] + slope[r1[j]]) - (slope[p0[j]] + slope[p1[j]])
     side, species = view(ints, ints, _LONG_SIDE), view(ints, ints, _LONG_SPECIES)
     reaction = view(ints, ints, _LONG_REACTION)
     for m in range(side.size):

@@ -1,65 +1,104 @@
-"""How the entries of the Jacobian's species block are summed from the partial derivatives of the rates.
+"""How the Jacobian's species block is made from the partial derivatives of the rates.
 
 Entry (i, s) of the block is Σ ν_ij ∂w_j/∂c_s at constant total of the partners, and behind the block stands
-∂omega_i/∂C, the response to that total. Both are sums over `partial`, whose places kernels/rates.py sets: six
-molecules a reaction, the further molecules of long sides, then ∂w/∂[M] of every term (∂w/∂C of laws of pressure).
+∂omega_i/∂C, the response to that total. `partial` (kernels/rates.py sets it) holds ∂w/∂c by the four molecules of every
+reaction, by the further molecules of long sides, then ∂w/∂[M] of every term (∂w/∂C of laws of pressure), and behind
+these Σ ν ∂w/∂[M] over the terms of one partner group for each species they touch: its responses.
 """
 
 from collections import defaultdict
+from collections.abc import Iterator, Sequence
 
 import numpy as np
 
+from ..kernels.layout import NOT_WANTED
 from .model import Mechanism
 
-Sums = dict[tuple[int, int], list[tuple[int, float]]]
+Place = tuple[int, int]
+Extras = list[tuple[Place, int, float]]
+TOTAL = -1
+"""The column of dω/dC, which stands behind the block."""
+
+
+def signed_lists(rows: Sequence[tuple[list[int], list[int]]]) -> tuple[np.ndarray, np.ndarray]:
+    """Starts (2 rows + 1) and members of lists in pairs: what adds, then what takes away."""
+    lists = [part for row in rows for part in row]
+    return np.cumsum([0] + [len(part) for part in lists]), np.array([k for part in lists for k in part])
 
 
 def jacobian_sums(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     """Adds the block's pattern (columns: species) and the sums to the tables."""
-    n = len(mechanism.species)
-    net = [[(mechanism.index(name), count) for name, count in r.net.items()] for r in mechanism.reactions]
-    block: Sums = defaultdict(list)
-    total: Sums = defaultdict(list)
-    for i in range(n):
-        block[i, i] = []  # the integrators' matrices have a full diagonal
-    _add_molecules(n, net, ints, block)
-    _add_partners(net, ints, floats, block, total)
-    columns = sorted(block, key=lambda place: (place[1], place[0]))
-    counts = np.bincount([s for _, s in columns], minlength=n) if columns else np.zeros(n, dtype=int)
-    ints["block_start"] = np.concatenate([[0], np.cumsum(counts)])
+    n, r = len(mechanism.species), len(mechanism.reactions)
+    net = [{mechanism.index(name): count for name, count in reaction.net.items()} for reaction in mechanism.reactions]
+    extras: Extras = []
+    targets = _molecules(net, ints, n, extras)
+    _partners(net, ints, floats, 4 * r + len(ints["long_side"]), extras)
+    wanted = {place for row in targets for place in row if place} | {place for place, _, _ in extras if place[1] != TOTAL}
+    columns = sorted(wanted | {(i, i) for i in range(n)}, key=lambda place: (place[1], place[0]))
+    where = {place: k for k, place in enumerate(columns)} | {(i, TOTAL): len(columns) + i for i in range(n)}
+    ints["block_start"] = np.concatenate([[0], np.cumsum(np.bincount([s for _, s in columns], minlength=n))])
     ints["block_row"] = np.array([i for i, _ in columns])
-    lists = [block[place] for place in columns] + [total.get((i, 0), []) for i in range(n)]
-    ints["sum_start"] = np.cumsum([0] + [len(entries) for entries in lists])
-    ints["sum_source"] = np.array([source for entries in lists for source, _ in entries])
-    floats["sum_weight"] = np.array([weight for entries in lists for _, weight in entries])
+    bin_of_slot = len(columns) + n
+    ints["target"] = np.array([where[place] if place else bin_of_slot + slot for row in targets
+                               for slot, place in enumerate(row)])
+    ints["extra_place"] = np.array([where[place] for place, _, _ in extras])
+    ints["extra_source"] = np.array([source for _, source, _ in extras])
+    floats["extra_weight"] = np.array([weight for _, _, weight in extras])
 
 
-def _add_molecules(n: int, net: list, ints: dict, block: Sums) -> None:
-    molecules = np.column_stack([ints["reactant"].reshape(-1, 3), ints["product"].reshape(-1, 3)])
-    for j, row in enumerate(molecules):
-        for slot, s in enumerate(row):
-            if s < n:
-                for i, count in net[j]:
-                    block[i, int(s)].append((6 * j + slot, float(count)))
-    long = zip(ints["long_reaction"], ints["long_species"], strict=True)
-    for m, (j, s) in enumerate(long):
-        for i, count in net[j]:
-            block[i, int(s)].append((6 * len(net) + m, float(count)))
+def _molecules(net: list[dict[int, int]], ints: dict, n: int, extras: Extras) -> list[list[Place | None]]:
+    """Where the partials by the four molecules go, four rows each; what has no slot there goes to the extras."""
+    slots = np.column_stack([ints[key] for key in ("reactant0", "reactant1", "product0", "product1")]).tolist()
+    long: dict[int, list[tuple[int, int]]] = defaultdict(list)
+    for m, (j, s) in enumerate(zip(ints["long_reaction"], ints["long_species"], strict=True)):
+        long[int(j)].append((4 * len(net) + m, int(s)))
+    targets: list[list[Place | None]] = []
+    for j, molecules in enumerate(slots):
+        rows, left = _rows(molecules, net[j])
+        columns = [(4 * j + slot, s) for slot, s in enumerate(molecules) if s < n]
+        targets.append([(i, s) if i is not None and s < n else None for s in molecules for i in rows])
+        extras += [((i, s), source, float(count)) for source, s in columns for i, count in left.items() if count]
+        extras += [((i, s), source, float(count)) for source, s in long[j] for i, count in net[j].items()]
+    assert not targets or len(targets[0]) == NOT_WANTED
+    return targets
 
 
-def _add_partners(net: list, ints: dict, floats: dict, block: Sums, total: Sums) -> None:
-    first = 6 * len(net) + len(ints["long_side"])
-    pairs = [*zip(ints["body_term"], ints["body_group"], strict=True),
-             *zip(ints["fall_term"], ints["fall_group"], strict=True),
-             *zip(ints["curve_term"], ints["curve_group"], strict=True)]
-    start = ints["group_start"]
-    for term, group in pairs:
-        for i, count in net[ints["term_reaction"][term]]:
-            source = first + int(term)
-            if floats["group_default"][group]:
-                total[i, 0].append((source, count * floats["group_default"][group]))
-            for e in range(start[group], start[group + 1]):
-                block[i, int(ints["group_species"][e])].append((source, count * floats["group_excess"][e]))
-    for term in (*ints["table_term"], *ints["series_term"]):  # what pressure does: by the total alone
-        for i, count in net[ints["term_reaction"][term]]:
-            total[i, 0].append((first + int(term), float(count)))
+def _rows(molecules: list[int], net: dict[int, int]) -> tuple[list[int | None], dict[int, int]]:
+    """The species that each of the four molecules changes, by one each, and what is left of the net change.
+
+    A molecule that stands on both sides changes nothing.
+    """
+    left = dict(net)
+    rows: list[int | None] = []
+    for slot, species in enumerate(molecules):
+        sign = -1 if slot < 2 else 1
+        counts = left.get(species, 0) * sign > 0
+        rows.append(species if counts else None)
+        if counts:
+            left[species] -= sign
+    return rows, left
+
+
+def _partners(net: list[dict[int, int]], ints: dict, floats: dict, first: int, extras: Extras) -> None:
+    """Responses to the partners of each group, and where they go."""
+    responses: dict[tuple[int, int], tuple[list[int], list[int]]] = defaultdict(lambda: ([], []))
+    for term, group in _terms_of_groups(ints):
+        for i, count in net[ints["term_reaction"][term]].items():
+            responses[group, i][count < 0].extend([term] * abs(count))
+    ints["response_start"], ints["response_term"] = signed_lists(list(responses.values()))
+    start, behind = ints["group_start"], first + len(ints["term_reaction"])
+    for place, (group, i) in enumerate(responses):
+        source = behind + place
+        if group == TOTAL or floats["group_default"][group]:
+            extras.append(((i, TOTAL), source, 1.0 if group == TOTAL else float(floats["group_default"][group])))
+        if group != TOTAL:
+            extras += [((i, int(ints["group_species"][e])), source, float(floats["group_excess"][e]))
+                       for e in range(start[group], start[group + 1])]
+
+
+def _terms_of_groups(ints: dict) -> Iterator[tuple[int, int]]:
+    """Every term with its partner group; what pressure does goes by the total alone."""
+    for kind in ("body", "fall", "curve"):
+        yield from zip(ints[f"{kind}_term"].tolist(), ints[f"{kind}_group"].tolist(), strict=True)
+    for term in (*ints["table_term"].tolist(), *ints["series_term"].tolist()):
+        yield term, TOTAL

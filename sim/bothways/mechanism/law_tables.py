@@ -11,7 +11,7 @@ import numpy as np
 from ..rates.law import Broadening, Curve, Expression, PressureNodes, Series
 from .model import Mechanism, Partner
 
-_INT_KEYS = ("body_term", "body_group", "fall_term", "fall_low", "fall_group", "fall_kind", "curve_term", "curve_low",
+_INT_KEYS = ("body_term", "body_group", "fall_term", "fall_low", "fall_group", "curve_term", "curve_low",
              "curve_group", "curve_width", "curve_activated", "table_term", "row_expression", "series_term", "series_rows")
 _FLOAT_KEYS = ("fall_parameter", "curve_parameter", "node_log_p", "row_sign", "series_window", "column_coefficient")
 _STARTS = ("table_start", "node_start", "series_start", "column_start")
@@ -45,6 +45,7 @@ def law_tables(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     ints["term_reaction"] = np.array([j for j, _ in ordered])
     ints.update({key: np.array(lists[key]) for key in (*_INT_KEYS, *_STARTS)})
     floats.update({key: np.array(lists[key]) for key in _FLOAT_KEYS})
+    floats["fall_parameter"] = floats["fall_parameter"].reshape(-1, 4).T  # one kind after another
     columns = ([e[k] for e in lists.expressions] for k in range(4))
     floats["log_A"], floats["power"], floats["theta"], sign = (np.array(c, dtype=float) for c in columns)
     floats["term_sign"] = sign[: len(ordered)]
@@ -64,7 +65,7 @@ def _append(lists: _Lists, **values: int) -> None:
 
 
 def _fall_off(lists: _Lists, term: int, group: int, part: Broadening, places: list[int]) -> None:
-    _append(lists, fall_term=term, fall_low=places[1], fall_group=group, fall_kind=part.kind)
+    _append(lists, fall_term=term, fall_low=places[1], fall_group=group)
     lists["fall_parameter"] += part.parameters
 
 

@@ -7,7 +7,7 @@ import numpy as np
 from ..constants import GAS_CONSTANT
 from ..kernels import layout
 from ..thermo.polynomial import extended
-from .jacobian_sums import jacobian_sums
+from .jacobian_sums import jacobian_sums, signed_lists
 from .law_tables import law_tables
 from .model import Mechanism
 
@@ -46,7 +46,7 @@ def _build(mechanism: Mechanism) -> Tables:
     _thermo(mechanism, ints, floats)
     sides = _sides(mechanism, ints)
     law_tables(mechanism, ints, floats)
-    _stoichiometry(mechanism, ints, floats)
+    _stoichiometry(mechanism, ints)
     jacobian_sums(mechanism, ints, floats)
     packed_ints, packed_floats, work_size = _pack(mechanism, ints, floats)
     return Tables(packed_ints, packed_floats, work_size, _lowest_temperature(ints, floats, sides))
@@ -87,7 +87,7 @@ def _g(ints: dict, floats: dict, temperature: float) -> np.ndarray:
 
 
 def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
-    """Molecules of each side: three in the tables, padded with N; the rest in the lists of long sides."""
+    """Molecules of each side: two in the tables, padded with N; the rest in the lists of long sides."""
     n = len(mechanism.species)
     sides: list[list[list[int]]] = [[], []]
     long: list[tuple[int, int, int]] = []
@@ -95,22 +95,21 @@ def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
         for side, terms in enumerate((reaction.equation.reactants, reaction.equation.products)):
             molecules = [mechanism.index(name) for name, count in terms for _ in range(count)]
             sides[side].append(molecules)
-            long += [(j, k, side) for k in molecules[3:]]
+            long += [(j, k, side) for k in molecules[2:]]
     for key, lists in zip(("reactant", "product"), sides, strict=True):
-        ints[key] = np.array([[*m, n, n, n][:3] for m in lists]).ravel()
+        for place in (0, 1):
+            ints[f"{key}{place}"] = np.array([[*m, n, n][place] for m in lists])
     for column, key in enumerate(("long_reaction", "long_species", "long_side")):
         ints[key] = np.array([row[column] for row in long])
     return sides
 
 
-def _stoichiometry(mechanism: Mechanism, ints: dict, floats: dict) -> None:
-    rows: list[list[tuple[int, int]]] = [[] for _ in mechanism.species]
+def _stoichiometry(mechanism: Mechanism, ints: dict) -> None:
+    rows: list[tuple[list[int], list[int]]] = [([], []) for _ in mechanism.species]
     for j, reaction in enumerate(mechanism.reactions):
         for name, count in reaction.net.items():
-            rows[mechanism.index(name)].append((j, count))
-    ints["nu_start"] = np.cumsum([0] + [len(row) for row in rows])
-    ints["nu_reaction"] = np.array([j for row in rows for j, _ in row])
-    floats["nu"] = np.array([count for row in rows for _, count in row])
+            rows[mechanism.index(name)][count < 0].extend([j] * abs(count))
+    ints["nu_start"], ints["nu_reaction"] = signed_lists(rows)
 
 
 def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, np.ndarray, int]:
@@ -118,7 +117,8 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
              "EXPRESSIONS": len(floats["log_A"]), "TERMS": len(ints["term_reaction"]),
              "BODIES": len(ints["body_term"]), "FALL_OFFS": len(ints["fall_term"]),
              "GROUPS": len(floats["group_default"]), "LONG": len(ints["long_side"]),
-             "BLOCK": len(ints["block_row"]), "CURVES": len(ints["curve_term"]), "COLUMNS": len(ints["column_start"]) - 1}
+             "BLOCK": len(ints["block_row"]), "CURVES": len(ints["curve_term"]), "COLUMNS": len(ints["column_start"]) - 1,
+             "RESPONSES": len(ints["response_start"]) // 2}
     header = [sizes[name] for name in layout.SIZES]
     lengths = [[np.size(ints[name]) for name in layout.INTS], [np.size(floats[name]) for name in layout.FLOATS],
                _work_lengths(sizes)]
@@ -132,16 +132,17 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
 def _work_lengths(sizes: dict[str, int]) -> list[int]:
     n, r, t, x, fall = (sizes[k] for k in ("SPECIES", "REACTIONS", "TERMS", "EXPRESSIONS", "FALL_OFFS"))
     curves, columns = sizes["CURVES"], sizes["COLUMNS"]
-    by_name = {"seen": 2, "log_scale": n + 1, "scale": n + 1, "inverse_scale": n + 1, "scale_slope": n + 1,
+    by_name = {"seen": 5, "active": 9 * n, "log_scale": n + 1, "scale": n + 1, "inverse_scale": n + 1, "scale_slope": n + 1,
                "activity": n + 1, "curve_centre": curves, "curve_centre_slope": curves, "curve_factor": curves,
                "pressure": 1, "column": columns, "column_slope": columns,
-               "log_k": x, "k_limit": x, "k_slope": x, "log_centre": fall, "log_centre_slope": fall,
-               "centre_exponent": 3 * fall, "centre_part": 3 * fall, "log_broadening": fall, "broadening": fall,
+               "log_k": x, "k_limit": x, "k_slope": x, "centre_exponent": 3 * fall, "centre_part": 3 * fall,
                "partner": sizes["GROUPS"], "log_partner": sizes["GROUPS"], "k": t, "k_by_T": t, "k_by_M": t,
-               "partial": 6 * r + sizes["LONG"] + t, "block": sizes["BLOCK"] + n}
-    of_species = {"gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T", "unknown",
-                  "border_column"}
-    return [by_name.get(name, n if name in of_species else r) for name in layout.WORK]
+               "partial": 4 * r + sizes["LONG"] + t + sizes["RESPONSES"], "block": sizes["BLOCK"] + n + layout.NOT_WANTED}
+    by_name |= dict.fromkeys(("gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T",
+                              "concentration", "energy", "border_column"), n)
+    by_name |= dict.fromkeys(("log_centre", "log_centre_slope", "log_broadening", "broadening", "centre", "fall_ratio",
+                              "fall_log_ratio", "fall_partner", "fall_reduced", "fall_by_reduced", "fall_by_centre"), fall)
+    return [by_name.get(name, r) for name in layout.WORK]
 
 
 def _lowest_temperature(ints: dict, floats: dict, sides: list[list[list[int]]]) -> float:

@@ -20,7 +20,6 @@ from ..entry import Entry
 from .arrhenius import Arrhenius, read_expression
 from .law import OWN_PARTNER, Broadening, Curve, Expression, Fault, Law, LawContext
 
-LINDEMANN, TROE = 0, 1
 _NO_THIRD_TERM = 1e300  # [K] exp(-T**/T) and its slope vanish, without an infinity times zero
 _AT_ONCE = 1e-30  # [K] exp(-T/T*) vanishes: what is left of F_cent is the constant 1 - a
 SMALLEST_PARTNER = 1e-300
@@ -150,12 +149,12 @@ class FallOffLaw(Law):
         return self.k_inf.expressions() + self.k_0.expressions()
 
     def part(self) -> Broadening | Curve:
-        """Kind and parameters (a, 1/T***, 1/T*, T**) of Lindemann's and Troe's; any other as a general curve."""
+        """Parameters (a, 1/T***, 1/T*, T**) of Lindemann's and Troe's; any other as a general curve."""
         c = self.centre
         if c is None:
-            return Broadening(LINDEMANN, (0.0, 0.0, 0.0, 0.0))
+            return Broadening((1.0, 0.0, 0.0, _NO_THIRD_TERM))
         if self.width == "Troe" and isinstance(c, Centre):
-            return Broadening(TROE, (c.a, 1.0 / c.T3, 1.0 / c.T1, _NO_THIRD_TERM if c.T2 is None else c.T2))
+            return Broadening((c.a, 1.0 / c.T3, 1.0 / c.T1, _NO_THIRD_TERM if c.T2 is None else c.T2))
         return self.curve()
 
     def curve(self, activated: bool = False) -> Curve:

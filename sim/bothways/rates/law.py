@@ -18,9 +18,8 @@ class Expression(NamedTuple):
 
 
 class Broadening(NamedTuple):
-    """A fall-off curve after Lindemann or Troe: `kind` as the kernel counts them, and its parameters (4 numbers)."""
+    """A fall-off curve after Lindemann or Troe: a, 1/T***, 1/T*, T** of its F_cent; F_cent is 1 after Lindemann."""
 
-    kind: int
     parameters: tuple[float, float, float, float]
 
 
