@@ -30,6 +30,7 @@ LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("case",),
     ("endpoint", "monitored", "recorder", "remarks", "milestones"),
     ("batch", "grid"),
+    ("outcome",),
     ("report",),
     ("plots", "audit", "compare", "sweep"),
     ("",),

@@ -56,7 +56,7 @@ def run_and_judge(case: Case, told: Callable[[int, float, float], None] | None =
     equations = case.equations()
     remark_at_start(case)
     target = target_of(case)
-    task, recorder = monitored(case, equations, _until(case, target)), Recorder(case, equations, told)
+    task, recorder = monitored(case, equations, landing(case, target)), Recorder(case, equations, told)
     outcome = integrate(task.problem, case.method, recorder)
     columns = recorder.columns()
     remark_at_end(case, columns)
@@ -64,7 +64,7 @@ def run_and_judge(case: Case, told: Callable[[int, float, float], None] | None =
     return _trajectory(case, equations, columns, task, outcome, last), last
 
 
-def _until(case: Case, target: Target) -> Callable[[float, np.ndarray], bool] | None:
+def landing(case: Case, target: Target) -> Callable[[float, np.ndarray], bool] | None:
     """When a run to equilibrium may end: well within the distance that counts as landed."""
     if not case.to_equilibrium:
         return None

@@ -6,17 +6,33 @@ of sixth order in the step (e.g. E. Hairer, S.P. Nørsett, G. Wanner, Solving Or
 """
 
 from collections.abc import Callable
+from functools import partial
 
 import numpy as np
 
 
 class Course:
-    """States y (nt, n) at rising times (nt) with their derivatives by the right-hand side f and its Jacobian J."""
+    """States y (nt, n) at rising times (nt) with their derivatives by the right-hand side f and its Jacobian J.
+
+    Derivatives are worked out where they are asked for, once.
+    """
 
     def __init__(self, times: np.ndarray, states: np.ndarray, f: Callable, J: Callable) -> None:
         self.times, self.states, self.f, self.J = times, states, f, J
-        self.slopes = np.array([f(t, y) for t, y in zip(times, states, strict=True)])
-        self.curvatures = np.array([self.curvature(t, y) for t, y in zip(times, states, strict=True)])
+        self._slopes: dict[int, np.ndarray] = {}
+        self._curvatures: dict[int, np.ndarray] = {}
+
+    def slope(self, k: int) -> np.ndarray:
+        """y' at step k, (n)."""
+        if k not in self._slopes:
+            self._slopes[k] = self.f(self.times[k], self.states[k])
+        return self._slopes[k]
+
+    def curvature_at(self, k: int) -> np.ndarray:
+        """y'' at step k, (n)."""
+        if k not in self._curvatures:
+            self._curvatures[k] = self.J(self.times[k], self.states[k]) @ self.slope(k)
+        return self._curvatures[k]
 
     def curvature(self, t: float, y: np.ndarray) -> np.ndarray:
         """y'' = J f at any state (n)."""
@@ -25,36 +41,83 @@ class Course:
     def between(self, k: int) -> Callable[[float], np.ndarray]:
         """The interpolant, time [s] -> state (n), from step k to k + 1."""
         start, h = self.times[k], self.times[k + 1] - self.times[k]
-        data = np.array([v for j in (k, k + 1) for v in (self.states[j], h * self.slopes[j], h * h * self.curvatures[j])])
+        data = np.array([v for j in (k, k + 1) for v in (self.states[j], h * self.slope(j), h * h * self.curvature_at(j))])
 
         def state(t: float) -> np.ndarray:
             return _hermite((t - start) / h) @ data
 
         return state
 
-    def first_crossing(self, values: np.ndarray, component: int, level: float) -> float | None:
-        """The first time at which a falling component reaches a level; values: the component at the times."""
-        below = np.flatnonzero(values <= level)
+    def first_crossing(self, component: int, level: float) -> float | None:
+        """The first time at which a falling component reaches a level."""
+        below = np.flatnonzero(self.states[:, component] <= level)
         if not below.size or below[0] == 0:
             return None
         k = int(below[0]) - 1
-        piece = self.between(k)
-        return _root(lambda t: float(piece(t)[component]) - level, self.times[k], self.times[k + 1])
+        a = self._polynomial(k, component)
+        return self._time(k, _root(lambda x: _value(a, x) - level, 0.0, 1.0))
 
-    def peak(self, k: int, rate: Callable[[float, np.ndarray], float]) -> tuple[float, np.ndarray] | None:
-        """Time and state at which `rate(t, y)` changes sign around step k, if it does: a maximum there."""
+    def top(self, component: int) -> tuple[float, np.ndarray]:
+        """Time and state at which a component is largest: where the interpolant's slope is zero beside the largest state.
+
+        (Not where f of an interpolated state is: f answers a state slightly off the slow manifold with a fast rate.)
+        """
+        k = int(np.argmax(self.states[:, component]))
+        for first in (k - 1, k):
+            if 0 <= first < len(self.times) - 1 and self.slope(first)[component] > 0 >= self.slope(first + 1)[component]:
+                slope = _derivative(self._polynomial(first, component))
+                t = self._time(first, _root(partial(_value, slope), 0.0, 1.0))
+                return t, self.between(first)(t)
+        return float(self.times[k]), self.states[k]
+
+    def steepest(self, weights: np.ndarray) -> tuple[float, float] | None:
+        """Time at which the rise of y @ weights is fastest, and that rate over the one at the start (inf if that is not
+        positive); None if it never rises. Weights (n)."""
+        values = self.states @ weights
+        means = np.diff(values) / np.diff(self.times)
+        if not np.max(means) > 0:
+            return None
+        fast = np.flatnonzero(means >= 0.5 * np.max(means))  # a step is too short to hide a faster rise elsewhere
+        rates = {int(k): float(self.slope(int(k)) @ weights) for k in np.union1d(fast, fast + 1)}
+        k = max(rates, key=rates.__getitem__)
+        start = float(self.slope(0) @ weights)
+        return self._turn(k, weights), rates[k] / start if start > 0 else np.inf
+
+    def _turn(self, k: int, weights: np.ndarray) -> float:
+        """Where the second derivative of y @ weights changes sign beside step k; the time of k if it does not."""
         for first in (k - 1, k):
             if 0 <= first < len(self.times) - 1:
-                piece = self.between(first)
-                start, end = self.times[first], self.times[first + 1]
-                if rate(start, self.states[first]) > 0 >= rate(end, self.states[first + 1]):
-                    return self._turn(piece, rate, start, end)
-        return None
+                ends = [float(self.curvature_at(j) @ weights) for j in (first, first + 1)]
+                if ends[0] > 0 >= ends[1]:
+                    return self._inflection(first, weights)
+        return float(self.times[k])
 
-    def _turn(self, piece: Callable[[float], np.ndarray], rate: Callable[[float, np.ndarray], float], start: float,
-              end: float) -> tuple[float, np.ndarray]:
-        t = _root(lambda s: rate(s, piece(s)), start, end)
-        return t, piece(t)
+    def _inflection(self, k: int, weights: np.ndarray) -> float:
+        piece = self.between(k)
+        return _root(lambda t: float(weights @ self.curvature(t, piece(t))), self.times[k], self.times[k + 1])
+
+    def _polynomial(self, k: int, component: int) -> tuple[float, ...]:
+        """The quintic of one component from step k to k + 1, powers of x = 0…1 rising."""
+        h = self.times[k + 1] - self.times[k]
+        (y0, d0, c0), (y1, d1, c1) = ((float(self.states[j, component]), float(h * self.slope(j)[component]),
+                                       float(h * h * self.curvature_at(j)[component])) for j in (k, k + 1))
+        rise = y1 - y0
+        return (y0, d0, 0.5 * c0, 10 * rise - 6 * d0 - 4 * d1 - 1.5 * c0 + 0.5 * c1,
+                -15 * rise + 8 * d0 + 7 * d1 + 1.5 * c0 - c1, 6 * rise - 3 * d0 - 3 * d1 - 0.5 * c0 + 0.5 * c1)
+
+    def _time(self, k: int, x: float) -> float:
+        return float(self.times[k] + x * (self.times[k + 1] - self.times[k]))
+
+
+def _value(a: tuple[float, ...], x: float) -> float:
+    total = 0.0
+    for coefficient in reversed(a):
+        total = total * x + coefficient
+    return total
+
+
+def _derivative(a: tuple[float, ...]) -> tuple[float, ...]:
+    return tuple(power * coefficient for power, coefficient in enumerate(a))[1:]
 
 
 def _hermite(x: float) -> np.ndarray:

@@ -15,7 +15,7 @@ from .along import affinities
 from .case import Case
 from .constants import GAS_CONSTANT as R
 from .contents import Contents
-from .equilibrium import Equilibrium, combination_text, conserved_by_reactions, equilibrium, extra_conserved
+from .equilibrium import Equilibrium, combination_text, conserves_more, equilibrium, extra_conserved
 from .errors import InputError
 from .mechanism import Mechanism
 from .reach import reachable
@@ -104,29 +104,46 @@ def _relative(x: np.ndarray, reference: np.ndarray) -> np.ndarray:
 
 def target_of(case: Case) -> Target:
     """Where a case must end."""
-    _, running = reachable(case.mechanism, case.charge.amount)
-    restricted = case.mechanism if running.all() else _restrict(case.mechanism, running)
+    start = _started(case.mechanism, case.charge.amount > 0)
     try:
-        own = _equilibrium(case, conserved_by_reactions(restricted))
-        return Target(case, own, _equilibrium(case, "elements"), running, restricted)
+        own = _equilibrium(case, start.restricted, "reactions")
+        full = _equilibrium(case, start.restricted, "elements") if start.conserves_more else own
+        return Target(case, own, full, start.running, start.restricted)
     except InputError as err:
         raise InputError(f"no equilibrium: {err.problem}", expected=err.expected, file=case.file, entry="start",
                          remedy=err.remedy or "correct the charge or its temperature") from None
 
 
-def _restrict(mechanism: Mechanism, running: np.ndarray) -> Mechanism:
-    kept = tuple(r for r, goes in zip(mechanism.reactions, running, strict=True) if goes)
-    return replace(mechanism, reactions=kept)
+@dataclass(frozen=True)
+class _Started:
+    """What can proceed from what is there: mask (reactions), the mechanism with these alone, and whether they conserve
+    more than the elements among the species that the elements there can form."""
+
+    running: np.ndarray
+    restricted: Mechanism
+    conserves_more: bool
 
 
-def _equilibrium(case: Case, conserved: str | np.ndarray) -> Equilibrium:
+def _started(mechanism: Mechanism, there: np.ndarray) -> _Started:
+    """What can proceed from the species (N, mask) there, worked out once: it takes longer than a small run."""
+    known = mechanism.__dict__.setdefault("_started", {})
+    key = there.tobytes()
+    if key not in known:
+        _, running = reachable(mechanism, there.astype(float))
+        kept = tuple(r for r, goes in zip(mechanism.reactions, running, strict=True) if goes)
+        restricted = mechanism if running.all() else replace(mechanism, reactions=kept)
+        known[key] = _Started(running, restricted, conserves_more(restricted, there))
+    return known[key]
+
+
+def _equilibrium(case: Case, restricted: Mechanism, conserved: str) -> Equilibrium:
     c = case.charge
     held: dict[str, Any] = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
     if case.heat == "isothermal":
-        return equilibrium(case.mechanism, c.amount, temperature=c.temperature, conserved=conserved, **held)
+        return equilibrium(restricted, c.amount, temperature=c.temperature, conserved=conserved, **held)
     energy = Contents(case.mechanism).energy(c.amount, c.temperature, case.holds)
     held["internal_energy" if case.holds == "volume" else "enthalpy"] = energy
-    return equilibrium(case.mechanism, c.amount, conserved=conserved, own_heat_capacity=case.own_heat_capacity,
+    return equilibrium(restricted, c.amount, conserved=conserved, own_heat_capacity=case.own_heat_capacity,
                        reference_temperature=c.temperature, **held)
 
 

@@ -40,23 +40,30 @@ class Recorder:
         if self.told:
             self.told(len(self.times) - 1, t, float(y[-1]))
 
-    def columns(self) -> dict[str, np.ndarray]:
-        """The records as the arrays of a trajectory."""
+    def course(self) -> dict[str, np.ndarray]:
+        """Time, temperature, pressure, volume and amounts of every state, without what is worked out of them."""
         states, charge, case = np.array(self.states), self.case.charge, self.case
-        raw = states[:, :-1] * (charge.volume if case.holds == "volume" else 1.0)
-        amount = repaired(raw, case.mechanism.element_matrix, charge.amount)
+        amount = repaired(self._raw(states), case.mechanism.element_matrix, charge.amount)
         amount[0] = charge.amount
         T = self._temperatures(amount, states[:, -1])
-        total = amount.sum(axis=1)
         held = np.full(len(T), charge.volume if case.holds == "volume" else charge.pressure)
-        other = total * R * T / held
+        other = amount.sum(axis=1) * R * T / held
         volume, pressure = (held, other) if case.holds == "volume" else (other, held)
         pressure[0] = charge.pressure
-        potential = self._potential(amount, T, volume)
+        return {"time": np.array(self.times), "temperature": T, "pressure": pressure, "volume": volume, "amount": amount}
+
+    def _raw(self, states: np.ndarray) -> np.ndarray:
+        """Amounts [mol] as the solver left them."""
+        return states[:, :-1] * (self.case.charge.volume if self.case.holds == "volume" else 1.0)
+
+    def columns(self) -> dict[str, np.ndarray]:
+        """The records as the arrays of a trajectory."""
+        course, states, charge, case = self.course(), np.array(self.states), self.case.charge, self.case
+        potential = self._potential(course["amount"], course["temperature"], course["volume"])
         produced = (potential[0] - potential) / (charge.temperature if case.heat == "isothermal" else 1.0)
-        return {"time": np.array(self.times), "temperature": T, "pressure": pressure, "volume": volume, "amount": amount,
-                "potential": potential, "entropy_produced": produced, "element_residual": self._element_residual(raw),
-                "energy_residual": self._energy_residual(raw, states[:, -1])}
+        raw = self._raw(states)
+        return {**course, "potential": potential, "entropy_produced": produced,
+                "element_residual": self._element_residual(raw), "energy_residual": self._energy_residual(raw, states[:, -1])}
 
     def _temperatures(self, amount: np.ndarray, near: np.ndarray) -> np.ndarray:
         if self.case.heat == "isothermal":

@@ -5,9 +5,9 @@ most abundant species (`newton`), from a start that linear programming gives (`v
 that fails (`continuation`); species that the charge cannot turn into are found exactly (`possible`).
 """
 
-from .conserved import combination_text, conserved_by_elements, conserved_by_reactions, extra_conserved
+from .conserved import combination_text, conserved_by_elements, conserved_by_reactions, conserves_more, extra_conserved
 from .minimiser import GibbsMinimiser, equilibria, equilibrium
 from .result import Equilibrium
 
 __all__ = ["Equilibrium", "GibbsMinimiser", "combination_text", "conserved_by_elements", "conserved_by_reactions",
-           "equilibria", "equilibrium", "extra_conserved"]
+           "conserves_more", "equilibria", "equilibrium", "extra_conserved"]

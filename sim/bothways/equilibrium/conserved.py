@@ -51,6 +51,17 @@ def extra_conserved(mechanism: Mechanism) -> np.ndarray:
     return np.array(list(islice(candidates, extra)), dtype=np.int64).reshape(extra, len(mechanism.species))
 
 
+def conserves_more(mechanism: Mechanism, there: np.ndarray) -> bool:
+    """Whether the reactions conserve more than the elements, among the species that the elements of those there can form.
+
+    there (N) : mask of the species charged.
+    """
+    elements = conserved_by_elements(mechanism)
+    absent = ~np.any(elements[:, there] != 0, axis=1) & np.all(elements >= 0, axis=1)
+    formed = ~np.any(elements[absent] != 0, axis=0)
+    return _rank(conserved_by_reactions(mechanism)[:, formed]) > _rank(elements[:, formed])
+
+
 def combination_text(mechanism: Mechanism, row: np.ndarray) -> str:
     """A conserved combination as chemistry: "N2", "2 CH4 + C2H6", "atoms of H", "amount of all species"."""
     plain = _primitive(np.asarray(row).tolist())
@@ -111,6 +122,11 @@ def _primitive(row: Iterable[Fraction | int]) -> list[int]:
 def _primitive_rows(numbers: np.ndarray) -> set[tuple[int, ...]]:
     sign = np.where(np.sum(numbers, axis=1) < 0, -1, 1)
     return set(map(tuple, (numbers // (sign * np.gcd.reduce(numbers, axis=1))[:, None]).tolist()))
+
+
+def _rank(rows: np.ndarray) -> int:
+    span = _Span()
+    return sum(span.grows(row) for row in rows)
 
 
 class _Span:

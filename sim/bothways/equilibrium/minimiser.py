@@ -17,7 +17,6 @@ from .result import Equilibrium, finish
 Amounts = np.ndarray | Sequence[float] | Mapping[str, float]
 _PAIRS = "temperature with volume, temperature with pressure, internal_energy with volume, or enthalpy with pressure"
 _POSITIVE = ("temperature", "pressure", "volume")
-_KEPT = 8
 _LARGEST = 1e300  # mol: sums stay finite
 
 
@@ -135,19 +134,14 @@ def equilibria(mechanism: Mechanism, amount: Amounts, *, conserved: str | np.nda
     return found
 
 
-_recent: list[GibbsMinimiser] = []
-
-
 def _minimiser(mechanism: Mechanism, conserved: str | np.ndarray) -> GibbsMinimiser:
-    """The minimiser of a mechanism: one of the last few, or a new one."""
+    """The minimiser of a mechanism: made once for each kind of conservation, which threads may share."""
     if not isinstance(conserved, str):
         return GibbsMinimiser(mechanism, conserved)
-    for known in _recent:
-        if known.mechanism is mechanism and known.asked == conserved:
-            return known
-    _recent.insert(0, GibbsMinimiser(mechanism, conserved))
-    del _recent[_KEPT:]
-    return _recent[0]
+    kept = mechanism.__dict__.setdefault("_minimisers", {})
+    if conserved not in kept:
+        kept[conserved] = GibbsMinimiser(mechanism, conserved)
+    return kept[conserved]
 
 
 def _rows(mechanism: Mechanism, conserved: str | np.ndarray) -> np.ndarray:

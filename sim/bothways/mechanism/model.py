@@ -28,7 +28,7 @@ class Species:
     collision_diameter: float | None = None
     well_depth: float | None = None
 
-    @property
+    @cached_property
     def fit_range(self) -> tuple[float, float]:
         """Lowest and highest temperature of the potential's data [K]."""
         boundaries = self.potential.ranges().boundaries
