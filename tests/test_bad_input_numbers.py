@@ -29,7 +29,6 @@ NUMBERS = {  # path in the document: what may stand there
     ("species", "Q", "potential", "at"): "positive",
     ("species", "Q", "potential", "H"): "any",
     ("species", "Q", "potential", "S"): "any",
-    ("species", "Q", "potential", "cp"): "positive",
     ("species", "Q2", "potential", "T", 0): "row",
     ("species", "Q2", "potential", "a", 1, 3): "row",
     ("species", "Q2", "composition", "Q"): "positive",

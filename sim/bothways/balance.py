@@ -6,23 +6,24 @@ comes from here. IUPAC Green Book, 3rd ed., section 2.11, for K and the affinity
 
 import numpy as np
 
-from .constants import GAS_CONSTANT as R
-
 
 def log_equilibrium_constants(nu: np.ndarray, g: np.ndarray) -> np.ndarray:
     """ln K° of every reaction [-], (reactions), from stoichiometric numbers nu (N, reactions) and g°/RT (N)."""
     return -(nu.T @ g)
 
 
-def log_concentration_constants(nu: np.ndarray, g: np.ndarray, temperature: float, pressure: float) -> np.ndarray:
-    """ln of Kc in powers of mol/m3, (reactions): K° (p°/RT)^Σν, p° [Pa] the standard pressure that g°/RT belongs to."""
-    unit = np.log(pressure / (R * temperature))
-    return log_equilibrium_constants(nu, g) + nu.sum(axis=0) * unit
+def log_concentration_constants(nu: np.ndarray, g: np.ndarray, standard: float) -> np.ndarray:
+    """ln of Kc in powers of mol/m3, (reactions): K° c°^Σν, c° [mol/m3] the concentration that g°/RT belongs to.
+
+    In a gas c° = p°/RT; in a solution 1 mol/L, or the total concentration where activities are mole fractions.
+    """
+    change = nu.sum(axis=0)
+    return log_equilibrium_constants(nu, g) + np.where(change == 0, 0.0, change * np.log(standard))
 
 
-def reverse_constants(forward: np.ndarray, nu: np.ndarray, g: np.ndarray, temperature: float, pressure: float) -> np.ndarray:
+def reverse_constants(forward: np.ndarray, nu: np.ndarray, g: np.ndarray, standard: float) -> np.ndarray:
     """Reverse rate constants, (reactions), of forward ones (m3, mol, s): k_f/Kc."""
-    return forward * np.exp(-log_concentration_constants(nu, g, temperature, pressure))
+    return forward * np.exp(-log_concentration_constants(nu, g, standard))
 
 
 def affinities(nu: np.ndarray, potential: np.ndarray) -> np.ndarray:

@@ -10,10 +10,11 @@ from .along import rates_along
 from .case import Case
 from .endpoint import CLOSEST, Target, Verdict, target_of, verdict_of_state
 from .integrate import OWN_METHODS, Outcome, Status, integrate, warm_up
+from .mechanism.phase import GAS
 from .mechanism.toml_writer import to_toml
 from .milestones import milestones
 from .monitored import Monitored, monitored
-from .recorder import POTENTIALS, Recorder
+from .recorder import Recorder, potential_of
 from .remarks import remark_at_end, remark_at_start
 from .trajectory import Trajectory
 from .vessel import Equations
@@ -77,7 +78,7 @@ def landing(case: Case, target: Target) -> Callable[[float, np.ndarray], bool] |
 
 def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task: Monitored, outcome: Outcome,
                 last: Verdict) -> Trajectory:
-    name, units = POTENTIALS[case.heat, case.holds]
+    name, units = potential_of(case)
     rise = float(max(np.max(np.diff(columns["potential"]), initial=0.0), 0.0))
     statistics = {"method": case.method, "rtol": case.rtol, "atol": case.atol, "status": outcome.status.value,
                   **outcome.counts, **(task.notes() if case.method in OWN_METHODS else {}), "largest_potential_rise": rise}
@@ -93,8 +94,10 @@ def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task:
 def _extra(case: Case, columns: dict[str, Any], last: Verdict) -> dict[str, Any]:
     """Equilibrium and verdict, and rates and affinities if they were asked for."""
     own = last.target.own
-    extra = {"equilibrium_temperature": own.temperature, "equilibrium_pressure": own.pressure,
+    extra = {"equilibrium_temperature": own.temperature,
              "equilibrium_volume": own.volume, "equilibrium_amount": own.amount, "verdict": f"{last.kind.value}: {last.sentence}"}
+    if case.mechanism.phase == GAS:
+        extra["equilibrium_pressure"] = own.pressure
     if case.rates:
         extra |= rates_along(case.mechanism, columns["amount"], columns["temperature"], columns["volume"])
     return extra

@@ -17,6 +17,7 @@ from .kernels.equations import HIGHEST_TEMPERATURE
 from .mechanism import Mechanism, bundled_cases, read_mechanism
 from .mechanism.files import mechanism_path, read_toml
 from .mechanism.model import copy_document
+from .mechanism.phase import SOLUTION
 from .vessel import HEAT, HOLDS, Equations
 
 MARGIN_WARN, MARGIN_ERROR = 10.0, 500.0
@@ -31,7 +32,8 @@ MOST_INERTIA = 1e6
 class Case:
     """One batch, SI: volume [m3] and pressure [Pa] at the start, times [s].
 
-    own_heat_capacity : [J/K] of the vessel, from the thermal inertia of adiabatic calorimetry.
+    own_heat_capacity : [J/K] of the vessel, from the thermal inertia of adiabatic calorimetry, and of what is inert.
+    inert_heat_capacity : [J/K] of a solvent that is no species, or anything else that shares the temperature.
     atol : mole fraction below which accuracy is not asked [-].
     rates : whether rates and affinities of every reaction go to the file.
     to_equilibrium : whether the run goes on until it has landed at equilibrium, at the latest until `end`.
@@ -50,16 +52,19 @@ class Case:
     also_at: tuple[float, ...] = ()
     rates: bool = False
     to_equilibrium: bool = False
+    inert_heat_capacity: float = 0.0
     document: Mapping[str, Any] = field(default_factory=dict, repr=False)
     file: object = field(default=None, repr=False, compare=False)
 
     @property
     def own_heat_capacity(self) -> float:
-        """Heat capacity of the vessel itself [J/K]: (φ - 1) times that of the contents at the start."""
+        """Heat capacity of the vessel itself [J/K], (φ - 1) times that of the contents at the start, and of what is inert."""
+        inert = self.inert_heat_capacity
         if self.thermal_inertia == 1.0:
-            return 0.0
+            return inert
         c = self.charge
-        return (self.thermal_inertia - 1.0) * Contents(self.mechanism).heat_capacity(c.amount, c.temperature, self.holds)
+        contents = inert + Contents(self.mechanism).heat_capacity(c.amount, c.temperature, self.holds)
+        return inert + (self.thermal_inertia - 1.0) * contents
 
     def equations(self) -> Equations:
         """f and J of this case's vessel."""
@@ -93,19 +98,20 @@ def build_case(document: Mapping[str, Any], file: object = None, mechanism: Mech
         raise top.error("this is a mechanism", expected="a case", remedy="name it under [case] in a case file")
     top.expect("case", "vessel", "start", "until", "solver", "output")
     mechanism = _mechanism(top, mechanism)
-    holds, heat, inertia, volume = _vessel(top)
+    holds, heat, inertia, volume, inert = _vessel(top, mechanism.phase)
     start = top.table("start")
     charge = read_charge(start, mechanism, holds, volume)
     _check_temperature(start, mechanism, charge)
     _check_laws(start, mechanism, charge)
     end, to_equilibrium = _end(top)
     case = Case(mechanism, holds, heat, charge, end, *_solver(top), inertia, *_output(top, file, end),
-                to_equilibrium, document=copy_document(document), file=file)
+                to_equilibrium, inert, document=copy_document(document), file=file)
+    _check_heat_capacity(top, case)
     return case
 
 
-def _vessel(top: Entry) -> tuple[str, str, float, float | None]:
-    """What is held, heat, thermal inertia [-] and volume [m3] if stated."""
+def _vessel(top: Entry, phase: str) -> tuple[str, str, float, float | None, float]:
+    """What is held, heat, thermal inertia [-], volume [m3] if stated, and inert heat capacity [J/K]."""
     vessel = top.table("vessel", {})
     holds = vessel.text("holds", "volume", choices=HOLDS)
     heat = vessel.text("heat", "adiabatic", choices=HEAT)
@@ -114,8 +120,28 @@ def _vessel(top: Entry) -> tuple[str, str, float, float | None]:
         raise vessel.error(f"{inertia:g} for a vessel that is {heat}", key="thermal_inertia", remedy="correct it",
                            expected=f"a number from 1 to {MOST_INERTIA:g} in an adiabatic vessel, 1 in others")
     volume = vessel.quantity("volume", "volume", None, "positive")
+    inert = _solution_keys(vessel, holds) if phase == SOLUTION else 0.0
     vessel.done()
-    return holds, heat, inertia, volume
+    return holds, heat, inertia, volume, inert
+
+
+def _solution_keys(vessel: Entry, holds: str) -> float:
+    """The heat capacity [J/K] of what is inert in a solution, whose vessel holds its volume."""
+    if holds != "volume":
+        raise vessel.error("a solution at held pressure", expected='holds = "volume"', key="holds",
+                           remedy="leave it out: a solution's volume is constant and pressure plays no part")
+    return vessel.quantity("inert_heat_capacity", "heat capacity", 0.0, "not negative")
+
+
+def _check_heat_capacity(top: Entry, case: Case) -> None:
+    """A solution whose temperature is free must have a positive heat capacity (a species alone may have a negative one)."""
+    if case.mechanism.phase != SOLUTION or case.heat == "isothermal":
+        return
+    c = case.charge
+    total = Contents(case.mechanism).heat_capacity(c.amount, c.temperature, case.holds) + case.own_heat_capacity
+    if not total > 0:
+        raise top.error(f"the heat capacity of the charge is {total:.4g} J/K", expected="a positive one", key="vessel",
+                        remedy="state inert_heat_capacity, the solvent's, or charge the solvent as a species")
 
 
 def _mechanism(top: Entry, given: Mechanism | None) -> Mechanism:

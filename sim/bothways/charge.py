@@ -9,6 +9,7 @@ from .constants import GAS_CONSTANT as R
 from .entry import Entry
 from .errors import closest
 from .mechanism import Mechanism
+from .mechanism.phase import LITRE, SOLUTION
 
 WAYS = ("mole_ratio", "mass_ratio", "amount", "concentration", "fuel")
 _OXYGEN_NEEDED = {"C": 2.0, "H": 0.5, "D": 0.5, "S": 2.0, "O": -1.0, "N": 0.0,
@@ -18,7 +19,7 @@ _OXYGEN_NEEDED = {"C": 2.0, "H": 0.5, "D": 0.5, "S": 2.0, "O": -1.0, "N": 0.0,
 
 @dataclass(frozen=True)
 class Charge:
-    """amount (N) [mol] at temperature [K], pressure [Pa], volume [m3]."""
+    """amount (N) [mol] at temperature [K], pressure [Pa] (NaN of a solution), volume [m3]."""
 
     amount: np.ndarray
     temperature: float
@@ -35,6 +36,8 @@ def read_charge(start: Entry, mechanism: Mechanism, holds: str, volume: float | 
     """The charge of the table [start] in a vessel of `volume` [m3] (1 m3 where none is stated)."""
     temperature = start.quantity("temperature", "temperature", sign="positive")
     way = _way(start)
+    if mechanism.phase == SOLUTION:
+        return _dissolved(start, way, mechanism, volume, temperature)
     with np.errstate(all="ignore"):  # what leaves the range of floating-point numbers is reported below
         if way in ("amount", "concentration"):
             charge = _absolute(start, way, mechanism, holds, volume, temperature)
@@ -94,6 +97,39 @@ def _absolute(start: Entry, way: str, mechanism: Mechanism, holds: str, volume: 
                           remedy="leave out start.pressure: it follows from the others")
     space = 1.0 if volume is None else volume
     return Charge(amount, temperature, float(np.sum(amount)) * R * temperature / space, space)
+
+
+def _dissolved(start: Entry, way: str, mechanism: Mechanism, volume: float | None, temperature: float) -> Charge:
+    """The charge of a solution: amounts or concentrations in a stated volume, neutral, without a pressure."""
+    if "pressure" in start.data:
+        raise start.error("a pressure is stated for a solution", expected="temperature and concentrations or amounts",
+                          remedy="leave it out: its volume is constant and pressure plays no part", key="pressure")
+    if way not in ("amount", "concentration"):
+        raise start.error(f"{way} states no concentrations", expected="concentration, or amount with vessel.volume", key=way,
+                          remedy="state the concentrations of all species, the solvent's included if it is one")
+    if way == "amount" and volume is None:
+        raise start.error("amounts are stated, but no volume", expected="vessel.volume, that of the solution", key=way,
+                          remedy="add it under [vessel], or state concentrations")
+    space = 1.0 if volume is None else volume
+    amount = _named(start, way, mechanism, way) * (1.0 if way == "amount" else space)
+    start.done()
+    if not np.all(np.isfinite([*amount, np.sum(amount)])):
+        raise start.error("amounts beyond the range of the arithmetic", expected="finite values", remedy="correct it", key=way)
+    _check_neutral(start, way, mechanism, amount, space)
+    return Charge(amount, temperature, float("nan"), space)
+
+
+NEUTRAL = 1e-9
+"""Charges of a solution must cancel to this part of their sum of sizes [-]: round-off of stated digits, no more."""
+
+
+def _check_neutral(start: Entry, way: str, mechanism: Mechanism, amount: np.ndarray, volume: float) -> None:
+    charges = np.array([s.charge for s in mechanism.species])
+    excess, size = float(charges @ amount), float(np.abs(charges) @ amount)
+    if abs(excess) > NEUTRAL * size:
+        raise start.error(f"the solution is not neutral: {excess / volume / LITRE:+.6g} mol/L of charge is in excess",
+                          expected="charges that cancel", key=way,
+                          remedy=f"add the {'anion' if excess > 0 else 'cation'} that is missing, or correct an amount")
 
 
 def _named(start: Entry, key: str, mechanism: Mechanism, kind: str = "") -> np.ndarray:

@@ -1,6 +1,7 @@
 """Energy, entropy and potentials of a vessel's contents, from species potentials alone."""
 
 from functools import cached_property
+from typing import Any
 
 import numpy as np
 
@@ -8,10 +9,14 @@ from .balance import log_equilibrium_constants, reverse_constants
 from .constants import GAS_CONSTANT as R
 from .kernels.thermal import polynomials, polynomials_at
 from .mechanism import Mechanism, Tables, build_tables, table_view
+from .mechanism.phase import FRACTION, PER_LITRE, less, shared, standard_concentration
+
+Array = Any
+"""A float or an array of floats."""
 
 
 class Contents:
-    """Functions of state of an ideal-gas mixture over a mechanism's species.
+    """Functions of state of an ideal-gas mixture or ideal solution over a mechanism's species.
 
     amounts n are (N) [mol], temperatures [K], volumes [m3].
     """
@@ -39,42 +44,69 @@ class Contents:
         """ln K° of every reaction of the mechanism [-], (reactions), at its standard pressure."""
         return log_equilibrium_constants(self.mechanism.stoichiometry, self.molar(temperature)[0])
 
-    def reverse_constants(self, temperature: float, partner: float = 1.0) -> np.ndarray:
-        """Derived reverse rate constants (m3, mol, s), (reactions), the forward ones at a partner's [mol/m3]."""
+    def reverse_constants(self, temperature: float, partner: float = 1.0, total: float = np.nan) -> np.ndarray:
+        """Derived reverse rate constants (m3, mol, s), (reactions), the forward ones at a partner's [mol/m3].
+
+        total : concentration of the solution [mol/m3], which counts where activities are mole fractions.
+        """
         m = self.mechanism
         forward = np.array([r.forward_constant(temperature, partner) for r in m.reactions])
-        return reverse_constants(forward, m.stoichiometry, self.molar(temperature)[0], temperature, m.standard_pressure)
+        return reverse_constants(forward, m.stoichiometry, self.molar(temperature)[0], self.standard(temperature, total))
+
+    def standard(self, temperature: float, total: float = np.nan) -> float:
+        """The concentration at activity one (and g_i) [mol/m3]: p°/RT, 1 mol/L or the total concentration."""
+        if self.mechanism.standard_state == FRACTION:
+            return total
+        size, power = standard_concentration(self.mechanism)
+        return float(size * temperature**-power)
+
+    def less(self, holds: str) -> float:
+        """See `phase.less`."""
+        return less(self.mechanism, holds)
+
+    def shared(self, holds: str) -> bool:
+        """See `phase.shared`."""
+        return shared(self.mechanism, holds)
+
+    def log_activity_unit(self, total: Array, temperature: Array, volume: Array) -> Array:
+        """ln(a_i/n_i) [ln 1/mol]: of RT/(V p°), 1/(V c°) or 1/Σn; total amount [mol], temperature [K], volume [m3]."""
+        if self.mechanism.standard_state == FRACTION:
+            return -np.log(total)
+        size, power = standard_concentration(self.mechanism)
+        return power * np.log(temperature) - np.log(volume * size)
 
     def enthalpy(self, n: np.ndarray, temperature: float) -> float:
         """H [J]."""
         return float(R * temperature * (n @ self.molar(temperature)[1]))
 
     def internal_energy(self, n: np.ndarray, temperature: float) -> float:
-        """U [J]."""
-        return float(R * temperature * (n @ (self.molar(temperature)[1] - 1.0)))
+        """U [J]; of a solution U = H."""
+        return self.energy(n, temperature, "volume")
 
     def heat_capacity(self, n: np.ndarray, temperature: float, holds: str) -> float:
         """C_V or C_p [J/K]."""
-        less = 1.0 if holds == "volume" else 0.0
-        return float(R * (n @ (self.molar(temperature)[2] - less)))
+        return float(R * (n @ (self.molar(temperature)[2] - self.less(holds))))
 
     def energy(self, n: np.ndarray, temperature: float, holds: str) -> float:
-        """What an adiabatic vessel conserves: U where the volume is held, H where the pressure is [J]."""
-        return self.internal_energy(n, temperature) if holds == "volume" else self.enthalpy(n, temperature)
+        """What an adiabatic vessel conserves: U where the volume is held, H where the pressure is and of solutions [J]."""
+        return float(R * temperature * (n @ (self.molar(temperature)[1] - self.less(holds))))
 
     def chemical_potentials(self, n: np.ndarray, temperature: float, volume: float) -> np.ndarray:
         """μ_i/RT [-], (N); -inf for an absent species."""
         with np.errstate(divide="ignore"):
-            ratio = np.log(n * (R * temperature / (volume * self.mechanism.standard_pressure)))
-        return self.molar(temperature)[0] + ratio
+            return self.molar(temperature)[0] + np.log(n) + self.log_activity_unit(np.sum(n), temperature, volume)
 
     def gibbs(self, n: np.ndarray, temperature: float, volume: float) -> float:
-        """G = Σ n_i μ_i [J]."""
-        mu = self.chemical_potentials(n, temperature, volume)
-        return float(R * temperature * np.sum(n[n > 0] * mu[n > 0]))
+        """G [J]: Σ n_i μ_i, and at a standard state of 1 mol/L Σ n_i (μ_i - RT), which holds the solvent's share.
+
+        In a dilute solution the solvent's potential falls by RT Σ x_i of the solutes (Raoult), so its n μ changes by
+        -RT Σ n_i: dG = Σ μ_i dn_i at constant volume, as it must (e.g. K. Denbigh, The Principles of Chemical
+        Equilibrium, 4th ed., 1981, ch. 9).
+        """
+        return float(self.gibbs_energies(n[None, :], np.array([temperature]), np.array([volume]))[0])
 
     def helmholtz(self, n: np.ndarray, temperature: float, volume: float) -> float:
-        """A = G - pV [J]."""
+        """A = G - pV [J] of a gas."""
         return self.gibbs(n, temperature, volume) - float(np.sum(n)) * R * temperature
 
     def entropy(self, n: np.ndarray, temperature: float, volume: float) -> float:
@@ -89,8 +121,7 @@ class Contents:
 
     def energies(self, n: np.ndarray, temperatures: np.ndarray, holds: str) -> np.ndarray:
         """`energy` of many states: n (nt, N), temperatures (nt) [J]."""
-        less = 1.0 if holds == "volume" else 0.0
-        return R * temperatures * np.einsum("ki,ki->k", n, self.molar_at(temperatures)[1] - less)
+        return R * temperatures * np.einsum("ki,ki->k", n, self.molar_at(temperatures)[1] - self.less(holds))
 
     def gibbs_energies(self, n: np.ndarray, temperatures: np.ndarray, volumes: np.ndarray) -> np.ndarray:
         """G of many states [J]."""
@@ -102,9 +133,11 @@ class Contents:
         return R * (np.einsum("ki,ki->k", n, h) - self._gibbs_over_RT(n, temperatures, volumes, g))
 
     def _gibbs_over_RT(self, n: np.ndarray, T: np.ndarray, volumes: np.ndarray, g: np.ndarray) -> np.ndarray:
-        unit = R * T / (volumes * self.mechanism.standard_pressure)
-        ratio = np.where(n > 0, n, 1.0) * unit[:, None]  # n ln n is zero for an absent species
-        return np.einsum("ki,ki->k", n, g) + np.sum(n * np.log(ratio), axis=1)
+        total = n.sum(axis=1)
+        log_n = np.log(np.where(n > 0, n, 1.0))  # n ln n is zero for an absent species
+        log_a = log_n + self.log_activity_unit(total, T, volumes)[:, None]
+        solvent = total if self.mechanism.standard_state == PER_LITRE else 0.0
+        return np.einsum("ki,ki->k", n, g) + np.sum(n * log_a, axis=1) - solvent
 
     def temperatures_of(self, energy: float, n: np.ndarray, near: np.ndarray, holds: str,
                         own_heat_capacity: float = 0.0, reference: float = 0.0) -> np.ndarray:
@@ -112,7 +145,7 @@ class Contents:
 
         own_heat_capacity [J/K] is the vessel's, counted from the reference temperature [K].
         """
-        T, less, before = near.astype(float), 1.0 if holds == "volume" else 0.0, np.inf
+        T, less, before = near.astype(float), self.less(holds), np.inf
         for _ in range(50):
             _, h, cp = self.molar_at(T)
             held = R * T * np.einsum("ki,ki->k", n, h - less) + own_heat_capacity * (T - reference)

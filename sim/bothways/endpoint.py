@@ -18,6 +18,7 @@ from .contents import Contents
 from .equilibrium import Equilibrium, combination_text, conserves_more, equilibrium, extra_conserved
 from .errors import InputError
 from .mechanism import Mechanism
+from .mechanism.phase import less
 from .reach import reachable
 from .relaxation import further_rows, relaxation_times
 from .trajectory import Trajectory
@@ -142,7 +143,7 @@ def _equilibrium(case: Case, restricted: Mechanism, conserved: str) -> Equilibri
     if case.heat == "isothermal":
         return equilibrium(restricted, c.amount, temperature=c.temperature, conserved=conserved, **held)
     energy = Contents(case.mechanism).energy(c.amount, c.temperature, case.holds)
-    held["internal_energy" if case.holds == "volume" else "enthalpy"] = energy
+    held["internal_energy" if less(case.mechanism, case.holds) else "enthalpy"] = energy
     return equilibrium(restricted, c.amount, conserved=conserved, own_heat_capacity=case.own_heat_capacity,
                        reference_temperature=c.temperature, **held)
 

@@ -6,6 +6,7 @@ import numpy as np
 
 from .case import Case
 from .course import Course
+from .mechanism.phase import GAS
 from .vessel import Equations
 
 SMALLEST_PEAK = 1e-7
@@ -38,7 +39,7 @@ def _steepest_rise(case: Case, course: Course) -> dict[str, float]:
     """Where dT/dt (adiabatic) or dp/dt (isothermal, constant volume) is largest, by the zero of its derivative."""
     if case.heat == "adiabatic":
         name, weights = "steepest temperature rise", np.append(np.zeros(course.states.shape[1] - 1), 1.0)
-    elif case.holds == "volume":
+    elif case.holds == "volume" and case.mechanism.phase == GAS:
         name, weights = "steepest pressure rise", np.append(np.ones(course.states.shape[1] - 1), 0.0)
     else:
         return {}

@@ -12,12 +12,18 @@ import numpy as np
 from .case import Case
 from .constants import GAS_CONSTANT as R
 from .contents import Contents
+from .mechanism.phase import GAS
 from .vessel import Equations
 
 POTENTIALS = {("isothermal", "volume"): ("Helmholtz energy", "J"), ("isothermal", "pressure"): ("Gibbs energy", "J"),
               ("adiabatic", "volume"): ("negative entropy", "J K-1"),
               ("adiabatic", "pressure"): ("negative entropy", "J K-1")}
 """What may not rise in a closed vessel, by heat and what is held, and its units."""
+
+
+def potential_of(case: Case) -> tuple[str, str]:
+    """Name and units of what may not rise in this case; of a solution as at held pressure (see `Contents.gibbs`)."""
+    return POTENTIALS[case.heat, case.holds if case.mechanism.phase == GAS else "pressure"]
 
 
 class Recorder:
@@ -47,7 +53,7 @@ class Recorder:
         amount[0] = charge.amount
         T = self._temperatures(amount, states[:, -1])
         held = np.full(len(T), charge.volume if case.holds == "volume" else charge.pressure)
-        other = amount.sum(axis=1) * R * T / held
+        other = amount.sum(axis=1) * R * T / held if case.mechanism.phase == GAS else np.full(len(T), np.nan)
         volume, pressure = (held, other) if case.holds == "volume" else (other, held)
         pressure[0] = charge.pressure
         return {"time": np.array(self.times), "temperature": T, "pressure": pressure, "volume": volume, "amount": amount}
@@ -98,7 +104,7 @@ class Recorder:
             own = self.case.own_heat_capacity * np.log(T / self.case.charge.temperature)
             return -self.contents.entropies(amount, T, volume) - own
         gibbs = self.contents.gibbs_energies(amount, T, volume)
-        return gibbs - amount.sum(axis=1) * R * T if self.case.holds == "volume" else gibbs
+        return gibbs - amount.sum(axis=1) * R * T if potential_of(self.case)[0] == "Helmholtz energy" else gibbs
 
 
 def repaired(amount: np.ndarray, atoms: np.ndarray, charge: np.ndarray) -> np.ndarray:

@@ -56,16 +56,16 @@ def _without(followers: np.ndarray, rows: np.ndarray) -> tuple[np.ndarray, int]:
 def further_rows(contents: Contents, amount: np.ndarray, temperature: float, holds: str, heat: str, own: float) -> np.ndarray:
     """Rows (2, N) on δn/√n besides the identity: √(n/N) to be projected out at held pressure, and heat if adiabatic.
 
-    H = 1/n at held volume, less 1/N at held pressure; adiabatic, plus e_i e_j/(R T² C) with e the internal energies (held
-    volume) or enthalpies, C the heat capacity of contents and vessel; zero rows where a part is absent.
+    H = 1/n at held volume, less 1/N at held pressure and for mole fractions; adiabatic, plus e_i e_j/(R T² C) with e the
+    internal energies (a gas at held volume) or enthalpies, C the heat capacity of contents and vessel; zero rows where a
+    part is absent.
     """
     rows = np.zeros((2, len(amount)))
     root = np.sqrt(amount)
-    if holds == "pressure":
+    if contents.shared(holds):
         rows[0] = root / np.sqrt(np.sum(amount))
     if heat == "adiabatic":
-        less = 1.0 if holds == "volume" else 0.0
-        energy = R * temperature * (contents.molar(temperature)[1] - less)
+        energy = R * temperature * (contents.molar(temperature)[1] - contents.less(holds))
         capacity = contents.heat_capacity(amount, temperature, holds) + own
         rows[1] = energy * root / (temperature * np.sqrt(R * capacity))
     return rows

@@ -6,6 +6,7 @@ import numpy as np
 
 from .case import Case, charged
 from .endpoint import Kind, Verdict
+from .mechanism.phase import FRACTION, LITRE, PER_LITRE, SOLUTION
 from .trajectory import Trajectory
 
 NOTABLE_RISE = {"temperature": 50.0, "pressure": 1.2}
@@ -13,6 +14,8 @@ NOTABLE_RISE = {"temperature": 50.0, "pressure": 1.2}
 CAUTION = ("a model is not a safety case: a rise of temperature or pressure like this can hurt people. Measure it "
            "(calorimetry), follow the local codes, and have a licensed or otherwise competent person judge it.")
 _SHOWN = 8
+ACTIVITIES = {PER_LITRE: "activities are concentrations over 1 mol/L", FRACTION: "activities are mole fractions"}
+"""What stands for the activities of a solution, by its standard state."""
 
 
 def summary(case: Case, run: Trajectory, verdict: Verdict, title: str = "") -> str:
@@ -51,7 +54,8 @@ def notable(run: Trajectory) -> bool:
 
 def _mechanism(case: Case) -> str:
     m = case.mechanism
-    return f"{m.name}: {len(m.species)} species, {counted(len(m.reactions), 'reaction')}, {m.phase}"
+    state = f" ({ACTIVITIES[m.standard_state]})" if m.standard_state else ""
+    return f"{m.name}: {len(m.species)} species, {counted(len(m.reactions), 'reaction')}, {m.phase}{state}"
 
 
 def _vessel(case: Case) -> str:
@@ -59,14 +63,18 @@ def _vessel(case: Case) -> str:
     if case.holds == "pressure":
         held = f"constant pressure {pressure_text(case.charge.pressure)}, {volume_text(case.charge.volume)} at the start"
     inertia = f", thermal inertia {case.thermal_inertia:g}" if case.thermal_inertia != 1 else ""
-    return f"closed, {held}, {case.heat}{inertia}"
+    inert = f", inert heat capacity {case.inert_heat_capacity:.5g} J/K" if case.inert_heat_capacity else ""
+    return f"closed, {held}, {case.heat}{inertia}{inert}"
 
 
 def _charge(case: Case) -> str:
-    shares = sorted(charged(case).items(), key=lambda item: -item[1])
-    parts = ", ".join(f"{name} {100 * x:.4g} %" for name, x in shares[:_SHOWN])
+    shares, c = sorted(charged(case).items(), key=lambda item: -item[1]), case.charge
     more = f" and {len(shares) - _SHOWN} more" if len(shares) > _SHOWN else ""
-    c = case.charge
+    if case.mechanism.phase == SOLUTION:
+        total = float(np.sum(c.concentration)) / LITRE
+        parts = ", ".join(f"{name} {x * total:.4g}" for name, x in shares[:_SHOWN])
+        return f"{c.temperature:.6g} K; in mol/L {parts}{more}"
+    parts = ", ".join(f"{name} {100 * x:.4g} %" for name, x in shares[:_SHOWN])
     return f"{c.temperature:.6g} K, {pressure_text(c.pressure)}; by amount {parts}{more}"
 
 
@@ -83,13 +91,15 @@ def _milestones(run: Trajectory) -> list[str]:
 
 
 def _end(run: Trajectory) -> list[str]:
-    state = f"{time_text(float(run.time[-1]))}: {run.temperature[-1]:.6g} K, {pressure_text(float(run.pressure[-1]))}"
+    state = f"{time_text(float(run.time[-1]))}: {run.temperature[-1]:.6g} K{_at_pressure(float(run.pressure[-1]))}"
     if run.volume[-1] != run.volume[0]:
         state += f", {volume_text(float(run.volume[-1]))}"
     lines = [state if run.complete else f"{state} (incomplete: {run.reason})"]
-    x = run.mole_fraction[-1]
-    shown = [f"{run.species[k]} {x[k]:.4g}" for k in np.argsort(-x)[: _SHOWN + 4] if x[k] > 1e-12]
-    return lines + _wrapped("mole fractions " + ", ".join(shown))
+    x, unit, what = run.mole_fraction[-1], 1.0, "mole fractions"
+    if np.isnan(run.pressure[-1]):
+        unit, what = float(np.sum(run.concentration[-1])) / LITRE, "concentrations in mol/L"
+    shown = [f"{run.species[k]} {x[k] * unit:.4g}" for k in np.argsort(-x)[: _SHOWN + 4] if x[k] > 1e-12]
+    return lines + _wrapped(f"{what} " + ", ".join(shown))
 
 
 def _equilibrium(verdict: Verdict) -> list[str]:
@@ -97,7 +107,7 @@ def _equilibrium(verdict: Verdict) -> list[str]:
     own, full = verdict.target.own, verdict.target.full
     lines = _wrapped(f"{verdict.kind.value}: {verdict.sentence}")
     if verdict.apart:
-        lines.append(f"(the elements' equilibrium: {full.temperature:.6g} K, {pressure_text(full.pressure)})")
+        lines.append(f"(the elements' equilibrium: {full.temperature:.6g} K{_at_pressure(full.pressure)})")
     lines.append(f"{'':<18}{'run':>12}{'equilibrium':>13}{'deviation':>11}")
     lines.append(f"{'temperature':<18}{own.temperature * (1 + verdict.temperature_deviation):>12.6g}{own.temperature:>13.6g}"
                  f"{verdict.temperature_deviation:>11.1e}")
@@ -131,6 +141,11 @@ def time_text(seconds: float) -> str:
         if abs(seconds) >= factor:
             return f"{seconds / factor:.5g} {unit}"
     return f"{seconds / 1e-9:.5g} ns"
+
+
+def _at_pressure(pascals: float) -> str:
+    """A pressure behind a comma; nothing where there is none, as in a solution."""
+    return "" if np.isnan(pascals) else f", {pressure_text(pascals)}"
 
 
 def pressure_text(pascals: float) -> str:

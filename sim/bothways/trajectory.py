@@ -75,7 +75,7 @@ class Trajectory:
     Parameters
     ----------
     time : (nt,) [s], increasing.
-    temperature, pressure, volume : (nt,) [K], [Pa], [m3].
+    temperature, pressure, volume : (nt,) [K], [Pa], [m3]; the pressure of a solution is NaN.
     amount : (nt, ns) [mol].
     potential : (nt,) [`potential_units`: "J" or "J K-1"], the function of state named by `potential_name`
         ("Helmholtz energy", "Gibbs energy", "negative entropy") that may not rise in this vessel.
@@ -198,6 +198,8 @@ def write_trajectory(path: StrPath, trajectory: Trajectory, replace: bool = Fals
 
 
 def _described(variable: Variable, trajectory: Trajectory) -> Variable:
+    if variable.name == "pressure" and np.all(np.isnan(trajectory.pressure)):
+        return dataclasses.replace(variable, long_name="pressure (NaN: it plays no part in a solution)")
     if variable.name != "potential":
         return variable
     name, units = trajectory.potential_name, trajectory.potential_units

@@ -18,6 +18,7 @@ from .constants import GAS_CONSTANT as _R
 from .errors import InputError
 from .kernels import equations as kernel
 from .mechanism import Mechanism, Tables, build_tables, table_view
+from .mechanism.phase import SOLUTION, less, shared
 
 HEAT = ("isothermal", "adiabatic")
 HOLDS = ("volume", "pressure")
@@ -49,6 +50,9 @@ class Equations:
         if self.holds not in HOLDS or self.heat not in HEAT:
             raise InputError(f"no vessel that holds '{self.holds}', '{self.heat}'",
                              expected=f"holds: {' or '.join(HOLDS)}; heat: {' or '.join(HEAT)}")
+        if self.holds == "pressure" and self.mechanism.phase == SOLUTION:
+            raise InputError("a solution at held pressure", expected="holds: volume",
+                             remedy="its volume is constant and pressure plays no part")
         if self.holds == "pressure" and not self.pressure > 0:
             raise InputError(f"pressure {self.pressure} Pa", expected="a positive pressure where it is held")
 
@@ -63,6 +67,7 @@ class Equations:
         vessel = np.zeros(kernel.VESSEL_SIZE)
         vessel[kernel.HOLDS], vessel[kernel.HEAT] = HOLDS.index(self.holds), HEAT.index(self.heat)
         vessel[kernel.PRESSURE], vessel[kernel.HEAT_CAPACITY] = self.pressure, self.heat_capacity
+        vessel[kernel.LESS], vessel[kernel.SHARED] = less(self.mechanism, self.holds), shared(self.mechanism, self.holds)
         return vessel
 
     @cached_property

@@ -15,6 +15,7 @@ from ..contents import Contents
 from ..endpoint import Target, target_of
 from ..equilibrium import Equilibrium, equilibria
 from ..errors import InputError
+from ..mechanism.phase import SOLUTION
 from ..outfile import check_writable, write_whole
 from ..report import pressure_text, volume_text
 from ..units import parse_quantity
@@ -53,6 +54,9 @@ def act(chosen: argparse.Namespace) -> int:
         check_writable(chosen.csv, chosen.replace)
     if chosen.plot is not None:
         _check_plot(chosen)
+    if chosen.pressures is not None and case.mechanism.phase == SOLUTION:
+        raise InputError("pressures for a solution", expected="--temperatures, or neither", entry="--pressures",
+                         remedy="leave it out: pressure plays no part in a solution")
     target = target_of(case)
     found = _found(case, target, chosen)
     _check_ranges(case, found, chosen.temperatures is not None)
@@ -141,7 +145,7 @@ def _single(case: Case, target: Target, found: Equilibrium, chosen: argparse.Nam
         heat = 0.0  # round-off of a difference of totals
     lines = [f"{'equilibrium':<14}{case.mechanism.name}, {'elements' if elements else 'what the reactions conserve'} held; "
              f"{heat_held}, constant {held}",
-             f"{'state':<14}{found.temperature:.6f} K, {pressure_text(found.pressure)}, {volume_text(found.volume)}",
+             f"{'state':<14}{found.temperature:.6f} K, {_pressure(found)}{volume_text(found.volume)}",
              f"{'change of H':<14}{heat:.6g} J from the charge"]
     if target.apart and not elements:
         lines.append(f"{'held apart by':<14}{', '.join(target.apart)} (without that, --elements: "
@@ -157,9 +161,14 @@ def _table(found: Sequence[Equilibrium]) -> list[str]:
     x = np.array([e.mole_fraction for e in found])
     top = np.argsort(-x.max(axis=0))[:_COLUMNS]
     names = found[0].mechanism.names
-    lines = [f"{'T / K':>10}{'p / bar':>12}" + "".join(f"{names[k]:>12}" for k in top)]
-    return lines + [f"{e.temperature:>10.2f}{e.pressure / 1e5:>12.5g}" + "".join(f"{e.mole_fraction[k]:>12.4e}" for k in top)
-                    for e in found]
+    gas = found[0].mechanism.phase != SOLUTION
+    lines = [f"{'T / K':>10}{'p / bar' if gas else '':>12}" + "".join(f"{names[k]:>12}" for k in top)]
+    return lines + [f"{e.temperature:>10.2f}{format(e.pressure / 1e5, '.5g') if gas else '':>12}"
+                    + "".join(f"{e.mole_fraction[k]:>12.4e}" for k in top) for e in found]
+
+
+def _pressure(found: Equilibrium) -> str:
+    return "" if found.mechanism.phase == SOLUTION else f"{pressure_text(found.pressure)}, "
 
 
 def _csv(found: Sequence[Equilibrium]) -> str:

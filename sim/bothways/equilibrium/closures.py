@@ -1,4 +1,4 @@
-"""The equilibrium of a charge where T and V, T and p, U and V, or H and p are given."""
+"""The equilibrium of a charge where T and V, T and p, U and V, or H and p are given; of solutions T and V, or H and V."""
 
 from dataclasses import dataclass, replace
 
@@ -7,13 +7,14 @@ import numpy as np
 from ..constants import GAS_CONSTANT as R
 from ..contents import Contents
 from ..errors import InputError, SolverError
+from ..mechanism.phase import GAS, SOLUTION
 from .components import Components
 from .continuation import compose
 from .newton import Point, Task, balances, jacobian, log_amounts, log_sides
 
 LOWEST, HIGHEST = 50.0, 20000.0
 """Where the temperature of an adiabatic vessel is sought [K]."""
-_FIRST_GUESS = 2000.0
+_FIRST_GUESS = {GAS: 2000.0, SOLUTION: 350.0}
 _MOST_TEMPERATURES = 200
 _CLOSE = 1e-13
 _ROUND_OFF = 4 * np.finfo(float).eps
@@ -51,7 +52,7 @@ class Held:
 class State:
     """An equilibrium of a stock: temperature [K], ln of the scaled amounts (n), and what finding it took.
 
-    energy : U at held volume, H at held pressure, over R and the scale [K]; heat_capacity : its slope [-].
+    energy : U at held volume, H at held pressure and of solutions, over R and the scale [K]; heat_capacity : its slope [-].
     round_off : of the energy, as a relative change of temperature [-]. shift : d(η, ζ)/d ln T, (r) or (r + 1).
     """
 
@@ -69,13 +70,20 @@ class State:
 def at_temperature(stock: Stock, held: Held, temperature: float, near: State | None = None) -> State:
     """The equilibrium at a given temperature [K]."""
     g, h, cp = stock.molar(temperature)
-    p_standard = stock.contents.mechanism.standard_pressure
-    swells = held.what == "pressure"
-    ratio = held.value / p_standard if swells else R * temperature * stock.scale / (held.value * p_standard)
-    task = Task(g + np.log(ratio), stock.charge, swells)
+    task = Task(g + _unit(stock, held, temperature), stock.charge, stock.contents.shared(held.what))
     point, iterations = compose(task, stock.components, _moved(near, temperature))
-    less = 0.0 if swells else 1.0
+    less = stock.contents.less(held.what)
     return _with_energy(point, task, temperature, h - less, cp - less, iterations)
+
+
+def _unit(stock: Stock, held: Held, temperature: float) -> float:
+    """What ln a holds besides ln n of the scaled amounts, or ln x where the mixture swells."""
+    contents = stock.contents
+    if held.what == "pressure":
+        return float(np.log(held.value / contents.mechanism.standard_pressure))
+    if contents.shared(held.what):
+        return 0.0
+    return float(contents.log_activity_unit(1.0, temperature, held.value) + np.log(stock.scale))
 
 
 def _moved(near: State | None, temperature: float) -> Point | None:
@@ -122,7 +130,7 @@ def at_energy(stock: Stock, held: Held, energy: float, own_heat_capacity: float,
     """
     wanted, own = energy / (R * stock.scale), own_heat_capacity / (R * stock.scale)
     low, high, last = 0.0, np.inf, np.inf
-    T = near.temperature if near else _FIRST_GUESS
+    T = near.temperature if near else _FIRST_GUESS[stock.contents.mechanism.phase]
     iterations = 0
     for _ in range(_MOST_TEMPERATURES):
         near = at_temperature(stock, held, T, near)
@@ -132,7 +140,8 @@ def at_energy(stock: Stock, held: Held, energy: float, own_heat_capacity: float,
         if abs(step) <= max(_CLOSE, near.round_off) * T or high - low <= _ROUND_OFF * T:
             return replace(near, iterations=iterations, energy_misfit=abs(step) / T)
         if (T == LOWEST and excess > 0) or (T == HIGHEST and excess < 0):
-            raise _out_of_reach(held, energy, T, excess * R * stock.scale)
+            word = "internal energy" if stock.contents.less(held.what) else "enthalpy"
+            raise _out_of_reach(word, held, energy, T, excess * R * stock.scale)
         low, high = (T, high) if excess < 0 else (low, T)
         new = _next(T, step, low, high, last)
         T, last = new, abs(new - T)
@@ -148,8 +157,7 @@ def _next(T: float, step: float, low: float, high: float, last: float) -> float:
     return newton
 
 
-def _out_of_reach(held: Held, energy: float, temperature: float, excess: float) -> InputError:
-    word, side = ("internal energy", "volume") if held.what == "volume" else ("enthalpy", "pressure")
+def _out_of_reach(word: str, held: Held, energy: float, temperature: float, excess: float) -> InputError:
     least = "at least" if excess > 0 else "at most"
-    return InputError(f"{word} {energy:.6g} J is out of reach at constant {side}",
+    return InputError(f"{word} {energy:.6g} J is out of reach at constant {held.what}",
                       expected=f"{least} {energy + excess:.6g} J, that of the equilibrium at {temperature:g} K")

@@ -8,6 +8,7 @@ import numpy as np
 from ..contents import Contents
 from ..errors import InputError
 from ..mechanism.model import Mechanism
+from ..mechanism.phase import GAS, SOLUTION
 from .closures import Held, Stock, at_energy, at_temperature
 from .components import Components
 from .conserved import conserved_by_elements, conserved_by_reactions
@@ -15,7 +16,11 @@ from .possible import possible_species
 from .result import Equilibrium, finish
 
 Amounts = np.ndarray | Sequence[float] | Mapping[str, float]
-_PAIRS = "temperature with volume, temperature with pressure, internal_energy with volume, or enthalpy with pressure"
+_PAIRS = {GAS: ({"temperature", "volume"}, {"temperature", "pressure"}, {"internal_energy", "volume"},
+                {"enthalpy", "pressure"}),
+          SOLUTION: ({"temperature", "volume"}, {"enthalpy", "volume"})}
+_STATED = {GAS: "temperature with volume, temperature with pressure, internal_energy with volume, or enthalpy with pressure",
+           SOLUTION: "temperature with volume, or enthalpy with volume, in a solution"}
 _POSITIVE = ("temperature", "pressure", "volume")
 _LARGEST = 1e300  # mol: sums stay finite
 
@@ -27,8 +32,6 @@ class GibbsMinimiser:
     """
 
     def __init__(self, mechanism: Mechanism, conserved: str | np.ndarray = "elements") -> None:
-        if mechanism.phase != "ideal gas":
-            raise InputError(f"mechanism '{mechanism.name}' is no gas but an {mechanism.phase}", expected="an ideal gas")
         self.mechanism = mechanism
         # the species alone: an equilibrium knows nothing of rates
         self._contents = Contents(replace(mechanism, reactions=()))
@@ -44,7 +47,7 @@ class GibbsMinimiser:
         asked = {"temperature": temperature, "pressure": pressure, "volume": volume,
                  "internal_energy": internal_energy, "enthalpy": enthalpy}
         given = {name: value for name, value in asked.items() if value is not None}
-        held = _checked(given)
+        held = _checked(given, self.mechanism.phase)
         _check_vessel(own_heat_capacity, reference_temperature)
         charged = self._amounts(amount)
         stock = self._stock(charged)
@@ -89,13 +92,14 @@ def equilibrium(mechanism: Mechanism, amount: Amounts, *, temperature: float | N
                 pressure: float | None = None, volume: float | None = None, internal_energy: float | None = None,
                 enthalpy: float | None = None, conserved: str | np.ndarray = "elements", own_heat_capacity: float = 0.0,
                 reference_temperature: float = 298.15, near: Equilibrium | None = None) -> Equilibrium:
-    """The equilibrium composition of an ideal-gas mixture, by minimising the Gibbs energy.
+    """The equilibrium composition of an ideal-gas mixture or an ideal solution, by minimising the Gibbs energy.
 
     Parameters
     ----------
     mechanism : its species and their potentials are used; its reactions only where `conserved` is "reactions".
     amount : of each species in the charge, (N) or by name [mol].
-    temperature [K] with volume [m3] or pressure [Pa], or internal_energy [J] with volume, or enthalpy [J] with pressure.
+    temperature [K] with volume [m3] or pressure [Pa], or internal_energy [J] with volume, or enthalpy [J] with pressure; of a
+        solution temperature or enthalpy with volume.
     conserved : "elements"; "reactions": all that no reaction changes, which may be more; or an integer matrix (m, N).
     own_heat_capacity [J/K], reference_temperature [K] : of an adiabatic vessel that shares the temperature; the energy given
         then includes own_heat_capacity × (T - reference_temperature).
@@ -177,11 +181,10 @@ def _check_elements(mechanism: Mechanism, rows: np.ndarray) -> None:
             raise InputError(f"a conserved matrix that does not conserve {label}", expected="rows that imply every element")
 
 
-def _checked(given: Mapping[str, float]) -> Held:
-    """What is held, once exactly one of the four pairs is given, in numbers that make sense."""
-    pairs = ({"temperature", "volume"}, {"temperature", "pressure"}, {"internal_energy", "volume"}, {"enthalpy", "pressure"})
-    if set(given) not in pairs:
-        raise InputError(f"given: {', '.join(given) or 'nothing'}", expected=_PAIRS)
+def _checked(given: Mapping[str, float], phase: str) -> Held:
+    """What is held, once exactly one of the pairs of this phase is given, in numbers that make sense."""
+    if set(given) not in _PAIRS[phase]:
+        raise InputError(f"given: {', '.join(given) or 'nothing'}", expected=_STATED[phase])
     for name, value in given.items():
         if isinstance(value, str):
             raise InputError(f"{name.replace('_', ' ')} '{value}' is a text", expected="a number, in SI units")

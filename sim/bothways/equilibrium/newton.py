@@ -39,7 +39,8 @@ class Point:
 class Task:
     """A composition to be found: g (n) [-] with ln n_i = -g_i + potentials (+ ζ where the mixture swells), charge (n).
 
-    swells : the pressure is held, so that ζ is an unknown; else g contains -ζ and log_total is not used.
+    swells : ζ = ln Σn is an unknown (the pressure is held, or activities are mole fractions); else g contains -ζ and
+        log_total is not used.
     """
 
     g: np.ndarray

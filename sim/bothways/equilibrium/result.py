@@ -5,7 +5,9 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..constants import GAS_CONSTANT as R
+from ..contents import Contents
 from ..mechanism.model import Mechanism
+from ..mechanism.phase import GAS
 from .closures import Held, State, Stock
 
 
@@ -15,10 +17,11 @@ class Equilibrium:
 
     amount : (N) [mol]; exactly 0 for species that the charge cannot turn into.
     mole_fraction, log_mole_fraction : (N) [-]; the logarithm is -inf for those, and finite where the fraction underflows.
-    temperature [K], pressure [Pa], volume [m3].
+    temperature [K], pressure [Pa] (NaN of a solution), volume [m3].
     conserved : (m, N) what was conserved. element_potentials : (m) [-], λ with μ_i/RT = Σ_k conserved[k, i] λ_k for every
         species present; 0 for rows that follow from the others, NaN for rows of which the charge holds nothing.
-    gibbs_energy, enthalpy, internal_energy [J], entropy [J/K] : of the contents, without the vessel.
+    gibbs_energy, enthalpy, internal_energy [J], entropy [J/K] : of the contents, without the vessel; of a solution see
+        `Contents.gibbs`, and its internal energy is taken for its enthalpy.
     heat_capacity [J/K] : dU/dT or dH/dT of the contents along equilibrium at held volume or pressure.
     iterations : Newton's, of the composition.
     balance_residual : largest change of a conserved total, relative to the sum of the sizes of its terms.
@@ -48,7 +51,7 @@ class Equilibrium:
 
     @property
     def helmholtz_energy(self) -> float:
-        """A = G - pV [J]."""
+        """A = G - pV [J]; NaN of a solution."""
         return self.gibbs_energy - self.pressure * self.volume
 
     def fraction(self, name: str) -> float:
@@ -68,18 +71,26 @@ def finish(mechanism: Mechanism, stock: Stock, held: Held, state: State, conserv
     log_total = _log_sum(state.log_amount)
     log_x = state.log_amount - log_total
     n = np.exp(state.log_amount) * stock.scale
-    total_RT = float(np.sum(n)) * R * T
-    volume, pressure = (held.value, total_RT / held.value) if held.what == "volume" else (total_RT / held.value, held.value)
+    volume, pressure = _space(stock.contents, held, float(np.sum(n)) * R * T)
     g, h, _ = stock.molar(T)
-    potential = g + log_x + np.log(pressure / stock.contents.mechanism.standard_pressure)
+    unit = stock.contents.log_activity_unit(np.exp(log_total) * stock.scale, T, volume)
+    potential = g + state.log_amount + np.log(stock.scale) + unit
     by_row, potential_residual = _row_potentials(stock, conserved[:, stock.possible], state, potential)
-    G, H = R * T * float(n @ potential), R * T * float(n @ h)
     amount = _spread(stock, n, 0.0)
+    G, H = stock.contents.gibbs(amount, T, volume), R * T * float(n @ h)
+    work = pressure * volume if stock.contents.mechanism.phase == GAS else 0.0
     return Equilibrium(
         mechanism, amount, _spread(stock, np.exp(log_x), 0.0), _spread(stock, log_x, -np.inf),
-        T, pressure, volume, conserved, by_row, G, H, H - pressure * volume, (H - G) / T,
+        T, pressure, volume, conserved, by_row, G, H, H - work, (H - G) / T,
         R * stock.scale * state.heat_capacity, state.iterations, _balance_residual(conserved, amount, charged),
         potential_residual, state.energy_misfit, state)
+
+
+def _space(contents: Contents, held: Held, total_RT: float) -> tuple[float, float]:
+    """Volume [m3] and pressure [Pa] from what is held and Σn·RT [J]; the pressure of a solution is NaN."""
+    if contents.mechanism.phase != GAS:
+        return held.value, np.nan
+    return (held.value, total_RT / held.value) if held.what == "volume" else (total_RT / held.value, held.value)
 
 
 def _log_sum(log_values: np.ndarray) -> float:

@@ -3,8 +3,9 @@
 State of constant volume: concentrations c_1…c_N [mol/m3] and T [K]; of constant pressure: amounts n_1…n_N [mol]
 and T. The bordered form carries one more unknown before T, the total concentration [mol/m3] or the volume [m3],
 with an algebraic row that ties it to the others: this keeps the Jacobian sparse where partners and expansion
-would fill it. `vessel` is (5): HOLDS, HEAT, pressure [Pa], heat capacity of the vessel itself [J/K, at constant
-volume J/(m3 K)], unused.
+would fill it. `vessel` is (6): HOLDS, HEAT, pressure [Pa], heat capacity of the vessel itself [J/K, at constant
+volume J/(m3 K)], LESS: what is taken off h/RT and cp/R to give the energy that is conserved (1 for a gas at constant
+volume, else 0), SHARED: 1 where ln a holds the total amount (a gas at constant pressure, mole fractions), else 0.
 """
 
 import numpy as np
@@ -17,8 +18,8 @@ from .layout import view
 from .rates import one_way_rates, set_derivatives, set_production
 from .thermal import set_temperature
 
-VESSEL_SIZE = 5
-HOLDS, HEAT, PRESSURE, HEAT_CAPACITY = range(4)
+VESSEL_SIZE = 6
+HOLDS, HEAT, PRESSURE, HEAT_CAPACITY, LESS, SHARED = range(VESSEL_SIZE)
 VOLUME_HELD, PRESSURE_HELD = 0.0, 1.0
 ISOTHERMAL, ADIABATIC = 0.0, 1.0
 LOWEST_TEMPERATURE, HIGHEST_TEMPERATURE = 1.0, 1e5  # [K] outside, a trial state is answered with NaN
@@ -79,7 +80,7 @@ def _heat_capacity(y, vessel, ints, work):
     """Heat capacity at constant volume or pressure of contents and vessel, per unit of the state, over R."""
     cp = view(work, ints, _CP)
     own = vessel[HEAT_CAPACITY] / R + dot(y[: cp.size], cp)
-    return own - total_of(y[: cp.size]) if vessel[HOLDS] == VOLUME_HELD else own
+    return own - vessel[LESS] * total_of(y[: cp.size]) if vessel[LESS] > 0.0 else own
 
 
 @compiled
@@ -93,9 +94,9 @@ def _heating(y, T, volume, vessel, ints, work):
 
 @compiled
 def _energies(vessel, ints, work):
-    """u/RT at constant volume, h/RT at constant pressure, (N)."""
+    """u/RT of a gas at constant volume, else h/RT, (N)."""
     enthalpy, energy = view(work, ints, _ENTHALPY), view(work, ints, _ENERGY)
-    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    less = vessel[LESS]
     for i in range(energy.size):
         energy[i] = enthalpy[i] - less
     return energy
@@ -191,12 +192,12 @@ def _temperature_row(y, T, volume, vessel, ints, work, data):
     """Puts ∂(dT/dt)/∂z into its places of `data`; the species rows stand there already.
 
     With C the heat capacity and f = dT/dt = -Σ u_i f_i/C: ∂f = -(Σ u_i ∂f_i + Σ ∂u_i f_i + f ∂C)/C, u the
-    internal energies at constant volume, the enthalpies at constant pressure.
+    internal energies of a gas at constant volume, else the enthalpies.
     """
     n = ints[at.SPECIES]
     start, row, energy = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), _energies(vessel, ints, work)
     cp, cp_slope, omega = view(work, ints, _CP), view(work, ints, _CP_SLOPE), view(work, ints, _OMEGA)
-    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    less = vessel[LESS]
     adiabatic = 1.0 if vessel[HEAT] == ADIABATIC else 0.0
     heat = _heat_capacity(y, vessel, ints, work)
     f = _heating(y, T, volume, vessel, ints, work)

@@ -22,7 +22,7 @@ from ..compiled import callback, compiled, float64_pointer
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
 from .callbacks import CONTEXT_SIZE, tables_of
-from .equations import ADIABATIC, HEAT, HEAT_CAPACITY, HOLDS, PRESSURE, PRESSURE_HELD, VOLUME_HELD
+from .equations import ADIABATIC, HEAT, HEAT_CAPACITY, HOLDS, LESS, PRESSURE, PRESSURE_HELD, SHARED
 from .layout import view
 from .thermal import polynomials
 
@@ -126,7 +126,7 @@ def mend(amount, rows, totals, matrix, residual, multiplier, head):
 @compiled
 def temperature_of(amount, T, vessel, ints, floats, head, gibbs, enthalpy, cp, slope):
     """Step 2: T at which the energy is that of the start; the last arrays stand for it then. -1 if out of reach."""
-    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    less = vessel[LESS]
     start, top, rows = view(ints, ints, _RANGE_START), view(floats, ints, _RANGE_TOP), view(floats, ints, _RANGE_ROW)
     previous = np.inf
     for attempt in range(60):
@@ -156,7 +156,7 @@ def change_of_potential(old, new, T0, T1, potential, deviation, cp0, cp1, vessel
     conservation and is left out before it can drown the rest. Of species absent before, both lack ln of the amount.
     """
     change, noise, before, after, heat = 0.0, 0.0, 0.0, 0.0, vessel[HEAT_CAPACITY] / R
-    less = 1.0 if vessel[HOLDS] == VOLUME_HELD else 0.0
+    less = vessel[LESS]
     for i in range(cp0.size):
         n0, n1 = old[i], new[i]
         before += n0
@@ -168,7 +168,7 @@ def change_of_potential(old, new, T0, T1, potential, deviation, cp0, cp1, vessel
         elif n1 > 0.0:
             change += n1 * (deviation[i] + math.log(n1) - 1.0)
             noise += n1 * (abs(potential[i]) + abs(math.log(n1)))
-    if vessel[HOLDS] == PRESSURE_HELD:
+    if vessel[SHARED] == 1.0:
         change -= bend(before, after)
     if vessel[HEAT] == ADIABATIC:
         x = (T1 - T0) / T0
@@ -237,13 +237,15 @@ def judge(exchange_pointer, verdict_pointer, context):
 @compiled
 def _reduced_potentials(amount, T, vessel, ints, floats, gibbs, out):
     """μ/RT less element terms, which no reaction changes; without ln of the amount where that is zero."""
-    reduction, standard = view(floats, ints, _REDUCTION), view(floats, ints, _STANDARD)[0]
+    reduction, standard = view(floats, ints, _REDUCTION), view(floats, ints, _STANDARD)
     total = 0.0
     for i in range(amount.size):
         total += amount[i]
-    shift = math.log(R * T / standard)
+    shift = standard[1] * math.log(T) - math.log(standard[0])
     if vessel[HOLDS] == PRESSURE_HELD:
-        shift = math.log(vessel[PRESSURE] / (standard * total))
+        shift = math.log(vessel[PRESSURE] / (R * standard[0] * total))
+    elif vessel[SHARED] == 1.0:
+        shift = -math.log(total)
     for i in range(amount.size):
         out[i] = gibbs[i] - reduction[2 * i] / T - reduction[2 * i + 1] + shift
         if amount[i] > 0.0:

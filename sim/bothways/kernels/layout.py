@@ -10,9 +10,9 @@ from collections.abc import Sequence
 from ..compiled import compiled, span
 
 SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALL_OFFS", "GROUPS", "LONG", "BLOCK", "CURVES",
-         "COLUMNS", "RESPONSES")
+         "COLUMNS", "RESPONSES", "DILUTED")
 (SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALL_OFFS, GROUPS, LONG, BLOCK, CURVES, COLUMNS,
- RESPONSES) = range(len(SIZES))
+ RESPONSES, DILUTED) = range(len(SIZES))
 
 INTS = (
     "range_start",      # (N + 1) first temperature range of each species
@@ -51,6 +51,7 @@ INTS = (
     "response_term",    # these terms
     "extra_place",      # places in `block` of what else adds to it,
     "extra_source",     # and the partials
+    "diluted_reaction",  # (Q) reactions that change the amount, where activities are mole fractions
 )
 FLOATS = (
     "range_top",        # upper temperature of each range [K]
@@ -67,7 +68,8 @@ FLOATS = (
     "group_default",    # (G) efficiency of species not named
     "group_excess",     # efficiency of the named ones above the default
     "extra_weight",     # weights of the partials named by extra_source
-    "standard",         # (1) standard pressure [Pa]
+    "amount_change",    # (Q) change of the amount in these reactions
+    "standard",         # (2) s and e of the standard concentration s·T^-e [mol/m3]: p°/R and 1 of a gas, c° and 0
 )
 WORK = (
     "seen",             # (5) see SEEN_…: what the parts of this table stand for
@@ -102,7 +104,8 @@ WORK = (
     "net_by_T",         # (R)
     "omega",            # (N) production rates
     "omega_by_T",       # (N)
-    "partial",          # (4 R + m + T + P) by molecules, further molecules, partners of terms; then the responses
+    "dilution",         # (Q + 1) what the total concentration does to their reverse rates, and 1/C
+    "partial",          # (4 R + m + T + P + Q) by molecules, further molecules, partners of terms; the responses; dilution
     "block",            # (nb + N + 16) species block of the Jacobian, dω/dC, and places for what is not wanted
     "concentration",    # (N) for which the rates stand
     "energy",           # (N) molar energy or enthalpy over RT

@@ -12,6 +12,7 @@ from .elementary import sum_at
 from .fall_off import SMALLEST_PARTNER, fall_off_constants, fall_off_slopes
 from .layout import view
 from .pressure import pressure_constants, pressure_slopes
+from .solution import dilute, dilute_partials
 from .thermal import set_slopes
 
 _REACTANT0 = at.offset_slot(at.INTS, "reactant0")
@@ -167,6 +168,7 @@ def set_rates(c, total, ints, floats, work):
     k = view(work, ints, _K_TOTAL)
     _sum_terms(view(work, ints, _K), k, ints)
     _products_of_activities(c, ints, work)
+    dilute(total, ints, floats, work)
     scale, net = view(work, ints, _REACTANT_SCALE), view(work, ints, _NET)
     forward, reverse = view(work, ints, _FORWARD), view(work, ints, _REVERSE)
     for j in range(net.size):
@@ -250,6 +252,7 @@ def set_derivatives(T, ints, floats, work):
     for j in range(bare.size):
         bare[j] = scale[j] * (forward[j] - reverse[j])
     _set_partials(ints, work)
+    dilute_partials(ints, floats, work)
     _temperature_derivatives(ints, work)
     _partner_derivatives(ints, work)
     _fill_block(ints, floats, work)
@@ -291,7 +294,7 @@ def _partner_derivatives(ints, work):
     reaction, start = view(ints, ints, _TERM_REACTION), view(ints, ints, _RESPONSE_START)
     term = view(ints, ints, _RESPONSE_TERM)
     responses = start.size // 2
-    first = out.size - by_M.size - responses
+    first = 4 * bare.size + ints[at.LONG]
     by_terms = out[first : first + by_M.size]
     for t in range(by_M.size):
         by_terms[t] = by_M[t] * bare[reaction[t]]

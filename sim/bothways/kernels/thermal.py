@@ -8,7 +8,6 @@ import math
 import numpy as np
 
 from ..compiled import compiled
-from ..constants import GAS_CONSTANT as R
 from . import layout as at
 from .elementary import exp_array
 from .fall_off import set_centres
@@ -115,12 +114,13 @@ def polynomials_at(temperatures, range_start, range_top, rows, gibbs, enthalpy, 
 
 @compiled
 def _scales(T, ints, floats, work):
-    """E_i = (p°/RT)·exp(-g_i/RT) [mol/m3] with the element terms taken off g, which change no K; and 1/E_i."""
+    """E_i = c°·exp(-g_i/RT) [mol/m3], c° = p°/RT in a gas, with the element terms taken off g, which change no K; and 1/E_i."""
     n = ints[at.SPECIES]
     gibbs, reduction = view(work, ints, _GIBBS), view(floats, ints, _REDUCTION)
     log_scale, scale = view(work, ints, _LOG_SCALE), view(work, ints, _SCALE)
     inverse_scale = view(work, ints, _INVERSE_SCALE)
-    log_standard = math.log(view(floats, ints, _STANDARD)[0] / (R * T))
+    standard = view(floats, ints, _STANDARD)
+    log_standard = math.log(standard[0]) - standard[1] * math.log(T)
     for i in range(n):
         gibbs[i] -= reduction[2 * i] / T + reduction[2 * i + 1]
         log_scale[i] = log_standard - gibbs[i]
@@ -181,9 +181,9 @@ def set_slopes(T, ints, floats, work):
         return
     n = ints[at.SPECIES]
     enthalpy, slope = view(work, ints, _ENTHALPY), view(work, ints, _SCALE_SLOPE)
-    reduction = view(floats, ints, _REDUCTION)
+    reduction, power_of_standard = view(floats, ints, _REDUCTION), view(floats, ints, _STANDARD)[1]
     for i in range(n):
-        slope[i] = (enthalpy[i] - reduction[2 * i] / T - 1.0) / T
+        slope[i] = (enthalpy[i] - reduction[2 * i] / T - power_of_standard) / T
     slope[n] = 0.0
     power, theta, k_slope = view(floats, ints, _POWER), view(floats, ints, _THETA), view(work, ints, _K_SLOPE)
     for e in range(k_slope.size):

@@ -3,7 +3,8 @@
 Entry (i, s) of the block is Σ ν_ij ∂w_j/∂c_s at constant total of the partners, and behind the block stands
 ∂omega_i/∂C, the response to that total. `partial` (kernels/rates.py sets it) holds ∂w/∂c by the four molecules of every
 reaction, by the further molecules of long sides, then ∂w/∂[M] of every term (∂w/∂C of laws of pressure), and behind
-these Σ ν ∂w/∂[M] over the terms of one partner group for each species they touch: its responses.
+these Σ ν ∂w/∂[M] over the terms of one partner group for each species they touch: its responses. Last stands ∂w/∂C of
+the reactions whose reverse rate holds the total concentration (kernels/solution.py).
 """
 
 from collections import defaultdict
@@ -33,6 +34,9 @@ def jacobian_sums(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     extras: Extras = []
     targets = _molecules(net, ints, n, extras)
     _partners(net, ints, floats, 4 * r + len(ints["long_side"]), extras)
+    last = 4 * r + len(ints["long_side"]) + len(ints["term_reaction"]) + len(ints["response_start"]) // 2
+    extras += [((i, TOTAL), last + q, float(count)) for q, j in enumerate(ints["diluted_reaction"])
+               for i, count in net[j].items()]
     wanted = {place for row in targets for place in row if place} | {place for place, _, _ in extras if place[1] != TOTAL}
     columns = sorted(wanted | {(i, i) for i in range(n)}, key=lambda place: (place[1], place[0]))
     where = {place: k for k, place in enumerate(columns)} | {(i, TOTAL): len(columns) + i for i in range(n)}

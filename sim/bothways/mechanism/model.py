@@ -77,7 +77,10 @@ class Reaction:
 
 @dataclass(frozen=True)
 class Mechanism:
-    """A mechanism; `document` is what it was made from, key by key, and `file` where that stood."""
+    """A mechanism; `document` is what it was made from, key by key, and `file` where that stood.
+
+    standard_pressure : [Pa] of a gas, NaN of a solution. standard_state : of a solution, "1 mol/L" or "mole fraction".
+    """
 
     name: str
     phase: str
@@ -89,6 +92,7 @@ class Mechanism:
     reactions: tuple[Reaction, ...]
     document: Mapping[str, Any] = field(repr=False)
     file: object = field(default=None, repr=False, compare=False)
+    standard_state: str = ""
 
     @cached_property
     def names(self) -> tuple[str, ...]:

@@ -1,21 +1,25 @@
 """From a plain document (what a TOML file holds, or a dict made in Python) to a Mechanism."""
 
-from collections.abc import Mapping
+from collections.abc import Mapping, Sequence
 from typing import Any
 
 from ..entry import Entry, odd_character
 from ..errors import InputError, shown
+from ..rates.law import PressureNodes, Series
 from ..thermo import read_potential
+from ..thermo.polynomial import LARGEST
 from ..units import UnitSystem, unit_system
 from .elements import ATOMIC_MASS, check_atoms, parse_formula, unknown_element
 from .equation import ARROWS, is_coefficient
-from .model import Mechanism, Species, copy_document
+from .model import Mechanism, Reaction, Species, copy_document
+from .phase import GAS, PHASES, SOLUTION, read_standard
 from .reactions import read_reactions
 
-PHASES = ("ideal gas",)
 JOINS = ("closed", "as published")
-_LEAST_HEAT_CAPACITY = {"ideal gas": 1.0}
-"""cp/R of any species must be above this [-]: in a gas cV = cp - R must be positive."""
+_OF_PRESSURE = PressureNodes, Series
+_LEAST_HEAT_CAPACITY = {GAS: 1.0, SOLUTION: -LARGEST}
+"""cp/R of any species must be above this [-]: in a gas cV = cp - R must be positive; in a solution that of an ion may be
+negative, and the whole charge's must be positive (case.py)."""
 
 
 def build(document: Mapping[str, Any], file: object = None) -> Mechanism:
@@ -27,13 +31,15 @@ def build(document: Mapping[str, Any], file: object = None) -> Mechanism:
     head = _head(top)
     units, masses = head.units, {**ATOMIC_MASS, **_building_blocks(top)}
     name, phase = head.text("name"), head.text("phase", choices=PHASES)
-    standard = head.quantity("standard_pressure", "pressure", sign="positive")
+    standard, state = read_standard(head, phase)
     joins = head.text("joins", "closed", choices=JOINS)
     sources = head.texts("sources", ())
     head.done(also=("units",))
     species = _species(top, units, masses, standard, _LEAST_HEAT_CAPACITY[phase])
     reactions = read_reactions(top, units, species)
-    return Mechanism(name, phase, standard, joins, sources, masses, species, reactions, copy_document(document), file)
+    if phase == SOLUTION:
+        _refuse_partners(top, reactions)
+    return Mechanism(name, phase, standard, joins, sources, masses, species, reactions, copy_document(document), file, state)
 
 
 def _head(top: Entry) -> Entry:
@@ -126,3 +132,12 @@ def _counted(entry: Entry, masses: Mapping[str, float]) -> dict[str, int]:
             raise unknown_element(symbol, masses)
     check_atoms(counts)
     return {symbol: int(count) for symbol, count in counts.items()}
+
+
+def _refuse_partners(top: Entry, reactions: Sequence[Reaction]) -> None:
+    """Collision partners and laws of pressure belong to gases: an error where a solution has one."""
+    for number, reaction in enumerate(reactions, 1):
+        if reaction.equation.partner or any(term.partner or isinstance(term.law.part(), _OF_PRESSURE) for term in reaction.terms):
+            raise top.error("a collision partner or a law of pressure in a solution", expected="a law of temperature alone",
+                            key=f"reaction {number} '{reaction.equation}'",
+                            remedy="state the rate constant of the solution, and the solvent as a species where it reacts")

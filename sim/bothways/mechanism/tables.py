@@ -4,12 +4,12 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from ..constants import GAS_CONSTANT
 from ..kernels import layout
 from ..thermo.polynomial import extended
 from .jacobian_sums import jacobian_sums, signed_lists
 from .law_tables import law_tables
 from .model import Mechanism
+from .phase import FRACTION, GAS, standard_concentration
 
 _REDUCTION_TEMPERATURES = np.array([300.0, 500.0, 1000.0, 2000.0, 3000.0])
 _LARGEST_SUM = 650.0  # of ln E over one side; exp overflows at 709
@@ -42,11 +42,11 @@ def build_tables(mechanism: Mechanism) -> Tables:
 
 def _build(mechanism: Mechanism) -> Tables:
     ints: dict[str, np.ndarray] = {}
-    floats: dict[str, np.ndarray] = {"standard": np.array([mechanism.standard_pressure])}
+    floats: dict[str, np.ndarray] = {"standard": np.array(standard_concentration(mechanism))}
     _thermo(mechanism, ints, floats)
     sides = _sides(mechanism, ints)
     law_tables(mechanism, ints, floats)
-    _stoichiometry(mechanism, ints)
+    _stoichiometry(mechanism, ints, floats)
     jacobian_sums(mechanism, ints, floats)
     packed_ints, packed_floats, work_size = _pack(mechanism, ints, floats)
     return Tables(packed_ints, packed_floats, work_size, _lowest_temperature(ints, floats, sides))
@@ -57,7 +57,8 @@ def _thermo(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     for k, species in enumerate(mechanism.species):
         whole = extended(mechanism.ranges(k))
         shifted = whole.rows.copy()
-        shifted[:, 8] -= np.log(mechanism.standard_pressure / species.standard_pressure)
+        if mechanism.phase == GAS:
+            shifted[:, 8] -= np.log(mechanism.standard_pressure / species.standard_pressure)
         tops.append(whole.boundaries[1:])
         rows.append(shifted)
         start.append(start[-1] + len(shifted))
@@ -104,12 +105,15 @@ def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
     return sides
 
 
-def _stoichiometry(mechanism: Mechanism, ints: dict) -> None:
+def _stoichiometry(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     rows: list[tuple[list[int], list[int]]] = [([], []) for _ in mechanism.species]
     for j, reaction in enumerate(mechanism.reactions):
         for name, count in reaction.net.items():
             rows[mechanism.index(name)][count < 0].extend([j] * abs(count))
     ints["nu_start"], ints["nu_reaction"] = signed_lists(rows)
+    changes = [sum(r.net.values()) if mechanism.standard_state == FRACTION else 0 for r in mechanism.reactions]
+    ints["diluted_reaction"] = np.flatnonzero(changes)
+    floats["amount_change"] = np.array([change for change in changes if change])
 
 
 def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, np.ndarray, int]:
@@ -118,7 +122,7 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
              "BODIES": len(ints["body_term"]), "FALL_OFFS": len(ints["fall_term"]),
              "GROUPS": len(floats["group_default"]), "LONG": len(ints["long_side"]),
              "BLOCK": len(ints["block_row"]), "CURVES": len(ints["curve_term"]), "COLUMNS": len(ints["column_start"]) - 1,
-             "RESPONSES": len(ints["response_start"]) // 2}
+             "RESPONSES": len(ints["response_start"]) // 2, "DILUTED": len(ints["diluted_reaction"])}
     header = [sizes[name] for name in layout.SIZES]
     lengths = [[np.size(ints[name]) for name in layout.INTS], [np.size(floats[name]) for name in layout.FLOATS],
                _work_lengths(sizes)]
@@ -137,7 +141,8 @@ def _work_lengths(sizes: dict[str, int]) -> list[int]:
                "pressure": 1, "column": columns, "column_slope": columns,
                "log_k": x, "k_limit": x, "k_slope": x, "centre_exponent": 3 * fall, "centre_part": 3 * fall,
                "partner": sizes["GROUPS"], "log_partner": sizes["GROUPS"], "k": t, "k_by_T": t, "k_by_M": t,
-               "partial": 4 * r + sizes["LONG"] + t + sizes["RESPONSES"], "block": sizes["BLOCK"] + n + layout.NOT_WANTED}
+               "partial": 4 * r + sizes["LONG"] + t + sizes["RESPONSES"] + sizes["DILUTED"], "dilution": sizes["DILUTED"] + 1,
+               "block": sizes["BLOCK"] + n + layout.NOT_WANTED}
     by_name |= dict.fromkeys(("gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T",
                               "concentration", "energy", "border_column"), n)
     by_name |= dict.fromkeys(("log_centre", "log_centre_slope", "log_broadening", "broadening", "centre", "fall_ratio",
@@ -148,11 +153,12 @@ def _work_lengths(sizes: dict[str, int]) -> list[int]:
 def _lowest_temperature(ints: dict, floats: dict, sides: list[list[list[int]]]) -> float:
     """The lowest temperature [K] on a grid at which no side's sum of ln E leaves the range of exp."""
     reduction = floats["reduction"].reshape(-1, 2)
+    size, power = floats["standard"]
     longest = max((len(m) for both in sides for m in both), default=1)
     n = len(reduction)
     padded = np.array([m + [n] * (longest - len(m)) for both in sides for m in both], dtype=int).reshape(-1, longest)
     for T in (50.0, 75.0, 100.0, 125.0, 150.0, 175.0, 200.0, 250.0, 300.0, 400.0, 500.0):
-        log_scale = np.log(floats["standard"][0] / (GAS_CONSTANT * T)) - _g(ints, floats, T) + reduction @ [1 / T, 1.0]
+        log_scale = np.log(size) - power * np.log(T) - _g(ints, floats, T) + reduction @ [1 / T, 1.0]
         sums = np.append(log_scale, 0.0)[padded].sum(axis=1)
         if np.max(np.abs(np.concatenate([log_scale, sums]))) < _LARGEST_SUM:
             return T

@@ -2,6 +2,7 @@
 
 from collections.abc import Sequence
 
+import numpy as np
 from matplotlib.figure import Figure
 
 from ..outfile import StrPath
@@ -64,5 +65,7 @@ def _panels(trajectory: Trajectory, chosen: Selection) -> list[Panel]:
 
 def _pressure_panel(trajectory: Trajectory) -> Panel | None:
     highest = float(trajectory.pressure.max())
+    if np.isnan(highest):
+        return None
     name, unit = next((name, unit) for name, unit, least in PRESSURE_UNITS if highest >= least)
     return state_panel(f"pressure / {name}", trajectory.pressure / unit, HEIGHTS["pressure"])

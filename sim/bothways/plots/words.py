@@ -4,6 +4,8 @@ import tomllib
 from collections.abc import Mapping, Sequence
 from typing import Any
 
+import numpy as np
+
 from ..report import notable, pressure_text, time_text
 from ..trajectory import Trajectory
 from .parts import View
@@ -47,7 +49,8 @@ def _facts(trajectory: Trajectory) -> str:
     """Mechanism, vessel, start."""
     vessel = case_of(trajectory).get("vessel", {})
     held = [str(vessel.get("heat", "")), f"constant {vessel['holds']}" if "holds" in vessel else ""]
-    start = f"{trajectory.temperature[0]:.6g} K and {pressure_text(float(trajectory.pressure[0]))} at the start"
+    p = float(trajectory.pressure[0])
+    start = f"{trajectory.temperature[0]:.6g} K{'' if np.isnan(p) else f' and {pressure_text(p)}'} at the start"
     size = f"{len(trajectory.species)} species, {len(trajectory.reactions)} reaction{'s' * (len(trajectory.reactions) != 1)}"
     mechanism = f"mechanism {trajectory.mechanism_name} ({size})"
     return "; ".join(filter(None, (mechanism, ", ".join(filter(None, held)), start)))

@@ -31,10 +31,10 @@ class ConstantHeatCapacity:
 
 
 def read(entry: Entry) -> ConstantHeatCapacity:
-    """The form from its table; errors: S and G both or neither stated, cp or `at` not positive."""
+    """The form from its table; errors: S and G both or neither stated, `at` not positive."""
     at = entry.quantity("at", "temperature", sign="positive")
     H = entry.quantity("H", "molar energy")
-    cp = entry.quantity("cp", "molar heat capacity", sign="positive")
+    cp = entry.quantity("cp", "molar heat capacity")
     if ("S" in entry.data) == ("G" in entry.data):
         raise entry.error("S and G are " + ("both stated" if "S" in entry.data else "both missing"),
                           expected="one of S (standard entropy) and G (standard Gibbs energy of formation)")
