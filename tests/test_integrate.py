@@ -4,8 +4,8 @@ import numpy as np
 import pytest
 
 from bothways.integrate import METHODS, OWN_METHODS, Status, integrate
-from bothways.integrate import rosenbrock as ros
-from bothways.integrate.compiled_methods import Stepper
+from bothways.integrate import stepping
+from bothways.integrate.compiled_methods import RosenbrockStepper
 from bothways.integrate.pattern import plan
 from bothways.integrate.rosenbrock_tables import RODAS5P
 from bothways.integrate.sparse_lu import dense_factor, dense_solve, factor, solve, unpermute
@@ -50,12 +50,12 @@ def test_order_of_convergence():
 
 def fixed(h, end=2.0):
     """Euler's rigid body to `end` with fixed steps."""
-    stepper = Stepper(problem(smooth_f, smooth_J, (1.0, 0.5, 0.9), end, 1e30, 1e30))
+    stepper = RosenbrockStepper(problem(smooth_f, smooth_J, (1.0, 0.5, 0.9), end, 1e30, 1e30))
     for k in range(round(end / h)):
         stepper.memory[:] = 0.0
-        stepper.memory[ros.TIME], stepper.memory[ros.STEP] = k * h, h
+        stepper.memory[stepping.TIME], stepper.memory[stepping.STEP] = k * h, h
         status, written = stepper.advance((k + 1) * h)
-        assert status == ros.REACHED and written == 1
+        assert status == stepping.REACHED and written == 1
     return stepper.z.copy()
 
 
@@ -124,9 +124,9 @@ def test_a_wrong_coefficient_is_seen():
     c = [list(row) for row in RODAS5P.c]
     c[4][2] *= 1 + 1e-4
     task = problem(*PROBLEMS["OREGO"][:3], 30.0, 1e-8, 1e-14)
-    good, bad = Stepper(task), Stepper(task, replace(RODAS5P, c=tuple(map(tuple, c))))
+    good, bad = RosenbrockStepper(task), RosenbrockStepper(task, replace(RODAS5P, c=tuple(map(tuple, c))))
     for stepper in (good, bad):
         assert stepper.begin()
-        while stepper.advance(30.0)[0] == ros.BUFFER_FULL:
+        while stepper.advance(30.0)[0] == stepping.BUFFER_FULL:
             pass
-    assert bad.counts[ros.STEPS] > 3 * good.counts[ros.STEPS] or np.max(np.abs(bad.z / good.z - 1)) > 1e-5
+    assert bad.counts[stepping.STEPS] > 3 * good.counts[stepping.STEPS] or np.max(np.abs(bad.z / good.z - 1)) > 1e-5

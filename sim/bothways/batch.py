@@ -37,7 +37,7 @@ def prepare(case: Case, say: Callable[[str], None] = lambda text: None) -> bool:
     new = equations.prepare(say)
     task = monitored(case, equations)
     if case.method in OWN_METHODS:
-        warm_up(task.problem)
+        warm_up(task.problem, case.method)
     Recorder(case, equations).columns()
     return new
 

@@ -6,21 +6,21 @@
 from . import compiled_methods, scipy_methods
 from .interface import CompiledSystem, Monitor, Outcome, Problem, Status
 
-OWN_METHODS = ("Rosenbrock",)
+OWN_METHODS = tuple(compiled_methods.STEPPERS)
 METHODS = (*OWN_METHODS, *scipy_methods.METHODS)
 DEFAULT_METHOD = "Rosenbrock"
 
 
 def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
     """Integrates a problem with a named method, telling the monitor of every accepted step."""
-    if method in scipy_methods.METHODS:
+    if method not in OWN_METHODS:
         return scipy_methods.integrate(problem, method, monitor)
-    return compiled_methods.integrate(problem, monitor)
+    return compiled_methods.integrate(problem, method, monitor)
 
 
-def warm_up(problem: Problem) -> None:
-    """Compiles the own methods by one step too short to matter, told to nobody."""
-    stepper = compiled_methods.Stepper(problem)
+def warm_up(problem: Problem, method: str = DEFAULT_METHOD) -> None:
+    """Compiles one of the own methods by one step too short to matter, told to nobody."""
+    stepper = compiled_methods.STEPPERS[method](problem)
     stepper.begin()
     stepper.advance(1e-30)
 

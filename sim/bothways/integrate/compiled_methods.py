@@ -1,12 +1,15 @@
 """Driver of the compiled methods: hands over addresses and buffers, chunk after chunk, so that Ctrl-C is heard."""
 
 import time
+from collections.abc import Callable
 from dataclasses import dataclass, field
 from functools import lru_cache
 
 import numpy as np
 
+from . import bdf, stepping
 from . import rosenbrock as ros
+from .differences import LEADING, ROWS
 from .interface import MOST_REFUSED, MOST_STEPS, MOST_STEPS_IF_ASKED, CompiledSystem, Monitor, Outcome, Problem, Status
 from .pattern import SparsePlan, plan
 from .rosenbrock_tables import RODAS5P, RosenbrockTable
@@ -19,10 +22,10 @@ STALLED = -1
 _REASONS = {
     STALLED: f"{MOST_REFUSED} steps were refused: round-off drives them, and what is left is too slow for double precision "
              "to tell from it; shorten the time",
-    ros.TOO_SMALL: "the step became too small to move on; the tolerances may be tighter than double precision can meet: "
+    stepping.TOO_SMALL: "the step became too small to move on; the tolerances may be tighter than double precision can meet: "
                    "loosen rtol, or raise atol",
-    ros.NOT_FINITE: "the right-hand side is not finite at the start: check charge and temperature",
-    ros.TOO_MANY: "{steps} steps were not enough; loosen rtol or shorten the time",
+    stepping.NOT_FINITE: "the right-hand side is not finite at the start: check charge and temperature",
+    stepping.TOO_MANY: "{steps} steps were not enough; loosen rtol or shorten the time",
 }
 
 
@@ -34,12 +37,11 @@ def _plan(rows: bytes, starts: bytes, tail: int) -> SparsePlan:
 
 @dataclass
 class Stepper:
-    """A compiled Rosenbrock integration between chunks: tables, memory and counters; `advance` goes on."""
+    """A compiled integration between chunks: addresses, memory and counters. A method begins it and lets it advance."""
 
     problem: Problem
-    table: RosenbrockTable = RODAS5P
-    memory: np.ndarray = field(default_factory=lambda: np.zeros(ros.MEMORY_SIZE))
-    counts: np.ndarray = field(default_factory=lambda: np.zeros(ros.COUNTS_SIZE, dtype=np.int64))
+    memory: np.ndarray = field(init=False, repr=False)
+    counts: np.ndarray = field(default_factory=lambda: np.zeros(stepping.COUNTS_SIZE, dtype=np.int64), init=False)
 
     def __post_init__(self) -> None:
         system = self.system
@@ -47,14 +49,12 @@ class Stepper:
         self.plan = _plan(self.rows.tobytes(), self.starts.tobytes(), system.tail)
         columns = np.repeat(np.arange(len(self.starts) - 1), np.diff(system.pattern[1]))
         self.own = np.flatnonzero(self.rows == columns).astype(np.uint32)
-        self.z = system.start.copy()
-        self.atol = np.full(self.z.size, np.inf)
+        self.z, self.slope = system.start.copy(), np.empty(system.start.size)
+        self.rtol, self.atol = self.problem.rtol, np.full(self.z.size, np.inf)
         self.atol[system.places] = self.problem.atol
-        self.memory[ros.SMALLEST_STEP] = SMALLEST_STEP
-        self.counts[ros.STEP_LIMIT] = MOST_STEPS if self.problem.until is None else MOST_STEPS_IF_ASKED
+        self.counts[stepping.STEP_LIMIT] = MOST_STEPS if self.problem.until is None else MOST_STEPS_IF_ASKED
         chunk = CHUNK if self.problem.until is None else CHUNK_IF_ASKED
         self.times, self.states = np.empty(chunk), np.empty((chunk, self.z.size))
-        self.packed = self.table.packed()
 
     @property
     def system(self) -> CompiledSystem:
@@ -62,40 +62,103 @@ class Stepper:
         assert self.problem.compiled is not None
         return self.problem.compiled
 
+    def remember(self, size: int) -> None:
+        """Empty memory of a method."""
+        self.memory = np.zeros(size)
+        self.memory[stepping.SMALLEST_STEP] = SMALLEST_STEP
+
     def begin(self) -> bool:
-        """Chooses the first step; False where the right-hand side is not finite."""
-        self.memory[ros.STEP] = ros.begin(self.system.f, self.system.context, self.z, self.atol, self.problem.rtol,
-                                          float(self.table.order), self.problem.end)
-        return bool(np.isfinite(self.memory[ros.STEP]))
+        """Begins, or begins anew where it stands (after a corner of f); False where f is not finite there."""
+        left = self.problem.end - self.memory[stepping.TIME]
+        self.memory[stepping.STEP] = stepping.begin(self.system.f, self.system.context, self.z, self.atol, self.rtol,
+                                                    self.first_order, left, self.slope)
+        self.counts[stepping.F_CALLS] += 2
+        return bool(np.isfinite(self.memory[stepping.STEP]))
+
+    first_order = 1.0
 
     def advance(self, stop: float) -> tuple[int, int]:
         """Goes on towards `stop`: status, and how many of `times` and `states` were filled."""
+        raise NotImplementedError
+
+    def common(self) -> tuple:
+        """What every method's `advance` takes first."""
         s, p = self.system, self.plan
-        return ros.advance(s.f, s.J, s.judge, s.context, self.rows, self.starts, p.order, p.start, p.column, p.diagonal,
-                           p.target, self.own, s.mass, self.packed, self.table.gamma, float(self.table.estimator_order),
-                           self.z, self.memory, self.atol, self.problem.rtol, stop, self.times, self.states, self.counts)
+        return (s.f, s.J, s.judge, s.context, self.rows, self.starts, p.order, p.start, p.column, p.diagonal, p.target,
+                self.own, s.mass)
 
     def work(self) -> dict[str, int | float]:
         """What it took so far."""
-        names = ("steps", "rejected", "f_evaluations", "J_evaluations", "factorisations", "solves",
-                 "dense_factorisations", "rejected_by_second_law")
-        return {name: int(count) for name, count in zip(names, self.counts, strict=False)}
+        return {name: int(count) for name, count in zip(stepping.COUNTED, self.counts, strict=False)}
 
 
-def integrate(problem: Problem, monitor: Monitor) -> Outcome:
-    """Integrates a problem that has a compiled form with the Rosenbrock method Rodas5P."""
+@dataclass
+class RosenbrockStepper(Stepper):
+    """Rosenbrock methods; see rosenbrock.py."""
+
+    table: RosenbrockTable = RODAS5P
+
+    def __post_init__(self) -> None:
+        super().__post_init__()
+        self.remember(ros.MEMORY_SIZE)
+        self.packed, self.first_order = self.table.packed(), float(self.table.order)
+
+    def begin(self) -> bool:
+        """As every method, without a memory of the steps before."""
+        self.memory[ros.LAST_STEP] = 0.0
+        return super().begin()
+
+    def advance(self, stop: float) -> tuple[int, int]:
+        """Goes on towards `stop`."""
+        return ros.advance(*self.common(), self.packed, self.table.gamma, float(self.table.estimator_order), self.z,
+                           self.memory, self.atol, self.rtol, stop, self.times, self.states, self.counts)
+
+
+@dataclass
+class BDFStepper(Stepper):
+    """Backward differentiation; see bdf.py. It works to parts of the tolerances, see there."""
+
+    leading: tuple[float, ...] = LEADING
+
+    def __post_init__(self) -> None:
+        super().__post_init__()
+        self.remember(bdf.MEMORY_SIZE)
+        self.rtol, self.atol = max(bdf.RTOL_PART * self.rtol, bdf.TIGHTEST), bdf.ATOL_PART * self.atol
+        self.history, self.spacing = np.zeros((ROWS, self.z.size)), np.zeros(ROWS)
+        self.jacobian, self.lu = np.empty(self.rows.size), np.zeros(self.plan.fill)
+        self.coefficients = np.array(self.leading)
+
+    def begin(self) -> bool:
+        """As every method, at order 1."""
+        sound = super().begin()
+        bdf.restart(self.z, self.slope, self.memory, self.history, self.spacing)
+        return sound
+
+    def advance(self, stop: float) -> tuple[int, int]:
+        """Goes on towards `stop`."""
+        return bdf.advance(*self.common(), self.coefficients, self.z, self.memory, self.atol, self.rtol, stop, self.times,
+                           self.states, self.counts, self.history, self.spacing, self.jacobian, self.lu)
+
+
+STEPPERS: dict[str, Callable[[Problem], Stepper]] = {"Rosenbrock": RosenbrockStepper, "BDF": BDFStepper}
+"""The compiled methods by name."""
+
+
+def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
+    """Integrates a problem that has a compiled form with the method of that name."""
     began = time.perf_counter()
-    stepper, outcome = Stepper(problem), Outcome(Status.FINISHED, 0.0)
+    stepper, outcome = STEPPERS[method](problem), Outcome(Status.FINISHED, 0.0)
     try:
-        status = ros.REACHED if stepper.begin() else ros.NOT_FINITE
+        status = stepping.REACHED if stepper.begin() else stepping.NOT_FINITE
         for stop in (*problem.stops, problem.end):
-            if status == ros.REACHED and not _ended(problem, outcome, stepper):
+            if status == stepping.REACHED and not _ended(problem, outcome, stepper):
                 status = _until(stop, stepper, monitor, outcome)
         if status == STALLED and problem.until is not None:
             outcome.status = Status.STALLED
-        elif status != ros.REACHED:
+        elif status != stepping.REACHED:
             outcome.status = Status.GAVE_UP
-            outcome.reason = f"at {outcome.time:.6g} s " + _REASONS[status].format(steps=stepper.counts[ros.STEP_LIMIT])
+            limit = stepper.counts[stepping.STEP_LIMIT]
+            outcome.reason = f"at {outcome.time:.6g} s " + _REASONS[status].format(steps=limit)
     except KeyboardInterrupt:
         outcome.status, outcome.reason = Status.INTERRUPTED, f"interrupted at {outcome.time:.6g} s"
     outcome.counts |= stepper.work() | {"seconds": time.perf_counter() - began}
@@ -104,16 +167,16 @@ def integrate(problem: Problem, monitor: Monitor) -> Outcome:
 
 def _until(stop: float, stepper: Stepper, monitor: Monitor, outcome: Outcome) -> int:
     """Steps to `stop`, telling the monitor of each; the status."""
-    status = ros.BUFFER_FULL
-    while status == ros.BUFFER_FULL:
+    status = stepping.BUFFER_FULL
+    while status == stepping.BUFFER_FULL:
         status, written = stepper.advance(stop)
         for t, z in zip(stepper.times[:written], stepper.states[:written], strict=True):
             outcome.time = float(t)
             monitor.accepted(outcome.time, z[stepper.system.places])
-        if stepper.counts[ros.JUDGED_AGAINST] > MOST_REFUSED:
+        if stepper.counts[stepping.JUDGED_AGAINST] > MOST_REFUSED:
             return STALLED
-        if status == ros.BUFFER_FULL and _ended(stepper.problem, outcome, stepper):
-            return ros.REACHED
+        if status == stepping.BUFFER_FULL and _ended(stepper.problem, outcome, stepper):
+            return stepping.REACHED
     return status
 
 

@@ -11,53 +11,33 @@ import math
 import numpy as np
 
 from ..compiled import call, compiled
-from .sparse_lu import dense_factor, dense_solve, factor, solve, unpermute
+from .sparse_lu import dense_factor, factor
+from .stepping import (
+    BUFFER_FULL,
+    DENSE,
+    F_CALLS,
+    FACTORISATIONS,
+    J_CALLS,
+    JUDGED_AGAINST,
+    OWN_MEMORY,
+    REACHED,
+    REJECTED,
+    SMALLEST_STEP,
+    SOLVES,
+    STEP,
+    STEP_LIMIT,
+    STEPS,
+    TIME,
+    TOO_MANY,
+    TOO_SMALL,
+    error_norm,
+    set_matrix,
+    solve_either,
+)
 
-REACHED, BUFFER_FULL, TOO_SMALL, NOT_FINITE, TOO_MANY = range(5)
-TIME, STEP, LAST_STEP, LAST_ERROR, SMALLEST_STEP = range(5)
-MEMORY_SIZE = 5
-STEPS, REJECTED, F_CALLS, J_CALLS, FACTORISATIONS, SOLVES, DENSE, JUDGED_AGAINST, STEP_LIMIT = range(9)
-COUNTS_SIZE = 9
+LAST_STEP, LAST_ERROR = OWN_MEMORY, OWN_MEMORY + 1
+MEMORY_SIZE = OWN_MEMORY + 2
 _SAFETY, _SHRINK, _GROW = 0.9, 0.2, 6.0
-
-
-@compiled
-def error_norm(error, old, new, atol, rtol):
-    """Root mean square of the error estimate in units of the tolerances [-]; unknowns of infinite atol do not count."""
-    total, count = 0.0, 0
-    for i in range(error.size):
-        scale = atol[i] + rtol * max(abs(old[i]), abs(new[i]))
-        if scale < np.inf:
-            total += (error[i] / scale) ** 2
-            count += 1
-    return math.sqrt(total / count)
-
-
-@compiled
-def first_step(f, context, z, slope, atol, rtol, order, span):
-    """A first step from the size of f and of its change (Hairer, Nørsett, Wanner, vol. I, II.4)."""
-    zero = np.zeros(z.size)
-    size, speed = error_norm(z, z, zero, atol, rtol), error_norm(slope, z, zero, atol, rtol)
-    trial = 0.01 * size / speed if speed > 1e-5 and size > 1e-5 else 1e-6 * span
-    moved, changed = z + trial * slope, np.empty(z.size)
-    call(f, moved, changed, context)
-    bend = error_norm(changed - slope, z, zero, atol, rtol) / trial
-    largest = max(speed, bend)
-    h = (0.01 / largest) ** (1.0 / (order + 1.0)) if largest > 1e-15 else max(1e-6 * span, 1e-3 * trial)
-    if not h > 0.0:
-        h = 1e-12 * span
-    return min(100.0 * trial, h, span)
-
-
-@compiled
-def begin(f, context, z, atol, rtol, order, span):
-    """The first step for a start z, NaN where f is not finite there."""
-    slope = np.empty(z.size)
-    call(f, z, slope, context)
-    for value in slope:
-        if not math.isfinite(value):
-            return np.nan
-    return first_step(f, context, z, slope, atol, rtol, order, span)
 
 
 @compiled
@@ -104,10 +84,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             counts[J_CALLS] += 1
             counts[F_CALLS] += 1
             fresh = True
-        for e in range(values.size):
-            values[e] = -jacobian[e]
-        for i in range(n):
-            values[own[i]] += mass[i] / (h * gamma)
+        set_matrix(jacobian, own, mass, 1.0 / (h * gamma), values)
         sound = factor(values, order, start, column, diagonal, target, lu, row)
         counts[FACTORISATIONS] += 1
         if not sound:
@@ -132,11 +109,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             for j in range(i):
                 for k in range(n):
                     right[k] += table[1, i, j] / h * u[j, k] * mass[k]
-            if sound:
-                solve(lu, order, start, column, diagonal, right, permuted)
-                unpermute(permuted, order, u[i])
-            else:
-                dense_solve(matrix, pivots, right, u[i])
+            solve_either(sound, lu, order, start, column, diagonal, matrix, pivots, right, permuted, u[i])
             counts[SOLVES] += 1
         old, new, error = exchange[:n], exchange[n : 2 * n], exchange[2 * n :]
         for k in range(n):

@@ -1,7 +1,6 @@
 """The door to scipy's implicit methods: the independent check of every other integrator.
 
-BDF of orders 1 to 5 (L.F. Shampine, M.W. Reichelt, SIAM J. Sci. Comput. 18 (1997) 1, doi:10.1137/S1064827594276424)
-and Radau IIA of order 5 (E. Hairer, G. Wanner, Solving Ordinary Differential Equations II, 2nd ed., 1996, IV.8).
+Radau IIA of order 5 (E. Hairer, G. Wanner, Solving Ordinary Differential Equations II, 2nd ed., 1996, IV.8).
 """
 
 import time
@@ -13,7 +12,8 @@ import numpy as np
 
 from .interface import MOST_STEPS, Monitor, Outcome, Problem, Status
 
-METHODS = ("BDF", "Radau")
+METHODS = ("Radau",)
+"""Those offered; `integrate` takes the name of any other of scipy's implicit methods as well, for comparisons."""
 
 
 def _solver_class(method: str) -> Any:
