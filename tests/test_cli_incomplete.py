@@ -80,14 +80,13 @@ def test_a_case_that_leaves_every_range_of_temperature(refusals: Refusals) -> No
     assert "is out of reach" in refusals.line("run", "case.toml")
 
 
-@pytest.mark.parametrize("method", ["BDF", "Radau"])
-def test_equations_that_fail(refusals: Refusals, monkeypatch: pytest.MonkeyPatch, method: str) -> None:
+def test_equations_that_fail(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
     """A right-hand side that is NaN from 0.3 us on stops any solver before."""
     def failing(self: Equations, t: float, y: np.ndarray) -> np.ndarray:
         return f(self, t, y) if t < 3e-7 else np.full(y.size, np.nan)
 
     f = Equations.f
-    refusals.write(case=changed(CASE, ("rtol = 1e-6", f'method = "{method}"'), ('also_at = ["0.1 us", 5e-7]', "")))
+    refusals.write(case=changed(CASE, ("rtol = 1e-6", 'method = "Radau"'), ('also_at = ["0.1 us", 5e-7]', "")))
     monkeypatch.setattr(Equations, "f", failing)
     assert_kept(refusals, 3, "at ")
     assert 1e-8 < read_trajectory("run.h5").time[-1] <= 3e-7
