@@ -1,14 +1,13 @@
 """Energy, entropy and potentials of a vessel's contents, from species potentials alone."""
 
-from functools import cached_property
 from typing import Any
 
 import numpy as np
 
 from .balance import log_equilibrium_constants, reverse_constants
 from .constants import GAS_CONSTANT as R
-from .kernels.thermal import polynomials, polynomials_at
-from .mechanism import Mechanism, Tables, build_tables, table_view
+from .kernels.molar import molar_functions, molar_functions_at
+from .mechanism import Mechanism, Tables, build_tables
 from .mechanism.phase import FRACTION, PER_LITRE, less, shared, standard_concentration
 
 Array = Any
@@ -25,14 +24,10 @@ class Contents:
         self.mechanism = mechanism
         self.tables = tables or build_tables(mechanism)
 
-    @cached_property
-    def _arrays(self) -> tuple[np.ndarray, ...]:
-        return tuple(table_view(self.tables, name) for name in ("range_start", "range_top", "range_row"))
-
     def molar(self, temperature: float) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
         """g°/RT, h°/RT and cp°/R of every species [-], (N) each, at the mechanism's standard pressure."""
         out = np.empty((4, len(self.mechanism.species)))
-        polynomials(temperature, *self._arrays, *out)
+        molar_functions(temperature, 0, self.tables.ints, self.tables.floats, *out)
         return out[0], out[1], out[2]
 
     def equilibrium_constants(self, temperature: float) -> np.ndarray:
@@ -116,7 +111,7 @@ class Contents:
     def molar_at(self, temperatures: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
         """g°/RT, h°/RT and cp°/R at many temperatures (nt), (nt, N) each."""
         out = np.empty((4, len(temperatures), len(self.mechanism.species)))
-        polynomials_at(np.ascontiguousarray(temperatures), *self._arrays, *out)
+        molar_functions_at(np.ascontiguousarray(temperatures), self.tables.ints, self.tables.floats, *out)
         return out[0], out[1], out[2]
 
     def energies(self, n: np.ndarray, temperatures: np.ndarray, holds: str) -> np.ndarray:

@@ -24,7 +24,7 @@ from . import layout as at
 from .callbacks import CONTEXT_SIZE, tables_of
 from .equations import ADIABATIC, HEAT, HEAT_CAPACITY, HOLDS, LESS, PRESSURE, PRESSURE_HELD, SHARED
 from .layout import view
-from .thermal import polynomials
+from .molar import molar_functions
 
 LEDGER, N_ROWS = CONTEXT_SIZE, CONTEXT_SIZE + 1
 JUDGE_CONTEXT_SIZE = CONTEXT_SIZE + 2
@@ -38,9 +38,6 @@ LARGEST_MENDING = 1e-2
 """A mending that changes an amount by more than this part of it is refused: the step is too long."""
 COOLEST, HOTTEST = 20.0, 2e4
 
-_RANGE_START = at.offset_slot(at.INTS, "range_start")
-_RANGE_TOP = at.offset_slot(at.FLOATS, "range_top")
-_RANGE_ROW = at.offset_slot(at.FLOATS, "range_row")
 _REDUCTION = at.offset_slot(at.FLOATS, "reduction")
 _STANDARD = at.offset_slot(at.FLOATS, "standard")
 
@@ -127,12 +124,11 @@ def mend(amount, rows, totals, matrix, residual, multiplier, head):
 def temperature_of(amount, T, vessel, ints, floats, head, gibbs, enthalpy, cp, slope):
     """Step 2: T at which the energy is that of the start; the last arrays stand for it then. -1 if out of reach."""
     less = vessel[LESS]
-    start, top, rows = view(ints, ints, _RANGE_START), view(floats, ints, _RANGE_TOP), view(floats, ints, _RANGE_ROW)
     previous = np.inf
     for attempt in range(60):
         if not COOLEST < T < HOTTEST:
             return -1.0
-        polynomials(T, start, top, rows, gibbs, enthalpy, cp, slope)
+        molar_functions(T, 0, ints, floats, gibbs, enthalpy, cp, slope)
         own = vessel[HEAT_CAPACITY] / R
         energy, heat = own * (T - head[START_TEMPERATURE]), own
         for i in range(amount.size):
@@ -209,8 +205,7 @@ def judge(exchange_pointer, verdict_pointer, context):
     verdict[0] = 0.0
     if not mend(new, rows, totals, matrix, residual, multiplier, head):
         return 0
-    start, top, coefficients = view(ints, ints, _RANGE_START), view(floats, ints, _RANGE_TOP), view(floats, ints, _RANGE_ROW)
-    polynomials(T0, start, top, coefficients, scratch[0], scratch[1], scratch[2], scratch[3])
+    molar_functions(T0, 0, ints, floats, scratch[0], scratch[1], scratch[2], scratch[3])
     if vessel[HEAT] == ADIABATIC:
         T1 = temperature_of(new, T1, vessel, ints, floats, head, scratch[4], scratch[5], scratch[6], scratch[7])
         if T1 < 0.0:

@@ -15,7 +15,10 @@ SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALL_OFFS", 
  RESPONSES, DILUTED) = range(len(SIZES))
 
 INTS = (
-    "range_start",      # (N + 1) first temperature range of each species
+    "range_start",      # (S + 1) first temperature range of each species, and behind them of each transition state
+    "oscillator_start",  # (S + 1) first oscillator of each of these
+    "ladder_start",     # (S + 1) first sum over levels of each
+    "level_start",      # (ladders + 1) first level of each sum
     "reactant0", "reactant1",  # (R) first and second reactant molecule, N where there is none
     "product0", "product1",  # (R) likewise products
     "long_reaction",    # (m) further molecules of long sides: their reaction,
@@ -56,7 +59,9 @@ INTS = (
 FLOATS = (
     "range_top",        # upper temperature of each range [K]
     "range_row",        # (9 per range) coefficients
-    "reduction",        # (2 N) element terms taken off g/RT: alpha [K], beta [-]
+    "oscillator",       # (2 per oscillator) θ [K], degeneracy
+    "level",            # (2 per level) θ [K], weight
+    "reduction",        # (2 S) element terms taken off g/RT: alpha [K], beta [-]
     "log_A", "power", "theta",  # (X) expressions
     "term_sign",        # (T)
     "fall_parameter",   # (4 L) broadening

@@ -24,6 +24,13 @@ Au 196.966570 Hg 200.592 Tl 204.38 Pb 207.2 Bi 208.98040 Th 232.0377 Pa 231.0358
 """.split()
 ATOMIC_MASS = {symbol: float(value) * 1e-3 for symbol, value in zip(_G_PER_MOL[::2], _G_PER_MOL[1::2], strict=True)}
 """Molar masses of the elements [kg/mol]."""
+_IN_ORDER = """
+H He Li Be B C N O F Ne Na Mg Al Si P S Cl Ar K Ca Sc Ti V Cr Mn Fe Co Ni Cu Zn Ga Ge As Se Br Kr Rb Sr Y Zr Nb Mo Tc Ru Rh Pd
+Ag Cd In Sn Sb Te I Xe Cs Ba La Ce Pr Nd Pm Sm Eu Gd Tb Dy Ho Er Tm Yb Lu Hf Ta W Re Os Ir Pt Au Hg Tl Pb Bi Po At Rn Fr Ra Ac
+Th Pa U
+""".split()
+ATOMIC_NUMBER = {symbol: number for number, symbol in enumerate(_IN_ORDER, 1)} | {"D": 1}
+"""Atomic numbers of the elements."""
 
 _TOKEN = re.compile(r"([A-Z][a-z]?|\(|\))([0-9]*)")
 MOST_ATOMS = 1_000_000

@@ -6,10 +6,10 @@ from typing import Any
 from ..entry import Entry, odd_character
 from ..errors import InputError, shown
 from ..rates.law import PressureNodes, Series
-from ..thermo import read_potential
+from ..thermo import Substance, read_potential
 from ..thermo.polynomial import LARGEST
 from ..units import UnitSystem, unit_system
-from .elements import ATOMIC_MASS, check_atoms, parse_formula, unknown_element
+from .elements import ATOMIC_MASS, ATOMIC_NUMBER, check_atoms, parse_formula, unknown_element
 from .equation import ARROWS, is_coefficient
 from .model import Mechanism, Reaction, Species, copy_document
 from .phase import GAS, PHASES, SOLUTION, read_standard
@@ -91,9 +91,10 @@ def _one_species(entry: Entry, name: str, masses: Mapping[str, float], standard:
     source = entry.text("source", "")
     diameter = entry.quantity("collision_diameter", "length", None, sign="positive")
     well_depth = entry.quantity("well_depth", "temperature", None, sign="positive")
-    potential = read_potential(entry.table("potential"), least)
-    entry.done()
     molar_mass = sum(masses[e] * count for e, count in composition.items())
+    substance = Substance(composition, charge, molar_mass, pressure, ATOMIC_NUMBER)
+    potential = read_potential(entry.table("potential"), substance, least)
+    entry.done()
     return Species(name, composition, charge, molar_mass, potential, pressure, source, diameter, well_depth)
 
 

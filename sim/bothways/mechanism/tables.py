@@ -5,13 +5,12 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..kernels import layout
-from ..thermo.polynomial import extended
 from .jacobian_sums import jacobian_sums, signed_lists
 from .law_tables import law_tables
 from .model import Mechanism
-from .phase import FRACTION, GAS, standard_concentration
+from .phase import FRACTION, standard_concentration
+from .thermal_tables import g_over_RT, thermal_tables
 
-_REDUCTION_TEMPERATURES = np.array([300.0, 500.0, 1000.0, 2000.0, 3000.0])
 _LARGEST_SUM = 650.0  # of ln E over one side; exp overflows at 709
 
 
@@ -43,48 +42,13 @@ def build_tables(mechanism: Mechanism) -> Tables:
 def _build(mechanism: Mechanism) -> Tables:
     ints: dict[str, np.ndarray] = {}
     floats: dict[str, np.ndarray] = {"standard": np.array(standard_concentration(mechanism))}
-    _thermo(mechanism, ints, floats)
+    thermal_tables(mechanism, ints, floats)
     sides = _sides(mechanism, ints)
     law_tables(mechanism, ints, floats)
     _stoichiometry(mechanism, ints, floats)
     jacobian_sums(mechanism, ints, floats)
     packed_ints, packed_floats, work_size = _pack(mechanism, ints, floats)
     return Tables(packed_ints, packed_floats, work_size, _lowest_temperature(ints, floats, sides))
-
-
-def _thermo(mechanism: Mechanism, ints: dict, floats: dict) -> None:
-    start, tops, rows = [0], [], []
-    for k, species in enumerate(mechanism.species):
-        whole = extended(mechanism.ranges(k))
-        shifted = whole.rows.copy()
-        if mechanism.phase == GAS:
-            shifted[:, 8] -= np.log(mechanism.standard_pressure / species.standard_pressure)
-        tops.append(whole.boundaries[1:])
-        rows.append(shifted)
-        start.append(start[-1] + len(shifted))
-    ints["range_start"] = np.array(start)
-    floats["range_top"], floats["range_row"] = np.concatenate(tops), np.vstack(rows).ravel()
-    floats["reduction"] = _reduction(mechanism, ints, floats).ravel()
-
-
-def _reduction(mechanism: Mechanism, ints: dict, floats: dict) -> np.ndarray:
-    """Element terms alpha/T + beta, (N, 2), that bring g/RT near zero; being sums over elements they change no K."""
-    atoms = mechanism.element_matrix.T
-    design = np.vstack([np.hstack([atoms / t, atoms]) for t in _REDUCTION_TEMPERATURES])
-    g = np.concatenate([_g(ints, floats, t) for t in _REDUCTION_TEMPERATURES])
-    weights = np.linalg.lstsq(design, g, rcond=None)[0]
-    m = atoms.shape[1]
-    return np.column_stack([atoms @ weights[:m], atoms @ weights[m:]])
-
-
-def _g(ints: dict, floats: dict, temperature: float) -> np.ndarray:
-    """g°/RT of all species (N) in plain NumPy, so that reading a file compiles nothing."""
-    first, T = ints["range_start"][:-1], temperature
-    place = first + np.add.reduceat(floats["range_top"] <= T, first, dtype=int)
-    a = floats["range_row"].reshape(-1, 9)[place].T
-    h = -a[0] / T**2 + a[1] * np.log(T) / T + a[2] + a[3] * T / 2 + a[4] * T**2 / 3 + a[5] * T**3 / 4 + a[6] * T**4 / 5
-    s = -a[0] / (2 * T**2) - a[1] / T + a[2] * np.log(T) + a[3] * T + a[4] * T**2 / 2 + a[5] * T**3 / 3 + a[6] * T**4 / 4
-    return h + a[7] / T - s - a[8]
 
 
 def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
@@ -158,7 +122,7 @@ def _lowest_temperature(ints: dict, floats: dict, sides: list[list[list[int]]]) 
     n = len(reduction)
     padded = np.array([m + [n] * (longest - len(m)) for both in sides for m in both], dtype=int).reshape(-1, longest)
     for T in (50.0, 75.0, 100.0, 125.0, 150.0, 175.0, 200.0, 250.0, 300.0, 400.0, 500.0):
-        log_scale = np.log(size) - power * np.log(T) - _g(ints, floats, T) + reduction @ [1 / T, 1.0]
+        log_scale = np.log(size) - power * np.log(T) - g_over_RT(ints, floats, T) + reduction @ [1 / T, 1.0]
         sums = np.append(log_scale, 0.0)[padded].sum(axis=1)
         if np.max(np.abs(np.concatenate([log_scale, sums]))) < _LARGEST_SUM:
             return T

@@ -10,12 +10,13 @@ import numpy as np
 from ..constants import GAS_CONSTANT
 from ..entry import Entry
 from .polynomial import Ranges, constant_row
+from .potential import Potential, Substance
 
 NAME = "constant heat capacity"
 
 
 @dataclass(frozen=True)
-class ConstantHeatCapacity:
+class ConstantHeatCapacity(Potential):
     """at [K]; H [J/mol], S [J/(mol K)] there; cp [J/(mol K)]."""
 
     at: float
@@ -30,7 +31,7 @@ class ConstantHeatCapacity:
         return Ranges(np.array([0.0, np.inf]), row[None, :])
 
 
-def read(entry: Entry) -> ConstantHeatCapacity:
+def read(entry: Entry, substance: Substance) -> ConstantHeatCapacity:
     """The form from its table; errors: S and G both or neither stated, `at` not positive."""
     at = entry.quantity("at", "temperature", sign="positive")
     H = entry.quantity("H", "molar energy")

@@ -10,13 +10,14 @@ import numpy as np
 
 from ..entry import Entry
 from .polynomial import N_COEFFICIENTS, Ranges
+from .potential import Potential, Substance
 from .seven_coefficients import coefficient_rows, rising_temperatures
 
 NAME = "NASA 9-coefficient"
 
 
 @dataclass(frozen=True)
-class NineCoefficients:
+class NineCoefficients(Potential):
     """Boundaries T [K] and a row of a1…a7, b1, b2 for each range."""
 
     T: tuple[float, ...]
@@ -27,7 +28,7 @@ class NineCoefficients:
         return Ranges(np.array(self.T), np.array(self.a))
 
 
-def read(entry: Entry) -> NineCoefficients:
+def read(entry: Entry, substance: Substance) -> NineCoefficients:
     """The form from its table; errors: boundaries not rising, wrong counts, numbers not finite."""
     T = rising_temperatures(entry)
     return NineCoefficients(T, coefficient_rows(entry, len(T) - 1, N_COEFFICIENTS))

@@ -12,13 +12,14 @@ import numpy as np
 from ..entry import Entry
 from ..errors import shown
 from .polynomial import LIMITS, N_COEFFICIENTS, Ranges
+from .potential import Potential, Substance
 
 NAME = "NASA 7-coefficient"
 _COLUMNS = [2, 3, 4, 5, 6, 7, 8]
 
 
 @dataclass(frozen=True)
-class SevenCoefficients:
+class SevenCoefficients(Potential):
     """Boundaries T [K] and a row of a1…a7 for each range."""
 
     T: tuple[float, ...]
@@ -31,7 +32,7 @@ class SevenCoefficients:
         return Ranges(np.array(self.T), rows)
 
 
-def read(entry: Entry) -> SevenCoefficients:
+def read(entry: Entry, substance: Substance) -> SevenCoefficients:
     """The form from its table; errors: boundaries not rising, wrong counts, numbers not finite."""
     T = rising_temperatures(entry)
     return SevenCoefficients(T, coefficient_rows(entry, len(T) - 1, 7))

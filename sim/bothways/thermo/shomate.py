@@ -13,6 +13,7 @@ import numpy as np
 from ..constants import GAS_CONSTANT
 from ..entry import Entry
 from .polynomial import N_COEFFICIENTS, Ranges
+from .potential import Potential, Substance
 from .seven_coefficients import coefficient_rows, rising_temperatures
 
 NAME = "Shomate"
@@ -20,7 +21,7 @@ _WIDTH = 8
 
 
 @dataclass(frozen=True)
-class Shomate:
+class Shomate(Potential):
     """Boundaries T [K] and a row of A…H for each range [J/(mol K); F and H kJ/mol]."""
 
     T: tuple[float, ...]
@@ -39,7 +40,7 @@ def _common(row: tuple[float, ...]) -> np.ndarray:
     return common / GAS_CONSTANT
 
 
-def read(entry: Entry) -> Shomate:
+def read(entry: Entry, substance: Substance) -> Shomate:
     """The form from its table; errors: boundaries not rising, wrong counts, numbers not finite."""
     T = rising_temperatures(entry)
     return Shomate(T, coefficient_rows(entry, len(T) - 1, _WIDTH))
