@@ -6,7 +6,8 @@ Written from the formulas alone; nothing of the program is imported. It reads a 
 * species potentials ``NASA 7-coefficient``, ``NASA 9-coefficient``, ``Shomate`` and ``constant heat capacity``,
   joins closed or as published;
 * laws ``Arrhenius`` (also with + M), ``Lindemann``, ``Troe`` (three widths), ``SRI``, ``activated``,
-  ``pressure table`` and ``Chebyshev``, and lists of terms.
+  ``pressure table``, ``Chebyshev`` and ``Hougen-Watson``, ``orders`` and ``stoichiometric_number`` beside any of them,
+  and lists of terms.
 
 Anything else raises NotImplementedError, so that no test passes by leaving something out.
 
@@ -106,13 +107,14 @@ class Reference:
         self._centre, self._front = self._kept(terms.centre, CENTRE_WIDTH), self._kept(terms.front, 2)
         self._width, self._activated = np.array(terms.width, dtype=str), np.array(terms.activated, dtype=bool)
         self._pressure_laws = [(i, self._kept_law(law)) for i, law in terms.pressure]
+        self._lumped = [(i, self._kept_law(law)) for i, law in terms.lumped]
         self._read_stoichiometry()
 
     def _kept_law(self, law: Any) -> Any:
         """A law of temperature and pressure with its numbers in this precision."""
         numbers = {one.name: getattr(law, one.name) for one in fields(law)}
-        kept = {name: [*map(self._kept, value)] if name == "rows" else value if name == "clamp" else self._kept(value)
-                for name, value in numbers.items()}
+        kept = {name: [*map(self._kept, value)] if name == "rows" else value if name == "clamp"
+                else value if name == "adsorbed" else self._kept(value) for name, value in numbers.items()}
         return type(law)(**kept)
 
     def _read_stoichiometry(self) -> None:
@@ -206,8 +208,16 @@ class Reference:
         padded = np.append(c, c.dtype.type(1))
         forward, reverse = (padded[places].prod(axis=1) for places in self._molecules)
         reverse = reverse / at.K_c
-        total, gross = (self._sum(self._of, x, len(self.reactions)) for x in (k, abs(k)))
-        return total * forward, total * reverse, gross * (abs(forward) + abs(reverse))
+        plain = k.copy()
+        plain[[i for i, _ in self._lumped]] = 0
+        total, gross = (self._sum(self._of, x, len(self.reactions)) for x in (plain, abs(plain)))
+        forward, reverse, size = total * forward, total * reverse, gross * (abs(forward) + abs(reverse))
+        for i, law in self._lumped:
+            j = self._of[i]
+            ahead, back = law.rates(at.T, c, at.K_c[j])
+            forward[j], reverse[j] = forward[j] + k[i] * ahead, reverse[j] + k[i] * back
+            size[j] = size[j] + abs(k[i]) * (abs(ahead) + abs(back))
+        return forward, reverse, size
 
     def net_rates(self, c: Array, T: Any) -> tuple[Array, Array]:
         """Forward and reverse rate of each reaction [mol/(m3 s)] at concentrations c (n,) [mol/m3]; p = C R T."""

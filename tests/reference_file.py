@@ -9,7 +9,7 @@ from typing import Any
 
 import numpy as np
 
-from reference_laws import Chebyshev, PressureTable
+from reference_laws import Chebyshev, Lumped, PressureTable
 
 Array = np.ndarray
 LD = np.longdouble
@@ -25,7 +25,7 @@ PRESSURE = {"Pa": LD(1), "kPa": LD(1000), "MPa": LD(1e6), "bar": LD(1e5), "atm":
 ENTROPY = {unit.replace("/mol", "/(mol K)"): size for unit, size in ENERGY.items() if "/mol" in unit}
 TEMPERATURE = {"K": LD(1)}
 
-NOT_COVERED = ("orders", "stoichiometric_number", "equilibrium")
+NOT_COVERED = ("orders", "stoichiometric_number", "equilibrium")  # of a reaction; the first two belong to its terms
 FALL_OFF = {"Lindemann": set(), "Troe": {"F_cent", "width"}, "SRI": {"F"}, "activated": {"F_cent", "width", "F"}}
 
 
@@ -234,6 +234,29 @@ def chebyshev(term: dict[str, Any], order: int, units: dict[str, LD]) -> Chebysh
     return Chebyshev(T, p, np.array(term["c"], dtype=LD), unit, term.get("clamp", False))
 
 
+LUMPED = {"orders", "stoichiometric_number", "adsorption"}
+
+
+def lumped(reaction: Reaction, term: dict[str, Any], names: list[str], units: dict[str, LD]) -> Lumped:
+    """Forward orders, net stoichiometric numbers, σ and the adsorption group of a term."""
+    orders = {**reaction.reactants, **term.get("orders", {})}
+    net = [LD(reaction.products.get(name, 0) - reaction.reactants.get(name, 0)) for name in names]
+    group = term.get("adsorption", [])
+    powers = [LD(one.get("power", 1)) for one in group]
+    K = [arrhenius_row(one["K"], p + 1, units) for one, p in zip(group, powers, strict=True)]
+    for row in K:
+        row[0] = row[0] * units["time"]
+    share = 1 / LD(term.get("stoichiometric_number", 1))
+    return Lumped(np.array([LD(orders.get(name, 0)) for name in names]), np.array(net), share,
+                  np.array([names.index(one["species"]) for one in group], dtype=int), np.array(powers, dtype=LD),
+                  np.array(K, dtype=LD).reshape(-1, 4), LD(term.get("power", 1)))
+
+
+def order_of(reaction: Reaction, term: dict[str, Any]) -> Any:
+    """The order of the forward law: that of the equation, or the sum of the orders stated."""
+    return sum({**reaction.reactants, **term.get("orders", {})}.values())
+
+
 @dataclass
 class Terms:
     """The terms of all reactions in one row: which reaction each belongs to, and their numbers."""
@@ -251,13 +274,16 @@ class Terms:
     front: list[list[LD]] = field(default_factory=list)  # d and e of SRI
     width: list[str] = field(default_factory=list)
     pressure: list[tuple[int, PressureTable | Chebyshev]] = field(default_factory=list)  # term, law of T and p
+    lumped: list[tuple[int, Lumped]] = field(default_factory=list)  # term, what is lumped in it
 
     def add(self, j: int, reaction: Reaction, term: dict[str, Any]) -> None:
         """Append one term of reaction j."""
-        order, law = sum(reaction.reactants.values()), term["law"]
+        order, law = order_of(reaction, term), term["law"]
         self.reaction.append(j)
-        if law == "Arrhenius":
-            self._add(term, order + reaction.plus_m, partner=term if reaction.plus_m else None)
+        if LUMPED & set(term):
+            self.lumped.append((len(self.rate), lumped(reaction, term, self.names, self.units)))
+        if law in ("Arrhenius", "Hougen-Watson"):
+            self._add(term.get("k", term), order + reaction.plus_m, partner=term if reaction.plus_m else None)
         elif reaction.plus_m or law not in [*FALL_OFF, "pressure table", "Chebyshev"]:
             raise NotImplementedError(f"{reaction.equation}: {law}")
         elif law in FALL_OFF:

@@ -77,6 +77,49 @@ def activated(k_inf: Array, k_0: Array, F: Array, M: Array) -> Array:
     return k_0 * F / (1 + np.where(P_r.real >= 0, P_r, 0))
 
 
+# ---- lumped steps
+
+
+@dataclass(frozen=True)
+class Lumped:
+    """k X G [φ(M, N) - φ(N, M)], where M and N are the sides of Q/K = N/M.
+
+    Without the smooth starts X φ(M, N) is Π c^α and X φ(N, M) is that times (Q/K)^(1/σ); with them c^p of X and G is
+    c (c² + ε²)^((p - 1)/2) or, for p < 0, (c² + ε²)^(p/2), and φ = M (M² + δ² N² + τ²)^((s - 1)/2), s = 1/σ,
+    with δ = 0 for s > 1 and φ = M for s = 1.
+    """
+
+    orders: Array
+    nu: Array
+    share: Any  # 1/σ
+    adsorbed: Array  # places
+    powers: Array
+    K: Array
+    power: Any
+
+    EPSILON, DELTA, TAU = 1e-9, 1e-12, 1e-30  # mol/m3, 1, (mol/m3)^n
+
+    def _power(self, c: Array, p: Array) -> Array:
+        size = c * c + self.EPSILON**2
+        return np.where(p > 0, c * size ** ((p - 1) / 2), np.where(p < 0, size ** (p / 2), 1))
+
+    def _phi(self, here: Any, there: Any) -> Any:
+        if self.share == 1:
+            return here
+        mixed = self.DELTA * there if self.share < 1 else 0
+        return here * (here * here + mixed * mixed + self.TAU**2) ** ((self.share - 1) / 2)
+
+    def rates(self, T: Any, c: Array, K_c: Any) -> tuple[Any, Any]:
+        """Forward and reverse rate for k one."""
+        taken, made = np.maximum(-self.nu, 0).astype(int), np.maximum(self.nu, 0).astype(int)
+        left, right = np.prod(c**taken), np.prod(c**made) / K_c
+        common = self.orders - taken * self.share
+        common = np.where(abs(common) < 1e-9, 0, common)
+        group = 1 + (arrhenius(self.K, T) * self._power(c[self.adsorbed], self.powers)).sum()
+        front = np.prod(self._power(c, common)) / group**self.power
+        return front * self._phi(left, right), front * self._phi(right, left)
+
+
 # ---- laws of temperature and pressure
 
 

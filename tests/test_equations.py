@@ -13,6 +13,7 @@ from bothways.contents import Contents
 from bothways.mechanism import build_tables, table_view
 from invented import building_blocks, building_blocks_as_published, building_blocks_in_molecules
 from invented_laws import every_law, every_law_as_published, every_law_in_molecules
+from invented_lumped import lumped_steps
 from reference import Reference
 
 SETS = {
@@ -22,6 +23,7 @@ SETS = {
     "every law": every_law,
     "every law, as published": every_law_as_published,
     "every law, in molecules": every_law_in_molecules,
+    "lumped steps": lumped_steps,
     **{name: (lambda name=name: read_mechanism(name).to_dict()) for name in ("hydrogen-oxygen", "methane", "c1-c4", "n-alkanes")},
 }
 CLOSURES = [(holds, heat) for holds in ("volume", "pressure") for heat in ("isothermal", "adiabatic")]
@@ -78,7 +80,8 @@ def test_J_agrees_with_complex_step_differences(name, holds, heat):
         assert np.all(np.abs(ours - theirs) <= 1e-8 * scale)
 
 
-ALONE = [document | {"reaction": [entry]} for document in (building_blocks(), every_law()) for entry in document["reaction"]]
+ALONE = [document | {"reaction": [entry]} for document in (building_blocks(), every_law(), lumped_steps())
+         for entry in document["reaction"]]
 
 
 @pytest.mark.parametrize("document", ALONE, ids=[one["reaction"][0]["equation"] for one in ALONE])

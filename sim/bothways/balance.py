@@ -1,7 +1,7 @@
 """The rule that ties both directions of a step, in plain NumPy: K(T), reverse rate constants, affinities.
 
-The compiled kernels apply the same rule without forming a reverse constant (kernels/rates.py); where one is shown, it
-comes from here. IUPAC Green Book, 3rd ed., section 2.11, for K and the affinity A = -Σ ν_i μ_i.
+The compiled kernels apply the same rule without forming a reverse constant (kernels/rates.py, kernels/lumped.py); where
+one is shown, it comes from here. IUPAC Green Book, 3rd ed., section 2.11, for K and the affinity A = -Σ ν_i μ_i.
 """
 
 import numpy as np
@@ -21,9 +21,15 @@ def log_concentration_constants(nu: np.ndarray, g: np.ndarray, standard: float) 
     return log_equilibrium_constants(nu, g) + np.where(change == 0, 0.0, change * np.log(standard))
 
 
-def reverse_constants(forward: np.ndarray, nu: np.ndarray, g: np.ndarray, standard: float) -> np.ndarray:
-    """Reverse rate constants, (reactions), of forward ones (m3, mol, s): k_f/Kc."""
-    return forward * np.exp(-log_concentration_constants(nu, g, standard))
+def reverse_constants(forward: np.ndarray, nu: np.ndarray, g: np.ndarray, standard: float,
+                      sigma: float | np.ndarray = 1.0) -> np.ndarray:
+    """Reverse rate constants, (reactions), of forward ones (m3, mol, s): k_f/Kc^(1/σ), σ 1 but for lumped steps."""
+    return forward * np.exp(-log_concentration_constants(nu, g, standard) / sigma)
+
+
+def net_rates(forward: np.ndarray, affinity: np.ndarray, sigma: float | np.ndarray = 1.0) -> np.ndarray:
+    """Net rates from forward ones and A/RT: forward·[1 - exp(-A/(σRT))], exp(-A/RT) = Q/K (de Donder's relation)."""
+    return -forward * np.expm1(-affinity / sigma)
 
 
 def affinities(nu: np.ndarray, potential: np.ndarray) -> np.ndarray:

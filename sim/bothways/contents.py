@@ -43,10 +43,12 @@ class Contents:
         """Derived reverse rate constants (m3, mol, s), (reactions), the forward ones at a partner's [mol/m3].
 
         total : concentration of the solution [mol/m3], which counts where activities are mole fractions.
+        Those of lumped steps belong to their reverse orders; NaN where terms of several kinds stand in one reaction.
         """
         m = self.mechanism
         forward = np.array([r.forward_constant(temperature, partner) for r in m.reactions])
-        return reverse_constants(forward, m.stoichiometry, self.molar(temperature)[0], self.standard(temperature, total))
+        return reverse_constants(forward, m.stoichiometry, self.molar(temperature)[0], self.standard(temperature, total),
+                                 np.array([r.sigma for r in m.reactions]))
 
     def standard(self, temperature: float, total: float = np.nan) -> float:
         """The concentration at activity one (and g_i) [mol/m3]: p°/RT, 1 mol/L or the total concentration."""

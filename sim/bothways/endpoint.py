@@ -86,8 +86,7 @@ class Target:
         """
         case, own = self.case, self.own
         equations = Equations(self.restricted, "volume", "isothermal")
-        forward, reverse = equations.reaction_rates(np.append(own.amount / own.volume, own.temperature))
-        rates = np.sqrt(forward * reverse) * own.volume
+        rates = equations.conductances(np.append(own.amount / own.volume, own.temperature)) * own.volume
         present, nu = own.amount > 0, self.restricted.stoichiometry
         rank = int(np.sum(present)) - int(np.linalg.matrix_rank(own.conserved[:, present].astype(float)))
         rows = further_rows(Contents(self.restricted), own.amount, own.temperature, case.holds, case.heat,

@@ -4,13 +4,14 @@ from collections.abc import Iterable, Mapping
 
 import numpy as np
 
-from .mechanism import Mechanism, Reaction
+from .mechanism import Mechanism, Reaction, Term
 
 
 def reachable(mechanism: Mechanism, charge: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
     """Masks of the species (N) that can come about and of the reactions that can proceed, either way, from a charge (N).
 
     A reaction proceeds once one whole side is there and a partner for one of its terms; what it makes may start others.
+    A lumped step also needs what its rate vanishes without.
     """
     present = set(np.flatnonzero(charge > 0).tolist())
     sides = [[{mechanism.index(name) for name, _ in side} for side in (r.equation.reactants, r.equation.products)]
@@ -27,10 +28,16 @@ def reachable(mechanism: Mechanism, charge: np.ndarray) -> tuple[np.ndarray, np.
 
 
 def _starts(mechanism: Mechanism, reaction: Reaction, sides: list[set[int]], present: set[int]) -> bool:
-    if not any(side <= present for side in sides):
-        return False
-    return any(term.partner is None or not term.law.needs_partner
-               or _has_partner(mechanism, term.partner.default, term.partner.efficiency, present) for term in reaction.terms)
+    return any(_has_side(mechanism, reaction, term, sides, present)
+               and (term.partner is None or not term.law.needs_partner
+                    or _has_partner(mechanism, term.partner.default, term.partner.efficiency, present))
+               for term in reaction.terms)
+
+
+def _has_side(mechanism: Mechanism, reaction: Reaction, term: Term, sides: list[set[int]], present: set[int]) -> bool:
+    if term.orders is not None:
+        sides = [{mechanism.index(name) for name in term.orders.needed(reaction.net, forward)} for forward in (True, False)]
+    return any(side <= present for side in sides)
 
 
 def _has_partner(mechanism: Mechanism, default: float, efficiency: Mapping[str, float], present: set[int]) -> bool:

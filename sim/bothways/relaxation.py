@@ -1,10 +1,11 @@
 """The slowest relaxation time of a mixture near its equilibrium, without the round-off that drowns eigenvalues of J.
 
-Near equilibrium d(δn)/dt = -ν diag(r) νᵀ H δn, r the one-way rates and H = LᵀL the curvature of the potential that may
-not rise. Its rates are the squared singular values of L ν diag(r)^½ (a symmetric form of linear irreversible
-thermodynamics; e.g. S.R. de Groot, P. Mazur, Non-Equilibrium Thermodynamics, 1962, ch. X). Amounts and rates span tens of
-decades as scales of rows and columns of small integers; Jacobi's one-sided method keeps the relative accuracy of the
-small values then (Z. Drmač, K. Veselić, SIAM J. Matrix Anal. Appl. 29 (2008) 1322, doi:10.1137/050639193; LAPACK gejsv).
+Near equilibrium d(δn)/dt = -ν diag(r) νᵀ H δn, r the one-way rates (of a lumped step over σ) and H = LᵀL the curvature
+of the potential that may not rise. Its rates are the squared singular values of L ν diag(r)^½ (a symmetric form of
+linear irreversible thermodynamics; e.g. S.R. de Groot, P. Mazur, Non-Equilibrium Thermodynamics, 1962, ch. X). Amounts
+and rates span tens of decades as scales of rows and columns of small integers; Jacobi's one-sided method keeps the
+relative accuracy of the small values then (Z. Drmač, K. Veselić, SIAM J. Matrix Anal. Appl. 29 (2008) 1322,
+doi:10.1137/050639193; LAPACK gejsv).
 """
 
 import numpy as np

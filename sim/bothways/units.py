@@ -88,7 +88,7 @@ class UnitSystem:
         name = getattr(self, kind.replace(" ", "_"), None)
         return UNITS[kind][name] if name else 1.0
 
-    def rate_factor(self, order: int) -> float:
+    def rate_factor(self, order: float) -> float:
         """SI value [(m3/mol)^(order-1)/s] of one bare unit of a rate constant of that order."""
         concentration = self.factor("amount") / self.factor("length") ** 3
         try:

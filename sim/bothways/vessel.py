@@ -178,6 +178,15 @@ class Equations:
         kernel.reaction_rates(_vector(y), *self._arguments, forward, reverse)
         return forward, reverse
 
+    def conductances(self, y: np.ndarray) -> np.ndarray:
+        """What the net rate of every reaction answers to its A/RT, (R) [mol/(m3 s)], in a plain state at equilibrium.
+
+        The one-way rate there, of a lumped step over Horiuti's σ.
+        """
+        out = np.empty(len(self.mechanism.reactions))
+        kernel.reaction_conductances(_vector(y), *self._arguments, out, np.empty_like(out))
+        return out
+
 
 def _vector(y: np.ndarray) -> np.ndarray:
     """y as the kernels take it; a read-only array would make numba compile everything a second time."""

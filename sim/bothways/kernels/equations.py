@@ -15,6 +15,7 @@ from ..constants import GAS_CONSTANT as R
 from . import layout as at
 from .elementary import dot, total_of
 from .layout import view
+from .lumped import conductances
 from .rates import one_way_rates, set_derivatives, set_production
 from .thermal import set_temperature
 
@@ -254,6 +255,18 @@ def jacobian(y, vessel, ints, floats, work, data, out):
             p += 1
         out[n, s] = data[p + 1] + border[n + 1] * by_y
         p += 2
+
+
+@compiled
+def reaction_conductances(y, vessel, ints, floats, work, out, reverse):
+    """What the net rate of every reaction answers to its A/RT [mol/(m3 s)] in a plain state at equilibrium; out (R).
+
+    reverse: (R) scratch.
+    """
+    n = ints[at.SPECIES]
+    _produce(y, border_of(y, n, vessel), y[n], vessel, ints, floats, work)
+    one_way_rates(ints, work, out, reverse)
+    conductances(out, reverse, ints, floats, work)
 
 
 @compiled

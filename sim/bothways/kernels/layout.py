@@ -10,9 +10,9 @@ from collections.abc import Sequence
 from ..compiled import compiled, span
 
 SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALL_OFFS", "GROUPS", "LONG", "BLOCK", "CURVES",
-         "COLUMNS", "RESPONSES", "DILUTED")
-(SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALL_OFFS, GROUPS, LONG, BLOCK, CURVES, COLUMNS,
- RESPONSES, DILUTED) = range(len(SIZES))
+         "COLUMNS", "RESPONSES", "DILUTED", "LUMPS", "LUMP_ENTRIES")
+(SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALL_OFFS, GROUPS, LONG, BLOCK, CURVES, COLUMNS, RESPONSES, DILUTED,
+ LUMPS, LUMP_ENTRIES) = range(len(SIZES))
 
 INTS = (
     "range_start",      # (S + 1) first temperature range of each species, and behind them of each transition state
@@ -43,6 +43,14 @@ INTS = (
     "series_rows",      # (H) number of powers in 1/T
     "series_start",     # (H + 1) first column (power in ln p)
     "column_start",     # (COLUMNS + 1) first coefficient of each column
+    "lump_term",        # (L) lumped terms
+    "lump_start",       # (L + 1) their first entry: a species that has a part in the rate
+    "lump_species",     # (E) species of each entry
+    "lump_diluted",     # (L) place of their reaction among the diluted ones, from 1 on; 0 if it is none
+    "adsorbed_start",   # (L + 1) their first adsorbed species
+    "adsorbed_species",  # (E') species in adsorption groups
+    "adsorbed_expression",  # (E') expression of their adsorption constant
+    "plain_term",       # mass-action terms of the reactions that have lumped ones
     "group_start",      # (G + 1) partner groups: first named species
     "group_species",    # named species of the groups
     "nu_start",         # (2 N + 1) by species: where the reactions that make it start, then those that take it
@@ -70,6 +78,11 @@ FLOATS = (
     "row_sign",         # (rows)
     "series_window",    # (4 H) 1/T [1/K] and ln p at the low and the high end
     "column_coefficient",  # column by column
+    "lump_share",       # (L) 1/σ
+    "lump_nu",          # (E) net stoichiometric number
+    "lump_power",       # (E) power common to both directions
+    "adsorbed_power",   # (E') of the concentration in the adsorption group
+    "adsorption_power",  # (L) of the adsorption group
     "group_default",    # (G) efficiency of species not named
     "group_excess",     # efficiency of the named ones above the default
     "extra_weight",     # weights of the partials named by extra_source
@@ -107,10 +120,12 @@ WORK = (
     "net",              # (R) net rates
     "bare",             # (R) ΠE_reac (Πa_reac - Πa_prod): the net rate for k one
     "net_by_T",         # (R)
+    "lump_bare",        # (L) net rate of each lumped term for k one
+    "lump_forward", "lump_reverse",  # (L) its one-way rates
     "omega",            # (N) production rates
     "omega_by_T",       # (N)
     "dilution",         # (Q + 1) what the total concentration does to their reverse rates, and 1/C
-    "partial",          # (4 R + m + T + P + Q) by molecules, further molecules, partners of terms; the responses; dilution
+    "partial",          # (4 R + m + T + P + E + E' + Q) by molecules, further ones, partners; responses; lumped; dilution
     "block",            # (nb + N + 16) species block of the Jacobian, dω/dC, and places for what is not wanted
     "concentration",    # (N) for which the rates stand
     "energy",           # (N) molar energy or enthalpy over RT

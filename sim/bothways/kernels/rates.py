@@ -11,6 +11,7 @@ from . import layout as at
 from .elementary import sum_at
 from .fall_off import SMALLEST_PARTNER, fall_off_constants, fall_off_slopes
 from .layout import view
+from .lumped import add_lumped_rates, add_lumped_slopes, add_lumped_ways, keep_plain, set_lumped_partners
 from .pressure import pressure_constants, pressure_slopes
 from .solution import dilute, dilute_partials
 from .thermal import set_slopes
@@ -167,12 +168,14 @@ def set_rates(c, total, ints, floats, work):
     _rate_constants(total, ints, floats, work)
     k = view(work, ints, _K_TOTAL)
     _sum_terms(view(work, ints, _K), k, ints)
+    keep_plain(view(work, ints, _K), k, ints)
     _products_of_activities(c, ints, work)
     dilute(total, ints, floats, work)
     scale, net = view(work, ints, _REACTANT_SCALE), view(work, ints, _NET)
     forward, reverse = view(work, ints, _FORWARD), view(work, ints, _REVERSE)
     for j in range(net.size):
         net[j] = k[j] * (scale[j] * (forward[j] - reverse[j]))
+    add_lumped_rates(c, ints, floats, work)
 
 
 @compiled
@@ -183,6 +186,7 @@ def one_way_rates(ints, work, forward, reverse):
     for j in range(k.size):
         forward[j] = k[j] * (scale[j] * of_reactants[j])
         reverse[j] = k[j] * (scale[j] * of_products[j])
+    add_lumped_ways(forward, reverse, ints, work)
 
 
 @compiled
@@ -253,7 +257,7 @@ def set_derivatives(T, ints, floats, work):
         bare[j] = scale[j] * (forward[j] - reverse[j])
     _set_partials(ints, work)
     dilute_partials(ints, floats, work)
-    _temperature_derivatives(ints, work)
+    _temperature_derivatives(ints, floats, work)
     _partner_derivatives(ints, work)
     _fill_block(ints, floats, work)
 
@@ -276,14 +280,16 @@ def _fill_block(ints, floats, work):
 
 
 @compiled
-def _temperature_derivatives(ints, work):
+def _temperature_derivatives(ints, floats, work):
     """∂omega/∂T: bare·dk/dT - reverse rate·d ln(ΠE_reac/ΠE_prod)/dT, summed over the reactions."""
     k, scale, k_by_T = view(work, ints, _K_TOTAL), view(work, ints, _REACTANT_SCALE), view(work, ints, _K_TOTAL_BY_T)
     bare, reverse, by_T = view(work, ints, _BARE), view(work, ints, _REVERSE), view(work, ints, _NET_BY_T)
     reverse_slope = view(work, ints, _REVERSE_SLOPE)
     _sum_terms(view(work, ints, _K_BY_T), k_by_T, ints)
+    keep_plain(view(work, ints, _K_BY_T), k_by_T, ints)
     for j in range(by_T.size):
         by_T[j] = bare[j] * k_by_T[j] - k[j] * (scale[j] * reverse[j]) * reverse_slope[j]
+    add_lumped_slopes(by_T, ints, floats, work)
     _gather(by_T, view(work, ints, _OMEGA_BY_T), ints)
 
 
@@ -298,6 +304,7 @@ def _partner_derivatives(ints, work):
     by_terms = out[first : first + by_M.size]
     for t in range(by_M.size):
         by_terms[t] = by_M[t] * bare[reaction[t]]
+    set_lumped_partners(by_terms, ints, work)
     for p in range(responses):
         low, middle, high = start[2 * p], start[2 * p + 1], start[2 * p + 2]
         out[first + by_M.size + p] = sum_at(by_terms, term, low, middle) - sum_at(by_terms, term, middle, high)

@@ -3,8 +3,9 @@
 Entry (i, s) of the block is Σ ν_ij ∂w_j/∂c_s at constant total of the partners, and behind the block stands
 ∂omega_i/∂C, the response to that total. `partial` (kernels/rates.py sets it) holds ∂w/∂c by the four molecules of every
 reaction, by the further molecules of long sides, then ∂w/∂[M] of every term (∂w/∂C of laws of pressure), and behind
-these Σ ν ∂w/∂[M] over the terms of one partner group for each species they touch: its responses. Last stands ∂w/∂C of
-the reactions whose reverse rate holds the total concentration (kernels/solution.py).
+these Σ ν ∂w/∂[M] over the terms of one partner group for each species they touch: its responses. Then stand ∂w/∂c of
+the entries of lumped terms and of their adsorbed species (kernels/lumped.py), and last ∂w/∂C of the reactions whose
+reverse rate holds the total concentration (kernels/solution.py).
 """
 
 from collections import defaultdict
@@ -34,7 +35,7 @@ def jacobian_sums(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     extras: Extras = []
     targets = _molecules(net, ints, n, extras)
     _partners(net, ints, floats, 4 * r + len(ints["long_side"]), extras)
-    last = 4 * r + len(ints["long_side"]) + len(ints["term_reaction"]) + len(ints["response_start"]) // 2
+    last = _lumped(net, ints, extras)
     extras += [((i, TOTAL), last + q, float(count)) for q, j in enumerate(ints["diluted_reaction"])
                for i, count in net[j].items()]
     wanted = {place for row in targets for place in row if place} | {place for place, _, _ in extras if place[1] != TOTAL}
@@ -106,3 +107,14 @@ def _terms_of_groups(ints: dict) -> Iterator[tuple[int, int]]:
         yield from zip(ints[f"{kind}_term"].tolist(), ints[f"{kind}_group"].tolist(), strict=True)
     for term in (*ints["table_term"].tolist(), *ints["series_term"].tolist()):
         yield term, TOTAL
+
+
+def _lumped(net: list[dict[int, int]], ints: dict, extras: Extras) -> int:
+    """Entries of lumped terms, then their adsorbed species, behind the responses; returns the place behind them."""
+    source = 4 * len(net) + len(ints["long_side"]) + len(ints["term_reaction"]) + len(ints["response_start"]) // 2
+    for kind, start in (("lump_species", ints["lump_start"]), ("adsorbed_species", ints["adsorbed_start"])):
+        for q, term in enumerate(ints["lump_term"]):
+            for s in ints[kind][start[q] : start[q + 1]]:
+                extras += [((i, int(s)), source, float(count)) for i, count in net[ints["term_reaction"][term]].items()]
+                source += 1
+    return source

@@ -8,13 +8,17 @@ from typing import Any
 
 import numpy as np
 
-from ..rates.law import Broadening, Curve, Expression, PressureNodes, Series
-from .model import Mechanism, Partner
+from ..rates import Law
+from ..rates.law import AdsorptionGroup, Broadening, Curve, Expression, PressureNodes, Series
+from .model import Mechanism, Partner, Reaction
+from .orders import Orders
 
 _INT_KEYS = ("body_term", "body_group", "fall_term", "fall_low", "fall_group", "curve_term", "curve_low",
-             "curve_group", "curve_width", "curve_activated", "table_term", "row_expression", "series_term", "series_rows")
-_FLOAT_KEYS = ("fall_parameter", "curve_parameter", "node_log_p", "row_sign", "series_window", "column_coefficient")
-_STARTS = ("table_start", "node_start", "series_start", "column_start")
+             "curve_group", "curve_width", "curve_activated", "table_term", "row_expression", "series_term", "series_rows",
+             "lump_term", "lump_species", "adsorbed_species", "adsorbed_expression", "plain_term")
+_FLOAT_KEYS = ("fall_parameter", "curve_parameter", "node_log_p", "row_sign", "series_window", "column_coefficient",
+               "lump_share", "lump_nu", "lump_power", "adsorbed_power", "adsorption_power")
+_STARTS = ("table_start", "node_start", "series_start", "column_start", "lump_start", "adsorbed_start")
 
 
 class _Lists(dict[str, list]):
@@ -33,7 +37,7 @@ def law_tables(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     ordered += [(j, term) for j, r in enumerate(mechanism.reactions) for term in r.terms[1:]]
     lists = _Lists()
     lists.expressions = [term.law.expressions()[0] for _, term in ordered]
-    for t, (_, term) in enumerate(ordered):
+    for t, (j, term) in enumerate(ordered):
         group = None
         if term.partner is not None:
             group = lists.groups.setdefault(_group_key(mechanism, term.partner), len(lists.groups))
@@ -42,6 +46,10 @@ def law_tables(mechanism: Mechanism, ints: dict, floats: dict) -> None:
             _BLOCKS[type(part)](lists, t, group, part, _places(lists, t, term.law.expressions()))
         elif group is not None:
             _append(lists, body_term=t, body_group=group)
+        if term.orders is not None:
+            _lumped(lists, t, mechanism, mechanism.reactions[j], term.orders, term.law)
+        elif any(other.orders is not None for other in mechanism.reactions[j].terms):
+            _append(lists, plain_term=t)
     ints["term_reaction"] = np.array([j for j, _ in ordered])
     ints.update({key: np.array(lists[key]) for key in (*_INT_KEYS, *_STARTS)})
     floats.update({key: np.array(lists[key]) for key in _FLOAT_KEYS})
@@ -59,7 +67,7 @@ def _places(lists: _Lists, term: int, expressions: Sequence[Expression]) -> list
     return [term, *range(first, len(lists.expressions))]
 
 
-def _append(lists: _Lists, **values: int) -> None:
+def _append(lists: _Lists, **values: float) -> None:
     for key, value in values.items():
         lists[key].append(value)
 
@@ -91,8 +99,28 @@ def _series(lists: _Lists, term: int, group: None, part: Series, places: list[in
     lists["column_coefficient"] += [c for column in zip(*part.coefficients, strict=True) for c in column]
 
 
+def _adsorption(lists: _Lists, term: int, group: int | None, part: AdsorptionGroup, places: list[int]) -> None:
+    lists["adsorbed_expression"] += places[1:]
+    lists["adsorbed_power"] += part.powers
+    if group is not None:
+        _append(lists, body_term=term, body_group=group)
+
+
 _BLOCKS: dict[type, Callable[..., Any]] = {Broadening: _fall_off, Curve: _curve, PressureNodes: _pressure_table,
-                                           Series: _series}
+                                           Series: _series, AdsorptionGroup: _adsorption}
+
+
+def _lumped(lists: _Lists, term: int, mechanism: Mechanism, reaction: Reaction, orders: Orders, law: Law) -> None:
+    """Entries of a lumped term, one for each species its orders or Q/K ask for, and of its adsorption group, if any."""
+    common = orders.common(reaction.net)
+    lists["lump_species"] += [mechanism.index(name) for name in common]
+    lists["lump_nu"] += [reaction.net.get(name, 0) for name in common]
+    lists["lump_power"] += common.values()
+    part = law.part()
+    group = part if isinstance(part, AdsorptionGroup) else AdsorptionGroup((), (), 0.0)
+    lists["adsorbed_species"] += [mechanism.index(name) for name in group.species]
+    _append(lists, lump_term=term, lump_share=1.0 / orders.sigma, adsorption_power=group.power,
+            lump_start=len(lists["lump_species"]), adsorbed_start=len(lists["adsorbed_species"]))
 
 
 def _group_key(mechanism: Mechanism, partner: Partner) -> tuple:

@@ -12,6 +12,7 @@ from ..rates import Arrhenius, Law
 from ..thermo import Potential, Ranges
 from ..thermo.polynomial import Shift, closed
 from .equation import Equation
+from .orders import Orders
 
 
 @dataclass(frozen=True)
@@ -45,10 +46,23 @@ class Partner:
 
 @dataclass(frozen=True)
 class Term:
-    """One forward rate law of a reaction, with the partner that takes part in it, if any."""
+    """One forward rate law of a reaction, with the partner that takes part in it, if any.
+
+    orders : of a lumped step, None where the law of mass action holds.
+    """
 
     law: Law
     partner: Partner | None = None
+    orders: Orders | None = None
+
+
+def net_of(equation: Equation) -> dict[str, int]:
+    """Stoichiometric numbers of the species that change."""
+    nu: dict[str, int] = {}
+    for sign, side in ((-1, equation.reactants), (1, equation.products)):
+        for name, count in side:
+            nu[name] = nu.get(name, 0) + sign * count
+    return {name: count for name, count in nu.items() if count}
 
 
 @dataclass(frozen=True)
@@ -64,11 +78,15 @@ class Reaction:
     @cached_property
     def net(self) -> dict[str, int]:
         """Stoichiometric numbers of the species that change."""
-        nu: dict[str, int] = {}
-        for sign, side in ((-1, self.equation.reactants), (1, self.equation.products)):
-            for name, count in side:
-                nu[name] = nu.get(name, 0) + sign * count
-        return {name: count for name, count in nu.items() if count}
+        return net_of(self.equation)
+
+    @property
+    def sigma(self) -> float:
+        """Horiuti's stoichiometric number [-]: 1 of mass action; NaN where terms of several kinds stand beside each other."""
+        orders = [term.orders for term in self.terms]
+        if all(o == orders[0] for o in orders):
+            return orders[0].sigma if orders[0] else 1.0
+        return float("nan")
 
     def forward_constant(self, temperature: float, partner: float = 1.0, pressure: float = 1e5) -> float:
         """Sum of the terms' k at T [K], each at that partner concentration [mol/m3] and pressure [Pa]; m3, mol, s."""

@@ -2,6 +2,7 @@
 
 import re
 from collections.abc import Mapping, Sequence
+from dataclasses import replace
 from functools import lru_cache
 from typing import Any
 
@@ -10,11 +11,12 @@ import numpy as np
 from ..constants import GAS_CONSTANT
 from ..entry import Entry
 from ..errors import InputError, hint
-from ..rates import OWN_PARTNER, PRESSURE, Arrhenius, LawContext, partner_of, read_law
+from ..rates import OWN_PARTNER, PRESSURE, Arrhenius, LawContext, is_lumped, partner_of, read_law
 from ..rates.arrhenius import read_expression
 from ..units import UnitSystem
 from .equation import Equation, parse_equation
-from .model import Partner, Reaction, Species, Term
+from .model import Partner, Reaction, Species, Term, net_of
+from .orders import read_orders
 
 _REVERSE_WORDS = re.compile(r"reverse|backward|(^|_)(rev|k_?(r|b|rev))(_|$)", re.IGNORECASE)
 LARGEST_EFFICIENCY = 1e4
@@ -47,6 +49,7 @@ def _entry(data: Any, number: int, top: Entry, units: UnitSystem) -> Entry:
 def _one(entry: Entry, species: Mapping[str, Species]) -> Reaction:
     equation = _equation(entry, species)
     _refuse_reverse(entry)
+    _refuse_orders(entry)
     source, one_way = entry.text("source", ""), entry.flag("published_one_way")
     reverse = _published_reverse(entry, equation)
     reaction = Reaction(equation, _terms(entry, equation, species), source, one_way, reverse)
@@ -60,6 +63,13 @@ def _refuse_reverse(entry: Entry) -> None:
             raise entry.error(f"'{key}': a reverse rate is stated", expected="forward rates only",
                               remedy="leave it out, since it follows from the forward rate and K(T); published_reverse "
                                      "beside 'equation' records one for comparison")
+
+
+def _refuse_orders(entry: Entry) -> None:
+    for key in ("orders", "stoichiometric_number"):
+        if key in entry.data:
+            raise entry.error(f"'{key}' stands beside the equation", expected=f"'{key}' in the forward law it belongs to",
+                              remedy=f"write forward = {{ law = \"…\", …, {key} = … }}")
 
 
 def _equation(entry: Entry, species: Mapping[str, Species]) -> Equation:
@@ -124,15 +134,16 @@ def _term(entry: Entry, equation: Equation, species: Mapping[str, Species], shar
         of, why = _WHY_NO_M[kind]
         raise entry.error(f"M stands in the equation of a {of}", expected="no M",
                           remedy=f"leave M out of the equation: {why}")
-    order = sum(count for _, count in equation.reactants)
-    law = read_law(entry, LawContext(order, equation.partner, several))
+    orders = read_orders(entry, equation, net_of(equation), species, is_lumped(entry))
+    order = sum(orders.forward.values()) if orders else sum(count for _, count in equation.reactants)
+    law = read_law(entry, LawContext(order, equation.partner, several and not orders, species))
     own = _partner_keys(entry, species)
     entry.done()
     if not (kind == OWN_PARTNER or equation.partner):
         if own is not None:
             raise _needless(entry)
-        return Term(law)
-    return Term(law, own or shared or Partner(1.0, {}))
+        return Term(law, None, orders)
+    return Term(law, own or shared or Partner(1.0, {}), orders)
 
 
 def _partner_keys(entry: Entry, species: Mapping[str, Species]) -> Partner | None:
@@ -172,8 +183,9 @@ def _check_laws(reaction: Reaction, entry: Entry, fits: Mapping[str, tuple[float
         if fault:
             raise entry.error(f"{fault.problem} at {fault.temperature:.4g} K", expected=fault.expected,
                               remedy="correct its numbers", key="forward" + (f"[{k}]" if len(reaction.terms) > 1 else ""))
-    if len(reaction.terms) > 1 and any(e.sign < 0 for term in reaction.terms for e in term.law.expressions()):
-        _check_sum(reaction, entry, temperatures)
+    plain = tuple(term for term in reaction.terms if term.orders is None)  # lumped ones are positive each by itself
+    if len(reaction.terms) > 1 and any(e.sign < 0 for term in plain for e in term.law.expressions()):
+        _check_sum(replace(reaction, terms=plain), entry, temperatures)
 
 
 @lru_cache

@@ -78,6 +78,8 @@ def _stoichiometry(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     changes = [sum(r.net.values()) if mechanism.standard_state == FRACTION else 0 for r in mechanism.reactions]
     ints["diluted_reaction"] = np.flatnonzero(changes)
     floats["amount_change"] = np.array([change for change in changes if change])
+    places = {j: place for place, j in enumerate(ints["diluted_reaction"], 1)}
+    ints["lump_diluted"] = np.array([places.get(ints["term_reaction"][t], 0) for t in ints["lump_term"]])
 
 
 def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, np.ndarray, int]:
@@ -86,7 +88,8 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
              "BODIES": len(ints["body_term"]), "FALL_OFFS": len(ints["fall_term"]),
              "GROUPS": len(floats["group_default"]), "LONG": len(ints["long_side"]),
              "BLOCK": len(ints["block_row"]), "CURVES": len(ints["curve_term"]), "COLUMNS": len(ints["column_start"]) - 1,
-             "RESPONSES": len(ints["response_start"]) // 2, "DILUTED": len(ints["diluted_reaction"])}
+             "RESPONSES": len(ints["response_start"]) // 2, "DILUTED": len(ints["diluted_reaction"]),
+             "LUMPS": len(ints["lump_term"]), "LUMP_ENTRIES": len(ints["lump_species"]) + len(ints["adsorbed_species"])}
     header = [sizes[name] for name in layout.SIZES]
     lengths = [[np.size(ints[name]) for name in layout.INTS], [np.size(floats[name]) for name in layout.FLOATS],
                _work_lengths(sizes)]
@@ -105,8 +108,9 @@ def _work_lengths(sizes: dict[str, int]) -> list[int]:
                "pressure": 1, "column": columns, "column_slope": columns,
                "log_k": x, "k_limit": x, "k_slope": x, "centre_exponent": 3 * fall, "centre_part": 3 * fall,
                "partner": sizes["GROUPS"], "log_partner": sizes["GROUPS"], "k": t, "k_by_T": t, "k_by_M": t,
-               "partial": 4 * r + sizes["LONG"] + t + sizes["RESPONSES"] + sizes["DILUTED"], "dilution": sizes["DILUTED"] + 1,
-               "block": sizes["BLOCK"] + n + layout.NOT_WANTED}
+               "partial": 4 * r + sizes["LONG"] + t + sizes["RESPONSES"] + sizes["LUMP_ENTRIES"] + sizes["DILUTED"],
+               "dilution": sizes["DILUTED"] + 1, "block": sizes["BLOCK"] + n + layout.NOT_WANTED}
+    by_name |= dict.fromkeys(("lump_bare", "lump_forward", "lump_reverse"), sizes["LUMPS"])
     by_name |= dict.fromkeys(("gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T",
                               "concentration", "energy", "border_column"), n)
     by_name |= dict.fromkeys(("log_centre", "log_centre_slope", "log_broadening", "broadening", "centre", "fall_ratio",

@@ -55,9 +55,10 @@ class Arrhenius(Law):
             return math.inf
 
 
-def read_expression(entry: Entry, order: int, sign: str) -> Arrhenius:
-    """A, n, Ea and T_ref from a table, A in the file's units for that order."""
-    A = entry.number("A", sign=sign) * entry.units.rate_factor(order)
+def read_expression(entry: Entry, order: float, sign: str, per_time: bool = True) -> Arrhenius:
+    """A, n, Ea and T_ref from a table, A in the file's units for that order, or those without the time."""
+    factor = entry.units.rate_factor(order) * (1.0 if per_time else entry.units.factor("time"))
+    A = entry.number("A", sign=sign) * factor
     if A == 0 or not math.isfinite(A):
         raise entry.error(f"{shown(entry.data['A'])} is {A:g} in SI units", expected="a number that SI units can express",
                           remedy="correct it or the units", key="A")

@@ -167,7 +167,7 @@ UNBROADENED = (1.0, 0.0, 0.0, 0.0, 0.0, 0.0, 0.0, 0.0)
 """Parameters of a centre that is 1 at every temperature: F = 1."""
 
 
-def read_limits(entry: Entry, order_of_k_inf: int) -> tuple[Arrhenius, Arrhenius]:
+def read_limits(entry: Entry, order_of_k_inf: float) -> tuple[Arrhenius, Arrhenius]:
     """k_inf and k_0 from their tables, k_0 one order higher."""
     limits = []
     for key, order in (("k_inf", order_of_k_inf), ("k_0", order_of_k_inf + 1)):

@@ -1,6 +1,6 @@
 """What every rate law offers, and what reading one needs to know."""
 
-from collections.abc import Sequence
+from collections.abc import Collection, Sequence
 from dataclasses import dataclass
 from typing import ClassVar, NamedTuple, Protocol
 
@@ -46,6 +46,14 @@ class Series(NamedTuple):
     coefficients: tuple[tuple[float, ...], ...]
 
 
+class AdsorptionGroup(NamedTuple):
+    """A denominator (1 + Σ K c^p)^power: its species and powers p; the K's are the law's expressions behind the first."""
+
+    species: tuple[str, ...]
+    powers: tuple[float, ...]
+    power: float
+
+
 class Fault(NamedTuple):
     """What is wrong with a law, at which temperature [K], and what would be right."""
 
@@ -56,11 +64,13 @@ class Fault(NamedTuple):
 
 @dataclass(frozen=True)
 class LawContext:
-    """What the reaction tells its law: the reactants' order, whether M stands in the equation, one term of several."""
+    """What the reaction tells its law: its forward order, whether M stands in the equation, one of several terms that may
+    be negative, the mechanism's species."""
 
-    order: int
+    order: float
     partner_in_equation: bool = False
     of_several: bool = False
+    species: Collection[str] = ()
 
 
 class Law(Protocol):
@@ -77,7 +87,7 @@ class Law(Protocol):
     def expressions(self) -> tuple[Expression, ...]:
         """One exponential; of a curve two, the high- and the low-pressure limit; of a pressure table one a row."""
 
-    def part(self) -> Broadening | Curve | PressureNodes | Series | None:
+    def part(self) -> Broadening | Curve | PressureNodes | Series | AdsorptionGroup | None:
         """What the kernels need besides the expressions; None where k is the expression itself (times a partner)."""
         return None
 
