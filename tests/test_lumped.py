@@ -5,6 +5,7 @@ import warnings
 import numpy as np
 import pytest
 
+import solutions
 from bothways import Equations, Remark, build_case, build_mechanism
 from bothways.along import affinities
 from bothways.balance import net_rates
@@ -210,3 +211,42 @@ def test_order_of_a_half_runs_out_in_finite_time():
         left = result.amount[-1, 0] / result.amount[0, 0]
         assert left == pytest.approx((1 - share) ** 2, rel=1e-4) if share < 1 else left < 1e-18
     assert last.kind is Kind.APART and last.largest_deviation < 1e-6  # C and D by themselves
+
+
+# ---- solutions
+
+
+def with_own_orders(data, **more):
+    """The same mechanism, its laws stated as lumped ones with the equations' own orders."""
+    forward = [{**r["forward"], "stoichiometric_number": 1, **more} for r in data["reaction"]]
+    return {**data, "reaction": [{**r, "forward": f} for r, f in zip(data["reaction"], forward, strict=True)]}
+
+
+@pytest.mark.parametrize("heat", ["isothermal", "adiabatic"])
+@pytest.mark.parametrize("state", solutions.STATES)
+def test_with_the_equations_own_orders_it_is_mass_action(state, heat):
+    """Long sides, a species on both sides, mole fractions: f and J of both statements, 1e-12."""
+    plain, lumped = (Equations(build_mechanism(data), "volume", heat, heat_capacity=2e5)
+                     for data in (solutions.document(state), with_own_orders(solutions.document(state))))
+    y = np.array([640.0, 95.0, 130.0, 40.0, 3.0, 5.0, 2.9e4, 341.0])
+    assert np.allclose(lumped.f(0.0, y), plain.f(0.0, y), rtol=1e-12, atol=1e-13 * np.abs(plain.f(0.0, y)).max())
+    J = plain.J(0.0, y)
+    assert np.all(np.abs(lumped.J(0.0, y) - J) <= 1e-12 * np.abs(J).max(axis=1, keepdims=True))
+
+
+@pytest.mark.parametrize("state", solutions.STATES)
+def test_mole_fractions_count_under_the_root_as_well(state):
+    """σ = 2: the ratio of the one-way rates is the root of that of mass action, and J agrees with differences of f."""
+    data = solutions.document(state)
+    data["reaction"] = data["reaction"][:1]
+    halved = with_own_orders(data, stoichiometric_number=2)
+    plain, lumped = (Equations(build_mechanism(d), "volume", "isothermal") for d in (data, halved))
+    y = np.array([640.0, 95.0, 130.0, 40.0, 3.0, 5.0, 2.9e4, 341.0])
+    (ahead, back), (ahead_2, back_2) = (eq.reaction_rates(y) for eq in (plain, lumped))
+    assert ahead_2[0] == pytest.approx(ahead[0], rel=1e-13)
+    assert back_2[0] / ahead_2[0] == pytest.approx(np.sqrt(back[0] / ahead[0]), rel=1e-13)
+    h, J = 1e-3 * y, lumped.J(0.0, y)
+    for k, step in enumerate(np.diag(h)):
+        at = [lumped.f(0.0, y + m * step)[0] for m in (-2, -1, 1, 2)]
+        round_off = 1e-15 * np.abs(ahead_2[0] + back_2[0]) / h[k]
+        assert J[0, k] == pytest.approx((at[0] - 8 * at[1] + 8 * at[2] - at[3]) / (12 * h[k]), rel=1e-8, abs=4 * round_off)
