@@ -10,6 +10,7 @@ from hypothesis import strategies as st
 from scipy.optimize import linprog
 
 from bothways import InputError, bundled_mechanisms
+from bothways.components import Components
 from bothways.equilibrium import (
     combination_text,
     conserved_by_elements,
@@ -17,7 +18,6 @@ from bothways.equilibrium import (
     equilibrium,
     extra_conserved,
 )
-from bothways.equilibrium.components import Components
 from bothways.equilibrium.possible import possible_species
 from equilibria import ATM, R, amounts, balanced, contents, of_known_potentials
 
@@ -245,7 +245,7 @@ def test_conserved_rows_of_ones_own():
     assert equilibrium(mechanism, charge, temperature=1000.0, pressure=ATM).fraction("H2O2") < 1e-9
 
 
-def test_only_gases():
-    mechanism = replace(contents("hydrogen-oxygen").mechanism, phase="ideal solution")
-    with pytest.raises(InputError, match="no gas but an ideal solution"):
+def test_a_solution_has_no_pressure():
+    mechanism = replace(contents("hydrogen-oxygen").mechanism, phase="ideal solution", standard_state="1 mol/L")
+    with pytest.raises(InputError, match="given: temperature, pressure; expected temperature with volume, or enthalpy"):
         equilibrium(mechanism, {"H2": 1.0}, temperature=300.0, pressure=ATM)

@@ -17,7 +17,7 @@ import bothways
 
 LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("constants", "errors", "compiled"),
-    ("units", "outfile"),
+    ("units", "outfile", "components"),
     ("entry", "hdf5"),
     ("kernels",),
     ("thermo",),

@@ -10,6 +10,9 @@ from .case import MARGIN_WARN, Case, law_outside, listed, species_outside
 TOLD_JOINS = 1e-2
 """Joins shifted by more than this in h/RT or s/R are remarked on."""
 
+TOLD_CHANGES = 12
+"""Changes of stated equilibria that are named, at most."""
+
 
 class Remark(UserWarning):
     """Something a user should know of a run that did not stop it."""
@@ -18,6 +21,7 @@ class Remark(UserWarning):
 def remark_at_start(case: Case) -> None:
     """Joins that were closed, and species whose data do not reach the temperature at the start."""
     _remark_joins(case)
+    _remark_adjusted(case)
     temperature = case.charge.temperature
     _remark_range(species_outside(case.mechanism, temperature, MARGIN_WARN), temperature)
 
@@ -49,6 +53,15 @@ def _remark_joins(case: Case) -> None:
         name, shift = worst
         _say(f"the fitted ranges of {len({n for n, _ in shifts})} species do not meet and were closed, by up to "
              f"{abs(shift.h):.2g} in h/RT and {abs(shift.s):.2g} in s/R ({name} at {shift.temperature:.0f} K)")
+
+
+def _remark_adjusted(case: Case) -> None:
+    """Stated equilibria that were changed for their cycles to close."""
+    notes = case.mechanism.notes
+    if notes:
+        more = f" and {len(notes) - TOLD_CHANGES} more" if len(notes) > TOLD_CHANGES else ""
+        _say(f"stated equilibria were changed within their uncertainties to close their cycles: {'; '.join(notes[:TOLD_CHANGES])}"
+             f"{more}")
 
 
 def _say(text: str) -> None:

@@ -67,6 +67,8 @@ class Equations:
         vessel = np.zeros(kernel.VESSEL_SIZE)
         vessel[kernel.HOLDS], vessel[kernel.HEAT] = HOLDS.index(self.holds), HEAT.index(self.heat)
         vessel[kernel.PRESSURE], vessel[kernel.HEAT_CAPACITY] = self.pressure, self.heat_capacity
+        if self.heat == "isothermal":
+            vessel[kernel.HEAT_CAPACITY] = 1.0  # without effect; species may have none
         vessel[kernel.LESS], vessel[kernel.SHARED] = less(self.mechanism, self.holds), shared(self.mechanism, self.holds)
         return vessel
 

@@ -4,11 +4,11 @@ from dataclasses import dataclass, replace
 
 import numpy as np
 
+from ..components import Components
 from ..constants import GAS_CONSTANT as R
 from ..contents import Contents
 from ..errors import InputError, SolverError
 from ..mechanism.phase import GAS, SOLUTION
-from .components import Components
 from .continuation import compose
 from .newton import Point, Task, balances, jacobian, log_amounts, log_sides
 
@@ -118,7 +118,7 @@ def _with_energy(point: Point, task: Task, temperature: float, energy: np.ndarra
         slope += components.expansion * shift[-1]
     n = np.exp(log_n)
     total = float(n @ (energy * slope + heat_capacity))
-    round_off = _ROUND_OFF * float(n @ np.abs(energy)) / total
+    round_off = _ROUND_OFF * float(n @ np.abs(energy)) / total if total else 0.0
     return State(temperature, point, log_n, float(temperature * (n @ energy)), total, round_off, shift, iterations)
 
 

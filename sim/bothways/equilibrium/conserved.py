@@ -7,15 +7,17 @@ from itertools import islice
 
 import numpy as np
 
+from ..components import Components
 from ..mechanism.model import Mechanism
-from .components import Components
 
 _TERMS_SHOWN = 8
 
 
 def conserved_by_elements(mechanism: Mechanism) -> np.ndarray:
-    """Atoms of each element in each species, (m, N), integer; a last row of charges where there are any."""
-    return np.rint(mechanism.element_matrix).astype(np.int64)
+    """Atoms of each element in each species, (m, N), integer; then a row of charges where there are any, then the combinations
+    whose potentials nothing stated fixes (`Mechanism.undetermined`), between which no equilibrium can be told."""
+    atoms = np.rint(mechanism.element_matrix).astype(np.int64)
+    return np.vstack([atoms, np.array(mechanism.undetermined, dtype=np.int64).reshape(-1, atoms.shape[1])])
 
 
 def conserved_by_reactions(mechanism: Mechanism) -> np.ndarray:

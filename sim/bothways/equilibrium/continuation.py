@@ -9,8 +9,8 @@ The first step tries the whole way, which nearly always succeeds.
 
 import numpy as np
 
+from ..components import Components
 from ..errors import SolverError
-from .components import Components
 from .newton import Point, Task, solve
 from .vertex import leave_mixing_out
 

@@ -5,12 +5,12 @@ from dataclasses import replace
 
 import numpy as np
 
+from ..components import Components
 from ..contents import Contents
 from ..errors import InputError
 from ..mechanism.model import Mechanism
 from ..mechanism.phase import GAS, SOLUTION
 from .closures import Held, Stock, at_energy, at_temperature
-from .components import Components
 from .conserved import conserved_by_elements, conserved_by_reactions
 from .possible import possible_species
 from .result import Equilibrium, finish

@@ -15,7 +15,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from .components import Components
+from ..components import Components
 
 _EXCHANGE_ABOVE = 1.0  # in ln n
 _FARTHEST = 1e6  # in ln n: beyond it the iteration runs away

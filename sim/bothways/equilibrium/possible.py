@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from .components import Components
+from ..components import Components
 
 
 def possible_species(rows: np.ndarray, charge: np.ndarray) -> tuple[np.ndarray, Components]:

@@ -2,7 +2,7 @@
 
 import numpy as np
 
-from .components import Components
+from ..components import Components
 
 _MOST_EXCHANGES = 200
 _AFTER_BLAND = 60

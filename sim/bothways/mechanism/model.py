@@ -13,6 +13,7 @@ from ..thermo import Potential, Ranges
 from ..thermo.polynomial import Shift, closed
 from .equation import Equation
 from .orders import Orders
+from .stated import StatedEquilibrium
 
 
 @dataclass(frozen=True)
@@ -74,6 +75,7 @@ class Reaction:
     source: str = ""
     published_one_way: bool = False
     published_reverse: Arrhenius | None = None
+    equilibrium: StatedEquilibrium | None = None
 
     @cached_property
     def net(self) -> dict[str, int]:
@@ -98,6 +100,8 @@ class Mechanism:
     """A mechanism; `document` is what it was made from, key by key, and `file` where that stood.
 
     standard_pressure : [Pa] of a gas, NaN of a solution. standard_state : of a solution, "1 mol/L" or "mole fraction".
+    notes : what was changed for stated equilibria to close their cycles. undetermined : (m, N) combinations of species whose
+        potential nothing stated fixes; no reaction changes their amount.
     """
 
     name: str
@@ -111,6 +115,8 @@ class Mechanism:
     document: Mapping[str, Any] = field(repr=False)
     file: object = field(default=None, repr=False, compare=False)
     standard_state: str = ""
+    notes: tuple[str, ...] = ()
+    undetermined: tuple[tuple[int, ...], ...] = ()
 
     @cached_property
     def names(self) -> tuple[str, ...]:

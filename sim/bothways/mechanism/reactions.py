@@ -17,6 +17,7 @@ from ..units import UnitSystem
 from .equation import Equation, parse_equation
 from .model import Partner, Reaction, Species, Term, net_of
 from .orders import read_orders
+from .stated import read_equilibrium
 
 _REVERSE_WORDS = re.compile(r"reverse|backward|(^|_)(rev|k_?(r|b|rev))(_|$)", re.IGNORECASE)
 LARGEST_EFFICIENCY = 1e4
@@ -52,7 +53,7 @@ def _one(entry: Entry, species: Mapping[str, Species]) -> Reaction:
     _refuse_orders(entry)
     source, one_way = entry.text("source", ""), entry.flag("published_one_way")
     reverse = _published_reverse(entry, equation)
-    reaction = Reaction(equation, _terms(entry, equation, species), source, one_way, reverse)
+    reaction = Reaction(equation, _terms(entry, equation, species), source, one_way, reverse, read_equilibrium(entry))
     entry.done()
     return reaction
 

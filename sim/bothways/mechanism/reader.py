@@ -8,12 +8,14 @@ from ..errors import InputError, shown
 from ..rates.law import PressureNodes, Series
 from ..thermo import Substance, read_potential
 from ..thermo.polynomial import LARGEST
+from ..thermo.unstated import Unstated
 from ..units import UnitSystem, unit_system
 from .elements import ATOMIC_MASS, ATOMIC_NUMBER, check_atoms, parse_formula, unknown_element
 from .equation import ARROWS, is_coefficient
 from .model import Mechanism, Reaction, Species, copy_document
 from .phase import GAS, PHASES, SOLUTION, read_standard
 from .reactions import read_reactions
+from .stated_equilibria import resolve
 
 JOINS = ("closed", "as published")
 _OF_PRESSURE = PressureNodes, Series
@@ -39,7 +41,9 @@ def build(document: Mapping[str, Any], file: object = None) -> Mechanism:
     reactions = read_reactions(top, units, species)
     if phase == SOLUTION:
         _refuse_partners(top, reactions)
-    return Mechanism(name, phase, standard, joins, sources, masses, species, reactions, copy_document(document), file, state)
+    found = resolve(top, species, reactions, standard, joins)
+    return Mechanism(name, phase, standard, joins, sources, masses, found.species, reactions, copy_document(document), file,
+                     state, found.notes, found.undetermined)
 
 
 def _head(top: Entry) -> Entry:
@@ -76,8 +80,9 @@ def _species(top: Entry, units: UnitSystem, masses: Mapping[str, float], standar
 
 def _check_scales(table: Entry) -> None:
     """ΔfG° holds the entropies of the elements, S° does not: mixed in one mechanism they would falsify every K."""
-    by_G = [name for name, data in table.data.items() if "G" in data["potential"]]
-    others = [name for name in table.data if name not in by_G]
+    stated = {name: data.get("potential", {}) for name, data in table.data.items()}
+    by_G = [name for name, potential in stated.items() if "G" in potential]
+    others = [name for name, potential in stated.items() if not {"G", "cp"} >= set(potential) - {"form"} and name not in by_G]
     if by_G and others:
         raise table.error(f"{by_G[0]} states G (of formation), {others[0]} an absolute entropy: their potentials count from "
                           "different zeros", expected="one kind for all species", key=f"{by_G[0]}.potential.G",
@@ -93,7 +98,8 @@ def _one_species(entry: Entry, name: str, masses: Mapping[str, float], standard:
     well_depth = entry.quantity("well_depth", "temperature", None, sign="positive")
     molar_mass = sum(masses[e] * count for e, count in composition.items())
     substance = Substance(composition, charge, molar_mass, pressure, ATOMIC_NUMBER)
-    potential = read_potential(entry.table("potential"), substance, least)
+    bare = least < 0 and entry.get("potential", None) is None
+    potential = Unstated() if bare else read_potential(entry.table("potential"), substance, least)
     entry.done()
     return Species(name, composition, charge, molar_mass, potential, pressure, source, diameter, well_depth)
 

@@ -11,6 +11,7 @@ from ..constants import GAS_CONSTANT
 from ..entry import Entry
 from .polynomial import Ranges, constant_row
 from .potential import Potential, Substance
+from .unstated import Unstated
 
 NAME = "constant heat capacity"
 
@@ -31,8 +32,13 @@ class ConstantHeatCapacity(Potential):
         return Ranges(np.array([0.0, np.inf]), row[None, :])
 
 
-def read(entry: Entry, substance: Substance) -> ConstantHeatCapacity:
-    """The form from its table; errors: S and G both or neither stated, `at` not positive."""
+def read(entry: Entry, substance: Substance) -> ConstantHeatCapacity | Unstated:
+    """The form from its table, cp alone where equilibria of reactions say the rest.
+
+    Errors: S and G both or neither stated, `at` not positive.
+    """
+    if set(entry.data) == {"form", "cp"}:
+        return Unstated(entry.quantity("cp", "molar heat capacity"))
     at = entry.quantity("at", "temperature", sign="positive")
     H = entry.quantity("H", "molar energy")
     cp = entry.quantity("cp", "molar heat capacity")
