@@ -42,12 +42,19 @@ from reference_laws import ARRHENIUS_WIDTH, CENTRE_WIDTH, activated, arrhenius, 
 
 @dataclass(frozen=True)
 class Vessel:
-    """How the contents are held: ``volume`` or ``pressure`` [Pa]; ``adiabatic`` or ``isothermal``."""
+    """How the contents are held: ``volume`` or ``pressure`` [Pa]; ``adiabatic`` or ``isothermal``.
+
+    An isothermal one whose temperature is given has a ``ramp`` [K/s], an adiabatic one in a jacket ``transfer`` (UA, in
+    W/K per what the heat capacity is per) and ``jacket`` [K].
+    """
 
     holds: str
     heat: str
     pressure: float | None = None
     heat_capacity: float = 0.0  # of the vessel: J/(m3 K), at constant pressure J/K
+    ramp: Any = 0.0
+    transfer: float = 0.0
+    jacket: Any = 0.0
 
     def __post_init__(self) -> None:
         if self.holds not in ("volume", "pressure") or self.heat not in ("adiabatic", "isothermal"):
@@ -234,21 +241,23 @@ class Reference:
         made = volume * self._sum(self._i, self._nu * (forward - reverse)[self._j], self.n)
         gross = abs(volume) * self._sum(self._i, abs(self._nu) * size[self._j], self.n)
         if vessel.heat == "isothermal":
-            return np.append(made, 0 * at.T), np.append(gross, 0 * at.T.real)
+            return np.append(made, vessel.ramp + 0 * at.T), np.append(gross, abs(vessel.ramp) + 0 * at.T.real)
         energy = self.R * at.T * (at.h - constant_volume)  # u or h of each species [J/mol]
         capacity = self.R * ((at.cp - constant_volume) @ amounts) + vessel.heat_capacity
-        return (np.append(made, -(energy @ made) / capacity),
-                np.append(gross, abs(energy) @ gross / abs(capacity)))
+        received = vessel.transfer * (vessel.jacket - at.T)
+        return (np.append(made, (received - energy @ made) / capacity),
+                np.append(gross, (abs(received) + abs(energy) @ gross) / abs(capacity)))
 
     def derivative(self, y: Array, holds: str, heat: str, pressure: float | None = None,
-                   vessel_heat_capacity: float = 0.0) -> tuple[Array, Array]:
+                   vessel_heat_capacity: float = 0.0, **outside: Any) -> tuple[Array, Array]:
         """dy/dt (n + 1,) and, of the same shape, the sum of the absolute contributions to it.
 
         holds = "volume": y = (c_1 ... c_n [mol/m3], T [K]), the vessel's heat capacity in J/(m3 K).
         holds = "pressure": y = (n_1 ... n_n [mol], T [K]), the vessel's heat capacity in J/K.
+        outside : what ``Vessel`` says of a ramp or a jacket.
         """
         y = self._typed(np.asarray(y))
-        return self._change(self._thermal(y[-1]), y, Vessel(holds, heat, pressure, vessel_heat_capacity))
+        return self._change(self._thermal(y[-1]), y, Vessel(holds, heat, pressure, vessel_heat_capacity, **outside))
 
     def jacobian(self, y: Array, holds: str, heat: str, pressure: float | None = None,
                  vessel_heat_capacity: float = 0.0) -> Array:

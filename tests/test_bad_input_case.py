@@ -11,7 +11,6 @@ from hypothesis import strategies as st
 from bothways import BothwaysError, InputError, Mechanism, Remark, build_case, build_mechanism, read_case, run
 from bothways.cli import main
 from bothways.mechanism.toml_reader import parse_toml
-from bothways.vessel import HEAT
 from mutations import mutated
 from refusals import CASE, MECHANISM, Refusals, changed, row
 
@@ -242,12 +241,6 @@ KINDS = [
 @pytest.mark.parametrize("changes, entry, texts", KINDS)
 def test_kind_or_type(refusals: Refusals, changes: tuple, entry: str, texts: tuple) -> None:
     check(refusals, changes, entry, texts)
-
-
-@pytest.mark.parametrize("heat", [heat for heat in ("given temperature", "jacket") if heat not in HEAT])
-def test_planned_vessels_are_refused_with_what_there_is(refusals: Refusals, heat: str) -> None:
-    texts = (f"'{heat}' is not known", "expected ", '"isothermal"', '"adiabatic"')
-    check(refusals, (("adiabatic", heat),), "vessel.heat", texts)
 
 
 # ---- temperatures outside the data: the fit of Q2 reaches from 300 to 3000 K

@@ -17,7 +17,7 @@ import bothways
 
 LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("constants", "errors", "compiled"),
-    ("units", "outfile", "components"),
+    ("units", "outfile", "schedule", "components"),
     ("entry", "hdf5"),
     ("kernels",),
     ("thermo",),
@@ -27,7 +27,7 @@ LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("integrate",),
     ("vessel", "contents"),
     ("equilibrium", "trajectory"),
-    ("along", "charge", "course", "reach", "relaxation"),
+    ("along", "charge", "course", "exchange", "heating", "reach", "relaxation"),
     ("case",),
     ("endpoint", "monitored", "recorder", "remarks", "milestones"),
     ("batch", "grid"),

@@ -14,7 +14,7 @@ from .mechanism.phase import GAS
 from .mechanism.toml_writer import to_toml
 from .milestones import milestones
 from .monitored import Monitored, monitored
-from .recorder import Recorder, potential_of
+from .recorder import HEAT_COLUMNS, Recorder, potential_of
 from .remarks import remark_at_end, remark_at_start
 from .trajectory import Trajectory
 from .vessel import Equations
@@ -66,12 +66,14 @@ def run_and_judge(case: Case, told: Callable[[int, float, float], None] | None =
 
 
 def landing(case: Case, target: Target) -> Callable[[float, np.ndarray], bool] | None:
-    """When a run to equilibrium may end: well within the distance that counts as landed."""
+    """When a run to equilibrium may end: well within the distance that counts as landed, and after the last given corner."""
     if not case.to_equilibrium:
         return None
 
+    n, settled = len(case.mechanism.species), case.schedule.end if case.schedule else 0.0
+
     def landed(t: float, y: np.ndarray) -> bool:
-        return target.distance(y[:-1] / np.sum(y[:-1]), float(y[-1])) <= 0.3 * CLOSEST
+        return t >= settled and target.distance(y[:n] / np.sum(y[:n]), float(y[n])) <= 0.3 * CLOSEST
 
     return landed
 
@@ -83,8 +85,9 @@ def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task:
     statistics = {"method": case.method, "rtol": case.rtol, "atol": case.atol, "status": outcome.status.value,
                   **outcome.counts, **(task.notes() if case.method in OWN_METHODS else {}), "largest_potential_rise": rise}
     m = case.mechanism
+    required = {name: column for name, column in columns.items() if name not in HEAT_COLUMNS}
     return Trajectory(
-        **columns, potential_name=name, potential_units=units, species=m.names, molar_mass=m.molar_mass,
+        **required, potential_name=name, potential_units=units, species=m.names, molar_mass=m.molar_mass,
         reactions=tuple(str(r.equation) for r in m.reactions), mechanism_name=m.name, mechanism_text=to_toml(m.document),
         case_text=to_toml(case.document), sources=m.sources, statistics=statistics,
         milestones=milestones(case, equations, columns), program_version=program_version(),
@@ -98,6 +101,7 @@ def _extra(case: Case, columns: dict[str, Any], last: Verdict) -> dict[str, Any]
              "equilibrium_volume": own.volume, "equilibrium_amount": own.amount, "verdict": f"{last.kind.value}: {last.sentence}"}
     if case.mechanism.phase == GAS:
         extra["equilibrium_pressure"] = own.pressure
+    extra |= {name: columns[name] for name in HEAT_COLUMNS if name in columns}
     if case.rates:
         extra |= rates_along(case.mechanism, columns["amount"], columns["temperature"], columns["volume"])
     return extra

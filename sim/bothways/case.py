@@ -12,20 +12,20 @@ from .charge import Charge, read_charge
 from .contents import Contents
 from .entry import REQUIRED, Entry
 from .errors import InputError, hint
+from .heating import Heating, check_schedule, key_of, read_heating
 from .integrate import DEFAULT_METHOD, METHODS
 from .kernels.equations import HIGHEST_TEMPERATURE
 from .mechanism import Mechanism, bundled_cases, read_mechanism
 from .mechanism.files import mechanism_path, read_toml
 from .mechanism.model import copy_document
 from .mechanism.phase import SOLUTION
-from .vessel import HEAT, HOLDS, Equations
+from .schedule import Schedule
+from .vessel import HOLDS, Equations
 
 MARGIN_WARN, MARGIN_ERROR = 10.0, 500.0
 """Temperatures so far outside a fit's range [K] are remarked on, or refused."""
 FOREVER = 1e30
 """The last time [s] of a run to equilibrium that states none."""
-MOST_INERTIA = 1e6
-"""Thermal inertia above this [-] is taken for a slip."""
 
 
 @dataclass(frozen=True)
@@ -37,6 +37,7 @@ class Case:
     atol : mole fraction below which accuracy is not asked [-].
     rates : whether rates and affinities of every reaction go to the file.
     to_equilibrium : whether the run goes on until it has landed at equilibrium, at the latest until `end`.
+    transfer : UA of a jacket [W/K]. schedule : the given temperature of the contents, or the jacket's [K].
     """
 
     mechanism: Mechanism
@@ -53,8 +54,16 @@ class Case:
     rates: bool = False
     to_equilibrium: bool = False
     inert_heat_capacity: float = 0.0
+    transfer: float = 0.0
+    schedule: Schedule | None = None
     document: Mapping[str, Any] = field(default_factory=dict, repr=False)
     file: object = field(default=None, repr=False, compare=False)
+
+    def held_temperature(self, t: float) -> float | None:
+        """The temperature [K] that the contents are brought to, or drawn to, at t [s]; None of an adiabatic vessel."""
+        if self.heat == "isothermal":
+            return self.charge.temperature
+        return None if self.schedule is None else self.schedule.value(t)
 
     @property
     def own_heat_capacity(self) -> float:
@@ -68,8 +77,9 @@ class Case:
 
     def equations(self) -> Equations:
         """f and J of this case's vessel."""
-        own = self.own_heat_capacity / (self.charge.volume if self.holds == "volume" else 1.0)
-        return Equations(self.mechanism, self.holds, self.heat, self.charge.pressure, own)
+        unit = self.charge.volume if self.holds == "volume" else 1.0
+        return Equations(self.mechanism, self.holds, self.heat, self.charge.pressure, self.own_heat_capacity / unit,
+                         self.transfer / unit, self.schedule)
 
 
 def read_case(name: str | Path) -> Case:
@@ -98,31 +108,45 @@ def build_case(document: Mapping[str, Any], file: object = None, mechanism: Mech
         raise top.error("this is a mechanism", expected="a case", remedy="name it under [case] in a case file")
     top.expect("case", "vessel", "start", "until", "solver", "output")
     mechanism = _mechanism(top, mechanism)
-    holds, heat, inertia, volume, inert = _vessel(top, mechanism.phase)
+    holds, heating, volume, inert = _vessel(top, mechanism.phase)
     start = top.table("start")
-    charge = read_charge(start, mechanism, holds, volume)
-    _check_temperature(start, mechanism, charge)
+    charge = read_charge(start, mechanism, holds, volume, _given_start(heating))
+    _check_temperature(start, mechanism, charge.temperature)
     _check_laws(start, mechanism, charge)
     end, to_equilibrium = _end(top)
-    case = Case(mechanism, holds, heat, charge, end, *_solver(top), inertia, *_output(top, file, end),
-                to_equilibrium, inert, document=copy_document(document), file=file)
+    _check_heating(top.table("vessel", {}), mechanism, heating, charge.temperature)
+    check_schedule(top.table("vessel", {}), heating, end, to_equilibrium)
+    case = Case(mechanism, holds, heating.heat, charge, end, *_solver(top), heating.inertia, *_output(top, file, end),
+                to_equilibrium, inert, heating.transfer, heating.schedule, document=copy_document(document), file=file)
     _check_heat_capacity(top, case)
     return case
 
 
-def _vessel(top: Entry, phase: str) -> tuple[str, str, float, float | None, float]:
-    """What is held, heat, thermal inertia [-], volume [m3] if stated, and inert heat capacity [J/K]."""
+def _vessel(top: Entry, phase: str) -> tuple[str, Heating, float | None, float]:
+    """What is held, how heat is exchanged, volume [m3] if stated, and inert heat capacity [J/K]."""
     vessel = top.table("vessel", {})
-    holds = vessel.text("holds", "volume", choices=HOLDS)
-    heat = vessel.text("heat", "adiabatic", choices=HEAT)
-    inertia = vessel.number("thermal_inertia", 1.0, "positive")
-    if not 1.0 <= inertia <= MOST_INERTIA or (inertia > 1.0 and heat != "adiabatic"):
-        raise vessel.error(f"{inertia:g} for a vessel that is {heat}", key="thermal_inertia", remedy="correct it",
-                           expected=f"a number from 1 to {MOST_INERTIA:g} in an adiabatic vessel, 1 in others")
+    holds, heating = vessel.text("holds", "volume", choices=HOLDS), read_heating(vessel)
     volume = vessel.quantity("volume", "volume", None, "positive")
     inert = _solution_keys(vessel, holds) if phase == SOLUTION else 0.0
     vessel.done()
-    return holds, heat, inertia, volume, inert
+    return holds, heating, volume, inert
+
+
+def _given_start(heating: Heating) -> float | None:
+    """The temperature at the start [K] where [vessel] gives it."""
+    return heating.schedule.value(0.0) if heating.heat == "given temperature" and heating.schedule else None
+
+
+def _check_heating(vessel: Entry, mechanism: Mechanism, heating: Heating, start: float) -> None:
+    """A given temperature begins where the charge is, and stays where the data reach, as a jacket's does."""
+    if heating.schedule is None:
+        return
+    key, values = key_of(heating), heating.schedule.values
+    if heating.heat == "given temperature" and abs(values[0] - start) > 1e-9 * start:
+        raise vessel.error(f"it begins at {values[0]:g} K, and start.temperature is {start:g} K", key=key,
+                           expected="the same", remedy="leave out start.temperature, or correct either")
+    for T in values:
+        _check_temperature(vessel, mechanism, T, key)
 
 
 def _solution_keys(vessel: Entry, holds: str) -> float:
@@ -135,7 +159,7 @@ def _solution_keys(vessel: Entry, holds: str) -> float:
 
 def _check_heat_capacity(top: Entry, case: Case) -> None:
     """A solution whose temperature is free must have a positive heat capacity (a species alone may have a negative one)."""
-    if case.mechanism.phase != SOLUTION or case.heat == "isothermal":
+    if case.mechanism.phase != SOLUTION or case.heat in ("isothermal", "given temperature"):
         return
     c = case.charge
     total = Contents(case.mechanism).heat_capacity(c.amount, c.temperature, case.holds) + case.own_heat_capacity
@@ -201,18 +225,18 @@ def _times(output: Entry, end: float) -> tuple[float, ...]:
     return tuple(sorted(set(times)))
 
 
-def _check_temperature(start: Entry, mechanism: Mechanism, charge: Charge) -> None:
+def _check_temperature(start: Entry, mechanism: Mechanism, temperature: float, key: str = "temperature") -> None:
     lowest = Equations(mechanism).tables.lowest_temperature
-    if not lowest <= charge.temperature < HIGHEST_TEMPERATURE:
+    if not lowest <= temperature < HIGHEST_TEMPERATURE:
         expected = f"{lowest:g} to {HIGHEST_TEMPERATURE:g} K for this mechanism"
         if lowest > HIGHEST_TEMPERATURE:
             expected = "potentials nearer to each other: no temperature is possible with this mechanism"
-        raise start.error(f"{charge.temperature:g} K", expected=expected, key="temperature",
+        raise start.error(f"{temperature:g} K", expected=expected, key=key,
                           remedy="beyond, rates and equilibrium constants leave the range of the arithmetic")
-    outside = listed(species_outside(mechanism, charge.temperature, MARGIN_ERROR))
+    outside = listed(species_outside(mechanism, temperature, MARGIN_ERROR))
     if outside:
-        raise start.error(f"{charge.temperature:g} K is more than {MARGIN_ERROR:g} K outside the thermochemical data "
-                          f"of {outside}", expected="a temperature nearer to the range of the data", key="temperature",
+        raise start.error(f"{temperature:g} K is more than {MARGIN_ERROR:g} K outside the thermochemical data "
+                          f"of {outside}", expected="a temperature nearer to the range of the data", key=key,
                           remedy="correct it, or use a mechanism whose data reach there")
 
 

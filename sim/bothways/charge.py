@@ -6,7 +6,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from .constants import GAS_CONSTANT as R
-from .entry import Entry
+from .entry import REQUIRED, Entry
 from .errors import closest
 from .mechanism import Mechanism
 from .mechanism.phase import LITRE, SOLUTION
@@ -32,9 +32,13 @@ class Charge:
         return self.amount / self.volume
 
 
-def read_charge(start: Entry, mechanism: Mechanism, holds: str, volume: float | None) -> Charge:
-    """The charge of the table [start] in a vessel of `volume` [m3] (1 m3 where none is stated)."""
-    temperature = start.quantity("temperature", "temperature", sign="positive")
+def read_charge(start: Entry, mechanism: Mechanism, holds: str, volume: float | None,
+                given: float | None = None) -> Charge:
+    """The charge of the table [start] in a vessel of `volume` [m3] (1 m3 where none is stated).
+
+    given : temperature at the start [K] where the vessel gives it; none need be stated then.
+    """
+    temperature = start.quantity("temperature", "temperature", REQUIRED if given is None else given, "positive")
     way = _way(start)
     if mechanism.phase == SOLUTION:
         return _dissolved(start, way, mechanism, volume, temperature)

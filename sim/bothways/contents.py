@@ -136,9 +136,9 @@ class Contents:
         solvent = total if self.mechanism.standard_state == PER_LITRE else 0.0
         return np.einsum("ki,ki->k", n, g) + np.sum(n * log_a, axis=1) - solvent
 
-    def temperatures_of(self, energy: float, n: np.ndarray, near: np.ndarray, holds: str,
+    def temperatures_of(self, energy: np.ndarray, n: np.ndarray, near: np.ndarray, holds: str,
                         own_heat_capacity: float = 0.0, reference: float = 0.0) -> np.ndarray:
-        """The temperatures [K] at which contents n (nt, N) and vessel hold `energy` [J]: Newton from near guesses.
+        """The temperatures [K] at which contents n (nt, N) and vessel hold energies (nt) [J]: Newton from near guesses.
 
         own_heat_capacity [J/K] is the vessel's, counted from the reference temperature [K].
         """

@@ -5,7 +5,7 @@ of sixth order in the step (e.g. E. Hairer, S.P. Nørsett, G. Wanner, Solving Or
 2nd ed., 1993, II.6).
 """
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from functools import partial
 
 import numpy as np
@@ -15,10 +15,13 @@ class Course:
     """States y (nt, n) at rising times (nt) with their derivatives by the right-hand side f and its Jacobian J.
 
     Derivatives are worked out where they are asked for, once.
+    by_time : ∂f/∂t as a function of (t, y) where f depends on time itself. At a corner of f the state stands twice, at
+    the corner and at the last number before it: see `with_corners`.
     """
 
-    def __init__(self, times: np.ndarray, states: np.ndarray, f: Callable, J: Callable) -> None:
-        self.times, self.states, self.f, self.J = times, states, f, J
+    def __init__(self, times: np.ndarray, states: np.ndarray, f: Callable, J: Callable,
+                 by_time: Callable[[float, np.ndarray], np.ndarray] | None = None) -> None:
+        self.times, self.states, self.f, self.J, self.by_time = times, states, f, J, by_time
         self._slopes: dict[int, np.ndarray] = {}
         self._curvatures: dict[int, np.ndarray] = {}
 
@@ -31,12 +34,13 @@ class Course:
     def curvature_at(self, k: int) -> np.ndarray:
         """y'' at step k, (n)."""
         if k not in self._curvatures:
-            self._curvatures[k] = self.J(self.times[k], self.states[k]) @ self.slope(k)
+            self._curvatures[k] = self.curvature(self.times[k], self.states[k])
         return self._curvatures[k]
 
     def curvature(self, t: float, y: np.ndarray) -> np.ndarray:
-        """y'' = J f at any state (n)."""
-        return self.J(t, y) @ self.f(t, y)
+        """y'' = J f + ∂f/∂t at any state (n)."""
+        own = self.J(t, y) @ self.f(t, y)
+        return own if self.by_time is None else own + self.by_time(t, y)
 
     def between(self, k: int) -> Callable[[float], np.ndarray]:
         """The interpolant, time [s] -> state (n), from step k to k + 1."""
@@ -118,6 +122,12 @@ def _value(a: tuple[float, ...], x: float) -> float:
 
 def _derivative(a: tuple[float, ...]) -> tuple[float, ...]:
     return tuple(power * coefficient for power, coefficient in enumerate(a))[1:]
+
+
+def with_corners(times: np.ndarray, states: np.ndarray, corners: Sequence[float]) -> tuple[np.ndarray, np.ndarray]:
+    """Times and states with those at corners [s] doubled, first for what holds before, then for what holds from there on."""
+    at = [k for k in range(1, len(times)) if times[k] in corners]
+    return (np.insert(times, at, np.nextafter(times[at], 0.0)), np.insert(states, at, states[at], axis=0))
 
 
 def _hermite(x: float) -> np.ndarray:

@@ -89,10 +89,11 @@ class Target:
         rates = equations.conductances(np.append(own.amount / own.volume, own.temperature)) * own.volume
         present, nu = own.amount > 0, self.restricted.stoichiometry
         rank = int(np.sum(present)) - int(np.linalg.matrix_rank(own.conserved[:, present].astype(float)))
-        rows = further_rows(Contents(self.restricted), own.amount, own.temperature, case.holds, case.heat,
-                            case.own_heat_capacity)
+        contents = Contents(self.restricted)
+        rows = further_rows(contents, own.amount, own.temperature, case.holds, case.heat, case.own_heat_capacity)
+        capacity = contents.heat_capacity(own.amount, own.temperature, case.holds) + case.own_heat_capacity
         times = relaxation_times(nu, rates, own.amount, rank, rows,
-                                 (own.mole_fraction < TRACE) & (mole_fraction < TRACE))
+                                 (own.mole_fraction < TRACE) & (mole_fraction < TRACE), case.transfer / capacity)
         return float(times[0]) if times.size else 0.0
 
 
@@ -139,8 +140,9 @@ def _started(mechanism: Mechanism, there: np.ndarray) -> _Started:
 def _equilibrium(case: Case, restricted: Mechanism, conserved: str) -> Equilibrium:
     c = case.charge
     held: dict[str, Any] = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
-    if case.heat == "isothermal":
-        return equilibrium(restricted, c.amount, temperature=c.temperature, conserved=conserved, **held)
+    temperature = case.held_temperature(case.end)
+    if temperature is not None:
+        return equilibrium(restricted, c.amount, temperature=temperature, conserved=conserved, **held)
     energy = Contents(case.mechanism).energy(c.amount, c.temperature, case.holds)
     held["internal_energy" if less(case.mechanism, case.holds) else "enthalpy"] = energy
     return equilibrium(restricted, c.amount, conserved=conserved, own_heat_capacity=case.own_heat_capacity,
@@ -227,12 +229,15 @@ def tolerance(case: Case) -> float:
 
 
 def _kind(target: Target, amount: np.ndarray, temperature: float, affinity: np.ndarray) -> Kind:
-    if not target.running.any():
+    outside = target.case.schedule is not None
+    if not target.running.any() and (target.apart or not outside):
         return Kind.CANNOT_START if target.apart else Kind.LANDED
     distance = target.distance(amount / np.sum(amount), temperature)
     if distance <= tolerance(target.case):
         return Kind.APART if target.apart else Kind.LANDED
     at_work = np.abs(affinity[target.running])
+    if outside:
+        at_work = np.append(at_work, abs(temperature / target.own.temperature - 1.0))
     if not np.any(np.isnan(at_work)) and np.max(at_work) < min(RELAXED, 1e-3 * distance):
         return Kind.WRONG
     return Kind.NOT_YET

@@ -5,7 +5,7 @@ from collections.abc import Collection, Mapping
 import numpy as np
 
 from .case import Case
-from .course import Course
+from .course import Course, with_corners
 from .mechanism.phase import GAS
 from .vessel import Equations
 
@@ -25,9 +25,17 @@ def milestones(case: Case, equations: Equations, columns: Mapping[str, np.ndarra
     """
     if len(columns["time"]) < 3:
         return {}
-    course = Course(columns["time"], _states(case, columns), equations.f, equations.J)
+    course = course_of(case, equations, columns)
     found = _steepest_rise(case, course) | _half_conversions(case, course)
     return found | _peaks(case, course, columns["amount"], case.mechanism.names if peaks is None else peaks)
+
+
+def course_of(case: Case, equations: Equations, columns: Mapping[str, np.ndarray]) -> Course:
+    """The course of a run between its steps, in the plain form of its equations."""
+    times, states = columns["time"], _states(case, columns)
+    if case.schedule is None:
+        return Course(times, states, equations.f, equations.J)
+    return Course(*with_corners(times, states, case.schedule.corners), equations.f, equations.J, equations.by_time)
 
 
 def _states(case: Case, columns: Mapping[str, np.ndarray]) -> np.ndarray:
@@ -37,7 +45,7 @@ def _states(case: Case, columns: Mapping[str, np.ndarray]) -> np.ndarray:
 
 def _steepest_rise(case: Case, course: Course) -> dict[str, float]:
     """Where dT/dt (adiabatic) or dp/dt (isothermal, constant volume) is largest, by the zero of its derivative."""
-    if case.heat == "adiabatic":
+    if case.heat in ("adiabatic", "jacket"):
         name, weights = "steepest temperature rise", np.append(np.zeros(course.states.shape[1] - 1), 1.0)
     elif case.holds == "volume" and case.mechanism.phase == GAS:
         name, weights = "steepest pressure rise", np.append(np.ones(course.states.shape[1] - 1), 0.0)

@@ -16,18 +16,22 @@ from .contents import Contents
 
 
 def relaxation_times(nu: np.ndarray, rates: np.ndarray, amount: np.ndarray, rank: int, curvature: np.ndarray,
-                     trace: np.ndarray | None = None) -> np.ndarray:
+                     trace: np.ndarray | None = None, cooling: float = 0.0) -> np.ndarray:
     """Relaxation times [s], the slowest first.
 
     nu : (N, reactions). rates : (reactions) one-way rates at equilibrium [mol/s]. amount : (N) at equilibrium [mol].
     rank : of nu over the species present. curvature : (2, N), see `further_rows`.
     trace : (N) mask of species that follow the others without delay: they hold too little to matter, and what is slow
         among them alone is left out.
+    cooling : UA/C of a jacket [1/s].
     """
     here, running = amount > 0, rates > 0
     scaled = nu[np.ix_(here, running)] * np.sqrt(rates[running]) / np.sqrt(amount[here])[:, None]
     small = np.zeros(int(here.sum()), dtype=bool) if trace is None else trace[here]
-    rows, lost = _without(scaled[small], _with_curvature(scaled, curvature[:, here])[~np.append(small, False)])
+    curved = _with_curvature(scaled, curvature[:, here])
+    if cooling > 0:
+        scaled, curved, rank = *_with_cooling(scaled, curved, cooling), rank + 1
+    rows, lost = _without(scaled[small], curved[~np.append(small, False)])
     if rank <= lost or not rows.size:
         return np.empty(0)
     values = np.sort(singular_values(rows))[::-1][: rank - lost]
@@ -39,6 +43,15 @@ def _with_curvature(scaled: np.ndarray, curvature: np.ndarray) -> np.ndarray:
     """L ν diag(r)^½: the volume's part projected out, the heat's set below as one more row."""
     volume, heat = curvature
     return np.vstack([scaled - np.outer(volume, volume @ scaled), heat @ scaled])
+
+
+def _with_cooling(scaled: np.ndarray, curved: np.ndarray, cooling: float) -> tuple[np.ndarray, np.ndarray]:
+    """Both with the jacket's column: heat flows like a reaction of rate UA·R·T², and changes the heat's row alone.
+
+    That row is √(C/R)·δT/T, for which reactions count with the other sign: their heat is taken from the contents.
+    """
+    column = np.append(np.zeros(len(scaled)), -np.sqrt(cooling))
+    return np.column_stack([scaled, np.zeros(len(scaled))]), np.column_stack([curved, column])
 
 
 def _without(followers: np.ndarray, rows: np.ndarray) -> tuple[np.ndarray, int]:
@@ -55,17 +68,17 @@ def _without(followers: np.ndarray, rows: np.ndarray) -> tuple[np.ndarray, int]:
 
 
 def further_rows(contents: Contents, amount: np.ndarray, temperature: float, holds: str, heat: str, own: float) -> np.ndarray:
-    """Rows (2, N) on δn/√n besides the identity: √(n/N) to be projected out at held pressure, and heat if adiabatic.
+    """Rows (2, N) on δn/√n besides the identity: √(n/N) to be projected out at held pressure, and heat if T is free.
 
-    H = 1/n at held volume, less 1/N at held pressure and for mole fractions; adiabatic, plus e_i e_j/(R T² C) with e the
-    internal energies (a gas at held volume) or enthalpies, C the heat capacity of contents and vessel; zero rows where a
-    part is absent.
+    H = 1/n at held volume, less 1/N at held pressure and for mole fractions; adiabatic or in a jacket, plus e_i e_j/(R T² C)
+    with e the internal energies (a gas at held volume) or enthalpies, C the heat capacity of contents and vessel; zero rows
+    where a part is absent.
     """
     rows = np.zeros((2, len(amount)))
     root = np.sqrt(amount)
     if contents.shared(holds):
         rows[0] = root / np.sqrt(np.sum(amount))
-    if heat == "adiabatic":
+    if heat in ("adiabatic", "jacket"):
         energy = R * temperature * (contents.molar(temperature)[1] - contents.less(holds))
         capacity = contents.heat_capacity(amount, temperature, holds) + own
         rows[1] = energy * root / (temperature * np.sqrt(R * capacity))

@@ -64,7 +64,17 @@ def _vessel(case: Case) -> str:
         held = f"constant pressure {pressure_text(case.charge.pressure)}, {volume_text(case.charge.volume)} at the start"
     inertia = f", thermal inertia {case.thermal_inertia:g}" if case.thermal_inertia != 1 else ""
     inert = f", inert heat capacity {case.inert_heat_capacity:.5g} J/K" if case.inert_heat_capacity else ""
-    return f"closed, {held}, {case.heat}{inertia}{inert}"
+    return f"closed, {held}, {_heat(case)}{inertia}{inert}"
+
+
+def _heat(case: Case) -> str:
+    if case.schedule is None:
+        return case.heat
+    values, last = case.schedule.values, case.schedule.end
+    course = f"{values[0]:.6g} K" if case.schedule.constant else (
+        f"{values[0]:.6g} to {values[-1]:.6g} K within {time_text(last)}, {len(values)} points")
+    return f"given temperature, {course}" if case.heat == "given temperature" else (
+        f"jacket of {course}, UA {case.transfer:.4g} W/K")
 
 
 def _charge(case: Case) -> str:
@@ -122,6 +132,8 @@ def _balances(run: Trajectory) -> str:
     text = f"elements within {np.max(np.abs(run.element_residual)):.1e}"
     if np.any(run.energy_residual):
         text += f", energy within {np.max(np.abs(run.energy_residual)):.1e} in the states of the solver"
+    if "heat_received" in run.extra:
+        text += f"; heat received {energy_text(float(run.extra['heat_received'][-1]))}"
     return text + f"; entropy produced {run.entropy_produced[-1]:.4g} J/K"
 
 
@@ -146,6 +158,14 @@ def time_text(seconds: float) -> str:
 def _at_pressure(pascals: float) -> str:
     """A pressure behind a comma; nothing where there is none, as in a solution."""
     return "" if np.isnan(pascals) else f", {pressure_text(pascals)}"
+
+
+def energy_text(joules: float) -> str:
+    """A heat with a unit of fitting size."""
+    for factor, unit in ((1e6, "MJ"), (1e3, "kJ")):
+        if abs(joules) >= factor:
+            return f"{joules / factor:.5g} {unit}"
+    return f"{joules:.5g} J"
 
 
 def pressure_text(pascals: float) -> str:

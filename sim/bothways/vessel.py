@@ -19,8 +19,9 @@ from .errors import InputError
 from .kernels import equations as kernel
 from .mechanism import Mechanism, Tables, build_tables, table_view
 from .mechanism.phase import SOLUTION, less, shared
+from .schedule import Schedule
 
-HEAT = ("isothermal", "adiabatic")
+HEAT = ("isothermal", "adiabatic", "given temperature", "jacket")
 HOLDS = ("volume", "pressure")
 
 
@@ -32,12 +33,15 @@ class Equations:
     ----------
     mechanism : the mechanism.
     holds : "volume" or "pressure".
-    heat : "isothermal" or "adiabatic".
+    heat : one of HEAT.
     pressure : [Pa], where it is held.
     heat_capacity : of the vessel itself, sharing the contents' temperature: [J/K], at constant volume per volume
         of contents [J/(m3 K)].
+    transfer : UA of the jacket [W/K], at constant volume per volume of contents [W/(m3 K)].
+    schedule : given temperature of the contents, or the jacket's, over time [K].
 
-    The time argument of the functions is ignored: the equations are autonomous. Use one object per thread.
+    The time argument of the functions is ignored, but where a schedule is followed; at a corner of it f and J are those
+    that hold from there on. Use one object per thread.
     """
 
     mechanism: Mechanism
@@ -45,6 +49,8 @@ class Equations:
     heat: str = "adiabatic"
     pressure: float = 0.0
     heat_capacity: float = 0.0
+    transfer: float = 0.0
+    schedule: Schedule | None = None
 
     def __post_init__(self) -> None:
         if self.holds not in HOLDS or self.heat not in HEAT:
@@ -55,6 +61,10 @@ class Equations:
                              remedy="its volume is constant and pressure plays no part")
         if self.holds == "pressure" and not self.pressure > 0:
             raise InputError(f"pressure {self.pressure} Pa", expected="a positive pressure where it is held")
+        followed = self.heat in ("given temperature", "jacket")
+        if (self.schedule is not None) != followed or (self.transfer > 0) != (self.heat == "jacket"):
+            raise InputError(f"heat '{self.heat}' with transfer {self.transfer} and schedule {self.schedule}",
+                             expected="a schedule for a given temperature, transfer and a schedule for a jacket")
 
     @cached_property
     def tables(self) -> Tables:
@@ -70,10 +80,18 @@ class Equations:
         if self.heat == "isothermal":
             vessel[kernel.HEAT_CAPACITY] = 1.0  # without effect; species may have none
         vessel[kernel.LESS], vessel[kernel.SHARED] = less(self.mechanism, self.holds), shared(self.mechanism, self.holds)
+        vessel[kernel.TRANSFER] = self.transfer
+        self.follow(vessel, 0.0)
         return vessel
 
+    def follow(self, vessel: np.ndarray, t: float) -> None:
+        """Sets in a vessel array what the schedule says at t [s]."""
+        if self.schedule is not None:
+            vessel[kernel.RAMP], vessel[kernel.JACKET_TEMPERATURE] = self.schedule.slope(t), self.schedule.value(t)
+
     @cached_property
-    def _arguments(self) -> tuple[np.ndarray, ...]:
+    def arguments(self) -> tuple[np.ndarray, ...]:
+        """vessel, ints, floats and work, as every kernel takes them."""
         return self.vessel, self.tables.ints, self.tables.floats, self.tables.work()
 
     def prepare(self, say: Callable[[str], None] = lambda text: None) -> bool:
@@ -97,13 +115,24 @@ class Equations:
     def f(self, t: float, y: np.ndarray) -> np.ndarray:
         """dy/dt of the plain form, (N + 1); NaN where T is outside 1 to 1e5 K."""
         out = np.empty(self.size)
-        kernel.rates_of_change(_vector(y), *self._arguments, out)
+        self.follow(self.vessel, t)
+        kernel.rates_of_change(_vector(y), *self.arguments, out)
         return out
 
     def J(self, t: float, y: np.ndarray) -> np.ndarray:
         """∂f/∂y of the plain form, dense, (N + 1, N + 1), [row, column]."""
         out = np.empty((self.size, self.size))
-        kernel.jacobian(_vector(y), *self._arguments, self._data, out)
+        self.follow(self.vessel, t)
+        kernel.jacobian(_vector(y), *self.arguments, self._data, out)
+        return out
+
+    def by_time(self, t: float, y: np.ndarray) -> np.ndarray:
+        """∂f/∂t of the plain form, (N + 1): what a jacket that grows warmer does."""
+        out = np.zeros(self.size)
+        if self.heat == "jacket":
+            self.f(t, y)  # sets heat capacities and slope
+            vessel, ints, _, work = self.arguments
+            out[-1] = self.transfer * vessel[kernel.RAMP] / (_R * kernel.heat_capacity_of(_vector(y), vessel, ints, work))
         return out
 
     def J_sparse(self, t: float, y: np.ndarray) -> csc_array:
@@ -115,14 +144,16 @@ class Equations:
     def bordered_f(self, t: float, z: np.ndarray) -> np.ndarray:
         """Right-hand side F of the bordered form, (N + 2); the row before last is the algebraic residual."""
         out = np.empty(self.size + 1)
-        kernel.bordered_rates_of_change(_vector(z), *self._arguments, out)
+        self.follow(self.vessel, t)
+        kernel.bordered_rates_of_change(_vector(z), *self.arguments, out)
         return out
 
     def bordered_J(self, t: float, z: np.ndarray) -> csc_array:
         """∂F/∂z of the bordered form on its sparsity pattern, (N + 2, N + 2)."""
         rows, starts = self.bordered_pattern
         data = np.empty(rows.size)
-        kernel.bordered_jacobian(_vector(z), *self._arguments, data)
+        self.follow(self.vessel, t)
+        kernel.bordered_jacobian(_vector(z), *self.arguments, data)
         return csc_array((data, rows, starts), shape=(self.size + 1, self.size + 1))
 
     @cached_property
@@ -177,7 +208,7 @@ class Equations:
         """Forward and reverse rates [mol/(m3 s)] of every reaction in a plain state, (R) each."""
         forward = np.empty(len(self.mechanism.reactions))
         reverse = np.empty_like(forward)
-        kernel.reaction_rates(_vector(y), *self._arguments, forward, reverse)
+        kernel.reaction_rates(_vector(y), *self.arguments, forward, reverse)
         return forward, reverse
 
     def conductances(self, y: np.ndarray) -> np.ndarray:

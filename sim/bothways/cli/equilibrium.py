@@ -116,8 +116,9 @@ def _found(case: Case, target: Target, chosen: argparse.Namespace) -> list[Equil
         return equilibria(case.mechanism, c.amount, conserved=conserved,
                           temperature=_quantities(chosen.temperatures, "temperature"), **held)
     pressures = _quantities(chosen.pressures, "pressure")
-    if case.heat == "isothermal":
-        return equilibria(case.mechanism, c.amount, conserved=conserved, temperature=c.temperature, pressure=pressures)
+    temperature = case.held_temperature(case.end)
+    if temperature is not None:
+        return equilibria(case.mechanism, c.amount, conserved=conserved, temperature=temperature, pressure=pressures)
     enthalpy = Contents(case.mechanism).enthalpy(c.amount, c.temperature)
     return equilibria(case.mechanism, c.amount, conserved=conserved, enthalpy=enthalpy, pressure=pressures,
                       own_heat_capacity=case.own_heat_capacity, reference_temperature=c.temperature)

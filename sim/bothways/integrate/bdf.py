@@ -18,14 +18,17 @@ import numpy as np
 
 from ..compiled import call, compiled
 from .differences import MOST_ORDER, ROWS, begin_history, error_constant, extend_history, predict
+from .interface import CROSSED, REFUSED, STAND
 from .sparse_lu import dense_factor, factor
 from .stepping import (
+    AT_CROSSING,
     BUFFER_FULL,
     DENSE,
     F_CALLS,
     FACTORISATIONS,
     J_CALLS,
     JUDGED_AGAINST,
+    NEAREST,
     NEWTON_FAILED,
     OWN_MEMORY,
     REACHED,
@@ -278,7 +281,12 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
         for i in range(n):
             exchange[i], exchange[n + i] = z[i], point[i]
             exchange[2 * n + i] = constant * abs(correction[i]) + abs(delta[i])
-        if judge != 0 and call(judge, exchange, verdict, context) == 0:
+        answer = call(judge, exchange, verdict, context) if judge != 0 else STAND
+        if answer == CROSSED and (1.0 - verdict[1]) * h > NEAREST * t:
+            counts[REJECTED] += 1
+            memory[STEP], memory[HELD], memory[RISING] = max(verdict[1] * h, NEAREST * t), 0.0, 0.0
+            continue
+        if answer == REFUSED:
             counts[JUDGED_AGAINST] += 1
             _shorten(h, memory, counts)
             if memory[FAILED] >= 2.0:
@@ -300,6 +308,8 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
         states[written] = z
         counts[STEPS] += 1
         written += 1
+        if answer == CROSSED:
+            return AT_CROSSING, written
         count = _set_inverse(z, atol, rtol, inverse)
         if last:
             return REACHED, written

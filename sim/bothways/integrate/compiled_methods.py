@@ -69,6 +69,8 @@ class Stepper:
 
     def begin(self) -> bool:
         """Begins, or begins anew where it stands (after a corner of f); False where f is not finite there."""
+        if self.system.enter is not None:
+            self.system.enter(float(self.memory[stepping.TIME]), self.z)
         left = self.problem.end - self.memory[stepping.TIME]
         self.memory[stepping.STEP] = stepping.begin(self.system.f, self.system.context, self.z, self.atol, self.rtol,
                                                     self.first_order, left, self.slope)
@@ -150,9 +152,11 @@ def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
     stepper, outcome = STEPPERS[method](problem), Outcome(Status.FINISHED, 0.0)
     try:
         status = stepping.REACHED if stepper.begin() else stepping.NOT_FINITE
-        for stop in (*problem.stops, problem.end):
+        for stop, corner in problem.landings:
             if status == stepping.REACHED and not _ended(problem, outcome, stepper):
                 status = _until(stop, stepper, monitor, outcome)
+                if corner and status == stepping.REACHED and not stepper.begin():
+                    status = stepping.NOT_FINITE
         if status == STALLED and problem.until is not None:
             outcome.status = Status.STALLED
         elif status != stepping.REACHED:
@@ -175,6 +179,10 @@ def _until(stop: float, stepper: Stepper, monitor: Monitor, outcome: Outcome) ->
             monitor.accepted(outcome.time, z[stepper.system.places])
         if stepper.counts[stepping.JUDGED_AGAINST] > MOST_REFUSED:
             return STALLED
+        if status == stepping.AT_CROSSING:
+            status = stepping.REACHED if outcome.time >= stop else stepping.BUFFER_FULL
+            if not stepper.begin():
+                return stepping.NOT_FINITE
         if status == stepping.BUFFER_FULL and _ended(stepper.problem, outcome, stepper):
             return stepping.REACHED
     return status

@@ -13,8 +13,9 @@ class CompiledSystem:
     """The same problem behind addresses, for the compiled methods; z are its unknowns, y among them.
 
     f, J, judge : addresses of `callback`s over (z, f(z)), (z, values of ∂f/∂z by `pattern`) and
-        (z old | z new | error estimate, notes (4)). The judge may mend the new state, and returns 1 if the step may
-        stand, 0 if not; address 0: none.
+        (z old | z new | error estimate, notes (4)). The judge may mend the new state, and returns STAND if the step may
+        stand, REFUSED if not, CROSSED if the right-hand side goes on in another way from a share notes[1] of the step
+        on (1: from its end on): the method must land there, tell `enter`, and start anew. Address 0: none.
     context : (int64) handed to each of them. keep : what the addresses in it belong to.
     pattern : row indices and column starts (compressed columns) of ∂f/∂z, its diagonal included.
     mass : (nz) 1 for unknowns with a derivative, 0 for those tied by a linear row of ∂f/∂z.
@@ -32,6 +33,7 @@ class CompiledSystem:
     places: np.ndarray
     start: np.ndarray
     keep: tuple = ()
+    enter: Callable[[float, np.ndarray], None] | None = None
 
 
 @dataclass(frozen=True)
@@ -42,6 +44,7 @@ class Problem:
     start : y at time 0. end : last time [s].
     rtol : relative tolerance [-]. atol : (n) absolute tolerances, units of y.
     stops : rising times within (0, end) that a step must land on [s].
+    corners : rising times at which f goes on in another way: f(t) there is already that, and methods start anew [s].
     until : (t, y) -> whether the integration may end here, asked after accepted steps, of some solvers only now and then.
     """
 
@@ -54,6 +57,13 @@ class Problem:
     stops: tuple[float, ...] = ()
     compiled: CompiledSystem | None = None
     until: Callable[[float, np.ndarray], bool] | None = None
+    corners: tuple[float, ...] = ()
+
+    @property
+    def landings(self) -> tuple[tuple[float, bool], ...]:
+        """Every time to land on, the end included, and whether it is a corner to go on from."""
+        turns = {t for t in self.corners if 0 < t < self.end}
+        return tuple((t, t in turns) for t in sorted({*self.stops, *turns, self.end}))
 
 
 class Monitor(Protocol):
@@ -82,6 +92,8 @@ class Outcome:
     counts: dict[str, int | float] = field(default_factory=dict)
 
 
+REFUSED, STAND, CROSSED = range(3)
+"""What a judge may answer."""
 MOST_STEPS = 1_000_000
 """An endless run is refused after so many steps."""
 MOST_STEPS_IF_ASKED = 20_000

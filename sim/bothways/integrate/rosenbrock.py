@@ -11,14 +11,17 @@ import math
 import numpy as np
 
 from ..compiled import call, compiled
+from .interface import CROSSED, REFUSED, STAND
 from .sparse_lu import dense_factor, factor
 from .stepping import (
+    AT_CROSSING,
     BUFFER_FULL,
     DENSE,
     F_CALLS,
     FACTORISATIONS,
     J_CALLS,
     JUDGED_AGAINST,
+    NEAREST,
     OWN_MEMORY,
     REACHED,
     REJECTED,
@@ -74,6 +77,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
         if counts[STEPS] + counts[REJECTED] >= counts[STEP_LIMIT]:
             return TOO_MANY, written
         last = t + 1.0001 * h >= stop
+        intended = h
         if last:
             h = stop - t
         if h <= memory[SMALLEST_STEP] * max(abs(t), 1e-300) and not last:
@@ -128,7 +132,12 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             counts[REJECTED] += 1
             rejected = True
             continue
-        if judge != 0 and call(judge, exchange, verdict, context) == 0:
+        answer = call(judge, exchange, verdict, context) if judge != 0 else STAND
+        if answer == CROSSED and (1.0 - verdict[1]) * h > NEAREST * t:
+            counts[REJECTED] += 1
+            memory[STEP] = max(verdict[1] * h, NEAREST * t)
+            continue
+        if answer == REFUSED:
             counts[JUDGED_AGAINST] += 1
             counts[REJECTED] += 1
             memory[STEP] = 0.25 * h
@@ -138,13 +147,15 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
         growth = _next_factor(norm, memory, rejected, estimator_order)
         memory[LAST_STEP], memory[LAST_ERROR] = h, max(norm, 1e-2)
         memory[TIME] = stop if last else t + h
-        memory[STEP] = h * growth
+        memory[STEP] = max(h * growth, intended) if last else h * growth
         z[:] = new
         times[written] = memory[TIME]
         states[written] = z
         counts[STEPS] += 1
         written += 1
         fresh, rejected = False, False
+        if answer == CROSSED:
+            return AT_CROSSING, written
         if last:
             return REACHED, written
     return BUFFER_FULL, written

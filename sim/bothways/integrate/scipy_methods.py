@@ -30,17 +30,31 @@ def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
     try:
         with warnings.catch_warnings(), np.errstate(all="ignore"):
             warnings.simplefilter("ignore")  # trial states may leave the range of exp; they are rejected
-            solver = _solver_class(method)(problem.f, 0.0, problem.start, problem.end, rtol=problem.rtol,
-                                     atol=problem.atol, jac=problem.J)
-            for stop in (*problem.stops, problem.end):
+            solver = _start(problem, method, 0.0, problem.start)
+            for stop, corner in problem.landings:
                 steps = _advance(solver, stop, monitor, outcome, steps, problem.until)
+                if corner and outcome.time == stop:
+                    _add_counts(outcome, solver)
+                    solver = _start(problem, method, stop, solver.y)
     except KeyboardInterrupt:
         outcome.status, outcome.reason = Status.INTERRUPTED, f"interrupted at {outcome.time:.6g} s"
     outcome.counts |= {"steps": steps, "seconds": time.perf_counter() - began}
     if outcome.time > 0 or steps:
-        outcome.counts |= {"f_evaluations": int(solver.nfev), "J_evaluations": int(solver.njev),
-                           "factorisations": int(solver.nlu)}
+        _add_counts(outcome, solver)
     return outcome
+
+
+def _start(problem: Problem, method: str, t: float, y: np.ndarray) -> Any:
+    """A solver from t [s] on that asks f and J for what holds before the next corner, also when it lands on that."""
+    corner = min((c for c in problem.corners if c > t), default=np.inf)
+    before = np.nextafter(corner, t)
+    return _solver_class(method)(lambda s, y: problem.f(min(s, before), y), t, y, problem.end, rtol=problem.rtol,
+                                 atol=problem.atol, jac=lambda s, y: problem.J(min(s, before), y))
+
+
+def _add_counts(outcome: Outcome, solver: Any) -> None:
+    for name, count in (("f_evaluations", solver.nfev), ("J_evaluations", solver.njev), ("factorisations", solver.nlu)):
+        outcome.counts[name] = outcome.counts.get(name, 0) + int(count)
 
 
 def _advance(solver: Any, stop: float, monitor: Monitor, outcome: Outcome, steps: int,

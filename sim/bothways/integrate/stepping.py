@@ -7,8 +7,10 @@ import numpy as np
 from ..compiled import call, compiled
 from .sparse_lu import dense_solve, solve, unpermute
 
-REACHED, BUFFER_FULL, TOO_SMALL, NOT_FINITE, TOO_MANY = range(5)
+REACHED, BUFFER_FULL, TOO_SMALL, NOT_FINITE, TOO_MANY, AT_CROSSING = range(6)
 """How a call of a method's `advance` ended."""
+NEAREST = 1e-13
+"""Crossings are located to this part of the time; below, a step hardly moves the clock."""
 TIME, STEP, SMALLEST_STEP, OWN_MEMORY = range(4)
 """Places in a method's memory; its own begin at the last."""
 COUNTED = ("steps", "rejected", "f_evaluations", "J_evaluations", "factorisations", "solves", "dense_factorisations",

@@ -3,9 +3,10 @@
 State of constant volume: concentrations c_1…c_N [mol/m3] and T [K]; of constant pressure: amounts n_1…n_N [mol]
 and T. The bordered form carries one more unknown before T, the total concentration [mol/m3] or the volume [m3],
 with an algebraic row that ties it to the others: this keeps the Jacobian sparse where partners and expansion
-would fill it. `vessel` is (6): HOLDS, HEAT, pressure [Pa], heat capacity of the vessel itself [J/K, at constant
+would fill it. `vessel` is (9): HOLDS, HEAT, pressure [Pa], heat capacity of the vessel itself [J/K, at constant
 volume J/(m3 K)], LESS: what is taken off h/RT and cp/R to give the energy that is conserved (1 for a gas at constant
-volume, else 0), SHARED: 1 where ln a holds the total amount (a gas at constant pressure, mole fractions), else 0.
+volume, else 0), SHARED: 1 where ln a holds the total amount (a gas at constant pressure, mole fractions), else 0; given
+slope of the temperature [K/s], UA of a jacket [W/K, at constant volume W/(m3 K)] and its temperature [K].
 """
 
 import numpy as np
@@ -19,10 +20,10 @@ from .lumped import conductances
 from .rates import one_way_rates, set_derivatives, set_production
 from .thermal import set_temperature
 
-VESSEL_SIZE = 6
-HOLDS, HEAT, PRESSURE, HEAT_CAPACITY, LESS, SHARED = range(VESSEL_SIZE)
+VESSEL_SIZE = 9
+HOLDS, HEAT, PRESSURE, HEAT_CAPACITY, LESS, SHARED, RAMP, TRANSFER, JACKET_TEMPERATURE = range(VESSEL_SIZE)
 VOLUME_HELD, PRESSURE_HELD = 0.0, 1.0
-ISOTHERMAL, ADIABATIC = 0.0, 1.0
+ISOTHERMAL, ADIABATIC, GIVEN, JACKET = 0.0, 1.0, 2.0, 3.0
 LOWEST_TEMPERATURE, HIGHEST_TEMPERATURE = 1.0, 1e5  # [K] outside, a trial state is answered with NaN
 
 _BLOCK_START = at.offset_slot(at.INTS, "block_start")
@@ -77,7 +78,13 @@ def border_of(y, n, vessel):
 
 
 @compiled
-def _heat_capacity(y, vessel, ints, work):
+def balanced(vessel):
+    """Whether T follows from the balance of energy (adiabatic, jacket) and not from outside (isothermal, given)."""
+    return vessel[HEAT] == ADIABATIC or vessel[HEAT] == JACKET
+
+
+@compiled
+def heat_capacity_of(y, vessel, ints, work):
     """Heat capacity at constant volume or pressure of contents and vessel, per unit of the state, over R."""
     cp = view(work, ints, _CP)
     own = vessel[HEAT_CAPACITY] / R + dot(y[: cp.size], cp)
@@ -86,11 +93,12 @@ def _heat_capacity(y, vessel, ints, work):
 
 @compiled
 def _heating(y, T, volume, vessel, ints, work):
-    """dT/dt [K/s] of an adiabatic vessel from the production rates, 0 of an isothermal one."""
-    if vessel[HEAT] == ISOTHERMAL:
-        return 0.0
+    """dT/dt [K/s] from the production rates and what the jacket gives, or as it is given (0 of an isothermal vessel)."""
+    if not balanced(vessel):
+        return vessel[RAMP]
     released = -dot(_energies(vessel, ints, work), view(work, ints, _OMEGA))
-    return released * volume * T / _heat_capacity(y, vessel, ints, work)
+    received = vessel[TRANSFER] / R * (vessel[JACKET_TEMPERATURE] - T)
+    return (released * volume * T + received) / heat_capacity_of(y, vessel, ints, work)
 
 
 @compiled
@@ -192,15 +200,15 @@ def bordered_jacobian(z, vessel, ints, floats, work, data):
 def _temperature_row(y, T, volume, vessel, ints, work, data):
     """Puts ∂(dT/dt)/∂z into its places of `data`; the species rows stand there already.
 
-    With C the heat capacity and f = dT/dt = -Σ u_i f_i/C: ∂f = -(Σ u_i ∂f_i + Σ ∂u_i f_i + f ∂C)/C, u the
-    internal energies of a gas at constant volume, else the enthalpies.
+    With C the heat capacity and f = dT/dt = (UA (T_j - T) - Σ u_i f_i)/C: ∂f = -(Σ u_i ∂f_i + Σ ∂u_i f_i + f ∂C +
+    UA ∂T)/C, u the internal energies of a gas at constant volume, else the enthalpies.
     """
     n = ints[at.SPECIES]
     start, row, energy = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), _energies(vessel, ints, work)
     cp, cp_slope, omega = view(work, ints, _CP), view(work, ints, _CP_SLOPE), view(work, ints, _OMEGA)
     less = vessel[LESS]
-    adiabatic = 1.0 if vessel[HEAT] == ADIABATIC else 0.0
-    heat = _heat_capacity(y, vessel, ints, work)
+    by_balance = 1.0 if balanced(vessel) else 0.0
+    heat = heat_capacity_of(y, vessel, ints, work)
     f = _heating(y, T, volume, vessel, ints, work)
     p = 0
     for s in range(n):
@@ -213,12 +221,12 @@ def _temperature_row(y, T, volume, vessel, ints, work, data):
         if e < last:
             even += energy[row[e]] * data[p]
             p += 1
-        data[p + 1] = -adiabatic * (T * (even + odd) + f * (cp[s] - less)) / heat
+        data[p + 1] = -by_balance * (T * (even + odd) + f * (cp[s] - less)) / heat
         p += 2
     by_border, by_T = dot(energy, data[p : p + n]), dot(energy, data[p + n + 2 : p + 2 * n + 2])
     own, change = volume * (dot(cp, omega) - less * total_of(omega)), dot(y[:n], cp_slope)
-    data[p + n + 1] = -adiabatic * T * by_border / heat
-    data[p + 2 * n + 3] = -adiabatic * (T * by_T + own + f * change / T) / heat
+    data[p + n + 1] = -by_balance * T * by_border / heat
+    data[p + 2 * n + 3] = -by_balance * (T * by_T + own + f * change / T + vessel[TRANSFER] / R) / heat
 
 
 @compiled

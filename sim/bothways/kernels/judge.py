@@ -6,11 +6,13 @@ state. In order:
 1. Negative amounts become zero, and the conserved combinations (elements and whatever else the stoichiometry
    conserves) are brought back to the charge's totals by n_i → n_i (1 + Σ_k λ_k a_ki): no amount changes sign, and
    what round-off took is given back in proportion.
-2. In an adiabatic vessel T is the temperature at which contents and vessel hold the energy of the start.
+2. In an adiabatic vessel T is the temperature at which contents and vessel hold the energy of the start, in a jacket that
+   and the heat received since.
 3. The potential that may not rise (A, G or -S) is compared by its change, worked out from the changes themselves:
    with φ = n₁ ln(n₁/n₀) - Δn,  ΔA/RT = Σ Δn μ₀/RT + Σ φ,  ΔG/RT the same less the φ of the total amount, and
    -ΔS/R = (ΔA or ΔG at T₀)/RT₀ + C (x - ln(1 + x))/R, x = T₁/T₀ - 1. A rise beyond round-off and beyond
-   Σ |μ_i - Σ_k λ_k a_ki|·|error_i|/RT is refused; λ, the combinations' potentials, are fitted to the mixture.
+   Σ |μ_i - Σ_k λ_k a_ki|·|error_i|/RT is refused; λ, the combinations' potentials, are fitted to the mixture. With a
+   jacket, or a given temperature, it is the entropy produced that may not fall: see exchange.py.
 """
 
 import math
@@ -22,13 +24,25 @@ from ..compiled import callback, compiled, float64_pointer
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
 from .callbacks import CONTEXT_SIZE, tables_of
-from .equations import ADIABATIC, HEAT, HEAT_CAPACITY, HOLDS, LESS, PRESSURE, PRESSURE_HELD, SHARED
+from .equations import (
+    GIVEN,
+    HEAT,
+    HEAT_CAPACITY,
+    HOLDS,
+    JACKET,
+    LESS,
+    PRESSURE,
+    PRESSURE_HELD,
+    SHARED,
+    balanced,
+)
+from .exchange import change_by_heat, change_by_ramp, further
 from .layout import view
 from .molar import molar_functions
 
 LEDGER, N_ROWS = CONTEXT_SIZE, CONTEXT_SIZE + 1
 JUDGE_CONTEXT_SIZE = CONTEXT_SIZE + 2
-ENERGY, START_TEMPERATURE, LARGEST_EXCESS, MENDED, LARGEST_DRIFT, LARGEST_ENERGY_DRIFT = range(6)
+ENERGY, START_TEMPERATURE, LARGEST_EXCESS, MENDED, LARGEST_DRIFT, LARGEST_ENERGY_DRIFT, START_ENERGY = range(7)
 LEDGER_HEAD = 8
 ROUND_OFF = 4e-15
 """Of each part of a change of the potential [-]."""
@@ -50,7 +64,7 @@ def ledger_of(rows: np.ndarray, totals: np.ndarray, energy: float, temperature: 
     """
     m, n = rows.shape
     head = np.zeros(LEDGER_HEAD)
-    head[ENERGY], head[START_TEMPERATURE] = energy, temperature
+    head[ENERGY], head[START_ENERGY], head[START_TEMPERATURE] = energy, energy, temperature
     return np.concatenate([head, totals, rows.ravel(), np.zeros(m * m + 2 * m + 10 * n)])
 
 
@@ -122,7 +136,7 @@ def mend(amount, rows, totals, matrix, residual, multiplier, head):
 
 @compiled
 def temperature_of(amount, T, vessel, ints, floats, head, gibbs, enthalpy, cp, slope):
-    """Step 2: T at which the energy is that of the start; the last arrays stand for it then. -1 if out of reach."""
+    """Step 2: T at which the energy is the one in `head`; the last arrays stand for it then. -1 if out of reach."""
     less = vessel[LESS]
     previous = np.inf
     for attempt in range(60):
@@ -166,7 +180,7 @@ def change_of_potential(old, new, T0, T1, potential, deviation, cp0, cp1, vessel
             noise += n1 * (abs(potential[i]) + abs(math.log(n1)))
     if vessel[SHARED] == 1.0:
         change -= bend(before, after)
-    if vessel[HEAT] == ADIABATIC:
+    if balanced(vessel):
         x = (T1 - T0) / T0
         change += heat * (x - math.log1p(x) if abs(x) > 1e-4 else x * x * (0.5 - x / 3.0))
     return change, ROUND_OFF * noise
@@ -189,7 +203,8 @@ def judge(exchange_pointer, verdict_pointer, context):
     vessel, ints, floats, _, _ = tables_of(context)
     c = carray(context, (JUDGE_CONTEXT_SIZE,))
     n, m = np.int64(ints[at.SPECIES]), c[N_ROWS]
-    exchange, verdict = carray(exchange_pointer, (3 * (n + 2),)), carray(verdict_pointer, (4,))
+    nz = n + 2 + further(vessel)
+    exchange, verdict = carray(exchange_pointer, (3 * nz,)), carray(verdict_pointer, (4,))
     ledger = carray(float64_pointer(c[LEDGER]), (LEDGER_HEAD + m + m * n + m * m + 2 * m + 10 * n,))
     head, totals = ledger[:LEDGER_HEAD], ledger[LEDGER_HEAD : LEDGER_HEAD + m]
     o = LEDGER_HEAD + m
@@ -200,26 +215,39 @@ def judge(exchange_pointer, verdict_pointer, context):
     residual, multiplier = ledger[o : o + m], ledger[o + m : o + 2 * m]
     o += 2 * m
     scratch = ledger[o : o + 10 * n].reshape((10, n))
-    old, new, error = exchange[:n], exchange[n + 2 : 2 * n + 2], exchange[2 * n + 4 : 3 * n + 4]
-    T0, T1 = exchange[n + 1], exchange[2 * n + 3]
+    old, new, error = exchange[:n], exchange[nz : nz + n], exchange[2 * nz : 2 * nz + n]
+    T0, T1 = exchange[n + 1], exchange[nz + n + 1]
     verdict[0] = 0.0
     if not mend(new, rows, totals, matrix, residual, multiplier, head):
         return 0
     molar_functions(T0, 0, ints, floats, scratch[0], scratch[1], scratch[2], scratch[3])
-    if vessel[HEAT] == ADIABATIC:
+    if vessel[HEAT] == JACKET:
+        head[ENERGY] = head[START_ENERGY] + exchange[nz + n + 2]
+    if balanced(vessel):
         T1 = temperature_of(new, T1, vessel, ints, floats, head, scratch[4], scratch[5], scratch[6], scratch[7])
         if T1 < 0.0:
             return 0
-        exchange[2 * n + 3] = T1
+        exchange[nz + n + 1] = T1
     else:
         scratch[6, :] = scratch[2]
     potential, deviation = scratch[8], scratch[9]
     _reduced_potentials(old, T0, vessel, ints, floats, scratch[0], potential)
     _deviations(old, rows, potential, matrix, residual, multiplier, deviation)
     change, noise = change_of_potential(old, new, T0, T1, potential, deviation, scratch[2], scratch[6], vessel)
+    further_change, further_noise, excused = 0.0, 0.0, 0.0
+    if vessel[HEAT] == JACKET:
+        further_change, further_noise, excused = change_by_heat(
+            exchange[n + 1 : n + 4], exchange[nz + n + 1 : nz + n + 4], exchange[2 * nz + n + 1 : 2 * nz + n + 4])
+    elif vessel[HEAT] == GIVEN and T1 != T0:
+        molar_functions(T1, 0, ints, floats, scratch[4], scratch[5], scratch[6], scratch[7])
+        further_change, further_noise = change_by_ramp(new, T0, T1, scratch[0], scratch[4], vessel, ints, floats)
+        further_change += exchange[nz + n + 2] - exchange[n + 2]
+        excused = abs(exchange[2 * nz + n + 2])
+    change += further_change
+    noise += further_noise
     if change <= noise:
         return 1
-    allowed = noise
+    allowed = noise + excused
     for i in range(n):
         allowed += abs(deviation[i]) * abs(error[i])
     if change <= allowed:
