@@ -47,7 +47,7 @@ def _steepest_rise(case: Case, course: Course) -> dict[str, float]:
     """Where dT/dt (adiabatic) or dp/dt (isothermal, constant volume) is largest, by the zero of its derivative."""
     if case.heat in ("adiabatic", "jacket"):
         name, weights = "steepest temperature rise", np.append(np.zeros(course.states.shape[1] - 1), 1.0)
-    elif case.holds == "volume" and case.mechanism.phase == GAS:
+    elif case.heat == "isothermal" and case.holds == "volume" and case.mechanism.phase == GAS:
         name, weights = "steepest pressure rise", np.append(np.ones(course.states.shape[1] - 1), 0.0)
     else:
         return {}
