@@ -134,7 +134,7 @@ def lag(t, schedule, T, rate):
 JACKETS = {"constant": 300.0, "table": [[0, 300.0], ["20 s", 450.0], ["30 s", 450.0], ["31 s", 350.0], ["100 s", 350.0]]}
 
 
-@pytest.mark.parametrize("method", ["Rosenbrock", "Radau"])
+@pytest.mark.parametrize("method", ["Rosenbrock", "BDF", "Radau"])
 @pytest.mark.parametrize("holds", ["volume", "pressure"])
 @pytest.mark.parametrize("jacket", JACKETS)
 def test_contents_follow_a_jacket_as_newton_said(jacket, holds, method):
