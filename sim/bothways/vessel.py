@@ -217,7 +217,7 @@ class Equations:
         The one-way rate there, of a lumped step over Horiuti's σ.
         """
         out = np.empty(len(self.mechanism.reactions))
-        kernel.reaction_conductances(_vector(y), *self._arguments, out, np.empty_like(out))
+        kernel.reaction_conductances(_vector(y), *self.arguments, out, np.empty_like(out))
         return out
 
 
