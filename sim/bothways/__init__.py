@@ -7,6 +7,7 @@ Every reverse rate is made from the forward rate and K(T); see `run`, `read_case
 from typing import Any
 
 from .along import Contributions, contributions
+from .audit import Audit, audit
 from .batch import program_version, run
 from .case import Case, build_case, read_case
 from .endpoint import Verdict, verdict
@@ -20,10 +21,10 @@ from .vessel import Equations
 
 __version__ = program_version()
 
-__all__ = ["BothwaysError", "Case", "Contributions", "Equations", "Equilibrium", "InputError", "Mechanism", "Remark",
-           "SolverError", "Trajectory", "Verdict", "build_case", "build_mechanism", "bundled_cases", "bundled_mechanisms",
-           "contributions", "equilibrium", "read_case", "read_mechanism", "read_trajectory", "run", "verdict",
-           "write_mechanism", "write_trajectory"]
+__all__ = ["Audit", "BothwaysError", "Case", "Contributions", "Equations", "Equilibrium", "InputError", "Mechanism",
+           "Remark", "SolverError", "Trajectory", "Verdict", "audit", "build_case", "build_mechanism", "bundled_cases",
+           "bundled_mechanisms", "contributions", "equilibrium", "read_case", "read_mechanism", "read_trajectory", "run",
+           "verdict", "write_mechanism", "write_trajectory"]
 
 
 def __getattr__(name: str) -> Any:

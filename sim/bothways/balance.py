@@ -12,12 +12,13 @@ def log_equilibrium_constants(nu: np.ndarray, g: np.ndarray) -> np.ndarray:
     return -(nu.T @ g)
 
 
-def log_concentration_constants(nu: np.ndarray, g: np.ndarray, standard: float) -> np.ndarray:
+def log_concentration_constants(nu: np.ndarray, g: np.ndarray, standard: float | np.ndarray) -> np.ndarray:
     """ln of Kc in powers of mol/m3, (reactions): K° c°^Σν, c° [mol/m3] the concentration that g°/RT belongs to.
 
-    In a gas c° = p°/RT; in a solution 1 mol/L, or the total concentration where activities are mole fractions.
+    In a gas c° = p°/RT; in a solution 1 mol/L, or the total concentration where activities are mole fractions. With g
+    (N, nt) and c° (nt) of many temperatures: (reactions, nt).
     """
-    change = nu.sum(axis=0)
+    change = nu.sum(axis=0).reshape(-1, *[1] * np.ndim(standard))
     return log_equilibrium_constants(nu, g) + np.where(change == 0, 0.0, change * np.log(standard))
 
 

@@ -4,10 +4,12 @@ One file a figure; the other modules are what they share.
 """
 
 from .approach import approach, save_approach
+from .audit_figure import audit_figure, save_audit_figure
 from .contributions import contributions, save_contributions
 from .equilibrium_course import equilibrium_course, save_equilibrium_course
 from .saving import check_picture, save
 from .timecourse import course, save_course
 
-__all__ = ["approach", "check_picture", "contributions", "course", "equilibrium_course", "save", "save_approach",
+__all__ = ["approach", "audit_figure", "check_picture", "contributions", "course", "equilibrium_course", "save",
+           "save_approach", "save_audit_figure",
            "save_contributions", "save_course", "save_equilibrium_course"]

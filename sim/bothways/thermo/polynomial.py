@@ -30,11 +30,18 @@ class Ranges:
 
 def cp_h_s(row: np.ndarray, temperature: float) -> tuple[float, float, float]:
     """cp/R, h/RT and s/R [-] of one row at a temperature [K]."""
-    a, T = row, temperature
-    powers = T ** np.arange(-2.0, 5.0)
-    h = -a[0] / T**2 + a[1] * np.log(T) / T + np.sum(a[2:7] * powers[2:] / np.arange(1, 6)) + a[7] / T
-    s = -a[0] / (2 * T**2) - a[1] / T + a[2] * np.log(T) + np.sum(a[3:7] * powers[3:] / np.arange(1, 5)) + a[8]
-    return float(a[:7] @ powers), float(h), float(s)
+    cp, h, s = cp_h_s_of(row, np.float64(temperature))
+    return float(cp), float(h), float(s)
+
+
+def cp_h_s_of(rows: np.ndarray, temperatures: np.ndarray | np.float64) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+    """cp/R, h/RT and s/R [-] of rows (…, 9) at temperatures (…) [K]."""
+    a, T, log_T = np.moveaxis(rows, -1, 0), temperatures, np.log(temperatures)
+    t1, t2, t4, t5, t6, t7 = a[0] / (T * T), a[1] / T, a[3] * T, a[4] * T**2, a[5] * T**3, a[6] * T**4
+    cp = t1 + t2 + a[2] + t4 + t5 + t6 + t7
+    h = -t1 + t2 * log_T + a[2] + t4 / 2 + t5 / 3 + t6 / 4 + t7 / 5 + a[7] / T
+    s = -t1 / 2 - t2 + a[2] * log_T + t4 + t5 / 2 + t6 / 3 + t7 / 4 + a[8]
+    return cp, h, s
 
 
 def at(ranges: Ranges, temperature: float) -> tuple[float, float, float]:

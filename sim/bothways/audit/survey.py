@@ -1,0 +1,146 @@
+"""What the checks look at: a mechanism's numbers over a range of temperatures and pressures, each worked out once.
+
+Rate constants come from the laws' own plain k(T, [M], p), equilibrium constants from `balance`; where a partner takes
+part its concentration is p/RT (every species counting 1). Nothing is compiled.
+"""
+
+from collections.abc import Sequence
+from dataclasses import dataclass, field
+from functools import cached_property
+
+import numpy as np
+
+from .. import balance
+from ..constants import GAS_CONSTANT as R
+from ..mechanism.model import Mechanism, Reaction
+from ..rates.law import Broadening, Curve, Expression, Law
+from ..thermo.polynomial import cp_h_s_of, extended
+
+POINTS = 23
+"""Temperatures looked at: of 300 to 2500 K every hundredth."""
+
+
+@dataclass(frozen=True, eq=False)
+class Survey:
+    """A mechanism, temperatures (nT) [K] and pressures (np) [Pa], both rising; arrays follow on demand."""
+
+    mechanism: Mechanism
+    temperatures: np.ndarray
+    pressures: np.ndarray
+    kept: dict = field(default_factory=dict, repr=False)
+    """What `encounters` has sorted out already."""
+
+    @property
+    def is_gas(self) -> bool:
+        """Whether the kinetic theory of gases applies."""
+        return self.mechanism.phase == "ideal gas"
+
+    def reaction_place(self, j: int) -> str:
+        """Where reaction j stands in the file, as errors name it."""
+        return f"reaction {j + 1} '{self.mechanism.reactions[j].equation}'"
+
+    @cached_property
+    def nu(self) -> np.ndarray:
+        """Stoichiometric numbers (N, reactions)."""
+        return self.mechanism.stoichiometry
+
+    @cached_property
+    def thermo(self) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+        """cp/R, h/RT and s/R [-], (nT, N) each, as the mechanism uses them, at each species' own standard pressure."""
+        return cp_h_s_of(self._rows, self.temperatures[:, None])
+
+    @cached_property
+    def _rows(self) -> np.ndarray:
+        whole = [extended(self.mechanism.ranges(k)) for k in range(len(self.mechanism.species))]
+        return np.stack([w.rows[np.searchsorted(w.boundaries[1:-1], self.temperatures, side="right")] for w in whole], axis=1)
+
+    @cached_property
+    def gibbs(self) -> np.ndarray:
+        """g°/RT [-] at the mechanism's standard pressure, (nT, N)."""
+        _, h, s = self.thermo
+        own = np.array([species.standard_pressure for species in self.mechanism.species])
+        return h - s + np.log(self.mechanism.standard_pressure / own)
+
+    @cached_property
+    def log_K(self) -> np.ndarray:
+        """ln K° [-], (nT, reactions)."""
+        return balance.log_equilibrium_constants(self.nu, self.gibbs.T).T
+
+    @cached_property
+    def log_Kc(self) -> np.ndarray:
+        """ln Kc in powers of mol/m3, (nT, reactions)."""
+        standard = self.mechanism.standard_pressure
+        return balance.log_concentration_constants(self.nu, self.gibbs.T, self.temperatures, standard).T
+
+    @cached_property
+    def reaction_energy(self) -> np.ndarray:
+        """ΔU° [J/mol] of every reaction, (nT, reactions)."""
+        _, h, _ = self.thermo
+        return R * self.temperatures[:, None] * (h @ self.nu - self.nu.sum(axis=0))
+
+    @cached_property
+    def partner(self) -> np.ndarray:
+        """Concentration of a partner that counts 1, p/RT [mol/m3], (nT, np)."""
+        return self.pressures / (R * self.temperatures[:, None])
+
+    @cached_property
+    def forward(self) -> np.ndarray:
+        """Sums of the forward terms, partners included (m3, mol, s), (nT, np, reactions); not positive where they are not."""
+        nT, n_p = self.partner.shape
+        total = np.zeros((nT, n_p, len(self.mechanism.reactions)))
+        with np.errstate(over="ignore", invalid="ignore"):
+            for j, reaction in enumerate(self.mechanism.reactions):
+                for term in reaction.terms:
+                    total[:, :, j] += self.constants(term.law, term.partner is not None)
+        return total
+
+    def constants(self, law: Law, partner: bool) -> np.ndarray:
+        """k of one law at every temperature and pressure, (nT, np)."""
+        if law.part() is None:
+            return values(law.expressions()[:1], self.temperatures) * (self.partner if partner else 1.0)
+        M = self.partner if partner else np.ones_like(self.partner)
+        return np.array([[law.k(float(T), float(m), float(p)) for p, m in zip(self.pressures, row, strict=True)]
+                         for T, row in zip(self.temperatures, M, strict=True)])
+
+    @cached_property
+    def log_forward(self) -> np.ndarray:
+        """ln of `forward`, NaN where that is not positive."""
+        return logarithm(self.forward)
+
+    @cached_property
+    def log_bare(self) -> np.ndarray:
+        """ln of the forward constant without the concentration of M, and of fall-off k_inf: what a reverse constant of
+        mass action is compared with; (nT, np, reactions)."""
+        log_k = self.log_forward.copy()
+        for j, reaction in enumerate(self.mechanism.reactions):
+            limits = limits_of(reaction)
+            if limits:
+                log_k[:, :, j] = logarithm(values(limits[:1], self.temperatures))
+            elif reaction.equation.partner:
+                log_k[:, :, j] -= np.log(self.partner)
+        return log_k
+
+
+def values(expressions: Sequence[Expression], temperatures: np.ndarray) -> np.ndarray:
+    """Exponentials at temperatures (nT) [K], a column each, (nT, expressions)."""
+    log_A, n, theta, sign = (np.array(column) for column in zip(*expressions, strict=True))
+    T = temperatures[:, None]
+    with np.errstate(over="ignore"):
+        return sign * np.exp(log_A + n * np.log(T) - theta / T)
+
+
+def logarithm(numbers: np.ndarray) -> np.ndarray:
+    """ln where positive and finite, NaN elsewhere."""
+    fine = (numbers > 0) & np.isfinite(numbers)
+    return np.where(fine, np.log(np.where(fine, numbers, 1.0)), np.nan)
+
+
+def limits_of(reaction: Reaction) -> tuple[Expression, Expression] | None:
+    """The high- and the low-pressure limit of a reaction whose only term is in fall-off; else None."""
+    if len(reaction.terms) != 1:
+        return None
+    part = reaction.terms[0].law.part()
+    if isinstance(part, Broadening) or (isinstance(part, Curve) and not part.activated):
+        high, low = reaction.terms[0].law.expressions()[:2]
+        return high, low
+    return None
