@@ -61,8 +61,9 @@ def _close(potential: dict[str, Any], species: Species, moved: np.ndarray, shift
         for (place, size, symbol), column in zip(_CONSTANTS[potential["form"]], (7, 8), strict=True):
             before = float(row[place])
             row[place] = before + size * float(moved[k, column])
-            entry = f"species.{species.name}.potential.a[{k + 1}]"
-            changes.append(Change(entry, f"{symbol} of the range above {shift.temperature:g} K", before, row[place]))
+            if row[place] != before:
+                entry = f"species.{species.name}.potential.a[{k + 1}]"
+                changes.append(Change(entry, f"{symbol} of the range above {shift.temperature:g} K", before, row[place]))
     return changes
 
 

@@ -39,6 +39,11 @@ class Survey:
         """Where reaction j stands in the file, as errors name it."""
         return f"reaction {j + 1} '{self.mechanism.reactions[j].equation}'"
 
+    def term_place(self, j: int, k: int) -> str:
+        """Where term k of reaction j stands in the file."""
+        several = len(self.mechanism.reactions[j].terms) > 1
+        return self.reaction_place(j) + (f".forward[{k + 1}]" if several else "")
+
     @cached_property
     def nu(self) -> np.ndarray:
         """Stoichiometric numbers (N, reactions)."""

@@ -97,9 +97,8 @@ def _collisions(axes: Axes, audit: Audit, size: Size) -> None:
 
 def _count_axis(axes: Axes) -> None:
     """Counts on a logarithmic axis from below one, so that single ones are seen."""
+    axes.set_ylim(0.7, max(2.0 * axes.get_ylim()[1], 12.0))
     axes.set_yscale("log")
-    high = axes.get_ylim()[1]
-    axes.set_ylim(0.7, max(2.0 * high, 12.0))
     axes.yaxis.set_minor_formatter(NullFormatter())
     axes.set_ylabel("number")
 

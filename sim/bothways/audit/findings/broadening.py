@@ -20,13 +20,13 @@ _SMALLEST = 1.001
 
 
 def find(survey: Survey) -> Iterator[Finding]:
-    """One row for each reaction that has such a term, at the temperature where F is worst."""
+    """One row for each term that is so, at the temperature where F is worst."""
     places, parameters = [], []
     for j, reaction in enumerate(survey.mechanism.reactions):
-        for term in reaction.terms:
+        for k, term in enumerate(reaction.terms):
             numbers = _parameters(term.law.part())
             if numbers:
-                places.append(j)
+                places.append((j, k))
                 parameters.append(numbers)
     if places:
         yield from _rows(survey, places, *extremes(np.array(parameters), survey.temperatures))
@@ -52,23 +52,23 @@ def extremes(parameters: np.ndarray, temperatures: np.ndarray) -> tuple[np.ndarr
     return centre, factor * np.maximum(centre, 1.0)
 
 
-def _rows(survey: Survey, places: list[int], centre: np.ndarray, largest: np.ndarray) -> Iterator[Finding]:
+def _rows(survey: Survey, places: list[tuple[int, int]], centre: np.ndarray, largest: np.ndarray) -> Iterator[Finding]:
     T = survey.temperatures
-    for n, j in enumerate(places):
+    for n, (j, term) in enumerate(places):
         wrong, high = ~(centre[:, n] > 0), largest[:, n] > _SMALLEST
         if np.any(wrong):
             k = int(np.argmin(centre[:, n]))
             text = f"F_cent is {centre[k, n]:.3g} at {T[k]:.4g} K, not positive {stretch_text(T[wrong][0], T[wrong][-1])}"
-            yield Finding(NAME, ERROR, survey.reaction_place(j), text, NONE, float(T[k]), NONE, float(T[wrong][0]),
+            yield Finding(NAME, ERROR, survey.term_place(j, term), text, NONE, float(T[k]), NONE, float(T[wrong][0]),
                           float(T[wrong][-1]), float(centre[k, n]), "1", reaction=j + 1)
         elif np.any(high):
-            yield _row(survey, j, largest[:, n], high)
+            yield _row(survey, j, term, largest[:, n], high)
 
 
-def _row(survey: Survey, j: int, largest: np.ndarray, high: np.ndarray) -> Finding:
+def _row(survey: Survey, j: int, term: int, largest: np.ndarray, high: np.ndarray) -> Finding:
     T, k = survey.temperatures, int(np.argmax(largest))
     decades = float(np.log10(largest[k]))
     severity = severity_of(decades) if decades > 0 else NOTICE
     text = f"F reaches {largest[k]:.3g} at {T[k]:.4g} K ({factor_text(decades)}), above 1 {stretch_text(T[high][0], T[high][-1])}"
-    return Finding(NAME, severity, survey.reaction_place(j), text, decades, float(T[k]), NONE, float(T[high][0]),
+    return Finding(NAME, severity, survey.term_place(j, term), text, decades, float(T[k]), NONE, float(T[high][0]),
                    float(T[high][-1]), float(largest[k]), "1", reaction=j + 1)

@@ -22,10 +22,10 @@ _GAP = 100.0
 def find(survey: Survey) -> Iterator[Finding]:
     """Rows for each reaction with such a table."""
     for j, reaction in enumerate(survey.mechanism.reactions):
-        for term in reaction.terms:
+        for k, term in enumerate(reaction.terms):
             part = term.law.part()
             if isinstance(part, PressureNodes):
-                yield from _rows(survey, j, part, _nodes(term.law, part, survey.temperatures))
+                yield from _rows(survey, j, k, part, _nodes(term.law, part, survey.temperatures))
 
 
 def _nodes(law: Law, part: PressureNodes, temperatures: np.ndarray) -> np.ndarray:
@@ -34,8 +34,8 @@ def _nodes(law: Law, part: PressureNodes, temperatures: np.ndarray) -> np.ndarra
     return np.where(k > 0, np.log10(np.where(k > 0, k, 1.0)), np.nan)
 
 
-def _rows(survey: Survey, j: int, part: PressureNodes, log_k: np.ndarray) -> Iterator[Finding]:
-    T, place, p = survey.temperatures, survey.reaction_place(j), np.exp(part.log_p)
+def _rows(survey: Survey, j: int, term: int, part: PressureNodes, log_k: np.ndarray) -> Iterator[Finding]:
+    T, place, p = survey.temperatures, survey.term_place(j, term), np.exp(part.log_p)
     back = turning(log_k)
     if len(p) > 2 and np.nanmax(back) > _TURN:
         k, size = int(np.nanargmax(back)), float(np.nanmax(back))

@@ -18,10 +18,10 @@ _SLACK = 1e-6
 def find(survey: Survey) -> Iterator[Finding]:
     """One row for each reaction with such a series."""
     for j, reaction in enumerate(survey.mechanism.reactions):
-        for term in reaction.terms:
+        for k, term in enumerate(reaction.terms):
             part = term.law.part()
             if isinstance(part, Series):
-                yield from _rows(survey, j, part, _refused(survey, term.law))
+                yield from _rows(survey, j, k, part, _refused(survey, term.law))
 
 
 def _refused(survey: Survey, law) -> bool:  # type: ignore[no-untyped-def]
@@ -29,7 +29,7 @@ def _refused(survey: Survey, law) -> bool:  # type: ignore[no-untyped-def]
     return any(law.outside(T, p) for T, p in ends)
 
 
-def _rows(survey: Survey, j: int, part: Series, refused: bool) -> Iterator[Finding]:
+def _rows(survey: Survey, j: int, term: int, part: Series, refused: bool) -> Iterator[Finding]:
     T_low, T_high, p_low, p_high = 1 / part.window[0], 1 / part.window[1], *np.exp(part.window[2:])
     T, p = survey.temperatures, survey.pressures
     outside = (T[0] < T_low * (1 - _SLACK), T[-1] > T_high * (1 + _SLACK), p[0] < p_low * (1 - _SLACK),
@@ -37,5 +37,5 @@ def _rows(survey: Survey, j: int, part: Series, refused: bool) -> Iterator[Findi
     if any(outside):
         text = (f"the window is {T_low:.4g} to {T_high:.4g} K and {p_low / 1e5:.3g} to {p_high / 1e5:.3g} bar"
                 + ("" if refused else "; outside, its edge holds"))
-        yield Finding(NAME, WARNING if refused else NOTICE, survey.reaction_place(j), text, NONE, NONE, NONE, T_low, T_high,
+        yield Finding(NAME, WARNING if refused else NOTICE, survey.term_place(j, term), text, NONE, NONE, NONE, T_low, T_high,
                       reaction=j + 1)
