@@ -9,6 +9,7 @@ import numpy as np
 
 from ..errors import InputError
 from ..mechanism.model import Mechanism
+from ..mechanism.phase import GAS
 from .culprit import suspects_of, with_thermochemistry
 from .finding import ERROR, SEVERITIES, Finding
 from .findings import CHECKS
@@ -93,7 +94,7 @@ def audit(mechanism: Mechanism, temperatures: tuple[float, float] | None = None,
 
 
 def _survey(mechanism: Mechanism, temperatures: tuple[float, float] | None, pressures: Sequence[float] | None) -> Survey:
-    default = GAS_RANGE if mechanism.phase == "ideal gas" else LIQUID_RANGE
+    default = GAS_RANGE if mechanism.phase == GAS else LIQUID_RANGE
     low, high = map(float, temperatures if temperatures is not None else default)
     p = np.unique(np.asarray(PRESSURES if pressures is None else pressures, dtype=float))
     if not (np.isfinite([low, high]).all() and 0 < low <= high < 1e5):

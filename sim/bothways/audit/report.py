@@ -34,8 +34,9 @@ def summary(audit: Audit, every: bool = False) -> str:
 def _head(audit: Audit) -> list[str]:
     m, survey = audit.survey.mechanism, audit.survey
     T, p = survey.temperatures, ", ".join(f"{value / 1e5:.4g}" for value in survey.pressures)
+    pressures = f"; {p} bar" * survey.is_gas
     lines = [f"{m.name}: {len(m.species)} species, {len(m.reactions)} reaction{'s' * (len(m.reactions) != 1)}, {m.phase}",
-             f"{'looked at':<12}{T[0]:g} to {T[-1]:g} K; {p} bar",
+             f"{'looked at':<12}{T[0]:g} to {T[-1]:g} K{pressures}",
              f"{'found':<12}" + ", ".join(f"{n} {severity}{'s' * (n != 1)}" for severity, n in audit.counts.items())]
     agreement = audit.agreement
     if agreement["published"]:

@@ -13,6 +13,7 @@ import numpy as np
 from .. import balance
 from ..constants import GAS_CONSTANT as R
 from ..mechanism.model import Mechanism, Reaction
+from ..mechanism.phase import FRACTION, GAS, standard_concentration
 from ..rates.law import Broadening, Curve, Expression, Law
 from ..thermo.polynomial import cp_h_s_of, extended
 
@@ -33,7 +34,7 @@ class Survey:
     @property
     def is_gas(self) -> bool:
         """Whether the kinetic theory of gases applies."""
-        return self.mechanism.phase == "ideal gas"
+        return self.mechanism.phase == GAS
 
     def reaction_place(self, j: int) -> str:
         """Where reaction j stands in the file, as errors name it."""
@@ -61,8 +62,10 @@ class Survey:
 
     @cached_property
     def gibbs(self) -> np.ndarray:
-        """g°/RT [-] at the mechanism's standard pressure, (nT, N)."""
+        """g°/RT [-] at the mechanism's standard state, (nT, N)."""
         _, h, s = self.thermo
+        if not self.is_gas:
+            return h - s
         own = np.array([species.standard_pressure for species in self.mechanism.species])
         return h - s + np.log(self.mechanism.standard_pressure / own)
 
@@ -73,15 +76,16 @@ class Survey:
 
     @cached_property
     def log_Kc(self) -> np.ndarray:
-        """ln Kc in powers of mol/m3, (nT, reactions)."""
-        standard = self.mechanism.standard_pressure
-        return balance.log_concentration_constants(self.nu, self.gibbs.T, self.temperatures, standard).T
+        """ln Kc in powers of mol/m3, (nT, reactions); NaN where it hangs on a solution's total concentration."""
+        size, power = standard_concentration(self.mechanism)
+        standard = np.nan if self.mechanism.standard_state == FRACTION else size
+        return balance.log_concentration_constants(self.nu, self.gibbs.T, standard * self.temperatures**-power).T
 
     @cached_property
     def reaction_energy(self) -> np.ndarray:
-        """ΔU° [J/mol] of every reaction, (nT, reactions)."""
+        """ΔU° [J/mol] of every reaction, (nT, reactions); of a solution ΔH°."""
         _, h, _ = self.thermo
-        return R * self.temperatures[:, None] * (h @ self.nu - self.nu.sum(axis=0))
+        return R * self.temperatures[:, None] * (h @ self.nu - self.is_gas * self.nu.sum(axis=0))
 
     @cached_property
     def partner(self) -> np.ndarray:

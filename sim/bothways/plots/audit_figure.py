@@ -56,7 +56,7 @@ def _words(audit: Audit) -> Words:
     m, survey = audit.survey.mechanism, audit.survey
     p = ", ".join(f"{value / 1e5:.4g}" for value in survey.pressures)
     T = survey.temperatures
-    facts = f"{len(m.species)} species, {len(m.reactions)} reactions; {T[0]:g} to {T[-1]:g} K; {p} bar"
+    facts = f"{len(m.species)} species, {len(m.reactions)} reactions; {T[0]:g} to {T[-1]:g} K" + f"; {p} bar" * survey.is_gas
     found = ", ".join(f"{n} {severity}{'s' * (n != 1)}" for severity, n in audit.counts.items())
     return Words(capitalised(f"audit of {m.name}"), facts, notes=f"Found: {found}.", program=f"bothways {program_version()}")
 

@@ -4,7 +4,6 @@ from collections.abc import Iterator
 
 import numpy as np
 
-from ...rates.fall_off import LINDEMANN
 from ...rates.law import Broadening, Curve
 from ..finding import ERROR, NONE, NOTICE, Finding, factor_text, severity_of, stretch_text
 from ..survey import Survey
@@ -34,7 +33,7 @@ def find(survey: Survey) -> Iterator[Finding]:
 
 def _parameters(part: object) -> tuple[float, ...]:
     """The eight of the general form (rates/law.py, Curve); empty without a broadening."""
-    if isinstance(part, Broadening) and part.kind != LINDEMANN:
+    if isinstance(part, Broadening):
         a, inverse_3, inverse_1, T2 = part.parameters
         return (1.0 - a, inverse_3, a, inverse_1, 1.0, T2, 0.0, 0.0)
     return part.parameters if isinstance(part, Curve) else ()

@@ -14,6 +14,8 @@ EXPLANATION = ("With every species at the same partial pressure p, the reverse r
                "(p/p°)^Σν. A K near 1 or below says that what the source left out decides. Here the step runs both ways "
                "like all others; a model that takes the claim literally ends elsewhere.")
 
+_AT = {True: "all at one pressure", False: "all at activity one"}
+
 
 def find(survey: Survey) -> Iterator[Finding]:
     """One row for each reaction that is published one way, with the smallest K over temperatures and pressures."""
@@ -24,15 +26,18 @@ def find(survey: Survey) -> Iterator[Finding]:
 
 def _row(survey: Survey, j: int) -> Finding:
     change = float(survey.nu[:, j].sum())
-    log_K = survey.log_K[:, j, None] + change * np.log(survey.pressures / survey.mechanism.standard_pressure)
+    p = survey.pressures / survey.mechanism.standard_pressure if survey.is_gas else np.ones(1)
+    log_K = survey.log_K[:, j, None] + change * np.log(p)
     least = np.min(log_K, axis=1)
     k, q = np.unravel_index(int(np.argmin(log_K)), log_K.shape)
     T, below = survey.temperatures, survey.temperatures[least < 0]
     faster = f"the reverse is the faster one {stretch_text(*below[[0, -1]])}" if below.size else "the forward is always faster"
-    text = f"K is {_power(least[0])} at {T[0]:.4g} K and {_power(least[-1])} at {T[-1]:.4g} K, all at one pressure: {faster}"
+    text = (f"K is {_power(least[0])} at {T[0]:.4g} K and {_power(least[-1])} at {T[-1]:.4g} K, with {_AT[survey.is_gas]}: "
+            f"{faster}")
     where = (float(below[0]), float(below[-1])) if below.size else (NONE, NONE)
-    return Finding(NAME, WARNING if below.size else NOTICE, survey.reaction_place(j), text, NONE, float(T[k]),
-                   float(survey.pressures[q]) if change else NONE, *where, float(np.exp(log_K[k, q])), "1", reaction=j + 1)
+    pressure = float(survey.pressures[q]) if change and survey.is_gas else NONE
+    return Finding(NAME, WARNING if below.size else NOTICE, survey.reaction_place(j), text, NONE, float(T[k]), pressure, *where,
+                   float(np.exp(log_K[k, q])), "1", reaction=j + 1)
 
 
 def _power(log_number: float) -> str:

@@ -37,7 +37,9 @@ def pairs(survey: Survey) -> dict[int, tuple[np.ndarray, np.ndarray]]:
     for j, reaction in enumerate(survey.mechanism.reactions):
         if reaction.published_reverse is not None:
             published = logarithm(values(reaction.published_reverse.expressions(), survey.temperatures)[:, 0])
-            found[j] = published, survey.log_bare[:, -1, j] - survey.log_Kc[:, j]
+            derived = survey.log_bare[:, -1, j] - survey.log_Kc[:, j]
+            if np.any(np.isfinite(published - derived)):
+                found[j] = published, derived
     return found
 
 
