@@ -11,7 +11,7 @@ import numpy as np
 
 from .collisions import collision_constant
 from .diameters import RULE, size
-from .survey import Survey, limits_of
+from .survey import Survey, limits_of, mass_action
 
 FORWARD, REVERSE = "forward", "reverse"
 
@@ -39,6 +39,8 @@ def encounters(survey: Survey, molecules: int) -> Sequence[Encounter]:
 def _encounters(survey: Survey, molecules: int) -> Iterator[Encounter]:
     species = survey.mechanism.species
     for j, reaction in enumerate(survey.mechanism.reactions):
+        if not mass_action(reaction):
+            continue
         left, right = (dict(side) for side in (reaction.equation.reactants, reaction.equation.products))
         both = {name: min(left[name], right[name]) for name in left if name in right}
         for direction, side in ((FORWARD, left), (REVERSE, right)):

@@ -16,6 +16,7 @@ from ..mechanism.model import Mechanism, Reaction
 from ..mechanism.phase import FRACTION, GAS, standard_concentration
 from ..rates.law import Broadening, Curve, Expression, Law
 from ..thermo.polynomial import cp_h_s_of, extended
+from ..thermo.potential import NO_MODES
 
 POINTS = 23
 """Temperatures looked at: of 300 to 2500 K every hundredth."""
@@ -53,7 +54,12 @@ class Survey:
     @cached_property
     def thermo(self) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
         """cp/R, h/RT and s/R [-], (nT, N) each, as the mechanism uses them, at each species' own standard pressure."""
-        return cp_h_s_of(self._rows, self.temperatures[:, None])
+        own = np.array(cp_h_s_of(self._rows, self.temperatures[:, None]))
+        for k, species in enumerate(self.mechanism.species):
+            modes = species.potential.modes()
+            if modes != NO_MODES:
+                own[:, :, k] += np.array([modes.cp_h_s(float(T)) for T in self.temperatures]).T
+        return own[0], own[1], own[2]
 
     @cached_property
     def _rows(self) -> np.ndarray:
@@ -142,6 +148,11 @@ def logarithm(numbers: np.ndarray) -> np.ndarray:
     """ln where positive and finite, NaN elsewhere."""
     fine = (numbers > 0) & np.isfinite(numbers)
     return np.where(fine, np.log(np.where(fine, numbers, 1.0)), np.nan)
+
+
+def mass_action(reaction: Reaction) -> bool:
+    """Whether both directions follow the law of mass action, so that a reverse constant exists."""
+    return all(term.orders is None for term in reaction.terms)
 
 
 def limits_of(reaction: Reaction) -> tuple[Expression, Expression] | None:

@@ -5,7 +5,7 @@ from collections.abc import Iterator
 import numpy as np
 
 from ..finding import NONE, NOTICE, WARNING, WARNING_FROM, Finding, factor_text
-from ..survey import Survey
+from ..survey import Survey, mass_action
 
 NAME = "stated both ways round"
 SOURCE = "detailed balance: each entry has a reverse of its own already"
@@ -18,6 +18,8 @@ def find(survey: Survey) -> Iterator[Finding]:
     """One row for each such pair, at the later entry."""
     seen: dict[tuple, int] = {}
     for j, reaction in enumerate(survey.mechanism.reactions):
+        if not mass_action(reaction):
+            continue
         left, right, partner = reaction.equation.key
         first = seen.get((right, left, partner))
         if first is not None:

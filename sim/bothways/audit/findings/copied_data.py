@@ -19,7 +19,7 @@ def find(survey: Survey) -> Iterator[Finding]:
     groups: dict[tuple, list[Species]] = defaultdict(list)
     for species in survey.mechanism.species:
         ranges = species.potential.ranges()
-        groups[ranges.boundaries.tobytes(), ranges.rows.tobytes()].append(species)
+        groups[ranges.boundaries.tobytes(), ranges.rows.tobytes(), species.potential.modes()].append(species)
     for same in groups.values():
         if len(same) > 1:
             yield _row(same)

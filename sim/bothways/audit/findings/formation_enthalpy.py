@@ -6,7 +6,7 @@ import numpy as np
 
 from ...constants import GAS_CONSTANT as R
 from ...mechanism.model import Species
-from ...thermo.polynomial import at
+from ...thermo import Functions
 from ..finding import NONE, Finding, factor_text, severity_of
 from ..formation_table import reference
 from ..survey import Survey
@@ -35,7 +35,7 @@ def find(survey: Survey) -> Iterator[Finding]:
 
 def stated(species: Species) -> float:
     """ΔfH°(298.15 K) [J/mol] that the species' data, as published, give."""
-    return R * STANDARD * at(species.potential.ranges(), STANDARD)[1]
+    return R * STANDARD * Functions(species.potential.ranges(), species.potential.modes()).cp_h_s(STANDARD)[1]
 
 
 def _row(species: Species, known: tuple[float, float], difference: float, T: float) -> Finding:

@@ -6,7 +6,7 @@ import numpy as np
 
 from ...constants import GAS_CONSTANT as R
 from ..finding import NONE, Finding, factor_text, severity_of
-from ..survey import Survey, logarithm, values
+from ..survey import Survey, logarithm, mass_action, values
 
 NAME = "published reverse"
 SOURCE = "the principle of detailed balance: R.C. Tolman, Proc. Natl. Acad. Sci. USA 11 (1925) 436, doi:10.1073/pnas.11.7.436"
@@ -35,7 +35,7 @@ def pairs(survey: Survey) -> dict[int, tuple[np.ndarray, np.ndarray]]:
     """ln of the published and of the derived reverse constant by reaction, (nT) each; of tables in pressure at the highest."""
     found = {}
     for j, reaction in enumerate(survey.mechanism.reactions):
-        if reaction.published_reverse is not None:
+        if reaction.published_reverse is not None and mass_action(reaction):
             published = logarithm(values(reaction.published_reverse.expressions(), survey.temperatures)[:, 0])
             derived = survey.log_bare[:, -1, j] - survey.log_Kc[:, j]
             if np.any(np.isfinite(published - derived)):
