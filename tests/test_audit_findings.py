@@ -315,15 +315,16 @@ def test_broadening_above_one(centre: float, severity: str) -> None:
 
 
 def test_broadening_of_other_laws() -> None:
-    def spoil(d_factor: float) -> Any:
+    def spoil(a: float, d_factor: float) -> Any:
         def change(document: Document) -> None:
             law = forward(document, "H + O2 ⇌ HO2")
             del law["F_cent"]
-            law |= {"law": "SRI", "F": {"a": 0.5, "b": 100.0, "c": 1000.0, "d": d_factor}}
+            law |= {"law": "SRI", "F": {"a": a, "b": 100.0, "c": 1000.0, "d": d_factor}}
         return change
-    assert found("broadening above 1", spoil(1.4))[0].value == pytest.approx(1.4 * max(
-        1.0, 0.5 * np.exp(-100 / 300) + np.exp(-0.3)), rel=1e-9)
-    assert found("broadening above 1", spoil(0.9)) == []
+    at_centre = 1.4 * (0.5 * np.exp(-100 / 300) + np.exp(-0.3))  # above 1.4 at 300 K: largest at the centre
+    assert found("broadening above 1", spoil(0.5, 1.4))[0].value == pytest.approx(at_centre, rel=1e-9)
+    assert found("broadening above 1", spoil(0.2, 1.4))[0].value == pytest.approx(1.4, rel=1e-9)  # in the limits of pressure
+    assert found("broadening above 1", spoil(0.2, 0.9)) == []
 
 
 def test_broadening_not_positive() -> None:
@@ -398,6 +399,10 @@ def test_prefactor(equation: str, large: float, fine: float) -> None:
             law = forward(document, equation)
             law.get("k_inf", law).update(A=A, n=0.0, Ea=60e3)
         return change
+    def bent(document: Document) -> None:  # above the allowance at 300 K, below it at 2500 K
+        law = forward(document, equation)
+        law.get("k_inf", law).update(A=large * 300.0**8, n=-8.0, Ea=60e3)
+    assert found("A-factor", bent) == []
     [row] = found("A-factor", spoil(large))
     assert row.severity in (WARNING, NOTICE) and row.reaction
     assert found("A-factor", spoil(fine)) == []
