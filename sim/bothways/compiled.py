@@ -62,6 +62,10 @@ def compiled(function: Callable[..., Any]) -> Callable[..., Any]:
         return numba.njit(cache=True, nogil=True, error_model="numpy")(function)
 
 
+REFUSED, STAND, CROSSED = range(3)
+"""What the judge of a step may answer, see integrate/interface.py."""
+
+
 class callback:
     """A function of three pointers, (float64*, float64*, int64*) -> int64, whose `address` `call` takes.
 
@@ -95,9 +99,9 @@ def _in_cache_folder() -> Iterator[None]:
         numba.config.CACHE_DIR = before
 
 
-def in_cache() -> bool:
-    """Whether kernels have been compiled on this machine before."""
-    return not JIT or any(CACHE_FOLDER.rglob("*.nbi"))
+def in_cache(name: str = "") -> bool:
+    """Whether kernels with this in their name have been compiled on this machine before."""
+    return not JIT or any(CACHE_FOLDER.rglob(f"*{name}*.nbi"))
 
 
 @intrinsic

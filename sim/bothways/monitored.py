@@ -13,6 +13,7 @@ from .equilibrium import conserved_by_reactions
 from .exchange import ExchangingEquations
 from .integrate import CompiledSystem, Problem
 from .kernels import callbacks, exchange, judge
+from .surfaces import Surfaces, surfaces_of
 from .vessel import Equations
 
 TEMPERATURE_ATOL = 1e-12
@@ -27,32 +28,84 @@ class Monitored:
 
     problem: Problem
     ledger: np.ndarray = field(repr=False)
+    surfaces: Surfaces | None = field(default=None, repr=False)
 
     def notes(self) -> dict[str, float]:
         """What the judge found, for the statistics of a run."""
         head = self.ledger
         return {"largest_drift_of_totals": float(head[judge.LARGEST_DRIFT]), "mendings": int(head[judge.MENDED]),
                 "largest_drift_of_temperature": float(head[judge.LARGEST_ENERGY_DRIFT]),
-                "largest_rise_refused": float(head[judge.LARGEST_EXCESS])}
+                "largest_rise_refused": float(head[judge.LARGEST_EXCESS]), **self._crossings()}
+
+    def _crossings(self) -> dict[str, float]:
+        if self.surfaces is None:
+            return {}
+        return {"surfaces_crossed": self.surfaces.crossings, "largest_jump_of_energy": self.surfaces.jump}
 
 
-def monitored(case: Case, equations: Equations, until: Callable[[float, np.ndarray], bool] | None = None) -> Monitored:
+def monitored(case: Case, equations: Equations, until: Callable[[float, np.ndarray], bool] | None = None,
+              everywhere: bool = False) -> Monitored:
     """The problem of a case; the state's units are those of `vessel.Equations`, or of exchange.py where heat comes from
-    outside. until : see `integrate.Problem`.
+    outside. until : see `integrate.Problem`. everywhere : see `surfaces.surfaces_of`.
     """
     charge = case.charge
     part = charge.concentration if case.holds == "volume" else charge.amount
     start = np.append(part, charge.temperature)
     atol = np.append(np.full(part.size, case.atol * float(np.sum(part))), TEMPERATURE_ATOL * charge.temperature)
     stops = tuple(t for t in case.also_at if t < case.end)
+    parts = _Parts(case, equations, everywhere)
     if case.schedule is None:
-        ledger, system = _compiled(case, equations, start)
-        return Monitored(Problem(equations.f, equations.J, start, case.end, case.rtol, atol, stops, system, until), ledger)
+        system = _compiled(parts, start)
+        problem = Problem(equations.f, equations.J, start, case.end, case.rtol, atol, stops, system, until)
+        return Monitored(problem, parts.ledger, parts.surfaces)
     further = ExchangingEquations(equations)
     start, atol = (np.append(a, b) for a, b in zip((start, atol), _further(case, equations, part), strict=True))
-    ledger, system = _exchanging(case, further, start)
-    return Monitored(Problem(further.f, further.J, start, case.end, case.rtol, atol, stops, system, until,
-                             case.schedule.corners), ledger)
+    problem = Problem(further.f, further.J, start, case.end, case.rtol, atol, stops, _exchanging(parts, further, start), until,
+                      case.schedule.corners)
+    return Monitored(problem, parts.ledger, parts.surfaces)
+
+
+class _Parts:
+    """What the compiled form of a case is made of: arrays of its own, the judge's ledger, surfaces."""
+
+    def __init__(self, case: Case, equations: Equations, everywhere: bool) -> None:
+        tables, charge, work = equations.tables, case.charge, equations.tables.work()
+        part = charge.concentration if case.holds == "volume" else charge.amount
+        self.surfaces = surfaces_of(case, tables, work, everywhere)
+        if self.surfaces is not None:
+            self.surfaces.begin(part, charge.temperature)
+        # f and J of the plain form set their own vessel to other times
+        floats = tables.floats if self.surfaces is None else self.surfaces.floats
+        self.arrays = (equations.vessel.copy(), tables.ints, floats, work)
+        conserved = np.ascontiguousarray(conserved_by_reactions(case.mechanism), dtype=float)
+        energy = Contents(case.mechanism, tables).energy(part, charge.temperature, case.holds)
+        self.ledger = judge.ledger_of(conserved, conserved @ part, energy, charge.temperature)
+        self.n_rows, self.equations, self.n = len(conserved), equations, part.size
+
+    def context(self, values: int) -> np.ndarray:
+        """What callbacks and judge are handed; values: of the Jacobian."""
+        table = np.empty((0, 0)) if self.surfaces is None else self.surfaces.table
+        more = [self.ledger.ctypes.data, self.n_rows, table.ctypes.data, len(table)]
+        return np.append(callbacks.context_of(*self.arrays, values), np.array(more, dtype=np.int64))
+
+    def kept(self) -> tuple[np.ndarray, ...]:
+        """What the addresses in the context belong to."""
+        return (*self.arrays, self.ledger, *([] if self.surfaces is None else [self.surfaces.table]))
+
+    def enter(self, follow: Callable[[float, np.ndarray], None] | None) -> Callable[[float, np.ndarray], None] | None:
+        """What a method tells where f goes on in another way: `follow` the schedule, and change over at surfaces."""
+        surfaces, head, n = self.surfaces, self.ledger, self.n
+        if surfaces is None:
+            return follow
+
+        def enter(t: float, z: np.ndarray) -> None:
+            if follow is not None:
+                follow(t, z)
+            added = surfaces.cross(z[:n], float(z[n + 1]))
+            head[judge.ENERGY] += added
+            head[judge.START_ENERGY] += added
+
+        return enter
 
 
 def _further(case: Case, equations: Equations, part: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
@@ -63,33 +116,16 @@ def _further(case: Case, equations: Equations, part: np.ndarray) -> tuple[np.nda
     return np.zeros(len(sizes)), np.array(sizes)
 
 
-def _exchanging(case: Case, further: ExchangingEquations, start: np.ndarray) -> tuple[np.ndarray, CompiledSystem]:
-    equations, n = further.equations, len(case.mechanism.species)
-    vessel = equations.vessel.copy()  # f and J of the plain form set their own to other times
-    kept = (vessel, equations.tables.ints, equations.tables.floats, equations.tables.work())
-    ledger, context = _judged(case, equations, start[: n + 1], kept, further.pattern[0].size)
-    system = CompiledSystem(
-        exchange.f_of_exchanging.address, exchange.J_of_exchanging.address, judge.judge.address, context, further.pattern,
-        further.mass, further.bordered_size - n, further.places, further.bordered_state(0.0, start), (*kept, ledger),
-        partial(further.enter, vessel))
-    return ledger, system
+def _exchanging(parts: _Parts, further: ExchangingEquations, start: np.ndarray) -> CompiledSystem:
+    return CompiledSystem(
+        exchange.f_of_exchanging.address, exchange.J_of_exchanging.address, judge.judge.address,
+        parts.context(further.pattern[0].size), further.pattern, further.mass, further.bordered_size - parts.n, further.places,
+        further.bordered_state(0.0, start), parts.kept(), parts.enter(partial(further.enter, parts.arrays[0])))
 
 
-def _compiled(case: Case, equations: Equations, start: np.ndarray) -> tuple[np.ndarray, CompiledSystem]:
-    rows, starts = equations.bordered_pattern
-    work, n = equations.tables.work(), start.size - 1
-    kept = (equations.vessel, equations.tables.ints, equations.tables.floats, work)
-    ledger, context = _judged(case, equations, start, kept, rows.size)
-    system = CompiledSystem(
-        callbacks.f_of_bordered.address, callbacks.J_of_bordered.address, judge.judge.address, context, (rows, starts),
-        equations.mass, 2, np.append(np.arange(n), n + 1), equations.bordered_state(start), (*kept, ledger))
-    return ledger, system
-
-
-def _judged(case: Case, equations: Equations, start: np.ndarray, kept: tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray],
-            values: int) -> tuple[np.ndarray, np.ndarray]:
-    """The judge's ledger for a plain start, and the context of callbacks and judge."""
-    conserved = np.ascontiguousarray(conserved_by_reactions(case.mechanism), dtype=float)
-    energy = Contents(case.mechanism, equations.tables).energy(start[:-1], start[-1], case.holds)
-    ledger = judge.ledger_of(conserved, conserved @ start[:-1], energy, start[-1])
-    return ledger, np.append(callbacks.context_of(*kept, values), [ledger.ctypes.data, len(conserved)])
+def _compiled(parts: _Parts, start: np.ndarray) -> CompiledSystem:
+    equations, n = parts.equations, parts.n
+    return CompiledSystem(
+        callbacks.f_of_bordered.address, callbacks.J_of_bordered.address, judge.judge.address,
+        parts.context(equations.bordered_pattern[0].size), equations.bordered_pattern, equations.mass, 2,
+        np.append(np.arange(n), n + 1), equations.bordered_state(start), parts.kept(), parts.enter(None))

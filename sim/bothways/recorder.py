@@ -87,6 +87,8 @@ class Recorder:
         if self.case.heat in ("isothermal", "given temperature"):
             return self._held()
         case, charge = self.case, self.case.charge
+        if case.mechanism.joins != "closed":
+            return near  # at a join left as published the energy jumps and T does not
         received = further[:, 0] if case.heat == "jacket" else np.zeros(len(near))
         energy = self.contents.energy(charge.amount, charge.temperature, case.holds) + received
         T = self.contents.temperatures_of(energy, amount, near, case.holds, case.own_heat_capacity, charge.temperature)

@@ -99,7 +99,7 @@ class Equations:
 
         Returns whether the machine had no compiled kernels.
         """
-        new = not in_cache()
+        new = not in_cache() or (self.schedule is not None and not in_cache("f_of_exchanging"))
         if new:
             say("compiling the numerical kernels, once on this machine (about a minute)")
         y = np.append(np.ones(self.size - 1), 1000.0)

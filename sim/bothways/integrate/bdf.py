@@ -16,9 +16,8 @@ import math
 
 import numpy as np
 
-from ..compiled import call, compiled
+from ..compiled import CROSSED, REFUSED, STAND, call, compiled
 from .differences import MOST_ORDER, ROWS, begin_history, error_constant, extend_history, predict
-from .interface import CROSSED, REFUSED, STAND
 from .sparse_lu import dense_factor, factor
 from .stepping import (
     AT_CROSSING,

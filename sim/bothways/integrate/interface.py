@@ -92,8 +92,6 @@ class Outcome:
     counts: dict[str, int | float] = field(default_factory=dict)
 
 
-REFUSED, STAND, CROSSED = range(3)
-"""What a judge may answer."""
 MOST_STEPS = 1_000_000
 """An endless run is refused after so many steps."""
 MOST_STEPS_IF_ASKED = 20_000

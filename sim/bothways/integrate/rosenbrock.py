@@ -10,8 +10,7 @@ import math
 
 import numpy as np
 
-from ..compiled import call, compiled
-from .interface import CROSSED, REFUSED, STAND
+from ..compiled import CROSSED, REFUSED, STAND, call, compiled
 from .sparse_lu import dense_factor, factor
 from .stepping import (
     AT_CROSSING,

@@ -20,7 +20,7 @@ import math
 import numpy as np
 from numba import carray
 
-from ..compiled import callback, compiled, float64_pointer
+from ..compiled import CROSSED, REFUSED, STAND, callback, compiled, float64_pointer
 from ..constants import GAS_CONSTANT as R
 from . import layout as at
 from .callbacks import CONTEXT_SIZE, tables_of
@@ -39,9 +39,11 @@ from .equations import (
 from .exchange import change_by_heat, change_by_ramp, further
 from .layout import view
 from .molar import molar_functions
+from .surfaces import SIZE as SURFACE_SIZE
+from .surfaces import arm, share_before
 
-LEDGER, N_ROWS = CONTEXT_SIZE, CONTEXT_SIZE + 1
-JUDGE_CONTEXT_SIZE = CONTEXT_SIZE + 2
+LEDGER, N_ROWS, SURFACES, N_SURFACES = range(CONTEXT_SIZE, CONTEXT_SIZE + 4)
+JUDGE_CONTEXT_SIZE = CONTEXT_SIZE + 4
 ENERGY, START_TEMPERATURE, LARGEST_EXCESS, MENDED, LARGEST_DRIFT, LARGEST_ENERGY_DRIFT, START_ENERGY = range(7)
 LEDGER_HEAD = 8
 ROUND_OFF = 4e-15
@@ -199,7 +201,10 @@ def bend(n0, n1):
 
 @callback
 def judge(exchange_pointer, verdict_pointer, context):
-    """1 if the step may stand, its new state mended in place; 0 if not. verdict[0]: rise beyond what is allowed."""
+    """What becomes of a step, its new state mended in place.
+
+    verdict[0]: rise beyond what is allowed; verdict[1]: share of the step that a surface cuts off.
+    """
     vessel, ints, floats, _, _ = tables_of(context)
     c = carray(context, (JUDGE_CONTEXT_SIZE,))
     n, m = np.int64(ints[at.SPECIES]), c[N_ROWS]
@@ -219,14 +224,14 @@ def judge(exchange_pointer, verdict_pointer, context):
     T0, T1 = exchange[n + 1], exchange[nz + n + 1]
     verdict[0] = 0.0
     if not mend(new, rows, totals, matrix, residual, multiplier, head):
-        return 0
+        return REFUSED
     molar_functions(T0, 0, ints, floats, scratch[0], scratch[1], scratch[2], scratch[3])
     if vessel[HEAT] == JACKET:
         head[ENERGY] = head[START_ENERGY] + exchange[nz + n + 2]
     if balanced(vessel):
         T1 = temperature_of(new, T1, vessel, ints, floats, head, scratch[4], scratch[5], scratch[6], scratch[7])
         if T1 < 0.0:
-            return 0
+            return REFUSED
         exchange[nz + n + 1] = T1
     else:
         scratch[6, :] = scratch[2]
@@ -244,17 +249,23 @@ def judge(exchange_pointer, verdict_pointer, context):
         further_change += exchange[nz + n + 2] - exchange[n + 2]
         excused = abs(exchange[2 * nz + n + 2])
     change += further_change
-    noise += further_noise
-    if change <= noise:
-        return 1
-    allowed = noise + excused
-    for i in range(n):
-        allowed += abs(deviation[i]) * abs(error[i])
-    if change <= allowed:
-        return 1
-    verdict[0] = change - allowed
-    head[LARGEST_EXCESS] = max(head[LARGEST_EXCESS], change - allowed)
-    return 0
+    allowed = noise + further_noise
+    if change > allowed:
+        allowed += excused
+        for i in range(n):
+            allowed += abs(deviation[i]) * abs(error[i])
+    if change > allowed:
+        verdict[0] = change - allowed
+        head[LARGEST_EXCESS] = max(head[LARGEST_EXCESS], change - allowed)
+        return REFUSED
+    if c[N_SURFACES] == 0:
+        return STAND
+    table = carray(float64_pointer(c[SURFACES]), (c[N_SURFACES], SURFACE_SIZE))
+    verdict[1] = share_before(table, old, T0, new, T1)
+    if verdict[1] <= 1.0:
+        return CROSSED
+    arm(table, new, T1)
+    return STAND
 
 
 @compiled
