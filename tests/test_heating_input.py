@@ -81,6 +81,25 @@ def test_fault_of_a_jacket(refusals, changes, entry, texts):
     refusals.refused("case.toml", entry, *texts)
 
 
+ASKED = 'file = "run.h5"'
+RUNAWAYS = [
+    row("one", ASKED, 'time_to_maximum_rate_from = "60 °C"', "output.time_to_maximum_rate_from", "'60 °C' is not a list",
+        'such as ["60 °C", "80 °C"]'),
+    row("a time", ASKED, 'time_to_maximum_rate_from = ["60 s"]', "output.time_to_maximum_rate_from[1]", "not of temperature"),
+    row("below zero", ASKED, 'time_to_maximum_rate_from = [400, "-300 °C"]', "output.time_to_maximum_rate_from[2]",
+        "is negative"),
+    row("too hot", ASKED, "time_to_maximum_rate_from = [400, 5000]", "output.time_to_maximum_rate_from[2]",
+        "5000 K is more than 500 K"),
+    row("misspelt", ASKED, "time_to_maximum_rates_from = [400]", "output", "unknown key 'time_to_maximum_rates_from' (nearest:"),
+]
+
+
+@pytest.mark.parametrize("changes, entry, texts", RUNAWAYS)
+def test_fault_of_the_temperatures_of_a_runaway(refusals, changes, entry, texts):
+    refusals.write(case=changed(CASE, *changes))
+    refusals.refused("case.toml", entry, *texts)
+
+
 @pytest.mark.parametrize("value", [None, True, "x", {"a": 1}, [[0, None]], [[0, 1000.0], None], [[True, 1000.0]], [[]],
                                    [[0, 10**400]]])
 @pytest.mark.parametrize("document, key", [(GIVEN, "temperature"), (JACKET, "jacket_temperature")])

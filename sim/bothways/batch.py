@@ -16,6 +16,7 @@ from .milestones import milestones
 from .monitored import Monitored, monitored
 from .recorder import HEAT_COLUMNS, Recorder, potential_of
 from .remarks import remark_at_end, remark_at_start
+from .safety import safety_figures, times_to_maximum_rate
 from .trajectory import Trajectory
 from .vessel import Equations
 
@@ -85,22 +86,25 @@ def _trajectory(case: Case, equations: Equations, columns: dict[str, Any], task:
     statistics = {"method": case.method, "rtol": case.rtol, "atol": case.atol, "status": outcome.status.value,
                   **outcome.counts, **(task.notes() if case.method in OWN_METHODS else {}), "largest_potential_rise": rise}
     m = case.mechanism
+    found = milestones(case, equations, columns) | (times_to_maximum_rate(case) if outcome.status is Status.FINISHED else {})
     required = {name: column for name, column in columns.items() if name not in HEAT_COLUMNS}
     return Trajectory(
         **required, potential_name=name, potential_units=units, species=m.names, molar_mass=m.molar_mass,
         reactions=tuple(str(r.equation) for r in m.reactions), mechanism_name=m.name, mechanism_text=to_toml(m.document),
         case_text=to_toml(case.document), sources=m.sources, statistics=statistics,
-        milestones=milestones(case, equations, columns), program_version=program_version(),
-        complete=outcome.status in (Status.FINISHED, Status.STALLED), reason=outcome.reason, extra=_extra(case, columns, last))
+        milestones=found, program_version=program_version(),
+        complete=outcome.status in (Status.FINISHED, Status.STALLED), reason=outcome.reason,
+        extra=_extra(case, equations, columns, last))
 
 
-def _extra(case: Case, columns: dict[str, Any], last: Verdict) -> dict[str, Any]:
-    """Equilibrium and verdict, and rates and affinities if they were asked for."""
+def _extra(case: Case, equations: Equations, columns: dict[str, Any], last: Verdict) -> dict[str, Any]:
+    """Equilibrium, verdict and figures of safety, and rates and affinities if they were asked for."""
     own = last.target.own
     extra = {"equilibrium_temperature": own.temperature,
              "equilibrium_volume": own.volume, "equilibrium_amount": own.amount, "verdict": f"{last.kind.value}: {last.sentence}"}
     if case.mechanism.phase == GAS:
         extra["equilibrium_pressure"] = own.pressure
+    extra |= safety_figures(case, last.target, equations, columns)
     extra |= {name: columns[name] for name in HEAT_COLUMNS if name in columns}
     if case.rates:
         extra |= rates_along(case.mechanism, columns["amount"], columns["temperature"], columns["volume"])

@@ -24,6 +24,7 @@ from .vessel import HOLDS, Equations
 
 MARGIN_WARN, MARGIN_ERROR = 10.0, 500.0
 """Temperatures so far outside a fit's range [K] are remarked on, or refused."""
+RUNAWAYS = "time_to_maximum_rate_from"
 FOREVER = 1e30
 """The last time [s] of a run to equilibrium that states none."""
 
@@ -37,6 +38,7 @@ class Case:
     atol : mole fraction below which accuracy is not asked [-].
     rates : whether rates and affinities of every reaction go to the file.
     to_equilibrium : whether the run goes on until it has landed at equilibrium, at the latest until `end`.
+    runaway_from : temperatures [K] from which the adiabatic time to maximum rate is asked for.
     transfer : UA of a jacket [W/K]. schedule : the given temperature of the contents, or the jacket's [K].
     """
 
@@ -56,6 +58,7 @@ class Case:
     inert_heat_capacity: float = 0.0
     transfer: float = 0.0
     schedule: Schedule | None = None
+    runaway_from: tuple[float, ...] = ()
     document: Mapping[str, Any] = field(default_factory=dict, repr=False)
     file: object = field(default=None, repr=False, compare=False)
 
@@ -117,7 +120,8 @@ def build_case(document: Mapping[str, Any], file: object = None, mechanism: Mech
     _check_heating(top.table("vessel", {}), mechanism, heating, charge.temperature)
     check_schedule(top.table("vessel", {}), heating, end, to_equilibrium)
     case = Case(mechanism, holds, heating.heat, charge, end, *_solver(top), heating.inertia, *_output(top, file, end),
-                to_equilibrium, inert, heating.transfer, heating.schedule, document=copy_document(document), file=file)
+                to_equilibrium, inert, heating.transfer, heating.schedule, _runaways(top.table("output", {}), mechanism),
+                document=copy_document(document), file=file)
     _check_heat_capacity(top, case)
     return case
 
@@ -208,10 +212,21 @@ def _output(top: Entry, file: object, end: float) -> tuple[Path | None, tuple[fl
     output = top.table("output", {})
     name = output.text("file", None)
     times, rates = _times(output, end), output.flag("rates")
+    output.known.add(RUNAWAYS)
     output.done()
     bundled = file in bundled_cases().values()
     folder = Path(str(file)).parent if file and not bundled else Path()
     return (folder / name if name else None), times, rates
+
+
+def _runaways(output: Entry, mechanism: Mechanism) -> tuple[float, ...]:
+    """The temperatures [K] from which the adiabatic time to maximum rate is asked for."""
+    found = []
+    for k, stated in enumerate(output.items(RUNAWAYS, (), '["60 °C", "80 °C"]'), 1):
+        place = f"{RUNAWAYS}[{k}]"
+        found.append(output.convert(stated, "temperature", place, "positive"))
+        _check_temperature(output, mechanism, found[-1], place)
+    return tuple(dict.fromkeys(found))
 
 
 def _times(output: Entry, end: float) -> tuple[float, ...]:

@@ -44,13 +44,17 @@ class Course:
 
     def between(self, k: int) -> Callable[[float], np.ndarray]:
         """The interpolant, time [s] -> state (n), from step k to k + 1."""
-        start, h = self.times[k], self.times[k + 1] - self.times[k]
-        data = np.array([v for j in (k, k + 1) for v in (self.states[j], h * self.slope(j), h * h * self.curvature_at(j))])
+        start, h, data = self.times[k], self.times[k + 1] - self.times[k], self._data(k)
 
         def state(t: float) -> np.ndarray:
             return _hermite((t - start) / h) @ data
 
         return state
+
+    def _data(self, k: int) -> np.ndarray:
+        """What `_hermite` weighs, (6, n)."""
+        h = self.times[k + 1] - self.times[k]
+        return np.array([v for j in (k, k + 1) for v in (self.states[j], h * self.slope(j), h * h * self.curvature_at(j))])
 
     def first_crossing(self, component: int, level: float) -> float | None:
         """The first time at which a falling component reaches a level."""
@@ -86,6 +90,36 @@ class Course:
         k = max(rates, key=rates.__getitem__)
         start = float(self.slope(0) @ weights)
         return self._turn(k, weights), rates[k] / start if start > 0 else np.inf
+
+    def fastest(self, values: np.ndarray, gradient: Callable[[np.ndarray], np.ndarray]) -> tuple[float, float] | None:
+        """Time at which a quantity of the state rises fastest, and its rate there; None if it never rises.
+
+        values : (nt) of the quantity at the times. gradient : of it by the state, (n) -> (n).
+        """
+        span = np.diff(self.times)
+        means = np.diff(values) / span
+        if not np.max(means) > 0:
+            return None
+        near = np.flatnonzero(means >= 0.5 * np.max(means))  # a step is too short to hide a faster rise elsewhere
+        rates = {int(k): float(gradient(self.states[k]) @ self.slope(int(k))) for k in np.union1d(near, near + 1)}
+        k = max(rates, key=rates.__getitem__)
+        found = [(float(self.times[k]), rates[k])]
+        found += [self._fastest_between(j, gradient) for j in (k - 1, k) if 0 <= j < len(span)]
+        return max(found, key=lambda one: one[1])
+
+    def _fastest_between(self, k: int, gradient: Callable[[np.ndarray], np.ndarray]) -> tuple[float, float]:
+        """The same within one step, by the derivative of the interpolant: golden section (e.g. R.P. Brent, 1973, ch. 5)."""
+        data, h, ratio = self._data(k), self.times[k + 1] - self.times[k], 0.5 * (np.sqrt(5.0) - 1.0)
+
+        def rate(x: float) -> float:
+            return float(gradient(_hermite(x) @ data) @ (_hermite_slope(x) @ data)) / h
+
+        low, high = 0.0, 1.0
+        while high - low > 1e-9:
+            left, right = high - ratio * (high - low), low + ratio * (high - low)
+            low, high = (low, right) if rate(left) > rate(right) else (left, high)
+        x = 0.5 * (low + high)
+        return self._time(k, x), rate(x)
 
     def _turn(self, k: int, weights: np.ndarray) -> float:
         """Where the second derivative of y @ weights changes sign beside step k; the time of k if it does not."""
@@ -135,6 +169,14 @@ def _hermite(x: float) -> np.ndarray:
     y = 1.0 - x
     left = np.array([y**3 * (1 + 3 * x + 6 * x**2), y**3 * x * (1 + 3 * x), 0.5 * y**3 * x**2])
     right = np.array([x**3 * (1 + 3 * y + 6 * y**2), -(x**3) * y * (1 + 3 * y), 0.5 * x**3 * y**2])
+    return np.concatenate([left, right])
+
+
+def _hermite_slope(x: float) -> np.ndarray:
+    """Derivatives of `_hermite` by x."""
+    y = 1.0 - x
+    left = np.array([-30 * x**2 * y**2, y**2 * (1 + 2 * x - 15 * x**2), 0.5 * x * y**2 * (2 - 5 * x)])
+    right = np.array([30 * x**2 * y**2, x**2 * (1 + 2 * y - 15 * y**2), -0.5 * y * x**2 * (2 - 5 * y)])
     return np.concatenate([left, right])
 
 

@@ -107,8 +107,8 @@ def target_of(case: Case) -> Target:
     """Where a case must end."""
     start = _started(case.mechanism, case.charge.amount > 0)
     try:
-        own = _equilibrium(case, start.restricted, "reactions")
-        full = _equilibrium(case, start.restricted, "elements") if start.conserves_more else own
+        own = equilibrium_of(case, start.restricted, "reactions")
+        full = equilibrium_of(case, start.restricted, "elements") if start.conserves_more else own
         return Target(case, own, full, start.running, start.restricted)
     except InputError as err:
         raise InputError(f"no equilibrium: {err.problem}", expected=err.expected, file=case.file, entry="start",
@@ -137,13 +137,17 @@ def _started(mechanism: Mechanism, there: np.ndarray) -> _Started:
     return known[key]
 
 
-def _equilibrium(case: Case, restricted: Mechanism, conserved: str) -> Equilibrium:
+def equilibrium_of(case: Case, restricted: Mechanism, conserved: str, received: float = 0.0) -> Equilibrium:
+    """Where a case ends whose mechanism is `restricted` to what can proceed; received : heat that came from outside [J].
+
+    conserved : "reactions" or "elements", what is held.
+    """
     c = case.charge
     held: dict[str, Any] = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
     temperature = case.held_temperature(case.end)
     if temperature is not None:
         return equilibrium(restricted, c.amount, temperature=temperature, conserved=conserved, **held)
-    energy = Contents(case.mechanism).energy(c.amount, c.temperature, case.holds)
+    energy = Contents(case.mechanism).energy(c.amount, c.temperature, case.holds) + received
     held["internal_energy" if less(case.mechanism, case.holds) else "enthalpy"] = energy
     return equilibrium(restricted, c.amount, conserved=conserved, own_heat_capacity=case.own_heat_capacity,
                        reference_temperature=c.temperature, **held)

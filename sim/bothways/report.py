@@ -7,6 +7,7 @@ import numpy as np
 from .case import Case, charged
 from .endpoint import Kind, Verdict
 from .mechanism.phase import FRACTION, LITRE, PER_LITRE, SOLUTION
+from .safety import TMR
 from .trajectory import Trajectory
 
 NOTABLE_RISE = {"temperature": 50.0, "pressure": 1.2}
@@ -21,13 +22,16 @@ ACTIVITIES = {PER_LITRE: "activities are concentrations over 1 mol/L", FRACTION:
 def summary(case: Case, run: Trajectory, verdict: Verdict, title: str = "") -> str:
     """The summary of a run, a line a fact, about 80 columns wide."""
     sections = [("mechanism", [_mechanism(case)]), ("vessel", [_vessel(case)]), ("charge", [_charge(case)]),
-                ("milestones", _milestones(run)), ("end", _end(run)), ("equilibrium", _equilibrium(verdict)),
+                ("milestones", _milestones(run)),
+                ("safety", _safety(case, run)), ("end", _end(run)), ("equilibrium", _equilibrium(verdict)),
                 ("balances", [_balances(run)]),
                 ("solver", [_solver(run)])]
     lines = [title] if title else []
     for name, content in sections:
+        if name == "safety" and not content:
+            continue
         lines += _section(name, content or ["none: nothing steep, half-converted or peaking by the end"])
-    if notable(run):
+    if notable(run) or case.runaway_from:
         lines += _section("caution", _wrapped(CAUTION))
     return "\n".join(lines)
 
@@ -89,7 +93,7 @@ def _charge(case: Case) -> str:
 
 
 def _milestones(run: Trajectory) -> list[str]:
-    rows = [(name, t) for name, t in run.milestones.items() if not name.startswith("peak")]
+    rows = [(name, t) for name, t in run.milestones.items() if not name.startswith(("peak", TMR.partition("{")[0]))]
     heights = {name.removeprefix("peak mole fraction of "): x for name, x in run.milestones.items()
                if name.startswith("peak mole fraction of ")}
     lines = [f"{name:<34}{time_text(t):>12}" for name, t in rows]
@@ -98,6 +102,32 @@ def _milestones(run: Trajectory) -> list[str]:
     if len(heights) > _SHOWN:
         lines.append(f"and {len(heights) - _SHOWN} smaller peaks, in the file")
     return lines
+
+
+def _safety(case: Case, run: Trajectory) -> list[str]:
+    """Figures of process safety, where a rise is notable or they were asked for."""
+    e = run.extra
+    lines = []
+    if notable(run) and "adiabatic_temperature_rise" in e:
+        rise = float(e["adiabatic_temperature_rise"])
+        lines.append(f"{'adiabatic temperature rise':<34}{rise:>10.5g} K    of the contents alone, "
+                     f"to {rise + run.temperature[0]:.6g} K")
+    if notable(run) and "cooling_failure_temperature" in e:
+        worst = float(e["cooling_failure_temperature"])
+        lines.append(f"{'if the jacket fails at the worst':<34}{worst:>10.6g} K    at equilibrium")
+    for name, factor, unit in (("temperature", 1.0, "K/s"), ("pressure", 1e-5, "bar/s")):
+        if notable(run) and f"largest_{name}_rate" in e:
+            lines.append(f"{f'largest rate of {name} rise':<34}{float(e[f'largest_{name}_rate']) * factor:>10.4g} {unit:<5}"
+                         f"at {time_text(float(e[f'largest_{name}_rate_time']))}")
+    return lines + [_runaway(run, T) for T in case.runaway_from]
+
+
+def _runaway(run: Trajectory, temperature: float) -> str:
+    """A line on the time to maximum rate, adiabatic and without the vessel's heat capacity."""
+    name = TMR.format(temperature)
+    if name not in run.milestones:
+        return f"{name:<34}{'it does not heat up' if run.complete else 'not worked out':>12}"
+    return f"{name:<34}{time_text(run.milestones[name]):>12}   fresh and adiabatic, φ = 1"
 
 
 def _end(run: Trajectory) -> list[str]:

@@ -13,7 +13,8 @@ Value = float | str | dict[str, Any]
 
 KINDS: dict[str, str] = {
     "case.mechanism": "text", "vessel.heat": "text", "vessel.holds": "text", "vessel.volume": "volume",
-    "vessel.thermal_inertia": "number", "start.temperature": "temperature", "start.pressure": "pressure",
+    "vessel.thermal_inertia": "number", "vessel.UA": "heat transfer", "vessel.jacket_temperature": "temperature",
+    "start.temperature": "temperature", "start.pressure": "pressure",
     "start.equivalence_ratio": "number", "start.oxidiser": "table", "until.time": "time", "solver.rtol": "number",
     "solver.atol": "number", "solver.method": "text", **{f"start.{way}": "table" for way in WAYS},
 }
