@@ -117,7 +117,7 @@ def _safety(case: Case, run: Trajectory) -> list[str]:
         lines.append(f"{'if the jacket fails at the worst':<34}{worst:>10.6g} K    at equilibrium")
     for name, factor, unit in (("temperature", 1.0, "K/s"), ("pressure", 1e-5, "bar/s")):
         if notable(run) and f"largest_{name}_rate" in e:
-            lines.append(f"{f'largest rate of {name} rise':<34}{float(e[f'largest_{name}_rate']) * factor:>10.4g} {unit:<5}"
+            lines.append(f"{f'largest rate of {name} rise':<34}{float(e[f'largest_{name}_rate']) * factor:>10.4g} {unit:<5} "
                          f"at {time_text(float(e[f'largest_{name}_rate_time']))}")
     return lines + [_runaway(run, T) for T in case.runaway_from]
 
