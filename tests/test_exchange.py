@@ -3,6 +3,7 @@
 import numpy as np
 import pytest
 
+import solutions
 from bothways import Equations, build_case, build_mechanism, read_mechanism, run
 from bothways.batch import run_and_judge
 from bothways.constants import GAS_CONSTANT as R
@@ -311,3 +312,32 @@ def test_slowest_relaxation_in_a_jacket_is_that_of_J(holds):
                                        jacket=700.0)[0].imag / h
     rates = np.sort(-np.linalg.eigvals(J).real)
     assert target.relaxation_time(own.mole_fraction) == pytest.approx(1.0 / rates[1], rel=1e-8)
+
+
+# ---- solutions
+
+CHARGE = {"A": 1e3, "B": 20.0, "C": 500.0, "D": 20.0, "X+": 20.0, "Q-": 20.0, "W": 2e4}
+
+
+@pytest.mark.parametrize("state", solutions.STATES)
+@pytest.mark.parametrize("heat", ["given temperature", "jacket"])
+def test_solutions_exchange_heat_as_well(heat, state):
+    """Energy of contents and solvent closes, and the entropy produced is that of reactions and of heat conduction."""
+    table = [[0, 300.0], [40, 340.0], [100, 320.0]]
+    vessel = {"given temperature": {"temperature": table}, "jacket": {"UA": 15.0, "jacket_temperature": table}}[heat]
+    case = build_case({"vessel": {"heat": heat, "volume": "2 L", "inert_heat_capacity": 3e3} | vessel, "until": {"time": 100.0},
+                       "start": {"concentration": CHARGE}
+                       | ({"temperature": 300.0} if heat == "jacket" else {}), "solver": {"rtol": 1e-10},
+                       "output": {"rates": True, "also_at": list(np.linspace(0, 100, 2001)[1:-1])}},
+                      mechanism=build_mechanism(solutions.document(state)))
+    result, contents = run(case), Contents(case.mechanism)
+    T = result.temperature
+    energy = contents.energies(result.amount, T, "volume") + 3e3 * (T - 300.0)
+    assert np.max(np.abs(energy - energy[0] - result.extra["heat_received"])) < 1e-11 * np.max(np.abs(energy))
+    assert np.all(np.diff(result.entropy_produced) > -1e-9) and result.entropy_produced[-1] > 0
+    rates, A = result.extra["rate_forward"] - result.extra["rate_reverse"], result.extra["affinity"]
+    produced = result.volume / T * np.sum(np.where(rates == 0, 0.0, rates * np.where(np.isfinite(A), A, 0.0)), axis=1)
+    if heat == "jacket":
+        jacket = result.extra["jacket_temperature"]
+        produced += 15.0 * (jacket - T) * (1.0 / T - 1.0 / jacket)
+    assert result.entropy_produced[-1] == pytest.approx(np.trapezoid(produced, result.time), rel=1e-3)

@@ -162,6 +162,8 @@ def _balances(run: Trajectory) -> str:
     text = f"elements within {np.max(np.abs(run.element_residual)):.1e}"
     if np.any(run.energy_residual):
         text += f", energy within {np.max(np.abs(run.energy_residual)):.1e} in the states of the solver"
+    if run.statistics.get("surfaces_crossed") and float(run.statistics["largest_jump_of_energy"]) > 0:
+        text += f", where fits do not meet it jumps by up to {float(run.statistics['largest_jump_of_energy']):.1e} RT"
     if "heat_received" in run.extra:
         text += f"; heat received {energy_text(float(run.extra['heat_received'][-1]))}"
     return text + f"; entropy produced {run.entropy_produced[-1]:.4g} J/K"
