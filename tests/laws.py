@@ -19,6 +19,7 @@ SERIES = {"T": [350.0, 2500.0], "p": [1e3, "20 bar"], "clamp": True,
           "c": [[4.1, 0.6, -0.06, 0.01], [1.9, 0.25, -0.02, 0.003], [-0.2, 0.07, 0.01, 0.0]]}
 
 LAWS: dict[str, list[dict[str, Any]]] = {
+    "known at a temperature": [{"law": "known at a temperature", "k": 3.0, "at": "60 °C", "Ea": 2e4, "n": 0.4}],
     "Lindemann": [{"law": "Lindemann", **LIMITS, **WITH_PARTNERS}],
     "Troe": [{"law": "Troe", **LIMITS, "F_cent": CENTRE, **WITH_PARTNERS}],
     "Troe, width IUPAC": [{"law": "Troe", **LIMITS, "F_cent": CENTRE, "width": "IUPAC", **WITH_PARTNERS}],

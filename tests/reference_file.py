@@ -198,6 +198,12 @@ def arrhenius_row(law: dict[str, Any], order: int, units: dict[str, LD]) -> list
     return [A, LD(law.get("n", 0)), Ea / R, quantity(law.get("T_ref", 1), LD(1), TEMPERATURE)]
 
 
+def known_at(law: dict[str, Any], units: dict[str, LD]) -> dict[str, Any]:
+    """A and T_ref of the Arrhenius expression that is k at one temperature."""
+    at = quantity(law["at"], LD(1), TEMPERATURE)
+    return {"A": LD(law["k"]) * np.exp(quantity(law.get("Ea", 0), units["energy"], ENERGY) / (R * at)), "T_ref": at}
+
+
 def centre_row(term: dict[str, Any]) -> list[LD]:
     """w0, w3, T***, w1, T*, w2, T** of F_cent = w0 + w3 e^(-T/T***) + w1 e^(-T/T*) + w2 e^(-T**/T).
 
@@ -282,7 +288,9 @@ class Terms:
         self.reaction.append(j)
         if LUMPED & set(term):
             self.lumped.append((len(self.rate), lumped(reaction, term, self.names, self.units)))
-        if law in ("Arrhenius", "Hougen-Watson"):
+        if law == "known at a temperature":
+            term = term | known_at(term, self.units)
+        if law in ("Arrhenius", "Hougen-Watson", "known at a temperature"):
             self._add(term.get("k", term), order + reaction.plus_m, partner=term if reaction.plus_m else None)
         elif reaction.plus_m or law not in [*FALL_OFF, "pressure table", "Chebyshev"]:
             raise NotImplementedError(f"{reaction.equation}: {law}")

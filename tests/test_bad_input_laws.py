@@ -52,6 +52,17 @@ FALL_OFF = [
     law("activated, unknown key", f'law = "activated", {LIMITS}, k_2 = 1', "", "unknown key 'k_2'"),
 ]
 
+KNOWN = [
+    law("no k", 'law = "known at a temperature", at = 300', "", "the key 'k' is missing"),
+    law("no temperature", 'law = "known at a temperature", k = 1', "", "the key 'at' is missing"),
+    law("k zero", 'law = "known at a temperature", k = 0, at = 300', ".k", "0 is zero"),
+    law("at negative", 'law = "known at a temperature", k = 1, at = -5', ".at", "-5 is negative"),
+    law("at in another kind of unit", 'law = "known at a temperature", k = 1, at = "5 bar"', ".at", "bar is a unit of pressure"),
+    law("Ea beyond reason", 'law = "known at a temperature", k = 1, at = 300, Ea = 9e3', "", "Ea/RT = 3608 at 300 K",
+        "within ±400"),
+    law("A of another law", 'law = "known at a temperature", k = 1, at = 300, A = 2', "", "unknown key 'A'"),
+]
+
 ROW = "{ p = 1e5, A = 5e13, n = 0.3 }"
 WINDOW = 'law = "Chebyshev", T = [300, 2500], p = ["0.1 bar", "100 bar"]'
 PRESSURE = [
@@ -89,7 +100,7 @@ PRESSURE = [
 ]
 
 
-@pytest.mark.parametrize("keys, entry, texts", [*FALL_OFF, *PRESSURE])
+@pytest.mark.parametrize("keys, entry, texts", [*FALL_OFF, *PRESSURE, *KNOWN])
 def test_law(refusals: Refusals, keys: str, entry: str, texts: tuple) -> None:
     refusals.write(changed(MECHANISM, (TROE, f"forward = {{ {keys} }}\n")))
     refusals.refused("small.toml", entry, *texts)

@@ -127,6 +127,15 @@ def test_whether_a_reaction_runs_without_its_partner(name):
 # ---- by hand
 
 
+def test_known_at_a_temperature_by_hand():
+    """k itself there; n-butane's 31.1 per hour at 360 K with 65.7 kJ/mol (H.S. Fogler, test_butane.py) at 330 K."""
+    law = law_of({"law": "known at a temperature", "k": 31.1, "at": 360.0, "Ea": "65.7 kJ/mol"}, units=["h"])
+    k = law_of({"law": "known at a temperature", "k": 2.0, "at": "25 °C", "n": 1.5})
+    assert law.k(360.0) == pytest.approx(31.1 / 3600, rel=1e-14)
+    assert law.k(330.0) == pytest.approx(31.1 / 3600 * np.exp(65700 / R * (1 / 360 - 1 / 330)), rel=1e-13)
+    assert k.k(596.3) == pytest.approx(2.0 * 2**1.5, rel=1e-14)
+
+
 def test_sri_by_hand():
     """At P_r = 1 X is 1: F = d (a e^(-b/T) + e^(-T/c)) T^e; at P_r = 10 the bracket's square root."""
     law = law_of({"law": "SRI", "k_inf": {"A": 10.0}, "k_0": {"A": 2.0}, "F": {"a": 0.5, "b": 300.0, "c": 600.0}})

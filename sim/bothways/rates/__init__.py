@@ -5,13 +5,13 @@ read(entry, context), which returns a frozen object after `law.Law`; LUMPED wher
 """
 
 from ..entry import Entry
-from . import activated, arrhenius, chebyshev, fall_off, hougen_watson, pressure_table, sri
+from . import activated, arrhenius, chebyshev, fall_off, hougen_watson, known_rate, pressure_table, sri
 from .arrhenius import Arrhenius
 from .fall_off import FallOffLaw
 from .law import IN_EQUATION, OWN_PARTNER, PRESSURE, Fault, Law, LawContext
 
 _LAWS = {law.NAME: law for law in (arrhenius, fall_off.Lindemann, fall_off.Troe, sri, activated, pressure_table, chebyshev,
-                                   hougen_watson)}
+                                   hougen_watson, known_rate)}
 
 
 def read_law(entry: Entry, context: LawContext) -> Law:
