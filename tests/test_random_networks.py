@@ -1,0 +1,82 @@
+"""Random networks to their equilibria: they land, or say why not; nothing is wrong in silence. Failures name their seed.
+
+What double precision resolves decides: an entry of J sums fast and slow rates, so that a slow one drowns where the time
+scales of a network lie some sixteen decades apart.
+"""
+
+import warnings
+from typing import Any
+
+import numpy as np
+import pytest
+
+import bothways.integrate.compiled_methods as driver
+from bothways import Remark
+from bothways.batch import run_and_judge
+from bothways.endpoint import Kind, Verdict
+from bothways.integrate import Status
+from networks import CLOSURES, network
+
+ISOTHERMAL = [closure for closure in CLOSURES if closure[1] == "isothermal"]
+AT_REST = (Kind.LANDED, Kind.APART, Kind.CANNOT_START)
+
+
+def ended(seed: int, *more: Any) -> tuple[str, Verdict]:
+    """What is wrong with the run of a seed, if anything; and its verdict."""
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore", Remark)
+        result, last = run_and_judge(network(seed, *more))
+    place = f"seed {seed} {more}: "
+    if np.max(np.abs(result.element_residual)) > 1e-13:
+        return f"{place}elements {np.max(np.abs(result.element_residual)):.1e}", last
+    fall = result.potential[0] - np.min(result.potential)
+    if np.max(np.diff(result.potential), initial=0.0) > 1e-6 * fall + 1e-13 * np.max(np.abs(result.potential)):
+        return f"{place}the potential rose by {np.max(np.diff(result.potential)):.1e} of {fall:.1e}", last
+    if last.kind in (Kind.LANDED, Kind.APART) and last.largest_deviation > 1e-6:
+        return f"{place}{last.kind} at {last.largest_deviation:.1e}", last
+    if last.kind not in AT_REST and not _told(result, last):
+        return f"{place}{last.sentence} (silently: {result.statistics['status']})", last
+    return "", last
+
+
+def _told(result: Any, last: Verdict) -> bool:
+    """Whether a run that did not land says so: not yet, and that steps ran out or round-off stopped it."""
+    stopped = result.statistics["status"] == Status.STALLED.value or not result.complete
+    return last.kind is Kind.NOT_YET and stopped and "instead of" in last.sentence
+
+
+def test_gentle_networks_all_land() -> None:
+    """Isothermal, rate constants over 6 decades, g/RT over ±2: every one, whatever its size."""
+    faults = []
+    for seed in range(120):
+        fault, last = ended(seed, 6.0, 2.0, ISOTHERMAL[seed % 2])
+        if fault or last.kind not in AT_REST:
+            faults.append(fault or f"seed {seed}: {last.sentence}")
+    assert not faults, "\n".join(faults)
+
+
+def census(seeds: range, decades: float, spread: float) -> tuple[list[str], list[int]]:
+    """Faults, and the seeds that ended elsewhere than at rest."""
+    faults, short = [], []
+    for seed in seeds:
+        fault, last = ended(seed, decades, spread)
+        faults += [fault] if fault else []
+        short += [seed] if last.kind not in AT_REST else []
+    return faults, short
+
+
+def test_networks_over_20_decades_land_or_say_so(monkeypatch: pytest.MonkeyPatch) -> None:
+    """All four closures; a limit of 2000 steps stands in for patience. A guard: not much more than half may fail to land."""
+    monkeypatch.setattr(driver, "MOST_STEPS_IF_ASKED", 2000)
+    faults, short = census(range(60), 20.0, 4.0)
+    assert not faults, "\n".join(faults)
+    assert len(short) <= 36, f"not landed: {short}"
+
+
+@pytest.mark.slow
+@pytest.mark.parametrize("decades", [20.0, 30.0])
+def test_2000_networks_land_or_say_so(decades: float) -> None:
+    """None lands wrong in silence; those that run out of steps or are stopped by round-off are listed."""
+    faults, short = census(range(2000), decades, 4.0)
+    print(f"{decades:g} decades: {len(short)} of 2000 did not land: {short}")
+    assert not faults, "\n".join(faults)
