@@ -76,6 +76,7 @@ def test_a_named_partner_counts_as_one() -> None:
     [row] = found("faster than collisions", lambda d: add(d, "2 O + O2 ⇌ 2 O2", arrhenius(1e20)))
     limit = hard_limit(3.05e-10, (15.999e-3, 15.999e-3), 106.7, 300.0, True)
     assert row.decades == pytest.approx(np.log10(1e8 * 1e7 / (R * 300.0) / limit), abs=1e-3) and row.pressure == 1e7
+    assert "low pressure" in row.likely
     assert found("faster than collisions", lambda d: add(d, "2 O + O2 ⇌ 2 O2", arrhenius(1e15))) == []
 
 
@@ -102,6 +103,7 @@ def test_recombination_limit() -> None:
         return lambda d: forward(d, "H + O2 ⇌ HO2")["k_inf"].update(A=4.65084e12 * factor)
     [row] = found("recombination faster than collisions", stated(1e3))
     assert row.text.startswith("forward k_inf of H + O2") and row.severity == ERROR
+    assert row.text.endswith("k itself stays below it at the working pressures")
     assert found("recombination faster than collisions", stated(1.0)) == []
 
     def derived(Ea: float) -> Any:

@@ -90,7 +90,8 @@ def audit(mechanism: Mechanism, temperatures: tuple[float, float] | None = None,
     with np.errstate(over="ignore", under="ignore", invalid="ignore"):
         rows = [finding for check in CHECKS for finding in check.find(survey)]
     rows = with_thermochemistry(rows, survey, suspects_of(rows))
-    return Audit(survey, tuple(sorted(rows, key=lambda finding: finding.order)))
+    place = {check.NAME: k for k, check in enumerate(CHECKS)}  # causes stand before what follows from them
+    return Audit(survey, tuple(sorted(rows, key=lambda finding: (*finding.order, place[finding.kind]))))
 
 
 def _survey(mechanism: Mechanism, temperatures: tuple[float, float] | None, pressures: Sequence[float] | None) -> Survey:

@@ -60,9 +60,9 @@ class Finding:
         return replace(self, severity=SEVERITIES[worst])
 
     @property
-    def order(self) -> tuple[int, float, str]:
+    def order(self) -> tuple[int, float]:
         """What rows are sorted by: severity, then size."""
-        return SEVERITIES.index(self.severity), -self.decades if self.decades == self.decades else 0.0, self.kind
+        return SEVERITIES.index(self.severity), -round(self.decades, 6) if self.decades == self.decades else 0.0
 
 
 FIELDS = tuple(f.name for f in fields(Finding))

@@ -12,7 +12,7 @@ import numpy as np
 
 from .. import balance
 from ..constants import GAS_CONSTANT as R
-from ..mechanism.model import Mechanism, Reaction
+from ..mechanism.model import Mechanism, Reaction, Species
 from ..mechanism.phase import FRACTION, GAS, standard_concentration
 from ..rates.law import Broadening, Curve, Expression, Law
 from ..thermo.polynomial import cp_h_s_of, extended
@@ -40,6 +40,10 @@ class Survey:
     def reaction_place(self, j: int) -> str:
         """Where reaction j stands in the file, as errors name it."""
         return f"reaction {j + 1} '{self.mechanism.reactions[j].equation}'"
+
+    def has_own_data(self, species: Species) -> bool:
+        """Whether enthalpy and entropy of a species are data of its own, not made from equilibria that reactions state."""
+        return not set(self.mechanism.document["species"][species.name].get("potential", {})) <= {"form", "cp"}
 
     def term_place(self, j: int, k: int) -> str:
         """Where term k of reaction j stands in the file."""

@@ -33,8 +33,8 @@ def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     parser.add_argument("--rows", metavar="FILE", type=Path, help="write all findings to FILE (.csv or .h5)")
     parser.add_argument("--plot", metavar="FILE", type=Path, help="draw decades above the collision rate, published against "
                         "derived reverse constants, and jumps of K (PNG, SVG or PDF)")
-    parser.add_argument("--repair", metavar="OUT.toml", type=Path, help="write a copy with range joins closed, nothing else "
-                        "touched, and list each change")
+    parser.add_argument("--repair", metavar="OUT.toml", type=Path, help="write a copy with range joins and cycles of stated "
+                        "equilibria closed, nothing else touched, and list each change")
     parser.add_argument("--replace", action="store_true", help="overwrite files that exist")
     parser.set_defaults(act=act)
 
@@ -42,7 +42,7 @@ def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
 def act(chosen: argparse.Namespace) -> int:
     """Carries out the verb."""
     _check_files(chosen)
-    mechanism = read_mechanism(chosen.mechanism)
+    mechanism = read_mechanism(chosen.mechanism, lenient=True)
     for path in filter(None, (chosen.rows, chosen.plot, chosen.repair)):
         spare(path, str(mechanism.file))
     found = audit(mechanism, _range(chosen.range), _pressures(chosen.pressures))

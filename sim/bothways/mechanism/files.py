@@ -35,13 +35,13 @@ def bundled_cases() -> dict[str, Path]:
     return {path.stem: path for path in sorted((bundled_folder() / "cases").glob("*.toml"))}
 
 
-def read_mechanism(name: str | Path) -> Mechanism:
-    """The mechanism in a file, or a bundled one by its name.
+def read_mechanism(name: str | Path, lenient: bool = False) -> Mechanism:
+    """The mechanism in a file, or a bundled one by its name; `lenient` as for `build`.
 
     Raises InputError: no such file or name (with the nearest), and every fault that `build` finds.
     """
     path = mechanism_path(name)
-    return build(read_toml(path), path)
+    return build(read_toml(path), path, lenient)
 
 
 def mechanism_path(name: str | Path, folder: Path = Path()) -> Path:

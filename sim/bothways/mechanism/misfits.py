@@ -6,6 +6,7 @@ import numpy as np
 
 from ..constants import GAS_CONSTANT as R
 from ..entry import Entry
+from ..errors import InputError
 from .cycles import Cycle, least_squares, suspects, worst_cycle
 
 if TYPE_CHECKING:
@@ -18,13 +19,13 @@ _NIL = 1e-9
 def refuse_misfits(top: Entry, system: "System") -> None:
     """An InputError if ln K, ΔH or ΔCp does not close round some cycle, within the uncertainties."""
     for k in range(3):
-        nu, values, allowed = _part(system, k)
+        nu, values, allowed = part(system, k)
         cycle = worst_cycle(nu, values, allowed) if values.size else None
         if cycle is not None:
-            raise _error(top, system, k, cycle)
+            raise misfit_error(top, system, k, cycle)
 
 
-def _part(system: "System", k: int) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+def part(system: "System", k: int) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     """Stoichiometric numbers of what is open, values at T₀ and what is allowed, of ΔG/RT₀, ΔH/RT₀ or ΔCp/R."""
     values, nu = system.at_one_temperature[k], system.nu_open
     if k == 2:
@@ -33,7 +34,8 @@ def _part(system: "System", k: int) -> tuple[np.ndarray, np.ndarray, np.ndarray]
     return nu, values, system.allowed[k]
 
 
-def _error(top: Entry, system: "System", k: int, cycle: Cycle) -> Exception:
+def misfit_error(top: Entry, system: "System", k: int, cycle: Cycle) -> InputError:
+    """What a cycle that does not close is told as: of ln K (k = 0), ΔH (1) or ΔCp (2)."""
     through = ", ".join(f"{'' if abs(c) == 1 else f'{abs(c)} times '}{'forward' if c > 0 else 'back'} through "
                         f"'{system.reactions[j][1].equation}'" for j, c in _steps(cycle))
     numbers = ", ".join(str(system.reactions[j][0]) for j, _ in _steps(cycle))
@@ -58,15 +60,20 @@ def _steps(cycle: Cycle) -> list[tuple[int, int]]:
 
 def _remedy(system: "System", k: int, cycle: Cycle) -> str:
     """The smallest repair, and which single reaction could be the wrong one."""
-    y = least_squares(system.design, system.right, system.spread)
-    changes = (system.design @ y - system.right).reshape(3, -1)
+    changes = smallest_repair(system)
     texts = [_change(system, k, j, changes[k, j]) for j in np.argsort(-np.abs(changes[k]))[:_SHOWN] if abs(changes[k, j]) > _NIL]
     remedy = "the smallest repair: " + ", ".join(texts)
-    single = suspects(*_part(system, k), cycle)
+    single = suspects(*part(system, k), cycle)
     if 0 < len(single) < len(cycle.reactions):
         names = " or ".join(f"'{system.reactions[j][1].equation}'" for j in single)
         remedy += f"; left to the others, {names} alone would close all cycles"
     return remedy
+
+
+def smallest_repair(system: "System") -> np.ndarray:
+    """The changes of ln K, ΔH/RT₀ and ΔCp/R, (3, S), that close all cycles, least in terms of the uncertainties."""
+    y = least_squares(system.design, system.right, system.spread)
+    return (system.design @ y - system.right).reshape(3, -1)
 
 
 def _change(system: "System", k: int, j: int, change: float) -> str:

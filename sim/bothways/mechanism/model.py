@@ -3,7 +3,7 @@
 from collections.abc import Mapping
 from dataclasses import dataclass, field
 from functools import cached_property
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
@@ -14,6 +14,9 @@ from ..thermo.polynomial import Shift, closed
 from .equation import Equation
 from .orders import Orders
 from .stated import StatedEquilibrium
+
+if TYPE_CHECKING:
+    from .stated_equilibria import System
 
 
 @dataclass(frozen=True)
@@ -101,7 +104,7 @@ class Mechanism:
 
     standard_pressure : [Pa] of a gas, NaN of a solution. standard_state : of a solution, "1 mol/L" or "mole fraction".
     notes : what was changed for stated equilibria to close their cycles. undetermined : (m, N) combinations of species whose
-        potential nothing stated fixes; no reaction changes their amount.
+        potential nothing stated fixes; no reaction changes their amount. equilibria : what they were resolved by, if any.
     """
 
     name: str
@@ -117,6 +120,7 @@ class Mechanism:
     standard_state: str = ""
     notes: tuple[str, ...] = ()
     undetermined: tuple[tuple[int, ...], ...] = ()
+    equilibria: "System | None" = field(default=None, repr=False, compare=False)
 
     @cached_property
     def names(self) -> tuple[str, ...]:

@@ -24,8 +24,11 @@ _LEAST_HEAT_CAPACITY = {GAS: 1.0, SOLUTION: -LARGEST}
 negative, and the whole charge's must be positive (case.py)."""
 
 
-def build(document: Mapping[str, Any], file: object = None) -> Mechanism:
-    """The mechanism that a document states; raises InputError naming file and entry at the first fault."""
+def build(document: Mapping[str, Any], file: object = None, lenient: bool = False) -> Mechanism:
+    """The mechanism that a document states; raises InputError naming file and entry at the first fault.
+
+    lenient : for audits, take stated equilibria that contradict one another, adjusted by least squares.
+    """
     top = Entry(document, "", file)
     if "mechanism" not in top.data and "case" in top.data:
         raise top.error("this is a case", expected="a mechanism", remedy="'bothways run' runs a case")
@@ -41,9 +44,9 @@ def build(document: Mapping[str, Any], file: object = None) -> Mechanism:
     reactions = read_reactions(top, units, species)
     if phase == SOLUTION:
         _refuse_partners(top, reactions)
-    found = resolve(top, species, reactions, standard, joins)
+    found = resolve(top, species, reactions, standard, joins, lenient)
     return Mechanism(name, phase, standard, joins, sources, masses, found.species, reactions, copy_document(document), file,
-                     state, found.notes, found.undetermined)
+                     state, found.notes, found.undetermined, found.system)
 
 
 def _head(top: Entry) -> Entry:

@@ -29,16 +29,20 @@ _TOLD = 1e-3
 
 @dataclass(frozen=True)
 class Resolved:
-    """The species with potentials; what was changed to close cycles, as text; combinations that nothing fixes, (m, N)."""
+    """The species with potentials; what was changed to close cycles, as text; combinations that nothing fixes, (m, N); the
+    system that was solved, if any."""
 
     species: tuple[Species, ...]
     notes: tuple[str, ...] = ()
     undetermined: tuple[tuple[int, ...], ...] = ()
+    system: "System | None" = None
 
 
-def resolve(top: Entry, species: tuple[Species, ...], reactions: Sequence[Reaction], pressure: float, joins: str) -> Resolved:
+def resolve(top: Entry, species: tuple[Species, ...], reactions: Sequence[Reaction], pressure: float, joins: str,
+            lenient: bool = False) -> Resolved:
     """Gives potentials to the species that state none; pressure [Pa] is the mechanism's standard one (NaN of a solution).
 
+    lenient : adjust by least squares what does not close within the uncertainties either, instead of refusing it.
     Raises InputError: cycles that do not close, reactions whose K follows from nothing.
     """
     open_places = [i for i, s in enumerate(species) if isinstance(s.potential, Unstated)]
@@ -47,12 +51,13 @@ def resolve(top: Entry, species: tuple[Species, ...], reactions: Sequence[Reacti
         return Resolved(species)
     free = null_space(system.nu[open_places].T) if open_places else np.zeros((0, 0), dtype=np.int64)
     _check_determined(top, species, reactions, open_places, free)
-    refuse_misfits(top, system)
+    if not lenient:
+        refuse_misfits(top, system)
     y = least_squares(system.design, system.right, system.spread)
     whole = np.zeros((len(free), len(species)), dtype=np.int64)
     whole[:, open_places] = free
     return Resolved(_with_potentials(system, y), _notes(system, system.design @ y - system.right),
-                    tuple(map(tuple, whole.tolist())))
+                    tuple(map(tuple, whole.tolist())), system)
 
 
 class System:

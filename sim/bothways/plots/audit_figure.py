@@ -28,9 +28,9 @@ _COLOURS = {FORWARD: style.PALETTE["sky blue"], REVERSE: style.PALETTE["vermilio
 
 
 @style.styled
-def audit_figure(audit: Audit, width: str = "page") -> Figure:
-    """The figure; width: "page" (180 mm) or "column" (85 mm)."""
-    size = style.size_named(width)
+def audit_figure(audit: Audit) -> Figure:
+    """The figure, for a page (180 mm)."""
+    size = style.size_named("page")
     sheet = empty_sheet(size, [h * size.scale for h in _HEIGHTS], 1, _margins(size), _words(audit))
     (top,), (bottom,) = sheet.axes
     _lift(sheet, top)
@@ -41,10 +41,10 @@ def audit_figure(audit: Audit, width: str = "page") -> Figure:
     return sheet.figure
 
 
-def save_audit_figure(audit: Audit, path: StrPath, replace: bool = False, width: str = "page") -> None:
+def save_audit_figure(audit: Audit, path: StrPath, replace: bool = False) -> None:
     """Draws the figure and writes it as PNG, SVG or PDF, by the suffix."""
     check_picture(path, replace)
-    save(audit_figure(audit, width), path, replace)
+    save(audit_figure(audit), path, replace)
 
 
 def _margins(size: Size) -> Margins:
@@ -92,7 +92,7 @@ def _collisions(axes: Axes, audit: Audit, size: Size) -> None:
     axes.set_xlabel("largest decades above the collision rate")
     axes.set_xlim(LOWEST, top)
     _count_axis(axes)
-    axes.legend(loc="upper left", fontsize=size.small, frameon=False)
+    axes.legend(loc="best", fontsize=size.small, frameon=False)
 
 
 def _count_axis(axes: Axes) -> None:

@@ -10,6 +10,7 @@ from . import (
     collision_limit,
     conserved,
     copied_data,
+    cycles,
     entropy,
     fit_range,
     formation_enthalpy,
@@ -31,7 +32,7 @@ from . import (
 CHECKS: Sequence[Check] = (
     collision_limit, recombination_limit, unimolecular_limit, published_reverse, published_one_way,
     joins, jumps_of_K, heat_capacity, entropy, formation_enthalpy, fit_range, copied_data,
-    atoms_balance, untouched, conserved, both_ways_round,
+    atoms_balance, untouched, conserved, both_ways_round, cycles,
     broadening, limits_crossing, pressure_table, series_window, negative_sum, prefactor)
 """In the order in which the report explains them."""
 

@@ -10,8 +10,8 @@ from ..finding import NONE, Finding, factor_text, severity_of, stretch_text
 from ..survey import Survey
 
 NAME = "faster than collisions"
-SOURCE = ("D. Chen, K. Wang, H. Wang, Combust. Flame 186 (2017) 208, doi:10.1016/j.combustflame.2017.08.005, for the test "
-          "of both directions; audit/collisions.py and audit/diameters.py for the limit")
+SOURCE = ("D. Chen, K. Wang, H. Wang, Combust. Flame 186 (2017) 208, for the test of both directions; audit/collisions.py "
+          "and audit/diameters.py for the limit")
 SEVERITY = "by decades above the limit: error from a factor of 10, warning from 2, notice below"
 EXPLANATION = ("Two molecules cannot react more often than they meet. A derived reverse constant above that limit means "
                "that the forward rate and the equilibrium constant do not fit together: read the 'likely' column, and where "
@@ -20,6 +20,8 @@ EXPLANATION = ("Two molecules cannot react more often than they meet. A derived 
 
 SMALLEST = 1e-9
 """Decades above a limit that are more than round-off [-]."""
+
+_OF_PRESSURE = ", or a law for low pressure used at too high a one"
 
 
 def find(survey: Survey) -> Iterator[Finding]:
@@ -45,4 +47,4 @@ def row(survey: Survey, pair: Encounter, excess: np.ndarray, log_k: np.ndarray, 
     return Finding(name, severity_of(decades), survey.reaction_place(pair.j), text, decades, float(T[k]),
                    p if of_pressure else NONE, float(where[0]), float(where[-1]),
                    float(np.exp(log_k[k, q])), "m3 mol-1 s-1", mending(survey, pair, decades, int(k)),
-                   slope_text(survey, pair, log_k[:, q], int(k)), pair.j + 1)
+                   slope_text(survey, pair, log_k[:, q], int(k)) + _OF_PRESSURE * of_pressure, pair.j + 1)

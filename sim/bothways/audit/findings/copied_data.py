@@ -17,7 +17,7 @@ EXPLANATION = ("Identical coefficients were copied, as a stand-in or by mistake.
 def find(survey: Survey) -> Iterator[Finding]:
     """One row for each group of species that share their coefficients."""
     groups: dict[tuple, list[Species]] = defaultdict(list)
-    for species in survey.mechanism.species:
+    for species in filter(survey.has_own_data, survey.mechanism.species):
         ranges = species.potential.ranges()
         groups[ranges.boundaries.tobytes(), ranges.rows.tobytes(), species.potential.modes()].append(species)
     for same in groups.values():

@@ -40,7 +40,7 @@ def translational(temperature: np.ndarray, molar_mass: float, pressure: float) -
 
 def _is_absolute(survey: Survey, species: Species) -> bool:
     """Whether s counts from zero: not where a Gibbs energy of formation was stated."""
-    return "G" not in survey.mechanism.document["species"][species.name]["potential"]
+    return survey.has_own_data(species) and "G" not in survey.mechanism.document["species"][species.name]["potential"]
 
 
 def _row(species: Species, T: np.ndarray, s: np.ndarray, least: np.ndarray, short: np.ndarray) -> Finding:

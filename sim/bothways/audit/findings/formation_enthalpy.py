@@ -26,7 +26,7 @@ def find(survey: Survey) -> Iterator[Finding]:
     """One row for each species that the table has and that differs from it."""
     T = float(np.clip(_USUAL, survey.temperatures[0], survey.temperatures[-1]))
     for species in survey.mechanism.species if survey.is_gas else ():
-        known = reference(species)
+        known = reference(species) if survey.has_own_data(species) else None
         if known is not None and species.fit_range[0] < STANDARD + 50.0:
             difference = stated(species) - known[0]
             if abs(difference) > _SMALLEST + known[1]:

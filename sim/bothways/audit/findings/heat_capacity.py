@@ -32,7 +32,7 @@ def find(survey: Survey) -> Iterator[Finding]:
     for k, species in enumerate(survey.mechanism.species if survey.is_gas else ()):
         T, own = survey.temperatures, cp[:, k]
         inside = (T >= species.fit_range[0] - 1.0) & (T <= species.fit_range[1] + 1.0)
-        if np.any(inside) and set(species.composition) <= set(ATOMIC_MASS):
+        if np.any(inside) and set(species.composition) <= set(ATOMIC_MASS) and survey.has_own_data(species):
             yield from _rows(species, T[inside], own[inside])
 
 

@@ -1,11 +1,12 @@
 """High-pressure limits of associations above the collision rate, stated or derived from the dissociation's."""
 
 from collections.abc import Iterator
+from dataclasses import replace
 
 import numpy as np
 
 from ..encounters import decades_above, paired
-from ..finding import Finding
+from ..finding import Finding, factor_text
 from ..survey import Survey
 from . import collision_limit
 
@@ -19,9 +20,25 @@ EXPLANATION = ("The high-pressure limit of an association is the rate at which t
 
 
 def find(survey: Survey) -> Iterator[Finding]:
-    """One row for each association in fall-off whose k_inf exceeds the limit, whichever way it is written."""
+    """One row for each association in fall-off whose k_inf, or k at a working pressure, exceeds the limit, whichever way it is
+    written."""
     pairs = paired(survey, fall_off=True)
-    if pairs:
-        excess, log_k = decades_above(survey, pairs, bare=True)
-        for n in np.flatnonzero(np.max(excess, axis=(0, 1)) > collision_limit.SMALLEST):
-            yield collision_limit.row(survey, pairs[n], excess[:, :1, n], log_k[:, :1, n], NAME, "k_inf")
+    if not pairs:
+        return
+    excess, log_k = decades_above(survey, pairs, bare=True)
+    own, own_log_k = decades_above(survey, pairs, bare=False)
+    for n, pair in enumerate(pairs):
+        if np.max(excess[:, :, n]) > collision_limit.SMALLEST:
+            row = collision_limit.row(survey, pair, excess[:, :1, n], log_k[:, :1, n], NAME, "k_inf")
+            yield replace(row, text=f"{row.text}; {_at_pressures(survey, own[:, :, n])}")
+        elif np.max(own[:, :, n]) > collision_limit.SMALLEST:
+            yield collision_limit.row(survey, pair, own[:, :, n], own_log_k[:, :, n], NAME, "k")
+
+
+def _at_pressures(survey: Survey, excess: np.ndarray) -> str:
+    """What k itself does at the working pressures, (nT, np) decades above the limit."""
+    top = float(np.max(excess))
+    if top <= 0:
+        return "k itself stays below it at the working pressures"
+    q = int(np.argmax(np.max(excess, axis=0)))
+    return f"k itself exceeds it by {factor_text(top)} at {survey.pressures[q] / 1e5:.4g} bar"
