@@ -44,10 +44,10 @@ from .stepping import (
     solve_either,
 )
 
-ORDER, DEPTH, HELD, RISING, FIXED, WEIGHT, FACTORED, J_AGE, RATE, FAILED = range(OWN_MEMORY, OWN_MEMORY + 10)
+ORDER, DEPTH, HELD, RISING, FIXED, WEIGHT, FACTORED, J_AGE, RATE, FAILED, CEILING = range(OWN_MEMORY, OWN_MEMORY + 11)
 """Order; differences known; steps since step or order changed; whether both still rise from the start; whether both are
-fixed (for tests); α/h of the factors, and which these are; steps since J; rate of convergence; failures of this step."""
-MEMORY_SIZE = OWN_MEMORY + 10
+fixed (for tests); α/h of the factors, and which these are; steps since J; rate of convergence; failures of this step; longest step for now."""
+MEMORY_SIZE = OWN_MEMORY + 11
 NONE, SPARSE, PIVOTED = 0.0, 1.0, 2.0
 PREDICTED, SLOPE, POINT, CORRECTION, RIGHT, DELTA, INVERSE, PERMUTED = range(8)
 VECTORS = 8
@@ -62,7 +62,7 @@ _MOST_ITERATIONS = 4
 _DRIFT = 0.25  # relative change of α/h since the factorisation that asks for a new one
 _OLD = 25.0  # steps that a Jacobian serves
 _BIAS, _BIAS_UP = 6.0, 8.0  # errors are taken as so much larger when the next step is chosen
-_WORTH, _SHORTEN, _GROW, _GROW_AT_START = 1.3, 0.85, 10.0, 2.0
+_WORTH, _SHORTEN, _GROW, _GROW_AT_START, _CEILING_RISES = 1.3, 0.85, 10.0, 2.0, 1.05
 
 
 @compiled
@@ -166,9 +166,13 @@ def _implicit(f, J, context, rows, starts, order, start, column, diagonal, targe
 
 @compiled
 def _shorten(h, memory, counts):
-    """A step refused whose error says nothing of a better length."""
+    """A step refused whose error says nothing of a better length.
+
+    For a while none of that length is tried: near equilibrium round-off in f times h, not the error, sets the limit.
+    """
     counts[REJECTED] += 1
     memory[FAILED] += 1.0
+    memory[CEILING] = 0.5 * h
     memory[STEP], memory[HELD], memory[RISING] = 0.25 * h, 0.0, 0.0
 
 
@@ -202,7 +206,7 @@ def _choose(error, lower, higher, h, memory):
     memory[STEP] = h
     if memory[RISING] > 0.0 and best > 1.0:
         memory[ORDER] = min(k + 1.0, MOST_ORDER)
-        memory[STEP] = h * min(_GROW_AT_START, best)
+        memory[STEP] = min(h * min(_GROW_AT_START, best), memory[CEILING])
         return
     memory[RISING] = 0.0
     settled = memory[HELD] > k
@@ -219,7 +223,7 @@ def _choose(error, lower, higher, h, memory):
     if _SHORTEN < best < _WORTH:
         memory[HELD] = k  # asks again after the next step
         return
-    memory[STEP] = h * max(0.5, min(best, _GROW))
+    memory[STEP] = min(h * max(0.5, min(best, _GROW)), memory[CEILING])
     memory[ORDER], memory[HELD] = chosen, 0.0
 
 
@@ -301,6 +305,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
         memory[J_AGE] += 1.0
         memory[HELD] += 1.0
         memory[FAILED] = 0.0
+        memory[CEILING] *= _CEILING_RISES
         if h >= 0.9999 * memory[STEP] and memory[FIXED] == 0.0:
             _choose(error, lower, higher, h, memory)
         times[written] = memory[TIME]

@@ -133,6 +133,7 @@ class BDFStepper(Stepper):
     def begin(self) -> bool:
         """As every method, at order 1."""
         sound = super().begin()
+        self.memory[bdf.CEILING] = np.inf
         bdf.restart(self.z, self.slope, self.memory, self.history, self.spacing)
         return sound
 
