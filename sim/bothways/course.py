@@ -1,14 +1,23 @@
-"""A course between accepted steps: quintic Hermite interpolation from exact first and second derivatives.
+"""A course between accepted steps: quintic Hermite interpolation from first and second derivatives.
 
-Whatever solver made the states, y' = f(y) and y'' = J f are known exactly at each, so the interpolant's error is
-of sixth order in the step (e.g. E. Hairer, S.P. Nørsett, G. Wanner, Solving Ordinary Differential Equations I,
-2nd ed., 1993, II.6).
+Whatever solver made the states, y' = f(y) and y'' = J f are known at each, so the interpolant's error is of sixth
+order in the step (e.g. E. Hairer, S.P. Nørsett, G. Wanner, Solving Ordinary Differential Equations I, 2nd ed., 1993,
+II.6), whatever the solver's own order. But a stiff f answers a state that is off by δ in a mode of rate λ with a slope off
+by λδ, and over a step with h|λ| ≫ 1 that would swamp the course. So slope and curvature are first settled:
+
+    v → v - (1 - s)⁵ v,   s = (I - h/20 J)⁻¹, which multiplies a mode by 1/(1 - hλ/20),
+
+which leaves of v what the step resolves, to the fifth power of hλ/20, and of a fast mode 100/(hλ).
 """
 
 from collections.abc import Callable, Sequence
 from functools import partial
 
 import numpy as np
+
+Apply = Callable[[np.ndarray], np.ndarray]
+SETTLING, POWER = 0.05, 5
+"""Share of the step in which what is not the course's own has died out [-], and how sharply the two are told apart."""
 
 
 class Course:
@@ -17,13 +26,16 @@ class Course:
     Derivatives are worked out where they are asked for, once.
     by_time : ∂f/∂t as a function of (t, y) where f depends on time itself. At a corner of f the state stands twice, at
     the corner and at the last number before it: see `with_corners`.
+    resolvent : (t, y, a) -> what solves (I - a J) x = v; dense if not given.
     """
 
     def __init__(self, times: np.ndarray, states: np.ndarray, f: Callable, J: Callable,
-                 by_time: Callable[[float, np.ndarray], np.ndarray] | None = None) -> None:
+                 by_time: Callable[[float, np.ndarray], np.ndarray] | None = None,
+                 resolvent: Callable[[float, np.ndarray, float], Apply] | None = None) -> None:
         self.times, self.states, self.f, self.J, self.by_time = times, states, f, J, by_time
+        self.resolvent = resolvent or self._dense
         self._slopes: dict[int, np.ndarray] = {}
-        self._curvatures: dict[int, np.ndarray] = {}
+        self._pieces: dict[int, np.ndarray] = {}
 
     def slope(self, k: int) -> np.ndarray:
         """y' at step k, (n)."""
@@ -31,30 +43,33 @@ class Course:
             self._slopes[k] = self.f(self.times[k], self.states[k])
         return self._slopes[k]
 
-    def curvature_at(self, k: int) -> np.ndarray:
-        """y'' at step k, (n)."""
-        if k not in self._curvatures:
-            self._curvatures[k] = self.curvature(self.times[k], self.states[k])
-        return self._curvatures[k]
+    def piece(self, k: int) -> np.ndarray:
+        """Value, slope·h and curvature·h² at both ends of the step from k to k + 1, without fast modes, (6, n)."""
+        if k not in self._pieces:
+            h = float(self.times[k + 1] - self.times[k])
+            ends = [(self.states[j], *self.derivatives(float(self.times[j]), self.states[j], h)) for j in (k, k + 1)]
+            self._pieces[k] = np.array([part * h**power for end in ends for power, part in enumerate(end)])
+        return self._pieces[k]
 
-    def curvature(self, t: float, y: np.ndarray) -> np.ndarray:
-        """y'' = J f + ∂f/∂t at any state (n)."""
-        own = self.J(t, y) @ self.f(t, y)
-        return own if self.by_time is None else own + self.by_time(t, y)
+    def derivatives(self, t: float, y: np.ndarray, h: float) -> tuple[np.ndarray, np.ndarray]:
+        """y' = f and y'' = J f + ∂f/∂t at any state (n), settled for a step h [s]."""
+        solve = self.resolvent(t, y, SETTLING * h)
+        slope = settled(self.f(t, y), solve)
+        curvature = self.J(t, y) @ slope
+        return slope, settled(curvature if self.by_time is None else curvature + self.by_time(t, y), solve)
+
+    def _dense(self, t: float, y: np.ndarray, a: float) -> Apply:
+        inverse = np.linalg.inv(np.eye(y.size) - a * self.J(t, y))
+        return lambda v: inverse @ v
 
     def between(self, k: int) -> Callable[[float], np.ndarray]:
         """The interpolant, time [s] -> state (n), from step k to k + 1."""
-        start, h, data = self.times[k], self.times[k + 1] - self.times[k], self._data(k)
+        start, h, data = self.times[k], self.times[k + 1] - self.times[k], self.piece(k)
 
         def state(t: float) -> np.ndarray:
             return _hermite((t - start) / h) @ data
 
         return state
-
-    def _data(self, k: int) -> np.ndarray:
-        """What `_hermite` weighs, (6, n)."""
-        h = self.times[k + 1] - self.times[k]
-        return np.array([v for j in (k, k + 1) for v in (self.states[j], h * self.slope(j), h * h * self.curvature_at(j))])
 
     def first_crossing(self, component: int, level: float) -> float | None:
         """The first time at which a falling component reaches a level."""
@@ -72,7 +87,7 @@ class Course:
         """
         k = int(np.argmax(self.states[:, component]))
         for first in (k - 1, k):
-            if 0 <= first < len(self.times) - 1 and self.slope(first)[component] > 0 >= self.slope(first + 1)[component]:
+            if 0 <= first < len(self.times) - 1 and self.piece(first)[1, component] > 0 >= self.piece(first)[4, component]:
                 slope = _derivative(self._polynomial(first, component))
                 t = self._time(first, _root(partial(_value, slope), 0.0, 1.0))
                 return t, self.between(first)(t)
@@ -109,7 +124,7 @@ class Course:
 
     def _fastest_between(self, k: int, gradient: Callable[[np.ndarray], np.ndarray]) -> tuple[float, float]:
         """The same within one step, by the derivative of the interpolant: golden section (e.g. R.P. Brent, 1973, ch. 5)."""
-        data, h, ratio = self._data(k), self.times[k + 1] - self.times[k], 0.5 * (np.sqrt(5.0) - 1.0)
+        data, h, ratio = self.piece(k), self.times[k + 1] - self.times[k], 0.5 * (np.sqrt(5.0) - 1.0)
 
         def rate(x: float) -> float:
             return float(gradient(_hermite(x) @ data) @ (_hermite_slope(x) @ data)) / h
@@ -125,26 +140,36 @@ class Course:
         """Where the second derivative of y @ weights changes sign beside step k; the time of k if it does not."""
         for first in (k - 1, k):
             if 0 <= first < len(self.times) - 1:
-                ends = [float(self.curvature_at(j) @ weights) for j in (first, first + 1)]
+                ends = self.piece(first)[[2, 5]] @ weights
                 if ends[0] > 0 >= ends[1]:
                     return self._inflection(first, weights)
         return float(self.times[k])
 
     def _inflection(self, k: int, weights: np.ndarray) -> float:
-        piece = self.between(k)
-        return _root(lambda t: float(weights @ self.curvature(t, piece(t))), self.times[k], self.times[k + 1])
+        piece, h = self.between(k), float(self.times[k + 1] - self.times[k])
+
+        def bend(t: float) -> float:
+            return float(self.derivatives(t, piece(t), h)[1] @ weights)
+
+        return _root(bend, self.times[k], self.times[k + 1])
 
     def _polynomial(self, k: int, component: int) -> tuple[float, ...]:
         """The quintic of one component from step k to k + 1, powers of x = 0…1 rising."""
-        h = self.times[k + 1] - self.times[k]
-        (y0, d0, c0), (y1, d1, c1) = ((float(self.states[j, component]), float(h * self.slope(j)[component]),
-                                       float(h * h * self.curvature_at(j)[component])) for j in (k, k + 1))
+        y0, d0, c0, y1, d1, c1 = (float(value) for value in self.piece(k)[:, component])
         rise = y1 - y0
         return (y0, d0, 0.5 * c0, 10 * rise - 6 * d0 - 4 * d1 - 1.5 * c0 + 0.5 * c1,
                 -15 * rise + 8 * d0 + 7 * d1 + 1.5 * c0 - c1, 6 * rise - 3 * d0 - 3 * d1 - 0.5 * c0 + 0.5 * c1)
 
     def _time(self, k: int, x: float) -> float:
         return float(self.times[k] + x * (self.times[k + 1] - self.times[k]))
+
+
+def settled(v: np.ndarray, solve: Apply) -> np.ndarray:
+    """v without what fast modes put into it: see the head of this file."""
+    rest = v
+    for _ in range(POWER):
+        rest = rest - solve(rest)
+    return v - rest
 
 
 def _value(a: tuple[float, ...], x: float) -> float:

@@ -34,8 +34,9 @@ def course_of(case: Case, equations: Equations, columns: Mapping[str, np.ndarray
     """The course of a run between its steps, in the plain form of its equations."""
     times, states = columns["time"], _states(case, columns)
     if case.schedule is None:
-        return Course(times, states, equations.f, equations.J)
-    return Course(*with_corners(times, states, case.schedule.corners), equations.f, equations.J, equations.by_time)
+        return Course(times, states, equations.f, equations.J, resolvent=equations.resolvent)
+    times, states = with_corners(times, states, case.schedule.corners)
+    return Course(times, states, equations.f, equations.J, equations.by_time, equations.resolvent)
 
 
 def _states(case: Case, columns: Mapping[str, np.ndarray]) -> np.ndarray:

@@ -46,7 +46,8 @@ from .stepping import (
 
 ORDER, DEPTH, HELD, RISING, FIXED, WEIGHT, FACTORED, J_AGE, RATE, FAILED, CEILING = range(OWN_MEMORY, OWN_MEMORY + 11)
 """Order; differences known; steps since step or order changed; whether both still rise from the start; whether both are
-fixed (for tests); α/h of the factors, and which these are; steps since J; rate of convergence; failures of this step; longest step for now."""
+fixed (for tests); α/h of the factors, and which these are; steps since J; rate of convergence;
+failures of this step; longest step for now."""
 MEMORY_SIZE = OWN_MEMORY + 11
 NONE, SPARSE, PIVOTED = 0.0, 1.0, 2.0
 PREDICTED, SLOPE, POINT, CORRECTION, RIGHT, DELTA, INVERSE, PERMUTED = range(8)
@@ -62,7 +63,7 @@ _MOST_ITERATIONS = 4
 _DRIFT = 0.25  # relative change of α/h since the factorisation that asks for a new one
 _OLD = 25.0  # steps that a Jacobian serves
 _BIAS, _BIAS_UP = 6.0, 8.0  # errors are taken as so much larger when the next step is chosen
-_WORTH, _SHORTEN, _GROW, _GROW_AT_START, _CEILING_RISES = 1.3, 0.85, 10.0, 2.0, 1.05
+_WORTH, _SHORTEN, _GROW, _GROW_AT_START, _CEILING_RISES = 1.3, 0.85, 10.0, 2.0, 1.2
 
 
 @compiled

@@ -3,7 +3,6 @@
 import time
 from collections.abc import Callable
 from dataclasses import dataclass, field
-from functools import lru_cache
 
 import numpy as np
 
@@ -11,7 +10,7 @@ from . import bdf, stepping
 from . import rosenbrock as ros
 from .differences import LEADING, ROWS
 from .interface import MOST_REFUSED, MOST_STEPS, MOST_STEPS_IF_ASKED, CompiledSystem, Monitor, Outcome, Problem, Status
-from .pattern import SparsePlan, plan
+from .pattern import plan_of
 from .rosenbrock_tables import RODAS5P, RosenbrockTable
 
 CHUNK, CHUNK_IF_ASKED = 64, 8
@@ -29,12 +28,6 @@ _REASONS = {
 }
 
 
-@lru_cache(maxsize=16)
-def _plan(rows: bytes, starts: bytes, tail: int) -> SparsePlan:
-    """The plan of a pattern, made once: many runs share one."""
-    return plan(np.frombuffer(rows, np.uint32), np.frombuffer(starts, np.uint32).astype(np.int64), tail)
-
-
 @dataclass
 class Stepper:
     """A compiled integration between chunks: addresses, memory and counters. A method begins it and lets it advance."""
@@ -46,7 +39,7 @@ class Stepper:
     def __post_init__(self) -> None:
         system = self.system
         self.rows, self.starts = (part.astype(np.uint32) for part in system.pattern)
-        self.plan = _plan(self.rows.tobytes(), self.starts.tobytes(), system.tail)
+        self.plan = plan_of(self.rows, self.starts, system.tail)
         columns = np.repeat(np.arange(len(self.starts) - 1), np.diff(system.pattern[1]))
         self.own = np.flatnonzero(self.rows == columns).astype(np.uint32)
         self.z, self.slope = system.start.copy(), np.empty(system.start.size)

@@ -5,6 +5,7 @@ last `tail` unknowns kept last, since their rows and columns are full.
 """
 
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 
@@ -30,6 +31,16 @@ class SparsePlan:
     def fill(self) -> int:
         """Entries of L + U."""
         return len(self.column)
+
+
+def plan_of(rows: np.ndarray, starts: np.ndarray, tail: int) -> SparsePlan:
+    """The plan of a pattern (uint32), made once: many runs share one."""
+    return _plan_of_bytes(rows.tobytes(), starts.tobytes(), tail)
+
+
+@lru_cache(maxsize=16)
+def _plan_of_bytes(rows: bytes, starts: bytes, tail: int) -> SparsePlan:
+    return plan(np.frombuffer(rows, np.uint32), np.frombuffer(starts, np.uint32).astype(np.int64), tail)
 
 
 def plan(rows: np.ndarray, starts: np.ndarray, tail: int) -> SparsePlan:
