@@ -101,7 +101,7 @@ def _in_cache_folder() -> Iterator[None]:
 
 def in_cache(name: str = "") -> bool:
     """Whether kernels with this in their name have been compiled on this machine before."""
-    return not JIT or any(CACHE_FOLDER.rglob(f"*{name}*.nbi"))
+    return not JIT or any(name in path.name for path in CACHE_FOLDER.rglob("*.nbi"))
 
 
 @intrinsic
