@@ -17,7 +17,7 @@ import bothways
 
 LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("constants", "errors", "compiled"),
-    ("units", "outfile", "schedule", "components"),
+    ("units", "outfile", "schedule", "components", "sums"),
     ("entry", "hdf5"),
     ("kernels",),
     ("thermo",),
@@ -42,7 +42,7 @@ LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("__main__",),
 )
 RANK = {part: rank for rank, layer in enumerate(LAYERS) for part in layer}
-ISLANDS = {"integrate": {"compiled"}, "kernels": {"compiled", "constants"}}
+ISLANDS = {"integrate": {"compiled", "sums"}, "kernels": {"compiled", "constants", "sums"}}
 """Parts that may import only these: solvers and kernels know no chemistry's objects."""
 NEVER = {"equilibrium": ("rates", "balance", "kernels.rates", "kernels.equations", "vessel", "integrate")}
 """Modules that a part may not import though they stand below it: the equilibrium shares no kinetics with a run."""

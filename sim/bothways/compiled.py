@@ -20,7 +20,7 @@ from numba.core import types
 from numba.extending import intrinsic
 
 _HERE = Path(__file__).parent
-_SOURCES = ("constants.py", "compiled.py", "kernels/*.py", "integrate/*.py")
+_SOURCES = ("constants.py", "compiled.py", "sums.py", "kernels/*.py", "integrate/*.py")
 
 
 def _digest() -> str:
@@ -151,6 +151,25 @@ def _span(typing_context, array, first, last):  # type: ignore[no-untyped-def]
     return result(array, first, last), generate
 
 
+@intrinsic
+def _fours(typing_context, array, first, last):  # type: ignore[no-untyped-def]
+    result = array.copy(ndim=2, readonly=False)
+
+    def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
+        base = context.make_array(signature.args[0])(context, builder, arguments[0])
+        first, last = (context.cast(builder, value, kind, types.intp)
+                       for value, kind in zip(arguments[1:], signature.args[1:], strict=True))
+        made = context.make_array(result)(context, builder)
+        rows = builder.ashr(builder.sub(last, first), context.get_constant(types.intp, 2))
+        width = context.get_abi_sizeof(context.get_data_type(result.dtype))
+        one, four = (context.get_constant(types.intp, k * width) for k in (1, 4))
+        context.populate_array(made, data=builder.gep(base.data, [first]), shape=(rows, context.get_constant(types.intp, 4)),
+                               strides=(four, one), itemsize=one, meminfo=None, parent=None)
+        return made._getvalue()
+
+    return result(array, first, last), generate
+
+
 def _pointer_to(item):  # type: ignore[no-untyped-def]
     @intrinsic
     def pointer(typing_context, address):  # type: ignore[no-untyped-def]
@@ -168,13 +187,17 @@ float64_pointer, uint32_pointer = _pointer_to(types.float64), _pointer_to(types.
 """An address as a pointer to float64 or uint32, for numba's carray."""
 
 if JIT:
-    bits_to_float, float_to_bits, span = _bits_to_float, _float_to_bits, _span
+    bits_to_float, float_to_bits, span, fours = _bits_to_float, _float_to_bits, _span, _fours
 else:
     import struct
 
     def span(array, first, last):  # type: ignore[no-untyped-def]
         """array[first:last] (interpreted kernels)."""
         return array[first:last]
+
+    def fours(array, first, last):  # type: ignore[no-untyped-def]
+        """array[first:last] by whole fours, (…, 4) (interpreted kernels)."""
+        return array[first : first + (int(last) - int(first)) // 4 * 4].reshape(-1, 4)
 
     def bits_to_float(bits: int) -> float:
         """The float64 of these 64 bits (interpreted kernels)."""

@@ -209,8 +209,7 @@ class Equations:
     @cached_property
     def _full_rows(self) -> set[int]:
         if self.holds == "pressure":
-            touched = np.diff(table_view(self.tables, "nu_start").astype(np.int64)).reshape(-1, 2).sum(axis=1)
-            return set(np.flatnonzero(touched).tolist())
+            return {int(s) for key in ("made_species", "taken_species") for s in table_view(self.tables, key)}
         places = table_view(self.tables, "extra_place").astype(np.int64) - len(self._block[1])
         return set(places[places >= 0].tolist())
 

@@ -1,5 +1,4 @@
-"""exp and log over arrays, written so that the compiler turns the loops into vector instructions, and sums whose
-additions need not wait for one another: the compiler may not reorder a sum, so four partial sums are written out."""
+"""exp and log over arrays, written so that the compiler turns the loops into vector instructions."""
 
 from ..compiled import bits_to_float, compiled, float_to_bits
 
@@ -68,48 +67,3 @@ def log_array(x, out):
         p = p * z + 2.0 / 3.0
         half = 0.5 * d * d
         out[i] = k * _LN2_HIGH + (d - (half - (s * (half + z * p) + k * _LN2_LOW)))
-
-
-@compiled
-def dot(x, y):
-    """Σ x_i y_i."""
-    s0, s1, s2, s3 = 0.0, 0.0, 0.0, 0.0
-    whole = x.size - x.size % 4
-    for i in range(0, whole, 4):
-        s0 += x[i] * y[i]
-        s1 += x[i + 1] * y[i + 1]
-        s2 += x[i + 2] * y[i + 2]
-        s3 += x[i + 3] * y[i + 3]
-    for i in range(whole, x.size):
-        s0 += x[i] * y[i]
-    return (s0 + s1) + (s2 + s3)
-
-
-@compiled
-def total_of(x):
-    """Σ x_i."""
-    s0, s1, s2, s3 = 0.0, 0.0, 0.0, 0.0
-    whole = x.size - x.size % 4
-    for i in range(0, whole, 4):
-        s0 += x[i]
-        s1 += x[i + 1]
-        s2 += x[i + 2]
-        s3 += x[i + 3]
-    for i in range(whole, x.size):
-        s0 += x[i]
-    return (s0 + s1) + (s2 + s3)
-
-
-@compiled
-def sum_at(values, places, first, last):
-    """Σ values[places[first:last]]."""
-    s0, s1, s2, s3 = 0.0, 0.0, 0.0, 0.0
-    whole = first + (last - first) // 4 * 4
-    for e in range(first, whole, 4):
-        s0 += values[places[e]]
-        s1 += values[places[e + 1]]
-        s2 += values[places[e + 2]]
-        s3 += values[places[e + 3]]
-    for e in range(whole, last):
-        s0 += values[places[e]]
-    return (s0 + s1) + (s2 + s3)

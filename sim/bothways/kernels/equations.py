@@ -13,8 +13,8 @@ import numpy as np
 
 from ..compiled import compiled
 from ..constants import GAS_CONSTANT as R
+from ..sums import dot, dot_at, total_of
 from . import layout as at
-from .elementary import dot, total_of
 from .layout import view
 from .lumped import conductances
 from .rates import one_way_rates, set_derivatives, set_production
@@ -212,16 +212,10 @@ def _temperature_row(y, T, volume, vessel, ints, work, data):
     f = _heating(y, T, volume, vessel, ints, work)
     p = 0
     for s in range(n):
-        even, odd = 0.0, 0.0
-        e, last = start[s], start[s + 1]
-        while e + 1 < last:
-            even += energy[row[e]] * data[p]
-            odd += energy[row[e + 1]] * data[p + 1]
-            e, p = e + 2, p + 2
-        if e < last:
-            even += energy[row[e]] * data[p]
-            p += 1
-        data[p + 1] = -by_balance * (T * (even + odd) + f * (cp[s] - less)) / heat
+        size = start[s + 1] - start[s]
+        total = dot_at(data, p, energy, row, start[s], start[s + 1])
+        p += size
+        data[p + 1] = -by_balance * (T * total + f * (cp[s] - less)) / heat
         p += 2
     by_border, by_T = dot(energy, data[p : p + n]), dot(energy, data[p + n + 2 : p + 2 * n + 2])
     own, change = volume * (dot(cp, omega) - less * total_of(omega)), dot(y[:n], cp_slope)

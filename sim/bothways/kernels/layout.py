@@ -53,13 +53,15 @@ INTS = (
     "plain_term",       # mass-action terms of the reactions that have lumped ones
     "group_start",      # (G + 1) partner groups: first named species
     "group_species",    # named species of the groups
-    "nu_start",         # (2 N + 1) by species: where the reactions that make it start, then those that take it
-    "nu_reaction",      # these reactions, as often as molecules of it come or go
+    "made_species",     # (K) species that reactions make, in order of how many do,
+    "made_start",       # (K + 1) and where these stand
+    "made_reaction",    # the reactions, as often as they make a molecule, padded with R
+    "taken_species", "taken_start", "taken_reaction",  # likewise those that take it
     "block_start",      # (N + 1) columns of the species block of the Jacobian
     "block_row",        # its rows
     "target",           # (16 R) where the partials by the four molecules go in `block`, four rows each
     "response_start",   # (2 P + 1) responses of a species to the partners of a group: terms that make, that take it
-    "response_term",    # these terms
+    "response_term",    # these terms, padded with T
     "extra_place",      # places in `block` of what else adds to it,
     "extra_source",     # and the partials
     "diluted_reaction",  # (Q) reactions that change the amount, where activities are mole fractions
@@ -117,15 +119,15 @@ WORK = (
     "k_by_T", "k_by_M",  # (T) their derivatives; of laws of pressure by_M is by the total C
     "k_total", "k_total_by_T",  # (R)
     "forward", "reverse",  # (R) Πa over the reactants and over the products
-    "net",              # (R) net rates
+    "net",              # (R + 1) net rates, and a zero
     "bare",             # (R) ΠE_reac (Πa_reac - Πa_prod): the net rate for k one
-    "net_by_T",         # (R)
+    "net_by_T",         # (R + 1) likewise
     "lump_bare",        # (L) net rate of each lumped term for k one
     "lump_forward", "lump_reverse",  # (L) its one-way rates
     "omega",            # (N) production rates
     "omega_by_T",       # (N)
     "dilution",         # (Q + 1) what the total concentration does to their reverse rates, and 1/C
-    "partial",          # (4 R + m + T + P + E + E' + Q) by molecules, further ones, partners; responses; lumped; dilution
+    "partial",          # (4 R + m + T + 1 + P + E + E' + Q) by molecules, further ones, partners; 0; responses; lumped; dilution
     "block",            # (nb + N + 16) species block of the Jacobian, dω/dC, and places for what is not wanted
     "concentration",    # (N) for which the rates stand
     "energy",           # (N) molar energy or enthalpy over RT
@@ -135,6 +137,8 @@ WORK = (
 SEEN_T, SEEN_SLOPES, FITS_FROM, FITS_TO, SEEN_TOTAL = range(5)
 """Places in `seen`: T of the thermal parts, T of their slopes, range of T of the coefficients in force, total of the
 rates. Each part is kept while what it stands for stays."""
+PAD = 4
+"""Lists that are summed are padded to a multiple of this, so that their loops have no odd ends."""
 NOT_WANTED = 16
 """Places behind the block: one for each pair of a molecule and a row, so that no addition waits for another's."""
 

@@ -6,9 +6,9 @@ at equilibrium; no reverse rate constant is formed (balance.py states the rule i
 
 import math
 
-from ..compiled import compiled
+from ..compiled import compiled, span
+from ..sums import sum_at
 from . import layout as at
-from .elementary import sum_at
 from .fall_off import SMALLEST_PARTNER, fall_off_constants, fall_off_slopes
 from .layout import view
 from .lumped import add_lumped_rates, add_lumped_slopes, add_lumped_ways, keep_plain, set_lumped_partners
@@ -28,8 +28,12 @@ _BODY_TERM = at.offset_slot(at.INTS, "body_term")
 _BODY_GROUP = at.offset_slot(at.INTS, "body_group")
 _GROUP_START = at.offset_slot(at.INTS, "group_start")
 _GROUP_SPECIES = at.offset_slot(at.INTS, "group_species")
-_NU_START = at.offset_slot(at.INTS, "nu_start")
-_NU_REACTION = at.offset_slot(at.INTS, "nu_reaction")
+_MADE_SPECIES = at.offset_slot(at.INTS, "made_species")
+_MADE_START = at.offset_slot(at.INTS, "made_start")
+_MADE_REACTION = at.offset_slot(at.INTS, "made_reaction")
+_TAKEN_SPECIES = at.offset_slot(at.INTS, "taken_species")
+_TAKEN_START = at.offset_slot(at.INTS, "taken_start")
+_TAKEN_REACTION = at.offset_slot(at.INTS, "taken_reaction")
 _TARGET = at.offset_slot(at.INTS, "target")
 _RESPONSE_START = at.offset_slot(at.INTS, "response_start")
 _RESPONSE_TERM = at.offset_slot(at.INTS, "response_term")
@@ -173,8 +177,9 @@ def set_rates(c, total, ints, floats, work):
     dilute(total, ints, floats, work)
     scale, net = view(work, ints, _REACTANT_SCALE), view(work, ints, _NET)
     forward, reverse = view(work, ints, _FORWARD), view(work, ints, _REVERSE)
-    for j in range(net.size):
+    for j in range(k.size):
         net[j] = k[j] * (scale[j] * (forward[j] - reverse[j]))
+    net[k.size] = 0.0
     add_lumped_rates(c, ints, floats, work)
 
 
@@ -192,10 +197,15 @@ def one_way_rates(ints, work, forward, reverse):
 @compiled
 def _gather(rates, out, ints):
     """Σ_j ν_ij rates_j for every species."""
-    start, reaction = view(ints, ints, _NU_START), view(ints, ints, _NU_REACTION)
-    for i in range(out.size):
-        first, middle, last = start[2 * i], start[2 * i + 1], start[2 * i + 2]
-        out[i] = sum_at(rates, reaction, first, middle) - sum_at(rates, reaction, middle, last)
+    out[:] = 0.0
+    species, start = view(ints, ints, _MADE_SPECIES), view(ints, ints, _MADE_START)
+    reaction = view(ints, ints, _MADE_REACTION)
+    for k in range(species.size):
+        out[species[k]] = sum_at(rates, reaction, start[k], start[k + 1])
+    species, start = view(ints, ints, _TAKEN_SPECIES), view(ints, ints, _TAKEN_START)
+    reaction = view(ints, ints, _TAKEN_REACTION)
+    for k in range(species.size):
+        out[species[k]] -= sum_at(rates, reaction, start[k], start[k + 1])
 
 
 @compiled
@@ -237,9 +247,14 @@ def _set_long_partials(ints, work):
             out[4 * j + 2 * s + q] *= a[species[m]]
         value = k[j] * (scale[j] * inverse_scale[species[m]])
         value *= a[r0[j]] * a[r1[j]] if s == 0 else -(a[p0[j]] * a[p1[j]])
-        for other in range(side.size):
-            if other != m and reaction[other] == j and side[other] == s:
-                value *= a[species[other]]
+        other = m - 1
+        while other >= 0 and reaction[other] == j:  # a reaction's own stand next to one another
+            value *= a[species[other]] if side[other] == s else 1.0
+            other -= 1
+        other = m + 1
+        while other < side.size and reaction[other] == j:
+            value *= a[species[other]] if side[other] == s else 1.0
+            other += 1
         out[first_long + m] = value
 
 
@@ -287,7 +302,8 @@ def _temperature_derivatives(ints, floats, work):
     reverse_slope = view(work, ints, _REVERSE_SLOPE)
     _sum_terms(view(work, ints, _K_BY_T), k_by_T, ints)
     keep_plain(view(work, ints, _K_BY_T), k_by_T, ints)
-    for j in range(by_T.size):
+    by_T[k.size] = 0.0
+    for j in range(k.size):
         by_T[j] = bare[j] * k_by_T[j] - k[j] * (scale[j] * reverse[j]) * reverse_slope[j]
     add_lumped_slopes(by_T, ints, floats, work)
     _gather(by_T, view(work, ints, _OMEGA_BY_T), ints)
@@ -301,10 +317,11 @@ def _partner_derivatives(ints, work):
     term = view(ints, ints, _RESPONSE_TERM)
     responses = start.size // 2
     first = 4 * bare.size + ints[at.LONG]
-    by_terms = out[first : first + by_M.size]
+    by_terms = span(out, first, first + by_M.size + 1)
     for t in range(by_M.size):
         by_terms[t] = by_M[t] * bare[reaction[t]]
+    by_terms[by_M.size] = 0.0
     set_lumped_partners(by_terms, ints, work)
     for p in range(responses):
         low, middle, high = start[2 * p], start[2 * p + 1], start[2 * p + 2]
-        out[first + by_M.size + p] = sum_at(by_terms, term, low, middle) - sum_at(by_terms, term, middle, high)
+        out[first + by_M.size + 1 + p] = sum_at(by_terms, term, low, middle) - sum_at(by_terms, term, middle, high)

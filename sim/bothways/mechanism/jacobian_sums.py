@@ -3,8 +3,8 @@
 Entry (i, s) of the block is Σ ν_ij ∂w_j/∂c_s at constant total of the partners, and behind the block stands
 ∂omega_i/∂C, the response to that total. `partial` (kernels/rates.py sets it) holds ∂w/∂c by the four molecules of every
 reaction, by the further molecules of long sides, then ∂w/∂[M] of every term (∂w/∂C of laws of pressure), and behind
-these Σ ν ∂w/∂[M] over the terms of one partner group for each species they touch: its responses. Then stand ∂w/∂c of
-the entries of lumped terms and of their adsorbed species (kernels/lumped.py), and last ∂w/∂C of the reactions whose
+a zero these Σ ν ∂w/∂[M] over the terms of one partner group for each species they touch: its responses. Then stand ∂w/∂c
+of the entries of lumped terms and of their adsorbed species (kernels/lumped.py), and last ∂w/∂C of the reactions whose
 reverse rate holds the total concentration (kernels/solution.py).
 """
 
@@ -13,7 +13,7 @@ from collections.abc import Iterator, Sequence
 
 import numpy as np
 
-from ..kernels.layout import NOT_WANTED
+from ..kernels.layout import NOT_WANTED, PAD
 from .model import Mechanism
 
 Place = tuple[int, int]
@@ -22,9 +22,14 @@ TOTAL = -1
 """The column of dω/dC, which stands behind the block."""
 
 
-def signed_lists(rows: Sequence[tuple[list[int], list[int]]]) -> tuple[np.ndarray, np.ndarray]:
+def padded(members: list[int], zero: int) -> list[int]:
+    """A list that is summed, brought to its length with a place that holds zero."""
+    return members + [zero] * (-len(members) % PAD)
+
+
+def _signed_lists(rows: Sequence[tuple[list[int], list[int]]], zero: int) -> tuple[np.ndarray, np.ndarray]:
     """Starts (2 rows + 1) and members of lists in pairs: what adds, then what takes away."""
-    lists = [part for row in rows for part in row]
+    lists = [padded(part, zero) for row in rows for part in row]
     return np.cumsum([0] + [len(part) for part in lists]), np.array([k for part in lists for k in part])
 
 
@@ -90,8 +95,8 @@ def _partners(net: list[dict[int, int]], ints: dict, floats: dict, first: int, e
     for term, group in _terms_of_groups(ints):
         for i, count in net[ints["term_reaction"][term]].items():
             responses[group, i][count < 0].extend([term] * abs(count))
-    ints["response_start"], ints["response_term"] = signed_lists(list(responses.values()))
-    start, behind = ints["group_start"], first + len(ints["term_reaction"])
+    ints["response_start"], ints["response_term"] = _signed_lists(list(responses.values()), len(ints["term_reaction"]))
+    start, behind = ints["group_start"], first + len(ints["term_reaction"]) + 1
     for place, (group, i) in enumerate(responses):
         source = behind + place
         if group == TOTAL or floats["group_default"][group]:

@@ -5,7 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..kernels import layout
-from .jacobian_sums import jacobian_sums, signed_lists
+from .jacobian_sums import jacobian_sums, padded
 from .law_tables import law_tables
 from .model import Mechanism
 from .phase import FRACTION, standard_concentration
@@ -70,11 +70,22 @@ def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
 
 
 def _stoichiometry(mechanism: Mechanism, ints: dict, floats: dict) -> None:
-    rows: list[tuple[list[int], list[int]]] = [([], []) for _ in mechanism.species]
-    for j, reaction in enumerate(mechanism.reactions):
-        for name, count in reaction.net.items():
-            rows[mechanism.index(name)][count < 0].extend([j] * abs(count))
-    ints["nu_start"], ints["nu_reaction"] = signed_lists(rows)
+    """Reactions that make and that take each species; by length, since loops of one length after another are fast."""
+    r = len(mechanism.reactions)
+    for key, sign in (("made", 1), ("taken", -1)):
+        lists: dict[int, list[int]] = {}
+        for j, reaction in enumerate(mechanism.reactions):
+            for name, count in reaction.net.items():
+                lists.setdefault(mechanism.index(name), []).extend([j] * max(sign * count, 0))
+        kept = sorted(((s, padded(members, r)) for s, members in lists.items() if members), key=lambda item: len(item[1]))
+        ints[f"{key}_species"] = np.array([s for s, _ in kept])
+        ints[f"{key}_start"] = np.cumsum([0] + [len(members) for _, members in kept])
+        ints[f"{key}_reaction"] = np.array([j for _, members in kept for j in members])
+    _dilution(mechanism, ints, floats)
+
+
+def _dilution(mechanism: Mechanism, ints: dict, floats: dict) -> None:
+    """Reactions that change the amount, where activities are mole fractions."""
     changes = [sum(r.net.values()) if mechanism.standard_state == FRACTION else 0 for r in mechanism.reactions]
     ints["diluted_reaction"] = np.flatnonzero(changes)
     floats["amount_change"] = np.array([change for change in changes if change])
@@ -108,8 +119,9 @@ def _work_lengths(sizes: dict[str, int]) -> list[int]:
                "pressure": 1, "column": columns, "column_slope": columns,
                "log_k": x, "k_limit": x, "k_slope": x, "centre_exponent": 3 * fall, "centre_part": 3 * fall,
                "partner": sizes["GROUPS"], "log_partner": sizes["GROUPS"], "k": t, "k_by_T": t, "k_by_M": t,
-               "partial": 4 * r + sizes["LONG"] + t + sizes["RESPONSES"] + sizes["LUMP_ENTRIES"] + sizes["DILUTED"],
-               "dilution": sizes["DILUTED"] + 1, "block": sizes["BLOCK"] + n + layout.NOT_WANTED}
+               "partial": 4 * r + sizes["LONG"] + t + 1 + sizes["RESPONSES"] + sizes["LUMP_ENTRIES"] + sizes["DILUTED"],
+               "dilution": sizes["DILUTED"] + 1, "net": r + 1, "net_by_T": r + 1,
+               "block": sizes["BLOCK"] + n + layout.NOT_WANTED}
     by_name |= dict.fromkeys(("lump_bare", "lump_forward", "lump_reverse"), sizes["LUMPS"])
     by_name |= dict.fromkeys(("gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T",
                               "concentration", "energy", "border_column"), n)
