@@ -56,7 +56,7 @@ def _next_factor(norm, memory, rejected_before, order):
 
 
 @compiled
-def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, target, dense, own, mass, table, gamma,
+def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, target, own, mass, table, gamma,
             estimator_order, z, memory, atol, rtol, stop, times, states, counts):
     """Steps from memory[TIME] towards `stop` until it is reached or the buffer (times, states) is full.
 

@@ -20,10 +20,12 @@ import math
 import numpy as np
 from numba import carray
 
-from ..compiled import CROSSED, REFUSED, STAND, callback, compiled, float64_pointer
+from ..compiled import CROSSED, REFUSED, STAND, callback, compiled, float64_pointer, fours
 from ..constants import GAS_CONSTANT as R
+from ..sums import dot, total_of
 from . import layout as at
 from .callbacks import CONTEXT_SIZE, tables_of
+from .elementary import log_array
 from .equations import (
     GIVEN,
     HEAT,
@@ -38,7 +40,7 @@ from .equations import (
 )
 from .exchange import change_by_heat, change_by_ramp, further
 from .layout import view
-from .molar import molar_functions
+from .molar import standard_state
 from .surfaces import SIZE as SURFACE_SIZE
 from .surfaces import arm, share_before
 
@@ -53,6 +55,8 @@ DRIFT_ALLOWED = 1e-15
 LARGEST_MENDING = 1e-2
 """A mending that changes an amount by more than this part of it is refused: the step is too long."""
 COOLEST, HOTTEST = 20.0, 2e4
+SMALLEST_AMOUNT = 1e-300
+"""Below, the logarithm of an amount is taken of this [-]."""
 
 _REDUCTION = at.offset_slot(at.FLOATS, "reduction")
 _STANDARD = at.offset_slot(at.FLOATS, "standard")
@@ -74,12 +78,13 @@ def ledger_of(rows: np.ndarray, totals: np.ndarray, energy: float, temperature: 
 def weighted_solve(rows, weights, right, matrix, out):
     """λ of (Σ_i rows_ki w_i rows_li) λ_l = right_k by Cholesky's method; rows that weigh nothing get λ = 0."""
     m, n = rows.shape
+    weighted = np.empty(n)
     for k in range(m):
+        row = rows[k]
+        for i in range(n):
+            weighted[i] = row[i] * weights[i]
         for q in range(k + 1):
-            total = 0.0
-            for i in range(n):
-                total += rows[k, i] * weights[i] * rows[q, i]
-            matrix[k, q] = total
+            matrix[k, q] = dot(weighted, rows[q])
     for k in range(m):
         scale = matrix[k, k]
         for q in range(k + 1):
@@ -110,13 +115,11 @@ def mend(amount, rows, totals, matrix, residual, multiplier, head):
         if amount[i] < 0.0:
             amount[i] = 0.0
             negative = True
+    change = np.empty(amount.size)
     for attempt in range(3):
         worst = 0.0
         for k in range(totals.size):
-            now, size = 0.0, 0.0
-            for i in range(amount.size):
-                now += rows[k, i] * amount[i]
-                size += abs(rows[k, i]) * amount[i]
+            now, size = _total_and_size(rows[k], amount)
             residual[k] = totals[k] - now
             if size > 0.0:
                 worst = max(worst, abs(residual[k]) / size)
@@ -125,31 +128,59 @@ def mend(amount, rows, totals, matrix, residual, multiplier, head):
         if worst <= DRIFT_ALLOWED:
             return True
         weighted_solve(rows, amount, residual, matrix, multiplier)
+        largest = 0.0
+        _fit(rows, multiplier, change)
         for i in range(amount.size):
-            change = 0.0
-            for k in range(totals.size):
-                change += multiplier[k] * rows[k, i]
-            if abs(change) > LARGEST_MENDING:
-                return False
-            amount[i] *= 1.0 + change
+            largest = max(largest, abs(change[i]))
+            amount[i] *= 1.0 + change[i]
+        if not largest <= LARGEST_MENDING:
+            return False
         head[MENDED] += 1.0
     return worst <= 1e-13
 
 
 @compiled
-def temperature_of(amount, T, vessel, ints, floats, head, gibbs, enthalpy, cp, slope):
-    """Step 2: T at which the energy is the one in `head`; the last arrays stand for it then. -1 if out of reach."""
+def _total_and_size(row, amount):
+    """Σ a_i n_i and Σ |a_i| n_i."""
+    row4, amount4 = fours(row, 0, row.size), fours(amount, 0, row.size)
+    t0, t1, s0, s1 = 0.0, 0.0, 0.0, 0.0
+    for i in range(row4.shape[0]):
+        a, b, c, d = (row4[i, 0] * amount4[i, 0], row4[i, 1] * amount4[i, 1], row4[i, 2] * amount4[i, 2],
+                      row4[i, 3] * amount4[i, 3])
+        t0 += a + b
+        t1 += c + d
+        s0 += abs(a) + abs(b)
+        s1 += abs(c) + abs(d)
+    for i in range(4 * row4.shape[0], row.size):
+        t0 += row[i] * amount[i]
+        s0 += abs(row[i] * amount[i])
+    return t0 + t1, s0 + s1
+
+
+@compiled
+def _fit(rows, multiplier, out):
+    """Σ_k λ_k a_ki for every species."""
+    out[:] = 0.0
+    for k in range(multiplier.size):
+        row, factor = rows[k], multiplier[k]
+        for i in range(out.size):
+            out[i] += factor * row[i]
+
+
+@compiled
+def temperature_of(amount, T, vessel, ints, floats, work, head, gibbs, enthalpy, cp, slope):
+    """Step 2: T at which the energy is the one in `head`; gibbs, enthalpy, cp stand for it then. -1 if out of reach."""
     less = vessel[LESS]
     previous = np.inf
     for attempt in range(60):
         if not COOLEST < T < HOTTEST:
             return -1.0
-        molar_functions(T, 0, ints, floats, gibbs, enthalpy, cp, slope)
+        standard_state(T, ints, floats, work, gibbs, enthalpy, cp, slope)
         own = vessel[HEAT_CAPACITY] / R
-        energy, heat = own * (T - head[START_TEMPERATURE]), own
         for i in range(amount.size):
-            energy += amount[i] * (enthalpy[i] - less) * T
-            heat += amount[i] * (cp[i] - less)
+            slope[i] = enthalpy[i] - less
+        energy = own * (T - head[START_TEMPERATURE]) + T * dot(amount, slope)
+        heat = own + dot(amount, cp) - less * total_of(amount)
         step = (head[ENERGY] / R - energy) / heat
         if attempt == 0:
             head[LARGEST_ENERGY_DRIFT] = max(head[LARGEST_ENERGY_DRIFT], abs(step) / T)
@@ -205,7 +236,7 @@ def judge(exchange_pointer, verdict_pointer, context):
 
     verdict[0]: rise beyond what is allowed; verdict[1]: share of the step that a surface cuts off.
     """
-    vessel, ints, floats, _, _ = tables_of(context)
+    vessel, ints, floats, work, _ = tables_of(context)
     c = carray(context, (JUDGE_CONTEXT_SIZE,))
     n, m = np.int64(ints[at.SPECIES]), c[N_ROWS]
     nz = n + 2 + further(vessel)
@@ -225,11 +256,11 @@ def judge(exchange_pointer, verdict_pointer, context):
     verdict[0] = 0.0
     if not mend(new, rows, totals, matrix, residual, multiplier, head):
         return REFUSED
-    molar_functions(T0, 0, ints, floats, scratch[0], scratch[1], scratch[2], scratch[3])
+    standard_state(T0, ints, floats, work, scratch[0], scratch[1], scratch[2], scratch[3])
     if vessel[HEAT] == JACKET:
         head[ENERGY] = head[START_ENERGY] + exchange[nz + n + 2]
     if balanced(vessel):
-        T1 = temperature_of(new, T1, vessel, ints, floats, head, scratch[4], scratch[5], scratch[6], scratch[7])
+        T1 = temperature_of(new, T1, vessel, ints, floats, work, head, scratch[4], scratch[5], scratch[6], scratch[7])
         if T1 < 0.0:
             return REFUSED
         exchange[nz + n + 1] = T1
@@ -244,7 +275,7 @@ def judge(exchange_pointer, verdict_pointer, context):
         further_change, further_noise, excused = change_by_heat(
             exchange[n + 1 : n + 4], exchange[nz + n + 1 : nz + n + 4], exchange[2 * nz + n + 1 : 2 * nz + n + 4])
     elif vessel[HEAT] == GIVEN and T1 != T0:
-        molar_functions(T1, 0, ints, floats, scratch[4], scratch[5], scratch[6], scratch[7])
+        standard_state(T1, ints, floats, work, scratch[4], scratch[5], scratch[6], scratch[7])
         further_change, further_noise = change_by_ramp(new, T0, T1, scratch[0], scratch[4], vessel, ints, floats)
         further_change += exchange[nz + n + 2] - exchange[n + 2]
         excused = abs(exchange[2 * nz + n + 2])
@@ -272,32 +303,27 @@ def judge(exchange_pointer, verdict_pointer, context):
 def _reduced_potentials(amount, T, vessel, ints, floats, gibbs, out):
     """μ/RT less element terms, which no reaction changes; without ln of the amount where that is zero."""
     reduction, standard = view(floats, ints, _REDUCTION), view(floats, ints, _STANDARD)
-    total = 0.0
-    for i in range(amount.size):
-        total += amount[i]
+    total = total_of(amount)
     shift = standard[1] * math.log(T) - math.log(standard[0])
     if vessel[HOLDS] == PRESSURE_HELD:
         shift = math.log(vessel[PRESSURE] / (R * standard[0] * total))
     elif vessel[SHARED] == 1.0:
         shift = -math.log(total)
+    held, logs = np.maximum(amount, SMALLEST_AMOUNT), np.empty(amount.size)
+    log_array(held, logs)
     for i in range(amount.size):
-        out[i] = gibbs[i] - reduction[2 * i] / T - reduction[2 * i + 1] + shift
-        if amount[i] > 0.0:
-            out[i] += math.log(amount[i])
+        bare = gibbs[i] - reduction[2 * i] / T - reduction[2 * i + 1] + shift
+        out[i] = bare + logs[i] if amount[i] > 0.0 else bare
 
 
 @compiled
 def _deviations(old, rows, potential, matrix, right, multiplier, deviation):
     """μ_i/RT less the potentials Σ_k λ_k a_ki of the conserved combinations, λ fitted with the amounts as weights."""
-    m, n = rows.shape
-    for k in range(m):
-        right[k] = 0.0
-        for i in range(n):
-            if old[i] > 0.0:
-                right[k] += rows[k, i] * old[i] * potential[i]
+    for i in range(old.size):
+        deviation[i] = old[i] * potential[i]
+    for k in range(right.size):
+        right[k] = dot(rows[k], deviation)
     weighted_solve(rows, old, right, matrix, multiplier)
-    for i in range(n):
-        fitted = 0.0
-        for k in range(m):
-            fitted += multiplier[k] * rows[k, i]
-        deviation[i] = potential[i] - fitted
+    _fit(rows, multiplier, deviation)
+    for i in range(old.size):
+        deviation[i] = potential[i] - deviation[i]

@@ -116,7 +116,7 @@ def _terms_of_groups(ints: dict) -> Iterator[tuple[int, int]]:
 
 def _lumped(net: list[dict[int, int]], ints: dict, extras: Extras) -> int:
     """Entries of lumped terms, then their adsorbed species, behind the responses; returns the place behind them."""
-    source = 4 * len(net) + len(ints["long_side"]) + len(ints["term_reaction"]) + len(ints["response_start"]) // 2
+    source = 4 * len(net) + len(ints["long_side"]) + len(ints["term_reaction"]) + 1 + len(ints["response_start"]) // 2
     for kind, start in (("lump_species", ints["lump_start"]), ("adsorbed_species", ints["adsorbed_start"])):
         for q, term in enumerate(ints["lump_term"]):
             for s in ints[kind][start[q] : start[q + 1]]:
