@@ -18,6 +18,10 @@ ROWS = [{"p": "10 bar", "A": 5e5, "n": 0.2, "Ea": 9e3}, {"p": 1e3, "A": 2e3, "n"
 SERIES = {"T": [350.0, 2500.0], "p": [1e3, "20 bar"], "clamp": True,
           "c": [[4.1, 0.6, -0.06, 0.01], [1.9, 0.25, -0.02, 0.003], [-0.2, 0.07, 0.01, 0.0]]}
 
+
+COMPLEX = {"shape": "nonlinear", "B": [0.7, 0.5, 0.4], "symmetry": 2, "wavenumbers": [150.0, [900.0, 2]], "imaginary": 800.0,
+           "electronic": [[1, 0.0], [3, 700.0]], "rotors": [{"barrier": 6e3, "fold": 2, "B": 5.0}]}
+
 LAWS: dict[str, list[dict[str, Any]]] = {
     "known at a temperature": [{"law": "known at a temperature", "k": 3.0, "at": "60 °C", "Ea": 2e4, "n": 0.4}],
     "Lindemann": [{"law": "Lindemann", **LIMITS, **WITH_PARTNERS}],
@@ -40,6 +44,14 @@ LAWS: dict[str, list[dict[str, Any]]] = {
     "Chebyshev": [{"law": "Chebyshev", **SERIES}],
     "Chebyshev, by T alone": [{"law": "Chebyshev", **SERIES, "c": [[4.1], [0.3]]}],
     "Chebyshev, by p alone": [{"law": "Chebyshev", **SERIES, "c": [[4.1, 0.3, -0.1]]}],
+    "hard-sphere collision": [{"law": "hard-sphere collision", "diameter": "3.4 Å", "E0": 3e4, "P": 0.2}],
+    "Eyring": [{"law": "Eyring", "dH": "40 kJ/mol", "dS": "-90 J/(mol K)", "standard_state": "1 mol/L"}],
+    "Eyring, at a pressure": [{"law": "Eyring", "dH": 3e4, "dS": -70.0, "kappa": 0.4, "standard_state": "1 atm"}],
+    "transition state": [{"law": "transition state", "E0": 2e4, "complex": COMPLEX}],
+    "transition state, Wigner": [{"law": "transition state", "E0": -3e3, "tunnelling": "Wigner", "complex": COMPLEX}],
+    "transition state, Eckart": [{"law": "transition state", "E0": 3e4, "tunnelling": "Eckart", "complex": COMPLEX},
+                                 {"law": "transition state", "E0": 5e4, "complex": COMPLEX},
+                                 {"law": "Arrhenius", "A": 3e4}],
     "several terms": [{"law": "SRI", **LIMITS, "F": SRI, **ALONE}, {"law": "pressure table", "rows": ROWS},
                       {"law": "Arrhenius", "A": 3e4}, {"law": "Chebyshev", **SERIES},
                       {"law": "Troe", **LIMITS, "F_cent": 0.4}, {"law": "activated", **ACTIVATED, **WITH_PARTNERS}],

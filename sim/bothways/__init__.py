@@ -10,6 +10,7 @@ from .along import Contributions, contributions
 from .audit import Audit, audit
 from .batch import program_version, run
 from .case import Case, build_case, read_case
+from .collisions import implied_reverse_area
 from .endpoint import Verdict, verdict
 from .equilibrium import Equilibrium, equilibrium
 from .errors import BothwaysError, InputError, SolverError
@@ -23,7 +24,8 @@ __version__ = program_version()
 
 __all__ = ["Audit", "BothwaysError", "Case", "Contributions", "Equations", "Equilibrium", "InputError", "Mechanism",
            "Remark", "SolverError", "Trajectory", "Verdict", "audit", "build_case", "build_mechanism", "bundled_cases",
-           "bundled_mechanisms", "contributions", "equilibrium", "read_case", "read_mechanism", "read_trajectory", "run",
+           "bundled_mechanisms", "contributions", "equilibrium", "implied_reverse_area", "read_case", "read_mechanism",
+           "read_trajectory", "run",
            "verdict", "write_mechanism", "write_trajectory"]
 
 

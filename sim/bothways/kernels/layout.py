@@ -10,9 +10,9 @@ from collections.abc import Sequence
 from ..compiled import compiled, span
 
 SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALL_OFFS", "GROUPS", "LONG", "BLOCK", "CURVES",
-         "COLUMNS", "RESPONSES", "DILUTED", "LUMPS", "LUMP_ENTRIES")
+         "COLUMNS", "RESPONSES", "DILUTED", "LUMPS", "LUMP_ENTRIES", "COMPLEXES")
 (SPECIES, REACTIONS, EXPRESSIONS, TERMS, BODIES, FALL_OFFS, GROUPS, LONG, BLOCK, CURVES, COLUMNS, RESPONSES, DILUTED,
- LUMPS, LUMP_ENTRIES) = range(len(SIZES))
+ LUMPS, LUMP_ENTRIES, COMPLEXES) = range(len(SIZES))
 
 INTS = (
     "range_start",      # (S + 1) first temperature range of each species, and behind them of each transition state
@@ -51,6 +51,9 @@ INTS = (
     "adsorbed_species",  # (E') species in adsorption groups
     "adsorbed_expression",  # (E') expression of their adsorption constant
     "plain_term",       # mass-action terms of the reactions that have lumped ones
+    "complex_term",     # (K) terms with a transition state
+    "complex_start",    # (K + 1) first of the reactant molecules that make it
+    "complex_molecule",  # their species
     "group_start",      # (G + 1) partner groups: first named species
     "group_species",    # named species of the groups
     "made_species",     # (K) species that reactions make, in order of how many do,
@@ -85,6 +88,7 @@ FLOATS = (
     "lump_power",       # (E) power common to both directions
     "adsorbed_power",   # (E') of the concentration in the adsorption group
     "adsorption_power",  # (L) of the adsorption group
+    "complex_wigner",   # (K) h c ν‡/k_B of Wigner's tunnelling [K], 0 without
     "group_default",    # (G) efficiency of species not named
     "group_excess",     # efficiency of the named ones above the default
     "extra_weight",     # weights of the partials named by extra_source
@@ -111,6 +115,7 @@ WORK = (
     "log_broadening", "broadening",  # (L) F
     "curve_centre", "curve_centre_slope",  # (U) log10 of the centre and its slope
     "curve_factor",     # (U) ln of what stands beside it
+    "complex_gibbs", "complex_enthalpy", "complex_heat_capacity", "complex_heat_capacity_slope",  # (K) as of the species
     "pressure",         # (1) of the gas [Pa], kept where a law asks for it
     "column", "column_slope",  # (COLUMNS) Chebyshev sums over the powers in 1/T, and their slopes
     "activity",         # (N + 1) a = c/E

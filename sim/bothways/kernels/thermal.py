@@ -9,6 +9,7 @@ import numpy as np
 
 from ..compiled import compiled
 from . import layout as at
+from .complexes import set_complex_slopes, set_complexes
 from .elementary import exp_array
 from .fall_off import set_centres
 from .layout import view
@@ -70,6 +71,7 @@ def _limits(T, ints, floats, work):
     inverse = 1.0 / T
     for e in range(log_k.size):
         log_k[e] = log_A[e] + power[e] * log_T - theta[e] * inverse
+    set_complexes(T, ints, floats, work)
     exp_array(log_k, view(work, ints, _K_LIMIT))
 
 
@@ -119,6 +121,7 @@ def set_slopes(T, ints, floats, work):
     power, theta, k_slope = view(floats, ints, _POWER), view(floats, ints, _THETA), view(work, ints, _K_SLOPE)
     for e in range(k_slope.size):
         k_slope[e] = (power[e] + theta[e] / T) / T
+    set_complex_slopes(T, ints, floats, work)
     _reverse_slopes(ints, work, slope)
     seen[at.SEEN_SLOPES] = T
 

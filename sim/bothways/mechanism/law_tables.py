@@ -9,8 +9,8 @@ from typing import Any
 import numpy as np
 
 from ..rates import Law
-from ..rates.law import AdsorptionGroup, Broadening, Curve, Expression, PressureNodes, Series
-from .model import Mechanism, Partner, Reaction
+from ..rates.law import AdsorptionGroup, Broadening, Complex, Curve, Expression, PressureNodes, Series
+from .model import Mechanism, Partner, Reaction, Term
 from .orders import Orders
 
 _INT_KEYS = ("body_term", "body_group", "fall_term", "fall_low", "fall_group", "curve_term", "curve_low",
@@ -33,8 +33,7 @@ class _Lists(dict[str, list]):
 
 def law_tables(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     """Adds the laws to the tables: the first term of every reaction comes first, in the reactions' order."""
-    ordered = [(j, r.terms[0]) for j, r in enumerate(mechanism.reactions)]
-    ordered += [(j, term) for j, r in enumerate(mechanism.reactions) for term in r.terms[1:]]
+    ordered = ordered_terms(mechanism)
     lists = _Lists()
     lists.expressions = [term.law.expressions()[0] for _, term in ordered]
     for t, (j, term) in enumerate(ordered):
@@ -58,6 +57,12 @@ def law_tables(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     floats["log_A"], floats["power"], floats["theta"], sign = (np.array(c, dtype=float) for c in columns)
     floats["term_sign"] = sign[: len(ordered)]
     _groups(list(lists.groups), ints, floats)
+
+
+def ordered_terms(mechanism: Mechanism) -> list[tuple[int, Term]]:
+    """The terms as the tables have them, each with the place of its reaction."""
+    first = [(j, r.terms[0]) for j, r in enumerate(mechanism.reactions)]
+    return first + [(j, term) for j, r in enumerate(mechanism.reactions) for term in r.terms[1:]]
 
 
 def _places(lists: _Lists, term: int, expressions: Sequence[Expression]) -> list[int]:
@@ -106,8 +111,12 @@ def _adsorption(lists: _Lists, term: int, group: int | None, part: AdsorptionGro
         _append(lists, body_term=term, body_group=group)
 
 
+def _complex(lists: _Lists, term: int, group: None, part: Complex, places: list[int]) -> None:
+    """Stands behind the species in the thermal tables."""
+
+
 _BLOCKS: dict[type, Callable[..., Any]] = {Broadening: _fall_off, Curve: _curve, PressureNodes: _pressure_table,
-                                           Series: _series, AdsorptionGroup: _adsorption}
+                                           Series: _series, AdsorptionGroup: _adsorption, Complex: _complex}
 
 
 def _lumped(lists: _Lists, term: int, mechanism: Mechanism, reaction: Reaction, orders: Orders, law: Law) -> None:

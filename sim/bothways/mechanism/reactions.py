@@ -11,7 +11,7 @@ import numpy as np
 from ..constants import GAS_CONSTANT
 from ..entry import Entry
 from ..errors import InputError, hint
-from ..rates import OWN_PARTNER, PRESSURE, Arrhenius, LawContext, is_lumped, partner_of, read_law
+from ..rates import OWN_PARTNER, PRESSURE, Arrhenius, LawContext, Setting, is_lumped, partner_of, read_law
 from ..rates.arrhenius import read_expression
 from ..units import UnitSystem
 from .equation import Equation, parse_equation
@@ -26,7 +26,7 @@ _UNLIMITED = 200.0, 3000.0
 """Temperatures [K] that laws are checked over where the potentials' data have no ends."""
 
 
-def read_reactions(top: Entry, units: UnitSystem, species: Sequence[Species]) -> tuple[Reaction, ...]:
+def read_reactions(top: Entry, units: UnitSystem, species: Sequence[Species], setting: Setting) -> tuple[Reaction, ...]:
     """All reactions of a document; raises InputError at the first fault, in one entry or between two."""
     entries = top.get("reaction", [])
     if not isinstance(entries, (list, tuple)):
@@ -35,7 +35,7 @@ def read_reactions(top: Entry, units: UnitSystem, species: Sequence[Species]) ->
     seen: dict[tuple, tuple[str, Reaction]] = {}
     for number, data in enumerate(entries, 1):
         entry = _entry(data, number, top, units)
-        reaction = _one(entry, by_name)
+        reaction = _one(entry, by_name, setting)
         _check_laws(reaction, entry, fits)
         _compare_with_earlier(reaction, entry, seen)
         seen[reaction.equation.key] = (entry.place, reaction)
@@ -47,13 +47,14 @@ def _entry(data: Any, number: int, top: Entry, units: UnitSystem) -> Entry:
     return Entry(data, f"reaction {number}" + (f" '{stated}'" if isinstance(stated, str) else ""), top.file, units)
 
 
-def _one(entry: Entry, species: Mapping[str, Species]) -> Reaction:
+def _one(entry: Entry, species: Mapping[str, Species], setting: Setting) -> Reaction:
     equation = _equation(entry, species)
     _refuse_reverse(entry)
     _refuse_orders(entry)
     source, one_way = entry.text("source", ""), entry.flag("published_one_way")
     reverse = _published_reverse(entry, equation)
-    reaction = Reaction(equation, _terms(entry, equation, species), source, one_way, reverse, read_equilibrium(entry))
+    terms = _terms(entry, equation, species, setting)
+    reaction = Reaction(equation, terms, source, one_way, reverse, read_equilibrium(entry))
     entry.done()
     return reaction
 
@@ -102,7 +103,7 @@ def _check_balance(entry: Entry, equation: Equation, species: Mapping[str, Speci
                           remedy="correct the equation or the formulas")
 
 
-def _terms(entry: Entry, equation: Equation, species: Mapping[str, Species]) -> tuple[Term, ...]:
+def _terms(entry: Entry, equation: Equation, species: Mapping[str, Species], setting: Setting) -> tuple[Term, ...]:
     forward = entry.get("forward", what="a table, or a list of tables, that states the forward law")
     several = isinstance(forward, (list, tuple))
     tables = list(forward) if several else [forward]
@@ -110,9 +111,13 @@ def _terms(entry: Entry, equation: Equation, species: Mapping[str, Species]) -> 
         raise entry.error("no forward term", expected="at least one", remedy="state the forward law", key="forward")
     shared = _partner_keys(entry, species)
     terms = []
+    reactants, products = (tuple((species[name], count) for name, count in side)
+                           for side in (equation.reactants, equation.products))
+    order = sum(count for _, count in equation.reactants)
+    context = LawContext(order, equation.partner, len(tables) > 1, reactants, products, species, setting)
     for k, data in enumerate(tables, 1):
         place = f"{entry.place}.forward" + (f"[{k}]" if several else "")
-        terms.append(_term(entry.sub(data, place), equation, species, shared, len(tables) > 1))
+        terms.append(_term(entry.sub(data, place), equation, context, species, shared))
     if shared is not None and not any(term.partner for term in terms):
         raise _needless(entry)
     return tuple(terms)
@@ -127,20 +132,20 @@ _WHY_NO_M = {OWN_PARTNER: ("fall-off reaction", "the law says that a partner tak
              PRESSURE: ("law of pressure", "the pressure, whatever the gas is made of, stands for partners")}
 
 
-def _term(entry: Entry, equation: Equation, species: Mapping[str, Species], shared: Partner | None,
-          several: bool) -> Term:
+def _term(entry: Entry, equation: Equation, context: LawContext, species: Mapping[str, Species],
+          shared: Partner | None) -> Term:
     _refuse_reverse(entry)
     kind = partner_of(entry)
-    if equation.partner and kind in _WHY_NO_M:
+    if context.partner_in_equation and kind in _WHY_NO_M:
         of, why = _WHY_NO_M[kind]
         raise entry.error(f"M stands in the equation of a {of}", expected="no M",
                           remedy=f"leave M out of the equation: {why}")
     orders = read_orders(entry, equation, net_of(equation), species, is_lumped(entry))
-    order = sum(orders.forward.values()) if orders else sum(count for _, count in equation.reactants)
-    law = read_law(entry, LawContext(order, equation.partner, several and not orders, species))
+    order = sum(orders.forward.values()) if orders else context.order
+    law = read_law(entry, replace(context, order=order, of_several=context.of_several and not orders))
     own = _partner_keys(entry, species)
     entry.done()
-    if not (kind == OWN_PARTNER or equation.partner):
+    if not (kind == OWN_PARTNER or context.partner_in_equation):
         if own is not None:
             raise _needless(entry)
         return Term(law, None, orders)

@@ -5,6 +5,7 @@ from typing import Any
 
 from ..entry import Entry, odd_character
 from ..errors import InputError, shown
+from ..rates import Setting
 from ..rates.law import PressureNodes, Series
 from ..thermo import Substance, read_potential
 from ..thermo.polynomial import LARGEST
@@ -13,7 +14,7 @@ from ..units import UnitSystem, unit_system
 from .elements import ATOMIC_MASS, ATOMIC_NUMBER, check_atoms, parse_formula, unknown_element
 from .equation import ARROWS, is_coefficient
 from .model import Mechanism, Reaction, Species, copy_document
-from .phase import GAS, PHASES, SOLUTION, read_standard
+from .phase import GAS, LITRE, PER_LITRE, PHASES, SOLUTION, read_standard
 from .reactions import read_reactions
 from .stated_equilibria import resolve
 
@@ -41,7 +42,8 @@ def build(document: Mapping[str, Any], file: object = None, lenient: bool = Fals
     sources = head.texts("sources", ())
     head.done(also=("units",))
     species = _species(top, units, masses, standard, _LEAST_HEAT_CAPACITY[phase])
-    reactions = read_reactions(top, units, species)
+    setting = Setting(joins, standard, LITRE if state == PER_LITRE else None, ATOMIC_NUMBER)
+    reactions = read_reactions(top, units, species, setting)
     if phase == SOLUTION:
         _refuse_partners(top, reactions)
     found = resolve(top, species, reactions, standard, joins, lenient)

@@ -100,7 +100,8 @@ def _pack(mechanism: Mechanism, ints: dict, floats: dict) -> tuple[np.ndarray, n
              "GROUPS": len(floats["group_default"]), "LONG": len(ints["long_side"]),
              "BLOCK": len(ints["block_row"]), "CURVES": len(ints["curve_term"]), "COLUMNS": len(ints["column_start"]) - 1,
              "RESPONSES": len(ints["response_start"]) // 2, "DILUTED": len(ints["diluted_reaction"]),
-             "LUMPS": len(ints["lump_term"]), "LUMP_ENTRIES": len(ints["lump_species"]) + len(ints["adsorbed_species"])}
+             "LUMPS": len(ints["lump_term"]), "LUMP_ENTRIES": len(ints["lump_species"]) + len(ints["adsorbed_species"]),
+             "COMPLEXES": len(ints["complex_term"])}
     header = [sizes[name] for name in layout.SIZES]
     lengths = [[np.size(ints[name]) for name in layout.INTS], [np.size(floats[name]) for name in layout.FLOATS],
                _work_lengths(sizes)]
@@ -127,18 +128,20 @@ def _work_lengths(sizes: dict[str, int]) -> list[int]:
                               "concentration", "energy", "border_column"), n)
     by_name |= dict.fromkeys(("log_centre", "log_centre_slope", "log_broadening", "broadening", "centre", "fall_ratio",
                               "fall_log_ratio", "fall_partner", "fall_reduced", "fall_by_reduced", "fall_by_centre"), fall)
+    by_name |= dict.fromkeys(("complex_gibbs", "complex_enthalpy", "complex_heat_capacity", "complex_heat_capacity_slope"),
+                             sizes["COMPLEXES"])
     return [by_name.get(name, r) for name in layout.WORK]
 
 
 def _lowest_temperature(ints: dict, floats: dict, sides: list[list[list[int]]]) -> float:
     """The lowest temperature [K] on a grid at which no side's sum of ln E leaves the range of exp."""
-    reduction = floats["reduction"].reshape(-1, 2)
+    n = len(ints["range_start"]) - 1 - len(ints["complex_term"])
+    reduction = floats["reduction"].reshape(-1, 2)[:n]
     size, power = floats["standard"]
     longest = max((len(m) for both in sides for m in both), default=1)
-    n = len(reduction)
     padded = np.array([m + [n] * (longest - len(m)) for both in sides for m in both], dtype=int).reshape(-1, longest)
     for T in (50.0, 75.0, 100.0, 125.0, 150.0, 175.0, 200.0, 250.0, 300.0, 400.0, 500.0):
-        log_scale = np.log(size) - power * np.log(T) - g_over_RT(ints, floats, T) + reduction @ [1 / T, 1.0]
+        log_scale = np.log(size) - power * np.log(T) - g_over_RT(ints, floats, T)[:n] + reduction @ [1 / T, 1.0]
         sums = np.append(log_scale, 0.0)[padded].sum(axis=1)
         if np.max(np.abs(np.concatenate([log_scale, sums]))) < _LARGEST_SUM:
             return T

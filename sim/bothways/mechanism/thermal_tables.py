@@ -1,11 +1,16 @@
-"""How the species' potentials lie in the flat tables: polynomials, modes, and element terms that keep exponents small."""
+"""How potentials lie in the flat tables: polynomials, modes, and element terms that keep exponents small.
+
+Behind the species stand the transition states, whose element terms are those of their reactants together.
+"""
 
 import itertools
 
 import numpy as np
 
+from ..rates.law import Complex
 from ..thermo import Modes
 from ..thermo.polynomial import Ranges, extended
+from .law_tables import ordered_terms
 from .model import Mechanism
 from .phase import GAS
 
@@ -16,9 +21,26 @@ def thermal_tables(mechanism: Mechanism, ints: dict, floats: dict) -> None:
     """Adds the potentials to the tables."""
     species, gas = mechanism.species, mechanism.phase == GAS
     shifts = [np.log(mechanism.standard_pressure / s.standard_pressure) if gas else 0.0 for s in species]
-    _polynomials([mechanism.ranges(k) for k in range(len(species))], shifts, ints, floats)
-    _modes([s.potential.modes() for s in species], ints, floats)
-    floats["reduction"] = _reduction(mechanism, ints, floats).ravel()
+    complexes = _complexes(mechanism, ints, floats)
+    ranges = [mechanism.ranges(k) for k in range(len(species))] + [c.ranges for c in complexes]
+    _polynomials(ranges, shifts + [0.0] * len(complexes), ints, floats)
+    _modes([s.potential.modes() for s in species] + [c.modes for c in complexes], ints, floats)
+    own = _reduction(mechanism, ints, floats)
+    molecules = np.split(own[ints["complex_molecule"]], ints["complex_start"][1:-1])
+    floats["reduction"] = np.vstack([own, *(m.sum(axis=0) for m in molecules[: len(complexes)])]).ravel()
+
+
+def _complexes(mechanism: Mechanism, ints: dict, floats: dict) -> list[Complex]:
+    """The transition states in the order of their terms, with the molecules that make each."""
+    terms = [(t, j, part) for t, (j, term) in enumerate(ordered_terms(mechanism))
+             if isinstance(part := term.law.part(), Complex)]
+    molecules = [[mechanism.index(name) for name, count in mechanism.reactions[j].equation.reactants for _ in range(count)]
+                 for _, j, _ in terms]
+    ints["complex_term"] = np.array([t for t, _, _ in terms], dtype=int)
+    ints["complex_start"] = np.cumsum([0] + [len(m) for m in molecules])
+    ints["complex_molecule"] = np.array([k for m in molecules for k in m], dtype=int)
+    floats["complex_wigner"] = np.array([part.wigner for _, _, part in terms])
+    return [part for _, _, part in terms]
 
 
 def _polynomials(ranges: list[Ranges], shifts: list[float], ints: dict, floats: dict) -> None:
@@ -48,14 +70,14 @@ def _reduction(mechanism: Mechanism, ints: dict, floats: dict) -> np.ndarray:
     """Element terms alpha/T + beta, (N, 2), that bring g/RT near zero; being sums over elements they change no K."""
     atoms = mechanism.element_matrix.T
     design = np.vstack([np.hstack([atoms / t, atoms]) for t in _REDUCTION_TEMPERATURES])
-    g = np.concatenate([g_over_RT(ints, floats, t) for t in _REDUCTION_TEMPERATURES])
+    g = np.concatenate([g_over_RT(ints, floats, t)[: len(atoms)] for t in _REDUCTION_TEMPERATURES])
     weights = np.linalg.lstsq(design, g, rcond=None)[0]
     m = atoms.shape[1]
     return np.column_stack([atoms @ weights[:m], atoms @ weights[m:]])
 
 
 def g_over_RT(ints: dict, floats: dict, temperature: float) -> np.ndarray:
-    """g°/RT of all species (N) in plain NumPy, so that reading a file compiles nothing."""
+    """g°/RT of all species, and behind them transition states, in plain NumPy, so that reading a file compiles nothing."""
     first, T = ints["range_start"][:-1], temperature
     place = first + np.add.reduceat(floats["range_top"] <= T, first, dtype=int)
     a = floats["range_row"].reshape(-1, 9)[place].T

@@ -5,13 +5,25 @@ read(entry, context), which returns a frozen object after `law.Law`; LUMPED wher
 """
 
 from ..entry import Entry
-from . import activated, arrhenius, chebyshev, fall_off, hougen_watson, known_rate, pressure_table, sri
+from . import (
+    activated,
+    arrhenius,
+    chebyshev,
+    collision,
+    eyring,
+    fall_off,
+    hougen_watson,
+    known_rate,
+    pressure_table,
+    sri,
+    transition_state,
+)
 from .arrhenius import Arrhenius
 from .fall_off import FallOffLaw
-from .law import IN_EQUATION, OWN_PARTNER, PRESSURE, Fault, Law, LawContext
+from .law import IN_EQUATION, OWN_PARTNER, PRESSURE, Fault, Law, LawContext, Setting
 
 _LAWS = {law.NAME: law for law in (arrhenius, fall_off.Lindemann, fall_off.Troe, sri, activated, pressure_table, chebyshev,
-                                   hougen_watson, known_rate)}
+                                   collision, eyring, transition_state, hougen_watson, known_rate)}
 
 
 def read_law(entry: Entry, context: LawContext) -> Law:
@@ -34,5 +46,5 @@ def law_named(entry: Entry):
     return _LAWS[entry.text("law", choices=tuple(_LAWS))]
 
 
-__all__ = ["IN_EQUATION", "OWN_PARTNER", "PRESSURE", "Arrhenius", "FallOffLaw", "Fault", "Law", "LawContext", "is_lumped",
-           "partner_of", "read_law"]
+__all__ = ["IN_EQUATION", "OWN_PARTNER", "PRESSURE", "Arrhenius", "FallOffLaw", "Fault", "Law", "LawContext", "Setting",
+           "is_lumped", "partner_of", "read_law"]

@@ -1,8 +1,11 @@
 """What every rate law offers, and what reading one needs to know."""
 
-from collections.abc import Collection, Sequence
-from dataclasses import dataclass
+from collections.abc import Collection, Mapping, Sequence
+from dataclasses import dataclass, field
 from typing import ClassVar, NamedTuple, Protocol
+
+from ..thermo import Modes, Ranges
+from .participants import Side
 
 IN_EQUATION, OWN_PARTNER, PRESSURE = "in the equation", "of its own", "pressure"
 """Where a law's partner stands: as M in the equation if at all, in the law itself, or nowhere since pressure counts."""
@@ -54,6 +57,15 @@ class AdsorptionGroup(NamedTuple):
     power: float
 
 
+class Complex(NamedTuple):
+    """A transition state: its ranges, modes and standard pressure [Pa], and h c ν‡/k_B [K] where tunnelling is Wigner's."""
+
+    ranges: Ranges
+    modes: Modes
+    standard_pressure: float
+    wigner: float
+
+
 class Fault(NamedTuple):
     """What is wrong with a law, at which temperature [K], and what would be right."""
 
@@ -63,14 +75,28 @@ class Fault(NamedTuple):
 
 
 @dataclass(frozen=True)
+class Setting:
+    """What a mechanism's head tells its laws: joins, standard pressure [Pa] of a gas, standard concentration [mol/m3] of a
+    solution, atomic numbers of the elements."""
+
+    joins: str = "closed"
+    standard_pressure: float = float("nan")
+    standard_concentration: float | None = None
+    atomic_numbers: Mapping[str, int] = field(default_factory=dict)
+
+
+@dataclass(frozen=True)
 class LawContext:
     """What the reaction tells its law: its forward order, whether M stands in the equation, one of several terms that may
-    be negative, the mechanism's species."""
+    be negative; both sides, the mechanism's species and its setting."""
 
     order: float
     partner_in_equation: bool = False
     of_several: bool = False
+    reactants: Side = ()
+    products: Side = ()
     species: Collection[str] = ()
+    setting: Setting = Setting()
 
 
 class Law(Protocol):
@@ -87,7 +113,7 @@ class Law(Protocol):
     def expressions(self) -> tuple[Expression, ...]:
         """One exponential; of a curve two, the high- and the low-pressure limit; of a pressure table one a row."""
 
-    def part(self) -> Broadening | Curve | PressureNodes | Series | AdsorptionGroup | None:
+    def part(self) -> Broadening | Curve | PressureNodes | Series | AdsorptionGroup | Complex | None:
         """What the kernels need besides the expressions; None where k is the expression itself (times a partner)."""
         return None
 

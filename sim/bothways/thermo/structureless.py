@@ -43,11 +43,11 @@ def one_row(cp: float, energy: float, entropy: float) -> Ranges:
     return Ranges(np.array([0.0, np.inf]), row[None, :])
 
 
-def check_gas(entry: Entry, substance: Substance) -> None:
+def check_gas(entry: Entry, substance: Substance, key: str = "form") -> None:
     """An error in a solution: translation as in an ideal gas is no part of a dissolved species."""
     if not substance.standard_pressure > 0:
-        raise entry.error(f"'{entry.text('form')}' of a dissolved species", key="form", expected="a form without translation",
-                          remedy="state its potential in solution, or make the phase an ideal gas")
+        raise entry.error(f"'{entry.text(key)}' in a solution", key=key, expected=f"a {key} that asks for no translation",
+                          remedy="state another, or make the phase an ideal gas")
 
 
 def read(entry: Entry, substance: Substance) -> StructurelessParticle:
