@@ -112,3 +112,10 @@ def test_E0_above_reactants_whose_data_end_above_zero(refusals: Refusals) -> Non
 def test_no_partner(refusals: Refusals, keys: str, entry: str, text: str) -> None:
     refusals.write(changed(MECHANISM, (ARRHENIUS_1, f"forward = {{ {keys} }}")))
     refusals.refused("small.toml", f"{R1}.forward{entry}", text)
+
+
+@pytest.mark.parametrize("keys", [f'{SPHERES}, diameter = "3 Å", E0 = 300', f"{THEORY}, E0 = 1, {COMPLEX}"])
+def test_no_gas_in_a_solution(refusals: Refusals, keys: str) -> None:
+    head = ('phase = "ideal gas"\nstandard_pressure = "1 bar"', 'phase = "ideal solution"\nstandard_state = "1 mol/L"')
+    refusals.write(changed(MECHANISM, head, (ARRHENIUS_2, f"forward = {{ {keys} }}")))
+    refusals.refused("small.toml", f"{R2}.forward.law", "in a solution", "a law of dissolved species")

@@ -147,4 +147,4 @@ def test_structureless_particle(refusals: Refusals, keys: str, entry: str, text:
 def test_no_gas_in_a_solution(refusals: Refusals, keys: str) -> None:
     head = ('phase = "ideal gas"\nstandard_pressure = "1 bar"', 'phase = "ideal solution"\nstandard_state = "1 mol/L"')
     refusals.write(changed(MECHANISM, head, (CONSTANT_Q, f"potential = {{ {keys} }}")))
-    refusals.refused("small.toml", "species.Q.potential.form", "in a solution", "a form that asks for no translation")
+    refusals.refused("small.toml", "species.Q.potential.form", "in a solution", "a form of dissolved species")

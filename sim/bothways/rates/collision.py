@@ -14,6 +14,7 @@ from dataclasses import dataclass
 from ..constants import AVOGADRO, GAS_CONSTANT
 from ..entry import Entry
 from ..errors import shown
+from ..thermo.structureless import check_gas
 from .arrhenius import Arrhenius
 from .law import IN_EQUATION, Expression, Fault, Law, LawContext
 from .participants import Participant, check_orders, energy_at_zero, lowest_data, molecules
@@ -65,6 +66,7 @@ def reduced_mass(pair: Sequence[Participant]) -> float:
 
 def read(entry: Entry, context: LawContext) -> Collision:
     """The law from its table; errors: not two molecules, no diameter, E0 below what the products ask for."""
+    check_gas(entry, context.setting.standard_pressure, key="law")
     pair = molecules(context.reactants)
     if len(pair) != 2 or context.partner_in_equation:
         raise entry.error(f"{len(pair)} molecules{' and M' * context.partner_in_equation} as reactants", key="law",

@@ -105,7 +105,7 @@ def read(entry: Entry, context: LawContext) -> TransitionState:
     check_orders(entry, context.order, context.reactants)
     tunnelling = entry.text("tunnelling", "none", choices=TUNNELLING)
     inner, substance = entry.table("complex"), _substance(context)
-    check_gas(entry, substance, key="law")
+    check_gas(entry, substance.standard_pressure, key="law")
     molecule = read_molecule(inner, substance, imaginary=1)
     imaginary = _imaginary(inner)
     energy = _energy(entry, inner, context, substance, molecule)

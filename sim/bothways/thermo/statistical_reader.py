@@ -28,7 +28,7 @@ _EQUAL = 0.01
 
 def read(entry: Entry, substance: Substance) -> StatisticalMechanics:
     """The form from its table; errors: what no molecule of this formula can have, H0 and H298 both or neither stated."""
-    check_gas(entry, substance)
+    check_gas(entry, substance.standard_pressure)
     molecule = read_molecule(entry, substance, imaginary=0)
     return replace(molecule, energy=read_energy(entry, substance, molecule))
 

@@ -43,15 +43,15 @@ def one_row(cp: float, energy: float, entropy: float) -> Ranges:
     return Ranges(np.array([0.0, np.inf]), row[None, :])
 
 
-def check_gas(entry: Entry, substance: Substance, key: str = "form") -> None:
-    """An error in a solution: translation as in an ideal gas is no part of a dissolved species."""
-    if not substance.standard_pressure > 0:
-        raise entry.error(f"'{entry.text(key)}' in a solution", key=key, expected=f"a {key} that asks for no translation",
+def check_gas(entry: Entry, standard_pressure: float, key: str = "form") -> None:
+    """An error in a solution, whose standard pressure is NaN: what moves as in an ideal gas is no dissolved species."""
+    if not standard_pressure > 0:
+        raise entry.error(f"'{entry.text(key)}' in a solution", key=key, expected=f"a {key} of dissolved species",
                           remedy="state another, or make the phase an ideal gas")
 
 
 def read(entry: Entry, substance: Substance) -> StructurelessParticle:
     """The form from its table."""
-    check_gas(entry, substance)
+    check_gas(entry, substance.standard_pressure)
     energy = entry.quantity("energy", "molar energy")
     return StructurelessParticle(energy, substance.molar_mass, substance.standard_pressure)
