@@ -16,6 +16,7 @@ from bothways.batch import run_and_judge
 from bothways.endpoint import Kind, Verdict
 from bothways.integrate import Status
 from networks import CLOSURES, network
+from test_relaxation import chain, from_ratio
 
 ISOTHERMAL = [closure for closure in CLOSURES if closure[1] == "isothermal"]
 AT_REST = (Kind.LANDED, Kind.APART, Kind.CANNOT_START)
@@ -80,3 +81,11 @@ def test_2000_networks_land_or_say_so(decades: float) -> None:
     faults, short = census(range(2000), decades, 4.0)
     print(f"{decades:g} decades: {len(short)} of 2000 did not land: {short}")
     assert not faults, "\n".join(faults)
+
+
+@pytest.mark.parametrize("slow, told", [(1e-10, False), (1e-18, True)])
+def test_a_slow_step_beyond_double_precision_is_called_that(slow: float, told: bool) -> None:
+    """A ⇌ B ⇌ C, the second step 1e10 or 1e18 times slower than the first: not yet, and whether it can be resolved."""
+    case = chain([("A", "B", 1.0), ("B", "C", slow)], from_ratio(1.0, 2.0, 3.0), {"A": 1})
+    _, last = run_and_judge(case)
+    assert last.kind is Kind.NOT_YET and ("more than double precision" in last.sentence) == told

@@ -28,6 +28,8 @@ TRACE = 1e-12
 """Species below this mole fraction at equilibrium are not compared [-]."""
 CLOSEST = 1e-6
 """Relative deviation from equilibrium that counts as landed, or ten times rtol where that is larger [-]."""
+RESOLVED = 1e15
+"""Where the slowest relaxation takes this many times the fastest, round-off of the fast drowns the slow [-]."""
 RELAXED = 1e-9
 """Where every |A|/RT is below this the reactions have nothing left to do [-]."""
 
@@ -80,7 +82,12 @@ class Target:
         return bool(abs(row @ (self.full.amount - charge)) > 1e-9 * size)
 
     def relaxation_time(self, mole_fraction: np.ndarray) -> float:
-        """The slowest relaxation time at the own equilibrium [s]; 0 where nothing can change, inf if unresolved.
+        """The slowest relaxation time at the own equilibrium [s]; 0 where nothing can change, inf if unresolved."""
+        times = self.relaxation_times(mole_fraction)
+        return float(times[0]) if times.size else 0.0
+
+    def relaxation_times(self, mole_fraction: np.ndarray) -> np.ndarray:
+        """All relaxation times at the own equilibrium [s], the slowest first.
 
         Species that are traces both there and in the state (N) follow the others.
         """
@@ -92,9 +99,8 @@ class Target:
         contents = Contents(self.restricted)
         rows = further_rows(contents, own.amount, own.temperature, case.holds, case.heat, case.own_heat_capacity)
         capacity = contents.heat_capacity(own.amount, own.temperature, case.holds) + case.own_heat_capacity
-        times = relaxation_times(nu, rates, own.amount, rank, rows,
-                                 (own.mole_fraction < TRACE) & (mole_fraction < TRACE), case.transfer / capacity)
-        return float(times[0]) if times.size else 0.0
+        return relaxation_times(nu, rates, own.amount, rank, rows,
+                                (own.mole_fraction < TRACE) & (mole_fraction < TRACE), case.transfer / capacity)
 
 
 def _relative(x: np.ndarray, reference: np.ndarray) -> np.ndarray:
@@ -254,8 +260,11 @@ def _landed(v: Verdict) -> str:
 def _not_yet(v: Verdict) -> str:
     worst = v.least_relaxed(1)
     where = f"; least relaxed is {worst[0][0]} with A/RT = {worst[0][1]:.3g}" if worst else ""
-    time = v.relaxation_time
+    times = v.target.relaxation_times(v.mole_fraction)
+    time = float(times[0]) if times.size else 0.0
     slowest = f"takes {time:.3g} s" if np.isfinite(time) else "is slower than double precision resolves"
+    if times.size and np.isfinite(time) and time > RESOLVED * times[-1]:
+        slowest += f", {time / times[-1]:.0e} times the fastest: more than double precision is sure to resolve"
     return f"{_off(v)}{where}; near equilibrium the slowest relaxation {slowest}"
 
 
