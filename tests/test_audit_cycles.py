@@ -52,6 +52,16 @@ def test_a_cycle_within_its_uncertainties_is_a_notice() -> None:
 def test_what_equilibria_fix_is_no_data_of_the_species() -> None:
     """Their entropies and enthalpies count from anywhere, and two may be alike: none of that is a finding."""
     assert audit(build_mechanism(triangle(0.1))).findings == ()
+    alike = triangle(0.1)
+    for reaction in alike["reaction"]:
+        reaction["equilibrium"] |= {"K": 1.0, "dH": 0.0}
+    assert audit(build_mechanism(alike)).findings == ()
+    species = {name: {"formula": name, "potential": {"form": "constant heat capacity", "cp": cp}}
+               for name, cp in (("N2O4", 77.0), ("NO2", 37.0))}
+    equilibrium = {"K": 0.148, "at": 298.15, "dH": "57.1 kJ/mol"}
+    gas = {"mechanism": {"name": "dissociation", "phase": "ideal gas", "standard_pressure": "1 bar"}, "species": species,
+           "reaction": [{"equation": "N2O4 ⇌ 2 NO2", "forward": {"law": "Arrhenius", "A": 1.0}, "equilibrium": equilibrium}]}
+    assert audit(build_mechanism(gas)).findings == ()
 
 
 def test_the_repair_is_the_least_weighted_one() -> None:

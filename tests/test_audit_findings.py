@@ -148,6 +148,16 @@ def test_published_reverse_of_fall_off_is_that_of_its_high_pressure_limit() -> N
     assert row.value == pytest.approx(1.0, rel=1e-9)
 
 
+def test_published_reverse_beside_a_partner() -> None:
+    """H2 + M ⇌ 2 H + M: k_f/K_c of third order, whatever the concentration of M."""
+    T, equation = 1500.0, "H2 + M ⇌ 2 H + M"
+    j = [r["equation"] for r in sound()["reaction"]].index(equation)
+    derived = 4.577e19 * 1e-6 * T**-1.4 * np.exp(-104380 * 4.184 / (R * T)) / Reference(sound()).K_c(T)[j]
+    published = {"A": float(derived) * 1e12}  # cm6/(mol2 s)
+    [row] = found("published reverse", lambda d: entry(d, equation).update(published_reverse=published), temperatures=(T, T))
+    assert row.value == pytest.approx(1.0, rel=1e-9)
+
+
 def test_published_one_way() -> None:
     def spoil(equation: str) -> Any:
         return lambda d: entry(d, equation).update(published_one_way=True)
