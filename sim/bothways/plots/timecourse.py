@@ -5,10 +5,11 @@ from collections.abc import Sequence
 import numpy as np
 from matplotlib.figure import Figure
 
+from ..mechanism.phase import LITRE
 from ..outfile import StrPath
 from ..trajectory import Trajectory
 from . import style
-from .composition import linear_panel, log_panel, state_panel
+from .composition import CONCENTRATION, FRACTION, linear_panel, log_panel, state_panel
 from .labels import formula
 from .panels import draw_panels
 from .parts import Curve, Panel
@@ -57,10 +58,13 @@ def _shown_name(trajectory: Trajectory, k: int) -> str:
 
 def _panels(trajectory: Trajectory, chosen: Selection) -> list[Panel]:
     styles = style.line_styles()
-    major, trace = ([Curve(_shown_name(trajectory, k), trajectory.mole_fraction[:, k], *next(styles)) for k in some]
+    solution = bool(np.isnan(trajectory.pressure[0]))
+    values = trajectory.concentration / LITRE if solution else trajectory.mole_fraction
+    quantity = CONCENTRATION if solution else FRACTION
+    major, trace = ([Curve(_shown_name(trajectory, k), values[:, k], *next(styles)) for k in some]
                     for some in (chosen.major, chosen.trace))
     state = (state_panel("temperature / K", trajectory.temperature, HEIGHTS["temperature"]), _pressure_panel(trajectory))
-    return [panel for panel in (*state, linear_panel(major), log_panel(trace)) if panel]
+    return [panel for panel in (*state, linear_panel(major, quantity), log_panel(trace, quantity)) if panel]
 
 
 def _pressure_panel(trajectory: Trajectory) -> Panel | None:
