@@ -78,7 +78,7 @@ def test_the_files_themselves_are_accepted(refusals: Refusals) -> None:
     refusals.write(MECHANISM, CASE)
     assert main(["run", "case.toml"]) == 0 and main(["equilibrium", "case.toml"]) == 0
     out = refusals.capsys.readouterr().out
-    assert " bar" not in out and "Pa" not in out and "inert heat capacity 4000 J/K" in out
+    assert " bar" not in out and "Pa" not in out and "inert heat capacity 4 kJ/K" in out
 
 
 WRONG_MECHANISM = [

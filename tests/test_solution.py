@@ -3,7 +3,7 @@
 import numpy as np
 import pytest
 
-from bothways import Equations, build_case, build_mechanism, equilibrium, verdict
+from bothways import Equations, build_case, build_mechanism, equilibrium, read_case, verdict
 from bothways.batch import run_and_judge
 from bothways.contents import Contents
 from bothways.endpoint import Kind, target_of
@@ -145,3 +145,29 @@ def test_reverse_constants_are_those_of_the_rates():
         derived = Contents(mechanism).reverse_constants(341.0, total=float(np.sum(c)))
         product = [np.prod([c[NAMES.index(s)] ** count for s, count in r.equation.products]) for r in mechanism.reactions]
         assert reverse == pytest.approx(derived * product, rel=1e-12)
+
+
+def test_the_pilot_kettle_keeps_its_energy_and_ends_at_the_jackets_equilibrium():
+    """∫UA (T_jacket - T) dt is the change of H with the solvent's heat; left for long, it ends where the jacket's warmth says."""
+    case = read_case("coupling-kettle")
+    run, found = run_and_judge(case)
+    contents, own = Contents(case.mechanism), case.own_heat_capacity
+    H = [contents.enthalpy(n, T) + own * T for n, T in zip(run.amount, run.temperature, strict=True)]
+    received = run.extra["heat_received"]
+    assert received == pytest.approx(np.array(H) - H[0], abs=1e-6 * np.max(np.abs(received)))
+    jacket = np.interp(run.time, [0.0, 900.0], [298.15, 328.15])
+    dense = np.linspace(0, run.time[-1], 20001)
+    flow = 1600.0 * (np.interp(dense, [0.0, 900.0], [298.15, 328.15]) - np.interp(dense, run.time, run.temperature))
+    assert received[-1] == pytest.approx(np.sum((flow[1:] + flow[:-1]) / 2 * np.diff(dense)), rel=0.02)
+    assert run.temperature.max() > jacket.max() + 15 and np.all(np.diff(run.entropy_produced) >= 0)
+    assert found.kind is Kind.NOT_YET and run.amount[-1, case.mechanism.index("A")] < 0.1 * run.amount[0, 0]
+    assert f"highest temperature {run.temperature.max():.6g} K" in summary(case, run, found)
+
+
+@pytest.mark.parametrize("name", ["coupling-kettle", "ester-flask", "butene-basket"])
+def test_bundled_cases_end_at_their_equilibrium(name):
+    case = read_case(name)
+    case = build_case({**case.document, "until": {"equilibrium": True}})
+    run, found = run_and_judge(case)
+    assert found.kind is Kind.LANDED and found.largest_deviation < 1e-6 and run.complete
+    assert "steepest pressure rise" not in run.milestones  # no reaction of butenes changes the amount

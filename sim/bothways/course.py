@@ -18,6 +18,8 @@ import numpy as np
 Apply = Callable[[np.ndarray], np.ndarray]
 SETTLING, POWER = 0.05, 5
 """Share of the step in which what is not the course's own has died out [-], and how sharply the two are told apart."""
+ROUND_OFF = 1e-12
+"""A quantity that changes by less than this part of itself does not rise [-]."""
 
 
 class Course:
@@ -95,10 +97,10 @@ class Course:
 
     def steepest(self, weights: np.ndarray) -> tuple[float, float] | None:
         """Time at which the rise of y @ weights is fastest, and that rate over the one at the start (inf if that is not
-        positive); None if it never rises. Weights (n)."""
+        positive); None if it never rises beyond round-off. Weights (n)."""
         values = self.states @ weights
         means = np.diff(values) / np.diff(self.times)
-        if not np.max(means) > 0:
+        if not np.max(means) > 0 or np.ptp(values) <= ROUND_OFF * np.max(np.abs(values)):
             return None
         fast = np.flatnonzero(means >= 0.5 * np.max(means))  # a step is too short to hide a faster rise elsewhere
         rates = {int(k): float(self.slope(int(k)) @ weights) for k in np.union1d(fast, fast + 1)}

@@ -100,7 +100,8 @@ class Target:
         rows = further_rows(contents, own.amount, own.temperature, case.holds, case.heat, case.own_heat_capacity)
         capacity = contents.heat_capacity(own.amount, own.temperature, case.holds) + case.own_heat_capacity
         return relaxation_times(nu, rates, own.amount, rank, rows,
-                                (own.mole_fraction < TRACE) & (mole_fraction < TRACE), case.transfer / capacity)
+                                (own.mole_fraction < TRACE) & (mole_fraction < TRACE),
+                                case.transfer / capacity if case.transfer else 0.0)
 
 
 def _relative(x: np.ndarray, reference: np.ndarray) -> np.ndarray:

@@ -14,6 +14,8 @@ NOTABLE_RISE = {"temperature": 50.0, "pressure": 1.2}
 """A temperature rise above this [K] or a pressure ratio above this [-] calls for the caution (our own thresholds)."""
 CAUTION = ("a model is not a safety case: a rise of temperature or pressure like this can hurt people. Measure it "
            "(calorimetry), follow the local codes, and have a licensed or otherwise competent person judge it.")
+NOTABLE_PEAK = 1.0
+"""A temperature this far above those of start and end [K] is told."""
 _SHOWN = 8
 ACTIVITIES = {PER_LITRE: "activities are concentrations over 1 mol/L", FRACTION: "activities are mole fractions"}
 """What stands for the activities of a solution, by its standard state."""
@@ -21,7 +23,7 @@ ACTIVITIES = {PER_LITRE: "activities are concentrations over 1 mol/L", FRACTION:
 
 def summary(case: Case, run: Trajectory, verdict: Verdict, title: str = "") -> str:
     """The summary of a run, a line a fact, about 80 columns wide."""
-    sections = [("mechanism", [_mechanism(case)]), ("vessel", [_vessel(case)]), ("charge", [_charge(case)]),
+    sections = [("mechanism", _wrapped(_mechanism(case))), ("vessel", _wrapped(_vessel(case))), ("charge", [_charge(case)]),
                 ("milestones", _milestones(run)),
                 ("safety", _safety(case, run)), ("end", _end(run)), ("equilibrium", _equilibrium(verdict)),
                 ("balances", [_balances(run)]),
@@ -67,7 +69,7 @@ def _vessel(case: Case) -> str:
     if case.holds == "pressure":
         held = f"constant pressure {pressure_text(case.charge.pressure)}, {volume_text(case.charge.volume)} at the start"
     inertia = f", thermal inertia {case.thermal_inertia:g}" if case.thermal_inertia != 1 else ""
-    inert = f", inert heat capacity {case.inert_heat_capacity:.5g} J/K" if case.inert_heat_capacity else ""
+    inert = f", inert heat capacity {case.inert_heat_capacity / 1e3:.5g} kJ/K" if case.inert_heat_capacity else ""
     return f"closed, {held}, {_heat(case)}{inertia}{inert}"
 
 
@@ -135,6 +137,9 @@ def _end(run: Trajectory) -> list[str]:
     if run.volume[-1] != run.volume[0]:
         state += f", {volume_text(float(run.volume[-1]))}"
     lines = [state if run.complete else f"{state} (incomplete: {run.reason})"]
+    k = int(np.argmax(run.temperature))
+    if run.temperature[k] > max(run.temperature[0], run.temperature[-1]) + NOTABLE_PEAK:
+        lines.append(f"highest temperature {run.temperature[k]:.6g} K, near {time_text(float(run.time[k]))}")
     x, unit, what = run.mole_fraction[-1], 1.0, "mole fractions"
     if np.isnan(run.pressure[-1]):
         unit, what = float(np.sum(run.concentration[-1])) / LITRE, "concentrations in mol/L"

@@ -27,6 +27,8 @@ from .words import case_of, instants, words
 LABELS = {"Helmholtz energy": r"$(A - A_\mathrm{eq})$ / J", "Gibbs energy": r"$(G - G_\mathrm{eq})$ / J",
           "negative entropy": r"$(S_\mathrm{eq} - S)$ / (J K$^{-1}$)"}
 """Of the potential above its minimum, by `Trajectory.potential_name`."""
+TO_COME = r"$S_\mathrm{produced}$ yet to come / (J K$^{-1}$)"
+"""Of vessels that exchange heat: the entropy that is still to be produced by the end of the run."""
 NOISE = 16.0 * float(np.finfo(np.float64).eps)
 """A sum over species is known no better than this share of its largest value [-]."""
 SAME = 1e-13
@@ -66,7 +68,7 @@ def approach(trajectory: Trajectory, width: str = "page") -> Figure:
     size = style.size_named(width)
     found = distance(trajectory)
     views = _views(trajectory, found)
-    label = LABELS.get(trajectory.potential_name, f"{trajectory.potential_name} above its minimum")
+    label = LABELS.get(trajectory.potential_name, TO_COME)
     panels = [_panel(label, (Curve(label, found.potential),)),
               _panel(r"largest |affinity| / $RT$", (Curve("affinity", found.affinity),)),
               replace(_panel(r"furthest $|x/x_\mathrm{eq} - 1|$", _stretches(trajectory, found, views[0])), named=True)]
@@ -99,7 +101,9 @@ def _above(values: Array, floor: float) -> Array:
 
 
 def _potential(trajectory: Trajectory, mechanism: Mechanism) -> Array:
-    """The potential above its value at equilibrium."""
+    """The potential above its value at equilibrium; where heat is exchanged, above that at the end of the run."""
+    if trajectory.potential_name not in LABELS:
+        return _above(trajectory.potential - trajectory.potential[-1], NOISE * float(np.max(np.abs(trajectory.potential))))
     n, T, V = (np.asarray(trajectory.extra[f"equilibrium_{name}"])[None] for name in ("amount", "temperature", "volume"))
     contents = Contents(mechanism)
     if trajectory.potential_name == "negative entropy":
