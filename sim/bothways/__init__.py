@@ -11,22 +11,23 @@ from .audit import Audit, audit
 from .batch import program_version, run
 from .case import Case, build_case, read_case
 from .collisions import implied_reverse_area
+from .compare import Comparison, compare
 from .endpoint import Verdict, verdict
 from .equilibrium import Equilibrium, equilibrium
 from .errors import BothwaysError, InputError, SolverError
 from .mechanism import Mechanism, bundled_cases, bundled_mechanisms, read_mechanism, write_mechanism
 from .mechanism import build as build_mechanism
+from .reduce import Reduced, reduce
 from .remarks import Remark
 from .trajectory import Trajectory, read_trajectory, write_trajectory
 from .vessel import Equations
 
 __version__ = program_version()
 
-__all__ = ["Audit", "BothwaysError", "Case", "Contributions", "Equations", "Equilibrium", "InputError", "Mechanism",
-           "Remark", "SolverError", "Trajectory", "Verdict", "audit", "build_case", "build_mechanism", "bundled_cases",
-           "bundled_mechanisms", "contributions", "equilibrium", "implied_reverse_area", "read_case", "read_mechanism",
-           "read_trajectory", "run",
-           "verdict", "write_mechanism", "write_trajectory"]
+__all__ = ["Audit", "BothwaysError", "Case", "Comparison", "Contributions", "Equations", "Equilibrium", "InputError",
+           "Mechanism", "Reduced", "Remark", "SolverError", "Trajectory", "Verdict", "audit", "build_case", "build_mechanism",
+           "bundled_cases", "bundled_mechanisms", "compare", "contributions", "equilibrium", "implied_reverse_area",
+           "read_case", "read_mechanism", "read_trajectory", "reduce", "run", "verdict", "write_mechanism", "write_trajectory"]
 
 
 def __getattr__(name: str) -> Any:

@@ -14,6 +14,9 @@ SMALLEST_PEAK = 1e-7
 FASTER = 2.0
 """A rise is steepest at an instant of its own, not at the start, if its rate grew by this factor."""
 
+LEAST_RISE = 1e-6
+"""T or p that never rises by more than this share of the start is not rising: round-off has steep places too [-]."""
+
 
 def milestones(case: Case, equations: Equations, columns: Mapping[str, np.ndarray],
                peaks: Collection[str] | None = None) -> dict[str, float]:
@@ -26,7 +29,7 @@ def milestones(case: Case, equations: Equations, columns: Mapping[str, np.ndarra
     if len(columns["time"]) < 3:
         return {}
     course = course_of(case, equations, columns)
-    found = _steepest_rise(case, course) | _half_conversions(case, course)
+    found = steepest_rise(case, course) | half_conversions(case, course)
     return found | _peaks(case, course, columns["amount"], case.mechanism.names if peaks is None else peaks)
 
 
@@ -44,7 +47,7 @@ def _states(case: Case, columns: Mapping[str, np.ndarray]) -> np.ndarray:
     return np.column_stack([part, columns["temperature"]])
 
 
-def _steepest_rise(case: Case, course: Course) -> dict[str, float]:
+def steepest_rise(case: Case, course: Course) -> dict[str, float]:
     """Where dT/dt (adiabatic) or dp/dt (isothermal, constant volume) is largest, by the zero of its derivative."""
     if case.heat in ("adiabatic", "jacket"):
         name, weights = "steepest temperature rise", np.append(np.zeros(course.states.shape[1] - 1), 1.0)
@@ -52,11 +55,15 @@ def _steepest_rise(case: Case, course: Course) -> dict[str, float]:
         name, weights = "steepest pressure rise", np.append(np.ones(course.states.shape[1] - 1), 0.0)
     else:
         return {}
+    values = course.states @ weights
+    if np.max(values) <= (1.0 + LEAST_RISE) * values[0]:
+        return {}
     found = course.steepest(weights)
     return {name: found[0]} if found and found[1] > FASTER else {}
 
 
-def _half_conversions(case: Case, course: Course) -> dict[str, float]:
+def half_conversions(case: Case, course: Course) -> dict[str, float]:
+    """When each charged species that falls to half its charge has done so [s]."""
     found = {}
     for k in np.flatnonzero(course.states[0, :-1] > 0):
         t = course.first_crossing(int(k), 0.5 * course.states[0, k])

@@ -36,7 +36,7 @@ def _conserved(mechanism: Mechanism) -> np.ndarray:
     if not mechanism.reactions:
         return np.eye(len(mechanism.species), dtype=np.int64)
     elements = conserved_by_elements(mechanism)
-    span = _Span()
+    span = Span()
     return np.vstack([*(row for row in elements if span.grows(row)), extra_conserved(mechanism)])
 
 
@@ -47,7 +47,7 @@ def extra_conserved(mechanism: Mechanism) -> np.ndarray:
     """
     elements = conserved_by_elements(mechanism)
     null_space = left_null_space((r.net for r in mechanism.reactions), mechanism.names)
-    span = _Span()
+    span = Span()
     extra = len(null_space) - sum(span.grows(row) for row in elements)
     candidates = (row for row in _candidates(mechanism, elements, null_space) if span.grows(row))
     return np.array(list(islice(candidates, extra)), dtype=np.int64).reshape(extra, len(mechanism.species))
@@ -127,11 +127,11 @@ def _primitive_rows(numbers: np.ndarray) -> set[tuple[int, ...]]:
 
 
 def _rank(rows: np.ndarray) -> int:
-    span = _Span()
+    span = Span()
     return sum(span.grows(row) for row in rows)
 
 
-class _Span:
+class Span:
     """The span of integer rows, kept in echelon form with exact integers."""
 
     def __init__(self) -> None:

@@ -7,7 +7,6 @@ from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
-from scipy.stats import qmc
 
 from ..entry import Entry
 from ..errors import shown
@@ -16,9 +15,10 @@ from .keys import Value, kind_of, leaves, read_value
 SPACINGS: dict[str, tuple[Callable, Callable]] = {
     "linear": (lambda x: x, lambda x: x), "logarithmic": (np.log, np.exp), "reciprocal": (np.reciprocal, np.reciprocal)}
 """Evenly spaced in x, ln x or 1/x (as on an Arrhenius plot): the function and its inverse."""
-SAMPLERS = {"Latin hypercube": qmc.LatinHypercube, "Sobol": qmc.Sobol}
-"""M.D. McKay, R.J. Beckman, W.J. Conover, Technometrics 21 (1979) 239, doi:10.1080/00401706.1979.10489755; I.M. Sobol',
-USSR Comput. Math. Math. Phys. 7 (4) (1967) 86, doi:10.1016/0041-5553(67)90144-9, scrambled."""
+SAMPLERS = {"Latin hypercube": "LatinHypercube", "Sobol": "Sobol"}
+"""Names in `scipy.stats.qmc`. M.D. McKay, R.J. Beckman, W.J. Conover, Technometrics 21 (1979) 239,
+doi:10.1080/00401706.1979.10489755; I.M. Sobol', USSR Comput. Math. Math. Phys. 7 (4) (1967) 86,
+doi:10.1016/0041-5553(67)90144-9, scrambled."""
 MOST_POINTS = 1_000_000
 """Of one range or one set of samples."""
 
@@ -103,7 +103,9 @@ def read_samples(entry: Entry) -> tuple[tuple[str, ...], list[tuple[Value, ...]]
 
 def _shares(method: str, dimensions: int, count: int, seed: int) -> np.ndarray:
     """Points (count, dimensions) of the unit cube, the same for the same seed."""
-    sampler = SAMPLERS[method]
+    from scipy.stats import qmc  # takes longer to load than all else
+
+    sampler = getattr(qmc, SAMPLERS[method])
     name = "rng" if "rng" in inspect.signature(sampler).parameters else "seed"  # renamed in SciPy 1.15
     with warnings.catch_warnings():
         warnings.simplefilter("ignore", UserWarning)  # of Sobol' points not a power of 2 in number, which balance less

@@ -16,6 +16,7 @@ from .equation import ARROWS, is_coefficient
 from .model import Mechanism, Reaction, Species, copy_document
 from .phase import GAS, LITRE, PER_LITRE, PHASES, SOLUTION, read_standard
 from .reactions import read_reactions
+from .reduction import check_reduction
 from .stated_equilibria import resolve
 
 JOINS = ("closed", "as published")
@@ -33,8 +34,9 @@ def build(document: Mapping[str, Any], file: object = None, lenient: bool = Fals
     top = Entry(document, "", file)
     if "mechanism" not in top.data and "case" in top.data:
         raise top.error("this is a case", expected="a mechanism", remedy="'bothways run' runs a case")
-    top.expect("mechanism", "elements", "species", "reaction")
+    top.expect("mechanism", "elements", "species", "reaction", "reduction")
     head = _head(top)
+    check_reduction(top)
     units, masses = head.units, {**ATOMIC_MASS, **_building_blocks(top)}
     name, phase = head.text("name"), head.text("phase", choices=PHASES)
     standard, state = read_standard(head, phase)
