@@ -268,6 +268,17 @@ def test_a_provenance_with_unknown_keys_is_refused() -> None:
         build_mechanism({**partners(), "reduction": {"parent": "x"}})
 
 
+def test_the_bundled_skeleton_is_the_part_of_its_parent_that_it_says() -> None:
+    parent, skeleton = read_mechanism("methane"), read_mechanism("methane-skeletal")
+    notes = skeleton.document["reduction"]
+    assert notes["parent_sha256"] == hashlib.sha256(to_toml(parent.document).encode()).hexdigest(), "make it anew: see its head"
+    part = part_of(parent, skeleton.names, name="methane-skeletal")
+    assert {**part, "reduction": notes} == skeleton.document and len(skeleton.names) == 24
+    start = {"fuel": {"CH4": 1}, "oxidiser": {"O2": 1, "N2": 3.76}, "temperature": 1650.0, "pressure": "7 atm"}
+    case = build_case({"start": {**start, "equivalence_ratio": 1.3}, "until": {"time": "20 ms"}}, mechanism=parent)
+    assert not compare(parent, skeleton, over=[case], limits={"ignition": 0.1, "end-temperature": 20.0}).beyond
+
+
 @pytest.mark.slow
 @pytest.mark.parametrize("limit, most", [(0.1, 30), (0.3, 25)])
 def test_methane_over_the_range_of_published_skeletal_mechanisms(limit: float, most: int) -> None:
