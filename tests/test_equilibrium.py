@@ -282,7 +282,7 @@ def test_equilibrium_knows_nothing_of_rates():
     files = list(Path(continuation.__file__).parent.glob("*.py"))
     allowed = {"components", "constants", "contents", "errors", "mechanism.model", "mechanism.phase", "numpy",
                "math", "fractions", "functools",
-               "dataclasses", "collections.abc", "itertools", *(path.stem for path in files)}
+               "dataclasses", "collections.abc", "itertools", "scipy.linalg.lapack", *(path.stem for path in files)}
     assert len(files) > 8
     for path in files:
         for node in ast.walk(ast.parse(path.read_text())):

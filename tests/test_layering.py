@@ -49,8 +49,10 @@ ISLANDS = {"integrate": {"compiled", "sums"}, "kernels": {"compiled", "constants
 NEVER = {"equilibrium": ("rates", "balance", "kernels.rates", "kernels.equations", "vessel", "integrate")}
 """Modules that a part may not import though they stand below it: the equilibrium shares no kinetics with a run."""
 THIRD_PARTY = {"numpy": None, "scipy": None, "numba": {"compiled", "kernels"}, "llvmlite": {"compiled"}, "h5py": {"hdf5"},
-               "matplotlib": {"plots"}, "tqdm": {"cli", "sweep"}}
+               "matplotlib": {"plots"}, "tqdm": {"cli"}, "distributed": {"cli"}}
 """Libraries, and the parts that are their doors (None: any). llvmlite comes with numba."""
+OPTIONAL = {"distributed": "cluster"}
+"""Libraries that are imported where they are asked for, and the extra that brings them."""
 
 ROOT = Path(bothways.__file__).parent
 Sources = Mapping[str, str]
@@ -157,7 +159,9 @@ def test_every_file_was_read() -> None:
 def test_libraries_are_those_the_package_asks_for() -> None:
     project = tomllib.loads((Path(__file__).parents[1] / "pyproject.toml").read_text(encoding="utf-8"))["project"]
     asked = {requirement.partition(">")[0].strip() for requirement in project["dependencies"]}
-    assert asked == set(THIRD_PARTY) - {"llvmlite"}
+    assert asked == set(THIRD_PARTY) - {"llvmlite", *OPTIONAL}
+    for library, extra in OPTIONAL.items():
+        assert library in " ".join(project["optional-dependencies"][extra])
 
 
 # ---- the check itself can fail

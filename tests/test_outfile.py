@@ -30,13 +30,13 @@ def test_existing_file_is_refused_and_replaced_on_demand(path):
 
 
 def test_file_that_appears_meanwhile_is_not_overwritten(path, monkeypatch):
-    write = outfile._write_to_disk
+    write = outfile._force
 
     def slow(*arguments):
         write(*arguments)
         path.write_text("of someone else")
 
-    monkeypatch.setattr(outfile, "_write_to_disk", slow)
+    monkeypatch.setattr(outfile, "_force", slow)
     with pytest.raises(InputError, match="exists already"):
         write_trajectory(path, made())
     assert path.read_text() == "of someone else" and os.listdir(path.parent) == ["run.h5"]

@@ -15,19 +15,22 @@ from .compare import Comparison, compare
 from .endpoint import Verdict, verdict
 from .equilibrium import Equilibrium, equilibrium
 from .errors import BothwaysError, InputError, SolverError
+from .grid import Grid, build_grid, read_grid
 from .mechanism import Mechanism, bundled_cases, bundled_mechanisms, read_mechanism, write_mechanism
 from .mechanism import build as build_mechanism
 from .reduce import Reduced, reduce
 from .remarks import Remark
+from .sweep import Sweep, read_sweep, sweep
 from .trajectory import Trajectory, read_trajectory, write_trajectory
 from .vessel import Equations
 
 __version__ = program_version()
 
-__all__ = ["Audit", "BothwaysError", "Case", "Comparison", "Contributions", "Equations", "Equilibrium", "InputError",
-           "Mechanism", "Reduced", "Remark", "SolverError", "Trajectory", "Verdict", "audit", "build_case", "build_mechanism",
-           "bundled_cases", "bundled_mechanisms", "compare", "contributions", "equilibrium", "implied_reverse_area",
-           "read_case", "read_mechanism", "read_trajectory", "reduce", "run", "verdict", "write_mechanism", "write_trajectory"]
+__all__ = ["Audit", "BothwaysError", "Case", "Comparison", "Contributions", "Equations", "Equilibrium", "Grid",
+           "InputError", "Mechanism", "Reduced", "Remark", "SolverError", "Sweep", "Trajectory", "Verdict", "audit",
+           "build_case", "build_grid", "build_mechanism", "bundled_cases", "bundled_mechanisms", "compare",
+           "contributions", "equilibrium", "implied_reverse_area", "read_case", "read_grid", "read_mechanism",
+           "read_sweep", "read_trajectory", "reduce", "run", "sweep", "verdict", "write_mechanism", "write_trajectory"]
 
 
 def __getattr__(name: str) -> Any:

@@ -16,9 +16,11 @@ from .heating import Heating, check_schedule, key_of, read_heating
 from .integrate import DEFAULT_METHOD, METHODS
 from .kernels.equations import HIGHEST_TEMPERATURE
 from .mechanism import Mechanism, bundled_cases, read_mechanism
+from .mechanism.equation import Equation
 from .mechanism.files import mechanism_path, read_toml
 from .mechanism.model import copy_document
 from .mechanism.phase import SOLUTION
+from .rates import Law
 from .schedule import Schedule
 from .vessel import HOLDS, Equations
 
@@ -214,9 +216,11 @@ def _output(top: Entry, file: object, end: float) -> tuple[Path | None, tuple[fl
     times, rates = _times(output, end), output.flag("rates")
     output.known.add(RUNAWAYS)
     output.done()
+    if not name:
+        return None, times, rates
     bundled = file in bundled_cases().values()
     folder = Path(str(file)).parent if file and not bundled else Path()
-    return (folder / name if name else None), times, rates
+    return folder / name, times, rates
 
 
 def _runaways(output: Entry, mechanism: Mechanism) -> tuple[float, ...]:
@@ -264,12 +268,20 @@ def _check_laws(start: Entry, mechanism: Mechanism, charge: Charge) -> None:
 
 def law_outside(mechanism: Mechanism, temperature: float, pressure: float) -> str:
     """The first rate law that says nothing at T [K] and p [Pa], and why, as text; empty if all hold."""
-    for reaction in mechanism.reactions:
-        for term in reaction.terms:
-            problem = term.law.outside(temperature, pressure)
-            if problem:
-                return f"'{reaction.equation}': {problem}"
+    for equation, law in _bounded_laws(mechanism):
+        problem = law.outside(temperature, pressure)
+        if problem:
+            return f"'{equation}': {problem}"
     return ""
+
+
+def _bounded_laws(mechanism: Mechanism) -> list[tuple[Equation, Law]]:
+    """The rate laws that do not hold everywhere, found once."""
+    kept = mechanism.__dict__
+    if "_bounded_laws" not in kept:
+        kept["_bounded_laws"] = [(r.equation, term.law) for r in mechanism.reactions for term in r.terms
+                                 if type(term.law).outside is not Law.outside]
+    return kept["_bounded_laws"]
 
 
 def species_outside(mechanism: Mechanism, temperature: float, margin: float) -> list[str]:

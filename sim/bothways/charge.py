@@ -169,7 +169,10 @@ def _needs(start: Entry, mechanism: Mechanism, fuel: np.ndarray, oxidiser: np.nd
                 raise start.error(f"{mechanism.names[k]} holds {', '.join(sorted(strange))}, whose complete products are "
                                   "not known", expected=f"the elements {', '.join(_OXYGEN_NEEDED)} only",
                                   remedy="state a mole_ratio", key=key)
-    return np.array([oxygen_atoms_needed(s.composition) for s in mechanism.species])
+    kept = mechanism.__dict__
+    if "_oxygen_needed" not in kept:
+        kept["_oxygen_needed"] = np.array([oxygen_atoms_needed(s.composition) for s in mechanism.species])
+    return kept["_oxygen_needed"]
 
 
 def oxygen_atoms_needed(composition: Mapping[str, int]) -> float:

@@ -63,7 +63,7 @@ class Components:
         """Makes species j the component k; numbers[k, j] must not be zero."""
         self._eliminate(k, j)
         self.basis[k] = j
-        for name in ("formation", "expansion", "logarithms"):
+        for name in ("formation", "expansion", "logarithms", "_totals"):
             self.__dict__.pop(name, None)
 
     def _eliminate(self, k: int, j: int) -> None:
@@ -97,8 +97,15 @@ class Components:
     def totals(self, amount: np.ndarray) -> np.ndarray:
         """Amounts of the components that hold what `amount` (n) holds, (r), each correct to the last bit.
 
-        Exactness matters: with hydrogen and oxygen at 2:1 the excess of either is a difference that is nil.
+        Exactness matters: with hydrogen and oxygen at 2:1 the excess of either is a difference that is nil. Those of the
+        same array are worked out once: they are asked for at every temperature.
         """
+        known = self.__dict__.get("_totals")
+        if known is None or known[0] is not amount:
+            known = self.__dict__["_totals"] = amount, self._exact_totals(amount)
+        return known[1]
+
+    def _exact_totals(self, amount: np.ndarray) -> np.ndarray:
         there = np.flatnonzero(amount)
         numbers, values = self.numbers[:, there], np.ascontiguousarray(amount[there], dtype=float)
         if numbers.dtype == object or np.any(np.abs(numbers) >= _EXACT_FACTOR):

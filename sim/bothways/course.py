@@ -14,6 +14,10 @@ from collections.abc import Callable, Sequence
 from functools import cached_property, partial
 
 import numpy as np
+from scipy.optimize import brentq
+
+_ENOUGH = 1e-9
+"""Of a step: far within the error of the interpolant."""
 
 Apply = Callable[[np.ndarray], np.ndarray]
 SETTLING, POWER = 0.05, 5
@@ -121,16 +125,27 @@ class Course:
 
     def steepest(self, weights: np.ndarray) -> tuple[float, float] | None:
         """Time at which the rise of y @ weights is fastest, and that rate over the one at the start (inf if that is not
-        positive); None if it never rises beyond round-off. Weights (n)."""
+        positive); None if it never rises beyond round-off, or still faster and faster at the end. Weights (n)."""
         values = self.states @ weights
         means = np.diff(values) / np.diff(self.times)
-        if not np.max(means) > 0 or np.ptp(values) <= ROUND_OFF * np.max(np.abs(values)):
+        highest = float(np.max(means))
+        if not highest > 0 or np.ptp(values) <= ROUND_OFF * np.max(np.abs(values)):
             return None
-        fast = np.flatnonzero(means >= 0.5 * np.max(means))  # a step is too short to hide a faster rise elsewhere
-        rates = {int(k): float(self.slope(int(k)) @ weights) for k in np.union1d(fast, fast + 1)}
-        k = max(rates, key=rates.__getitem__)
+        padded = np.concatenate([[-np.inf], means, [-np.inf]])
+        summits = np.flatnonzero((means >= 0.5 * highest) & (means >= padded[:-2]) & (means >= padded[2:]))
+        k = max((self._climbed(int(first), weights) for first in summits), key=lambda k: self.slope(k) @ weights)
+        if k == len(self.times) - 1:
+            return None
         start = float(self.slope(0) @ weights)
-        return self._turn(k, weights), rates[k] / start if start > 0 else np.inf
+        return self._turn(k, weights), float(self.slope(k) @ weights) / start if start > 0 else np.inf
+
+    def _climbed(self, k: int, weights: np.ndarray) -> int:
+        """The step beside interval k, and then next to it as long as it rises, with the fastest rise of y @ weights."""
+        best = max((k, k + 1), key=lambda j: self.slope(j) @ weights)
+        way = 1 if best > k else -1
+        while 0 <= best + way < len(self.times) and self.slope(best + way) @ weights > self.slope(best) @ weights:
+            best += way
+        return best
 
     def fastest(self, values: np.ndarray, gradient: Callable[[np.ndarray], np.ndarray]) -> tuple[float, float] | None:
         """Time at which a quantity of the state rises fastest, and its rate there; None if it never rises.
@@ -177,7 +192,7 @@ class Course:
         def bend(t: float) -> float:
             return float(self.derivatives(t, piece(t), h)[1] @ weights)
 
-        return _root(bend, self.times[k], self.times[k + 1])
+        return _root(bend, self.times[k], self.times[k + 1], _ENOUGH * h)
 
     def _polynomial(self, k: int, component: int) -> tuple[float, ...]:
         """The quintic of one component from step k to k + 1, powers of x = 0…1 rising."""
@@ -231,22 +246,12 @@ def _hermite_slope(x: float) -> np.ndarray:
     return np.concatenate([left, right])
 
 
-def _root(function: Callable[[float], float], start: float, end: float) -> float:
-    """Where a function changes sign between two times: regula falsi with Illinois weights, bisection as safeguard.
+def _root(function: Callable[[float], float], start: float, end: float, near: float = 0.0) -> float:
+    """Where a function changes sign between two times, known to `near` or to round-off; `end` if it does not.
 
-    M. Dowell, P. Jarratt, BIT 11 (1971) 168, doi:10.1007/BF01934364.
+    R.P. Brent, Algorithms for Minimization without Derivatives, 1973, ch. 4, as in SciPy.
     """
-    a, b, at_a, at_b = start, end, function(start), function(end)
-    if at_a * at_b > 0:  # the interpolant rounds a crossing at the very end of a step away
-        return end
-    for k in range(200):
-        if at_b == 0 or abs(b - a) <= 4e-16 * max(abs(a), abs(b)):
-            break
-        t = b - at_b * (b - a) / (at_b - at_a) if k % 4 else 0.5 * (a + b)
-        at_t = function(t)
-        if at_t * at_b < 0:
-            a, at_a = b, at_b
-        else:
-            at_a *= 0.5
-        b, at_b = t, at_t
-    return b
+    try:
+        return float(brentq(function, start, end, xtol=max(near, 1e-300), rtol=4 * np.finfo(float).eps))
+    except ValueError:  # the interpolant rounds a crossing at the very end of a step away
+        return float(end)

@@ -110,12 +110,16 @@ def _relative(x: np.ndarray, reference: np.ndarray) -> np.ndarray:
         return np.where(seen, x / reference - 1.0, 0.0)
 
 
-def target_of(case: Case) -> Target:
-    """Where a case must end."""
+def target_of(case: Case, guess: tuple[np.ndarray, float] | None = None) -> Target:
+    """Where a case must end.
+
+    guess : amounts (N) [mol] and temperature [K] to start the search from, such as where a run did end. The equilibrium is
+        unique and its search ends by criteria of its own, so that this saves time and moves round-off alone.
+    """
     start = _started(case.mechanism, case.charge.amount > 0)
     try:
-        own = equilibrium_of(case, start.restricted, "reactions")
-        full = equilibrium_of(case, start.restricted, "elements") if start.conserves_more else own
+        own = equilibrium_of(case, start.restricted, "reactions", guess=guess)
+        full = equilibrium_of(case, start.restricted, "elements", guess=guess) if start.conserves_more else own
         return Target(case, own, full, start.running, start.restricted)
     except InputError as err:
         raise InputError(f"no equilibrium: {err.problem}", expected=err.expected, file=case.file, entry="start",
@@ -144,20 +148,21 @@ def _started(mechanism: Mechanism, there: np.ndarray) -> _Started:
     return known[key]
 
 
-def equilibrium_of(case: Case, restricted: Mechanism, conserved: str, received: float = 0.0) -> Equilibrium:
+def equilibrium_of(case: Case, restricted: Mechanism, conserved: str, received: float = 0.0,
+                   guess: tuple[np.ndarray, float] | None = None) -> Equilibrium:
     """Where a case ends whose mechanism is `restricted` to what can proceed; received : heat that came from outside [J].
 
-    conserved : "reactions" or "elements", what is held.
+    conserved : "reactions" or "elements", what is held. guess : see `target_of`.
     """
     c = case.charge
     held: dict[str, Any] = {"volume": c.volume} if case.holds == "volume" else {"pressure": c.pressure}
     temperature = case.held_temperature(case.end)
     if temperature is not None:
-        return equilibrium(restricted, c.amount, temperature=temperature, conserved=conserved, **held)
+        return equilibrium(restricted, c.amount, temperature=temperature, conserved=conserved, guess=guess, **held)
     energy = Contents(case.mechanism).energy(c.amount, c.temperature, case.holds) + received
     held["internal_energy" if less(case.mechanism, case.holds) else "enthalpy"] = energy
     return equilibrium(restricted, c.amount, conserved=conserved, own_heat_capacity=case.own_heat_capacity,
-                       reference_temperature=c.temperature, **held)
+                       reference_temperature=c.temperature, guess=guess, **held)
 
 
 @dataclass(frozen=True)
@@ -167,7 +172,6 @@ class Verdict:
     mole_fraction : (N) at the end. deviation : (N) x/x_eq - 1 of species above TRACE there or at equilibrium, 0 of others.
     temperature_deviation : T/T_eq - 1. affinity : (reactions) A/RT at the end, NaN where a species is absent.
     apart : what keeps it from the elements' equilibrium.
-    frozen : equations of the reactions that cannot proceed from this charge.
     """
 
     kind: Kind
@@ -177,7 +181,12 @@ class Verdict:
     temperature_deviation: float
     affinity: np.ndarray = field(repr=False)
     apart: tuple[str, ...]
-    frozen: tuple[str, ...]
+
+    @cached_property
+    def frozen(self) -> tuple[str, ...]:
+        """Equations of the reactions that cannot proceed from this charge."""
+        reactions = self.target.case.mechanism.reactions
+        return tuple(str(r.equation) for r, goes in zip(reactions, self.target.running, strict=True) if not goes)
 
     @cached_property
     def relaxation_time(self) -> float:
@@ -229,9 +238,7 @@ def verdict_of_state(target: Target, amount: np.ndarray, temperature: float, vol
     deviation = target.deviations(fraction)
     affinity = affinities(case.mechanism, amount[None], np.array([temperature]), np.array([volume]))[0] / (R * temperature)
     kind = _kind(target, amount, temperature, affinity)
-    frozen = tuple(str(r.equation) for r, goes in zip(case.mechanism.reactions, target.running, strict=True) if not goes)
-    return Verdict(kind, target, fraction, deviation, temperature / target.own.temperature - 1.0, affinity, target.apart,
-                   frozen)
+    return Verdict(kind, target, fraction, deviation, temperature / target.own.temperature - 1.0, affinity, target.apart)
 
 
 def tolerance(case: Case) -> float:

@@ -6,9 +6,11 @@ general tools (h5py, xarray, netCDF) name each axis by its scale, where else the
 """
 
 import contextlib
+import math
 import re
 from collections.abc import Iterable, Iterator, Mapping
 from dataclasses import dataclass
+from types import MappingProxyType
 from typing import Any
 
 import h5py
@@ -24,6 +26,8 @@ _NOTE_NAME = re.compile(r"[^\W_]([^\x00-\x1f\x7f]*[^\s\x00-\x1f\x7f])?")
 """Names that netCDF can write (NetCDF Users Guide, Permitted Characters in NetCDF Names), slash aside."""
 _LARGE = 16384
 """Values from which on a variable is packed."""
+SLICE = 1024
+"""Rows of a variable that is written slice by slice which are packed together."""
 
 
 @dataclass(frozen=True)
@@ -94,6 +98,34 @@ def _create_variable(file: h5py.File, variable: Variable, data: np.ndarray) -> h
 
 
 @contextlib.contextmanager
+def created(path: StrPath, attributes: Mapping[str, Note], cached: int = 0) -> Iterator[h5py.File]:
+    """A new file to be filled piece by piece, for what is too large to be made in memory.
+
+    cached : bytes of each variable that the library may keep in memory; 0 is best where whole slices are written.
+    """
+    with h5py.File(path, "w", track_order=True, rdcc_nbytes=cached) as file:
+        file.attrs.update(attributes)
+        yield file
+
+
+def add_variable(file: h5py.File, variable: Variable, values: Any) -> None:
+    """A variable with all its values; the scales of its axes must be there."""
+    _create_variable(file, variable, np.array(values, dtype=_TEXT if variable.text else np.float64))
+
+
+def add_empty(file: h5py.File, variable: Variable, attributes: Mapping[str, Note] = MappingProxyType({})) -> h5py.Dataset:
+    """A variable whose values are still to be written, slice by slice along its first axis."""
+    shape = tuple(len(file[dim]) for dim in variable.dims)
+    large = math.prod(shape) >= _LARGE and not variable.text
+    packing = {"chunks": (min(SLICE, shape[0]), *shape[1:]), "compression": "gzip", "shuffle": True} if large else {}
+    dataset = file.create_dataset(variable.name, shape, _TEXT if variable.text else np.float64, track_order=True, **packing)
+    dataset.attrs.update({"units": variable.units, "long_name": variable.long_name, **attributes})
+    for axis, dim in enumerate(variable.dims):
+        dataset.dims[axis].attach_scale(file[dim])
+    return dataset
+
+
+@contextlib.contextmanager
 def opened(path: StrPath, kind: str) -> Iterator[h5py.File]:
     """The file opened for reading; a failure within is an InputError naming it. `kind`: what it should be."""
     try:
@@ -132,9 +164,35 @@ def read_variable(file: h5py.File, variable: Variable) -> Any:
     return tuple(values) if variable.dims else values
 
 
+def read_slice(file: h5py.File, variable: Variable, start: int, stop: int) -> np.ndarray:
+    """A stretch of a variable of numbers along its first axis."""
+    _check_axes(file[variable.name], variable)
+    return np.asarray(file[variable.name][start:stop], dtype=np.float64)
+
+
+def axes_of(dataset: h5py.Dataset) -> tuple[str, ...]:
+    """The names of a variable's axes."""
+    if dataset.is_scale:
+        return (str(dataset.name).strip("/"),)
+    return tuple(str(axis[0].name).strip("/") if axis else "unnamed" for axis in dataset.dims)
+
+
+def layout_of(file: h5py.File) -> str:
+    """The attribute Conventions, empty if there is none."""
+    return str(attribute(file, "Conventions")) if "Conventions" in file.attrs else ""
+
+
+def layout_in(path: StrPath) -> str:
+    """The layout that a file names; empty where it is no HDF5 file or names none."""
+    try:
+        with opened(path, "") as file:
+            return layout_of(file)
+    except InputError:
+        return ""
+
+
 def _check_axes(dataset: h5py.Dataset, variable: Variable) -> None:
-    attached = (str(axis[0].name).strip("/") if axis else "unnamed" for axis in dataset.dims)
-    names = (variable.name,) if dataset.is_scale else tuple(attached)
+    names = axes_of(dataset)
     if names != variable.dims:
         raise InputError(f"has the axes ({', '.join(names)})", expected=f"({', '.join(variable.dims)})",
                          entry=variable.name)

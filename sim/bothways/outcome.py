@@ -3,14 +3,14 @@
 What a row holds is the table `VARIABLES`; what a full course holds besides, `COURSE`. Rows can be pickled and are small.
 """
 
-from collections.abc import Collection
+from collections.abc import Callable, Collection
 from typing import Any
 
 import numpy as np
 
 from .batch import landing
 from .case import Case
-from .endpoint import Target, target_of, verdict_of_state
+from .endpoint import target_of, verdict_of_state
 from .errors import BothwaysError
 from .hdf5 import Variable
 from .integrate import Outcome, Status, integrate
@@ -26,6 +26,12 @@ COUNTS = ("steps", "rejected", "f_evaluations", "J_evaluations", "factorisations
 VARIABLES: tuple[Variable, ...] = (
     Variable("status", _CASE, "1", "what became of the case", text=True),
     Variable("reason", _CASE, "1", "why the case is not done; empty if it is", text=True),
+    Variable("heat", _CASE, "1", "isothermal or adiabatic", text=True),
+    Variable("holds", _CASE, "1", "what the vessel holds, volume or pressure", text=True),
+    Variable("start_temperature", _CASE, "K", "temperature at the start"),
+    Variable("start_pressure", _CASE, "Pa", "pressure at the start"),
+    Variable("start_volume", _CASE, "m3", "volume at the start"),
+    Variable("start_amount", _SPECIES, "mol", "amount of substance at the start"),
     Variable("steepest_rise", _CASE, "s", "time of the steepest rise of temperature, isothermal: of pressure"),
     Variable("half_conversion", _SPECIES, "s", "time at which half of the charged species is gone"),
     Variable("peak_time", _SPECIES, "s", "time of the largest amount of the intermediate"),
@@ -58,16 +64,17 @@ Along "species": an array (N) in the order of the case's mechanism. In a course:
 """
 
 
-def outcome(case: Case, peaks: Collection[str] = (), course: bool = False) -> Row:
+def outcome(case: Case, peaks: Collection[str] = (), course: bool = False,
+            told: Callable[[int, float, float], None] | None = None) -> Row:
     """Runs a case; milestones, end, equilibrium, verdict and statistics as a row.
 
     peaks : species whose peaks are looked for. course : whether the row shall hold the states at all steps.
+    told : called at each step, see `Recorder`.
     What goes wrong is told in the row ("status", "reason"), not raised; only Ctrl-C is. May be called from many threads.
     """
     row = empty_row(case)
     try:
-        target = target_of(case)
-        return row | _run(case, target, peaks, course)
+        return row | _run(case, peaks, course, told)
     except BothwaysError as err:
         return row | {"status": FAILED, "reason": str(err)}
     except Exception as err:  # a case is not the end of a sweep
@@ -75,20 +82,23 @@ def outcome(case: Case, peaks: Collection[str] = (), course: bool = False) -> Ro
 
 
 def empty_row(case: Case) -> Row:
-    """A row of nothing."""
-    size = len(case.mechanism.names)
+    """A row of a case's start, and of nothing else."""
+    c, size = case.charge, len(case.mechanism.names)
     nothing: Row = {v.name: "" if v.text else np.full(size, np.nan) if v.dims == _SPECIES else np.nan for v in VARIABLES}
-    return nothing | {"seconds": np.nan}
+    return nothing | {"seconds": np.nan, "heat": case.heat, "holds": case.holds, "start_temperature": c.temperature,
+                      "start_pressure": c.pressure, "start_volume": c.volume, "start_amount": c.amount}
 
 
-def _run(case: Case, target: Target, peaks: Collection[str], course: bool) -> Row:
+def _run(case: Case, peaks: Collection[str], course: bool, told: Callable[[int, float, float], None] | None) -> Row:
     equations = case.equations()
-    recorder = Recorder(case, equations)
-    done = integrate(monitored(case, equations, landing(case, target)).problem, case.method, recorder)
+    recorder = Recorder(case, equations, told)
+    target = target_of(case) if case.to_equilibrium else None
+    done = integrate(monitored(case, equations, landing(case, target) if target else None).problem, case.method, recorder)
     if done.status is Status.INTERRUPTED:
         raise KeyboardInterrupt
     states = recorder.course()
     end = {name: values[-1] for name, values in states.items()}
+    target = target or target_of(case, (end["amount"], float(end["temperature"])))
     own, last = target.own, verdict_of_state(target, end["amount"], float(end["temperature"]), float(end["volume"]))
     return {"status": GAVE_UP if done.status is Status.GAVE_UP else DONE, "reason": done.reason,
             **_milestones(case, milestones(case, equations, states, peaks)),

@@ -32,11 +32,20 @@ def check_writable(path: StrPath, replace: bool = False) -> Path:
 
 def write_whole(path: StrPath, content: bytes, replace: bool = False) -> None:
     """Writes aside, then renames: a failure or interrupt leaves `path` as it was and nothing beside it."""
+    with written_aside(path, replace) as aside:
+        aside.write_bytes(content)
+
+
+@contextlib.contextmanager
+def written_aside(path: StrPath, replace: bool = False) -> Iterator[Path]:
+    """The name of a new file for the caller to write, which becomes `path` when the caller is done, or is removed."""
     target = check_writable(path, replace)
     aside = _aside(target)
     try:
         with _reported(path):
-            _write_to_disk(aside, content)
+            aside.touch(exist_ok=False)
+            yield aside
+            _force(aside)
             _refuse_existing(target, path, replace)
             os.replace(aside, target)
     finally:
@@ -49,11 +58,9 @@ def _aside(target: Path) -> Path:
     return target.with_name(f".bothways-{secrets.token_hex(6)}.part")
 
 
-def _write_to_disk(path: Path, content: bytes) -> None:
-    """A new file, waited for until it is on the disk: the renaming could outrun it in a power cut."""
-    with path.open("xb") as file:
-        file.write(content)
-        file.flush()
+def _force(path: Path) -> None:
+    """Waits until the file is on the disk: the renaming could outrun it in a power cut."""
+    with path.open("rb") as file:
         os.fsync(file.fileno())
 
 

@@ -23,7 +23,7 @@ ACTIVITIES = {PER_LITRE: "activities are concentrations over 1 mol/L", FRACTION:
 
 def summary(case: Case, run: Trajectory, verdict: Verdict, title: str = "") -> str:
     """The summary of a run, a line a fact, about 80 columns wide."""
-    sections = [("mechanism", _wrapped(_mechanism(case))), ("vessel", _wrapped(_vessel(case))), ("charge", [_charge(case)]),
+    sections = [("mechanism", wrapped(_mechanism(case))), ("vessel", wrapped(_vessel(case))), ("charge", [_charge(case)]),
                 ("milestones", _milestones(run)),
                 ("safety", _safety(case, run)), ("end", _end(run)), ("equilibrium", _equilibrium(verdict)),
                 ("balances", [_balances(run)]),
@@ -34,7 +34,7 @@ def summary(case: Case, run: Trajectory, verdict: Verdict, title: str = "") -> s
             continue
         lines += _section(name, content or ["none: nothing steep, half-converted or peaking by the end"])
     if notable(run) or case.runaway_from:
-        lines += _section("caution", _wrapped(CAUTION))
+        lines += _section("caution", wrapped(CAUTION))
     return "\n".join(lines)
 
 
@@ -42,7 +42,7 @@ def _section(name: str, content: Iterable[str]) -> list[str]:
     return [f"{name if k == 0 else '':<12}{line}" for k, line in enumerate(content)]
 
 
-def _wrapped(text: str, width: int = 68) -> list[str]:
+def wrapped(text: str, width: int = 68) -> list[str]:
     lines = [""]
     for word in text.split():
         if len(lines[-1]) + len(word) + 1 > width:
@@ -144,13 +144,13 @@ def _end(run: Trajectory) -> list[str]:
     if np.isnan(run.pressure[-1]):
         unit, what = float(np.sum(run.concentration[-1])) / LITRE, "concentrations in mol/L"
     shown = [f"{run.species[k]} {x[k] * unit:.4g}" for k in np.argsort(-x)[: _SHOWN + 4] if x[k] > 1e-12]
-    return lines + _wrapped(f"{what} " + ", ".join(shown))
+    return lines + wrapped(f"{what} " + ", ".join(shown))
 
 
 def _equilibrium(verdict: Verdict) -> list[str]:
     """The verdict, and the species of the end beside those of the equilibrium."""
     own, full = verdict.target.own, verdict.target.full
-    lines = _wrapped(f"{verdict.kind.value}: {verdict.sentence}")
+    lines = wrapped(f"{verdict.kind.value}: {verdict.sentence}")
     if verdict.apart:
         lines.append(f"(the elements' equilibrium: {full.temperature:.6g} K{_at_pressure(full.pressure)})")
     lines.append(f"{'':<18}{'run':>12}{'equilibrium':>13}{'deviation':>11}")

@@ -252,7 +252,7 @@ def _fields(file: Any) -> dict[str, Any]:
 
 
 def _check_layout(file: Any) -> None:
-    conventions = str(hdf5.attribute(file, "Conventions")) if "Conventions" in file.attrs else ""
+    conventions = hdf5.layout_of(file)
     if LAYOUT not in conventions.replace(",", " ").split():
         raise InputError(f"the attribute Conventions is '{conventions}'", expected=f"'{LAYOUT}', {_KIND}")
 

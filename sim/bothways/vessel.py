@@ -193,6 +193,12 @@ class Equations:
     @cached_property
     def bordered_pattern(self) -> tuple[np.ndarray, np.ndarray]:
         """Row indices and column starts of the bordered Jacobian (compressed columns), its diagonal included."""
+        kept = self.mechanism.__dict__  # the same for every vessel of a mechanism
+        if "_bordered_pattern" not in kept:
+            kept["_bordered_pattern"] = self._new_bordered_pattern()
+        return kept["_bordered_pattern"]
+
+    def _new_bordered_pattern(self) -> tuple[np.ndarray, np.ndarray]:
         start, rows = self._block
         n = self.size - 1
         columns = [[*rows[start[s] : start[s + 1]], n, n + 1] for s in range(n)] + [list(range(n + 2))] * 2

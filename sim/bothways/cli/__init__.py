@@ -73,7 +73,7 @@ class _Parser(argparse.ArgumentParser):
 
 
 def _parser() -> argparse.ArgumentParser:
-    from . import audit, compare, equilibrium, mechanisms, plot, reduce, run
+    from . import audit, compare, equilibrium, mechanisms, plot, reduce, run, sweep
 
     parser = _Parser(
         prog="bothways", description="What happens in a closed batch reactor, by kinetics that cannot contradict "
@@ -81,7 +81,7 @@ def _parser() -> argparse.ArgumentParser:
         epilog="example: bothways run hydrogen-kettle --plot", allow_abbrev=False)
     parser.add_argument("--version", action=_Version, nargs=0, help="show the version and where it is installed")
     verbs = parser.add_subparsers(required=True, metavar="COMMAND")
-    for verb in (run, equilibrium, audit, compare, reduce, plot, mechanisms):
+    for verb in (run, equilibrium, sweep, audit, compare, reduce, plot, mechanisms):
         verb.add_to(verbs)
     return parser
 

@@ -5,6 +5,9 @@ import math
 from pathlib import Path
 
 from ..errors import InputError, shown
+from ..hdf5 import layout_in
+from ..sweep import LAYOUT as SWEEP_LAYOUT
+from ..sweep import read_sweep
 from ..trajectory import Trajectory, read_trajectory
 from ..units import parse_quantity
 from . import DONE, spare
@@ -13,15 +16,17 @@ from . import DONE, spare
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser(
-        "plot", help="draw a run's course, approach to equilibrium or rates",
+        "plot", help="draw a run's course, approach to equilibrium or rates; a sweep's ignition delays",
         formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Draws temperature, pressure and composition of a trajectory against time. Which species, which\n"
         "stretch of time and whether its axis is linear or logarithmic follow from the course, unless said. Or the approach\n"
-        "to equilibrium, or what the reactions contribute to the rate of formation of one species.",
+        "to equilibrium, or what the reactions contribute to the rate of formation of one species. Of a sweep: its ignition\n"
+        "delays against 1000 K/T.",
         epilog="examples:\n  bothways plot hydrogen-kettle.h5\n  bothways plot hydrogen-kettle.h5 --output ignition.pdf "
         "--column --species H2 O2 OH --between '0.49 ms' '0.53 ms'\n"
-        "  bothways plot hydrogen-kettle.h5 --contributions OH --output rates-of-OH.svg", allow_abbrev=False)
-    parser.add_argument("run", metavar="RUN.h5", type=Path, help="a trajectory file")
+        "  bothways plot hydrogen-kettle.h5 --contributions OH --output rates-of-OH.svg\n"
+        "  bothways plot hydrogen-kettle-map.h5 --output delays.pdf", allow_abbrev=False)
+    parser.add_argument("run", metavar="RUN.h5", type=Path, help="a trajectory file, or the results of a sweep")
     parser.add_argument("--output", metavar="FILE", type=Path, help="the picture: .png, .svg or .pdf (default: beside the "
                         "trajectory RUN.png, RUN-approach.png or RUN-contributions.png)")
     _add_kinds(parser)
@@ -59,8 +64,14 @@ def _add_widths(parser: argparse.ArgumentParser) -> None:
 def act(chosen: argparse.Namespace) -> int:
     """Carries out the verb."""
     _check_options(chosen)
-    from ..plots import check_picture  # matplotlib takes its time to load: no other verb waits for it
+    from ..plots import check_picture, save_ignition  # matplotlib takes its time to load: no other verb waits for it
 
+    if layout_in(chosen.run) == SWEEP_LAYOUT:
+        picture = _picture_of_sweep(chosen)
+        check_picture(picture, chosen.replace)
+        save_ignition(read_sweep(chosen.run), picture, replace=chosen.replace, width=chosen.width)
+        print(picture)
+        return DONE
     trajectory = read_trajectory(chosen.run)
     picture = chosen.output or chosen.run.with_name(f"{chosen.run.stem}{_ending(chosen)}.png")
     spare(picture, chosen.run)
@@ -69,6 +80,16 @@ def act(chosen: argparse.Namespace) -> int:
     _draw(trajectory, picture, chosen, between)
     print(picture)
     return DONE
+
+
+def _picture_of_sweep(chosen: argparse.Namespace) -> Path:
+    """The file for a sweep's figure; an InputError for options that ask for a run's."""
+    if _ending(chosen) or chosen.species or chosen.between or chosen.time_axis:
+        raise InputError("these are the results of a sweep", expected="no options but --output, --column and --replace",
+                         remedy="leave the others out", file=chosen.run)
+    picture = chosen.output or chosen.run.with_name(f"{chosen.run.stem}.png")
+    spare(picture, chosen.run)
+    return picture
 
 
 def _check_options(chosen: argparse.Namespace) -> None:

@@ -1,9 +1,7 @@
 """bothways run: the time course of one case."""
 
 import argparse
-import signal
 import sys
-import threading
 import time
 import warnings
 from collections.abc import Callable, Iterator
@@ -20,6 +18,7 @@ from ..remarks import Remark
 from ..report import summary
 from ..trajectory import Trajectory, write_trajectory
 from . import DONE, FAILED_VERDICT, GAVE_UP, INTERRUPTED, spare
+from .patience import Patience
 
 NOT_REACHED = (Kind.NOT_YET, Kind.CANNOT_START)
 """Verdicts that fail a run which was to go on until equilibrium."""
@@ -45,8 +44,8 @@ def act(chosen: argparse.Namespace) -> int:
     """Carries out the verb."""
     case = read_case(chosen.case)
     output, picture = _files(case, chosen)
-    _compile(case)
-    with remarks_shown(), _Patience() as patience:
+    compile_for(case)
+    with remarks_shown(), Patience() as patience:
         trajectory, verdict = _with_progress(case, patience)
         write_trajectory(output, trajectory, replace=chosen.replace)
     print(summary(case, trajectory, verdict, _title(case, chosen.case)))
@@ -80,7 +79,7 @@ def _title(case: Case, name: str) -> str:
     return f"{Path(name).stem}: {stated}" if stated else Path(name).stem
 
 
-def _compile(case: Case) -> None:
+def compile_for(case: Case) -> None:
     """Compiles the kernels now, so that no run's time holds it; says so when it takes long."""
     def say(text: str) -> None:
         print(f"bothways: {text}", file=sys.stderr, flush=True)
@@ -101,43 +100,13 @@ def remarks_shown() -> Iterator[None]:
             print(f"bothways: note: {warning.message}", file=sys.stderr)
 
 
-class _Patience:
-    """Lets the first Ctrl-C wait for the end of the step in hand, so that what is kept is whole; the second does not wait.
-
-    One that comes when the last step is done changes nothing: the run is complete and is written.
-    """
-
-    def __init__(self) -> None:
-        self.pressed = False
-
-    def __enter__(self) -> "_Patience":
-        ignored = signal.getsignal(signal.SIGINT) is signal.SIG_IGN  # as in the background of a script
-        self._governs = threading.current_thread() is threading.main_thread() and not ignored
-        if self._governs:
-            self._former = signal.signal(signal.SIGINT, self._press)
-        return self
-
-    def __exit__(self, *exception: object) -> None:
-        if self._governs:
-            signal.signal(signal.SIGINT, self._former)
-
-    def _press(self, *unused: object) -> None:
-        self.check()
-        self.pressed = True
-
-    def check(self) -> None:
-        """Ends the run here if Ctrl-C was pressed."""
-        if self.pressed:
-            raise KeyboardInterrupt
-
-
-def _with_progress(case: Case, patience: _Patience) -> tuple[Trajectory, Verdict]:
+def _with_progress(case: Case, patience: Patience) -> tuple[Trajectory, Verdict]:
     bar_format = "{desc} {elapsed}"
     with tqdm(desc="starting", bar_format=bar_format, disable=None, leave=False, file=sys.stderr) as bar:
         return run_and_judge(case, _teller(bar, patience))
 
 
-def _teller(bar: tqdm, patience: _Patience) -> Callable[[int, float, float], None]:
+def _teller(bar: tqdm, patience: Patience) -> Callable[[int, float, float], None]:
     def told(steps: int, t: float, temperature: float) -> None:
         bar.set_description_str(f"{steps} steps, {t:.4g} s, {temperature:.1f} K", refresh=False)
         bar.update()
@@ -159,4 +128,4 @@ def _status(case: Case, trajectory: Trajectory, verdict: Verdict, output: Path) 
     return INTERRUPTED if interrupted else GAVE_UP
 
 
-__all__ = ["act", "add_to", "remarks_shown"]
+__all__ = ["act", "add_to", "compile_for", "remarks_shown"]

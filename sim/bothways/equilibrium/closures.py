@@ -10,7 +10,7 @@ from ..contents import Contents
 from ..errors import InputError, SolverError
 from ..mechanism.phase import GAS, SOLUTION
 from .continuation import compose
-from .newton import Point, Task, balances, jacobian, log_amounts, log_sides
+from .newton import Point, Task, balances, jacobian, log_amounts, log_sides, solved
 
 LOWEST, HIGHEST = 50.0, 20000.0
 """Where the temperature of an adiabatic vessel is sought [K]."""
@@ -67,6 +67,15 @@ class State:
     energy_misfit: float = 0.0
 
 
+def state_near(components: Components, amount: np.ndarray, temperature: float) -> State | None:
+    """A state to start from that is no equilibrium: scaled amounts (n) at a temperature [K]; None if a component is nil."""
+    if not np.all(amount[components.basis] > 0):
+        return None
+    log_component = np.log(amount[components.basis])
+    point = Point(components, log_component, float(np.log(np.sum(amount))))
+    return State(temperature, point, np.empty(0), 0.0, 0.0, 0.0, np.zeros(log_component.size + 1), 0)
+
+
 def at_temperature(stock: Stock, held: Held, temperature: float, near: State | None = None) -> State:
     """The equilibrium at a given temperature [K]."""
     g, h, cp = stock.molar(temperature)
@@ -112,7 +121,7 @@ def _with_energy(point: Point, task: Task, temperature: float, energy: np.ndarra
     forced = weight @ formation
     if task.swells:
         forced = np.append(forced, fraction @ formation)
-    shift = -np.linalg.solve(jacobian(point, task, weight, fraction), forced)
+    shift = -solved(jacobian(point, task, weight, fraction), forced)
     slope = formation + shift[: components.basis.size] @ components.formation
     if task.swells:
         slope += components.expansion * shift[-1]

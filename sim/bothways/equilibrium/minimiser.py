@@ -10,7 +10,7 @@ from ..contents import Contents
 from ..errors import InputError
 from ..mechanism.model import Mechanism
 from ..mechanism.phase import GAS, SOLUTION
-from .closures import Held, Stock, at_energy, at_temperature
+from .closures import Held, State, Stock, at_energy, at_temperature, state_near
 from .conserved import conserved_by_elements, conserved_by_reactions
 from .possible import possible_species
 from .result import Equilibrium, finish
@@ -22,6 +22,9 @@ _PAIRS = {GAS: ({"temperature", "volume"}, {"temperature", "pressure"}, {"intern
 _STATED = {GAS: "temperature with volume, temperature with pressure, internal_energy with volume, or enthalpy with pressure",
            SOLUTION: "temperature with volume, or enthalpy with volume, in a solution"}
 _POSITIVE = ("temperature", "pressure", "volume")
+_KEPT = 64
+_LEADING = 8
+"""Species of a guess that choose its basis, if they are enough."""
 _LARGEST = 1e300  # mol: sums stay finite
 
 
@@ -35,14 +38,15 @@ class GibbsMinimiser:
         self.mechanism = mechanism
         # the species alone: an equilibrium knows nothing of rates
         self._contents = Contents(replace(mechanism, reactions=()))
-        self.asked = conserved
+        self._led: dict[bytes, Components] = {}
+        self._known: dict[bytes, tuple[np.ndarray, Components]] = {}
         self.conserved = _rows(mechanism, conserved)
         _check_columns(mechanism, self.conserved)
 
     def solve(self, amount: Amounts, *, temperature: float | None = None, pressure: float | None = None,
               volume: float | None = None, internal_energy: float | None = None, enthalpy: float | None = None,
               own_heat_capacity: float = 0.0, reference_temperature: float = 298.15,
-              near: Equilibrium | None = None) -> Equilibrium:
+              near: Equilibrium | None = None, guess: tuple[np.ndarray, float] | None = None) -> Equilibrium:
         """The equilibrium of a charge; the arguments of `equilibrium`, and `near`, one to start from."""
         asked = {"temperature": temperature, "pressure": pressure, "volume": volume,
                  "internal_energy": internal_energy, "enthalpy": enthalpy}
@@ -51,13 +55,28 @@ class GibbsMinimiser:
         _check_vessel(own_heat_capacity, reference_temperature)
         charged = self._amounts(amount)
         stock = self._stock(charged)
-        start = near.state if near is not None and self._is_alike(near, stock) else None
+        start = near.state if near is not None and self._is_alike(near, stock) else self._guessed(stock, guess)
         if temperature is not None:
             state = at_temperature(stock, held, float(temperature), start)
         else:
             energy = float(given["internal_energy"] if enthalpy is None else enthalpy)
             state = at_energy(stock, held, energy, own_heat_capacity, reference_temperature, start)
         return finish(self.mechanism, stock, held, state, self.conserved, charged)
+
+    def _guessed(self, stock: Stock, guess: tuple[np.ndarray, float] | None) -> State | None:
+        """A guess as a state, in the basis of its most abundant species; None where one of these is absent."""
+        if guess is None:
+            return None
+        amount = np.maximum(guess[0][stock.possible], 0.0) / stock.scale
+        order = np.argsort(-amount, kind="stable")[:_LEADING]
+        key = stock.possible.tobytes() + order.tobytes()
+        if key not in self._led:
+            if len(self._led) >= _KEPT:
+                self._led.clear()
+            rest = np.setdiff1d(np.arange(amount.size), order)
+            self._led[key] = Components(self.conserved[:, stock.possible], np.concatenate([order, rest]))
+        components = self._led.get(key)
+        return None if components is None else state_near(components.copy(), amount, guess[1])
 
     def _is_alike(self, near: Equilibrium, stock: Stock) -> bool:
         return near.conserved is self.conserved and np.array_equal(near.log_mole_fraction > -np.inf, stock.possible)
@@ -82,16 +101,28 @@ class GibbsMinimiser:
         return values
 
     def _stock(self, charged: np.ndarray) -> Stock:
-        possible, components = possible_species(self.conserved, charged)
+        possible, components = self._possible(charged)
         exponent = int(np.frexp(np.sum(charged))[1])
         scaled = np.ldexp(charged[possible], -exponent)
         return Stock(self._contents, possible, scaled, float(np.ldexp(1.0, exponent)), components)
 
 
+    def _possible(self, charged: np.ndarray) -> tuple[np.ndarray, Components]:
+        """`possible_species`, kept for charges with the same zeros and the same order: nothing else matters to it."""
+        key = (charged > 0).tobytes() + np.argsort(-charged, kind="stable").tobytes()
+        if key not in self._known:
+            if len(self._known) >= _KEPT:
+                self._known.clear()
+            self._known[key] = found = possible_species(self.conserved, charged)
+            return found
+        return self._known[key]
+
+
 def equilibrium(mechanism: Mechanism, amount: Amounts, *, temperature: float | None = None,
                 pressure: float | None = None, volume: float | None = None, internal_energy: float | None = None,
                 enthalpy: float | None = None, conserved: str | np.ndarray = "elements", own_heat_capacity: float = 0.0,
-                reference_temperature: float = 298.15, near: Equilibrium | None = None) -> Equilibrium:
+                reference_temperature: float = 298.15, near: Equilibrium | None = None,
+                guess: tuple[np.ndarray, float] | None = None) -> Equilibrium:
     """The equilibrium composition of an ideal-gas mixture or an ideal solution, by minimising the Gibbs energy.
 
     Parameters
@@ -103,7 +134,7 @@ def equilibrium(mechanism: Mechanism, amount: Amounts, *, temperature: float | N
     conserved : "elements"; "reactions": all that no reaction changes, which may be more; or an integer matrix (m, N).
     own_heat_capacity [J/K], reference_temperature [K] : of an adiabatic vessel that shares the temperature; the energy given
         then includes own_heat_capacity × (T - reference_temperature).
-    near : an equilibrium to start from, which only saves time.
+    near : an equilibrium to start from, which only saves time. guess : amounts (N) [mol] and temperature [K], likewise.
 
     Charges are taken as the exact numbers they are: 2 mol H2 with 1 mol O2 leave no excess, 2/3 with 1/3 one of 1e-17.
 
@@ -114,7 +145,8 @@ def equilibrium(mechanism: Mechanism, amount: Amounts, *, temperature: float | N
     """
     return _minimiser(mechanism, conserved).solve(
         amount, temperature=temperature, pressure=pressure, volume=volume, internal_energy=internal_energy,
-        enthalpy=enthalpy, own_heat_capacity=own_heat_capacity, reference_temperature=reference_temperature, near=near)
+        enthalpy=enthalpy, own_heat_capacity=own_heat_capacity, reference_temperature=reference_temperature, near=near,
+        guess=guess)
 
 
 def equilibria(mechanism: Mechanism, amount: Amounts, *, conserved: str | np.ndarray = "elements",
@@ -132,9 +164,9 @@ def equilibria(mechanism: Mechanism, amount: Amounts, *, conserved: str | np.nda
     lists = {name: np.broadcast_to(np.asarray(value, dtype=float), length) for name, value in stated.items()}
     found: list[Equilibrium] = []
     for k in range(length):
-        found.append(minimiser.solve(amount, **{name: float(values[k]) for name, values in lists.items()},
-                                     own_heat_capacity=own_heat_capacity, reference_temperature=reference_temperature,
-                                     near=found[-1] if found else None))
+        at = {name: float(values[k]) for name, values in lists.items()}
+        found.append(minimiser.solve(amount, **at, own_heat_capacity=own_heat_capacity,  # type: ignore[arg-type]
+                                     reference_temperature=reference_temperature, near=found[-1] if found else None))
     return found
 
 

@@ -3,6 +3,7 @@
 import hashlib
 import json
 import math
+import zlib
 from collections.abc import Iterator, Mapping
 from dataclasses import dataclass, field
 from functools import cached_property
@@ -12,7 +13,7 @@ import numpy as np
 
 from ..case import Case, build_case
 from ..errors import InputError
-from ..mechanism import Mechanism
+from ..mechanism import Mechanism, build
 from ..mechanism.toml_writer import to_toml
 from .keys import Value, with_setting
 
@@ -30,13 +31,14 @@ class Grid:
     """Cases as the product of factors over a base case, the first factor varying slowest.
 
     base : the document of the base case. mechanisms : those it names, by the name stated.
-    trajectories : whether full trajectories are asked for. output : the file of results that the grid names.
+    peaks : species whose peaks are asked for. trajectories : whether full courses are. output : the file it names for results.
     """
 
     base: dict[str, Any] = field(repr=False)
     factors: tuple[Factor, ...]
     mechanisms: Mapping[str, Mechanism] = field(repr=False)
     title: str = ""
+    peaks: tuple[str, ...] = ()
     trajectories: bool = False
     output: str = ""
     file: object = field(default=None, repr=False, compare=False)
@@ -61,10 +63,13 @@ class Grid:
         """The document of case k, with the keys of a case file."""
         return with_setting(self.base, self.setting(k))
 
+    def mechanism_name(self, k: int) -> str:
+        """The name by which case k states its mechanism."""
+        return str(self.setting(k).get("case.mechanism", self.base.get("case", {}).get("mechanism", "")))
+
     def mechanism_of(self, k: int) -> Mechanism:
         """The mechanism of case k."""
-        name = self.setting(k).get("case.mechanism", self.base.get("case", {}).get("mechanism", ""))
-        return self.mechanisms[str(name)]
+        return self.mechanisms[self.mechanism_name(k)]
 
     def case(self, k: int, mechanism: Mechanism | None = None) -> Case:
         """Case k, of its own mechanism or another one; InputError naming it where it is not sound."""
@@ -85,14 +90,38 @@ class Grid:
         return (self.case(k, mechanism) for k in range(len(self)))
 
     @cached_property
+    def content(self) -> dict[str, Any]:
+        """All that the results depend on but the mechanisms, as plain values."""
+        head = {key: value for key, value in self.base.get("case", {}).items() if key != "title"}
+        return {"base": {**self.base, "case": head}, "factors": [[f.keys, f.settings] for f in self.factors],
+                "peaks": self.peaks, "trajectories": self.trajectories}
+
+    @cached_property
     def digest(self) -> str:
         """SHA-256 of all that the results depend on: base, factors and the mechanisms' whole documents."""
-        head = {key: value for key, value in self.base.get("case", {}).items() if key != "title"}
-        content = {"base": {**self.base, "case": head}, "factors": [[f.keys, f.settings] for f in self.factors],
-                   "trajectories": self.trajectories, "mechanisms": self.mechanism_digests}
-        return hashlib.sha256(json.dumps(content, sort_keys=True).encode()).hexdigest()
+        whole = {**self.content, "mechanisms": self.mechanism_digests}
+        return hashlib.sha256(json.dumps(whole, sort_keys=True).encode()).hexdigest()
+
+    @cached_property
+    def mechanism_texts(self) -> dict[str, str]:
+        """The mechanism files (TOML), by the name stated."""
+        return {name: to_toml(m.document) for name, m in self.mechanisms.items()}
 
     @cached_property
     def mechanism_digests(self) -> dict[str, str]:
         """SHA-256 of the text of each mechanism, by the name stated."""
-        return {name: hashlib.sha256(to_toml(m.document).encode()).hexdigest() for name, m in self.mechanisms.items()}
+        return {name: hashlib.sha256(text.encode()).hexdigest() for name, text in self.mechanism_texts.items()}
+
+    @cached_property
+    def packed(self) -> bytes:
+        """The whole grid in few bytes, for another process; see `unpacked`."""
+        documents = {name: m.document for name, m in self.mechanisms.items()}
+        return zlib.compress(json.dumps([self.content, documents]).encode())
+
+
+def unpacked(packed: bytes) -> Grid:
+    """The grid that `Grid.packed` holds; its cases are the same to the bit."""
+    content, documents = json.loads(zlib.decompress(packed))
+    factors = tuple(Factor(tuple(keys), tuple(map(tuple, settings))) for keys, settings in content["factors"])
+    mechanisms = {name: build(document) for name, document in documents.items()}
+    return Grid(content["base"], factors, mechanisms, "", tuple(content["peaks"]), content["trajectories"])

@@ -43,7 +43,7 @@ def build_grid(document: Mapping[str, Any], file: object = None, mechanism: Mech
     top.expect("grid", "vary", "rows", "samples", *TABLES)
     head = top.table("grid", {})
     title, output = head.text("title", ""), head.text("file", "")
-    trajectories, (base, folder) = head.flag("trajectories"), _base(top, head)
+    peaks, trajectories, (base, folder) = head.texts("peaks", ()), head.flag("trajectories"), _base(top, head)
     head.done()
     factors = _factors(top)
     if not factors:
@@ -51,7 +51,15 @@ def build_grid(document: Mapping[str, Any], file: object = None, mechanism: Mech
                         'start.temperature = ["1000 K", "1200 K"]')
     names = _names(top, base, factors, mechanism)
     found = {name: mechanism or _mechanism(top, name, folder, in_base) for name, in_base in names.items()}
-    return Grid(base, factors, found, title, trajectories, output, file)
+    _check_peaks(head, peaks, found)
+    return Grid(base, factors, found, title, tuple(peaks), trajectories, output, file)
+
+
+def _check_peaks(head: Entry, peaks: tuple[str, ...], mechanisms: Mapping[str, Mechanism]) -> None:
+    known = {name for m in mechanisms.values() for name in m.names}
+    for name in peaks:
+        if name not in known:
+            raise head.unknown("species", name, known, key="peaks")
 
 
 def _base(top: Entry, head: Entry) -> tuple[dict[str, Any], Path]:
