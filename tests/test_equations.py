@@ -14,7 +14,8 @@ from bothways.mechanism import build_tables, table_view
 from invented import building_blocks, building_blocks_as_published, building_blocks_in_molecules
 from invented_laws import every_law, every_law_as_published, every_law_in_molecules
 from invented_lumped import lumped_steps
-from reference import Reference
+from invented_molecules import molecules
+from reference_molecules import MolecularReference as Reference
 
 SETS = {
     "invented": building_blocks,
@@ -24,6 +25,7 @@ SETS = {
     "every law, as published": every_law_as_published,
     "every law, in molecules": every_law_in_molecules,
     "lumped steps": lumped_steps,
+    "molecules": molecules,
     **{name: (lambda name=name: read_mechanism(name).to_dict()) for name in ("hydrogen-oxygen", "methane", "c1-c4", "n-alkanes")},
 }
 CLOSURES = [(holds, heat) for holds in ("volume", "pressure") for heat in ("isothermal", "adiabatic")]
@@ -80,7 +82,7 @@ def test_J_agrees_with_complex_step_differences(name, holds, heat):
         assert np.all(np.abs(ours - theirs) <= 1e-8 * scale)
 
 
-ALONE = [document | {"reaction": [entry]} for document in (building_blocks(), every_law(), lumped_steps())
+ALONE = [document | {"reaction": [entry]} for document in (building_blocks(), every_law(), lumped_steps(), molecules())
          for entry in document["reaction"]]
 
 
