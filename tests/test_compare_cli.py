@@ -6,11 +6,10 @@ import numpy as np
 import pytest
 from matplotlib import image
 
-from bothways import InputError, build_case, build_mechanism, plots, read_mechanism, write_mechanism
+from bothways import InputError, build_mechanism, plots, read_mechanism, write_mechanism
 from bothways.cli import main
 from bothways.compare import compare
 from bothways.course import Course
-from bothways.milestones import steepest_rise
 from bothways.reduce import part_of
 from test_reduce import hydrogen_case
 
@@ -168,14 +167,3 @@ def test_a_course_follows_f_where_states_bear_it_out_and_never_runs_away() -> No
     assert smooth.at(between)[:, 0] == pytest.approx(np.exp(-between), rel=3e-4)  # h⁴/384 of a cubic
     wild = Course(times, states, lambda t, y: np.array([1e9 * (-1.0) ** round(2 * t)]), lambda t, y: np.zeros((1, 1)))
     assert np.max(np.abs(wild.at(between)[:, 0] - np.exp(-between))) < 0.02
-
-
-@pytest.mark.parametrize("rise, found", [(1e-12, False), (1e-3, True)])
-def test_round_off_in_the_pressure_is_no_event(rise: float, found: bool) -> None:
-    case = build_case({"vessel": {"heat": "isothermal"}, "start": {"temperature": 500.0, "pressure": "1 bar",
-                       "mole_ratio": {"H2": 1}}, "until": {"time": 4.0}}, mechanism=small())
-    times, size = np.arange(5.0), len(CORE) + 1
-    states = np.ones((5, size))
-    states[:, 0] += rise * len(CORE) * times**3 / 64.0
-    course = Course(times, states, lambda t, y: np.eye(size)[0] * rise * 3.0 * t**2, lambda t, y: np.zeros((size, size)))
-    assert bool(steepest_rise(case, course)) is found
