@@ -3,13 +3,15 @@
 No such element Q, species or reactions exist and no number is measured.
 """
 
+import signal
 from collections.abc import Callable
 from pathlib import Path
 from typing import Any
 
+import h5py
 import pytest
 
-from bothways import batch
+from bothways import batch, read_trajectory
 from bothways.cli import main
 
 MECHANISM = """\
@@ -188,3 +190,28 @@ class Refusals:
             assert found >= 0, f"'{text}' is missing (or out of order) in: {line}"
             position = found + len(text)
         return line
+
+
+def assert_kept(refusals: Refusals, status: int, reason: str) -> str:
+    """The run ended with `status`; run.h5 is incomplete for that reason. Returns the last line on stderr."""
+    assert main(["run", "case.toml"]) == status
+    out, err = refusals.capsys.readouterr()
+    trajectory = read_trajectory("run.h5")
+    assert not trajectory.complete and reason in trajectory.reason
+    with h5py.File("run.h5") as file:
+        assert file.attrs["complete"] == 0
+    assert "(incomplete: " in out and "Traceback" not in err
+    last = err.splitlines()[-1]
+    assert last.startswith("bothways: case.toml: the run is incomplete: ") and reason in last
+    assert "; run.h5 holds it up to there (complete = 0); " in last
+    return last
+
+
+def interrupting(at: int, times: int = 1) -> Callable[[int], None]:
+    """For `meddled`: Ctrl-C, so many times, at that step."""
+    def with_step(steps: int) -> None:
+        if steps == at:
+            for _ in range(times):
+                signal.raise_signal(signal.SIGINT)
+
+    return with_step

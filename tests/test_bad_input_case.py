@@ -182,6 +182,13 @@ VALUES = [
         "a number from 1e-13 to 0.01"),
     row("rtol negative", "rtol = 1e-6", "rtol = -1e-6", "solver.rtol", "-1e-06 is negative"),
     row("atol too large", "atol = 1e-12", "atol = 1", "solver.atol", "1 is out of range"),
+    row("most_steps zero", "rtol = 1e-6", "most_steps = 0", "solver.most_steps", "0 is zero; expected a number above 0"),
+    row("most_steps in part", "rtol = 1e-6", "most_steps = 10.5", "solver.most_steps", "10.5 is no possible number of steps",
+        "expected a whole number up to 1e+15"),
+    row("most_steps beyond", "rtol = 1e-6", "most_steps = 1e300", "solver.most_steps", "1e+300 is no possible number"),
+    row("most_steps misspelt", "rtol = 1e-6", "most_step = 10", "solver", "unknown key 'most_step' (nearest: most_steps"),
+    row("longest zero", "rtol = 1e-6", 'longest = "0 s"', "solver.longest", "'0 s' is zero; expected a number above 0"),
+    row("longest in kelvin", "rtol = 1e-6", 'longest = "10 K"', "solver.longest", "K is a unit of temperature, not of time"),
     row("also_at zero", '["0.1 us", 5e-7]', '["0 s"]', "output.also_at[1]", "'0 s' is zero"),
     row("also_at after the end", '["0.1 us", 5e-7]', "[1e-7, 5]", "output.also_at[2]", "5 s is after the end",
         "a time up to until.time, 1e-06 s"),
@@ -196,7 +203,8 @@ def test_value(refusals: Refusals, changes: tuple, entry: str, texts: tuple) -> 
 
 
 NUMBERS = ["vessel.volume", "vessel.thermal_inertia", "start.temperature", "start.pressure", "start.mole_ratio.Q",
-           "until.time", "solver.rtol", "solver.atol", "start.mass_ratio.Q", "start.amount.Q", "start.concentration.Q",
+           "until.time", "solver.rtol", "solver.atol", "solver.most_steps", "solver.longest", "start.mass_ratio.Q",
+           "start.amount.Q", "start.concentration.Q",
            "start.fuel.Q", "start.oxidiser.O2", "start.equivalence_ratio"]
 
 

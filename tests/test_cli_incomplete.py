@@ -8,18 +8,18 @@ import subprocess
 import sys
 import threading
 import time
-from collections.abc import Callable, Iterator
 from pathlib import Path
 from typing import Any
 
-import h5py
 import numpy as np
 import pytest
 
 from bothways import Equations, build_case, build_mechanism, cli, read_trajectory, run, write_trajectory
 from bothways.cli import main
 from bothways.mechanism.toml_reader import parse_toml
-from refusals import CASE, MECHANISM, Refusals, changed, meddled
+from refusals import CASE, MECHANISM, Refusals, assert_kept, changed, interrupting, meddled
+
+pytestmark = pytest.mark.usefixtures("ordinary_interrupts")
 
 
 @pytest.fixture
@@ -28,21 +28,6 @@ def refusals(tmp_path: Path, capsys: pytest.CaptureFixture[str], monkeypatch: py
 
 
 # ---- the solver gives up: status 3, the file is kept
-
-
-def assert_kept(refusals: Refusals, status: int, reason: str) -> str:
-    """The run ended with `status`; run.h5 is incomplete for that reason. Returns the last line on stderr."""
-    assert main(["run", "case.toml"]) == status
-    out, err = refusals.capsys.readouterr()
-    trajectory = read_trajectory("run.h5")
-    assert not trajectory.complete and reason in trajectory.reason
-    with h5py.File("run.h5") as file:
-        assert file.attrs["complete"] == 0
-    assert "(incomplete: " in out and "Traceback" not in err
-    last = err.splitlines()[-1]
-    assert last.startswith("bothways: case.toml: the run is incomplete: ") and reason in last
-    assert "; run.h5 holds it up to there (complete = 0); " in last
-    return last
 
 
 def test_too_many_steps(refusals: Refusals, monkeypatch: pytest.MonkeyPatch) -> None:
@@ -93,23 +78,6 @@ def test_equations_that_fail(refusals: Refusals, monkeypatch: pytest.MonkeyPatch
 
 
 # ---- Ctrl-C: status 130, the file is kept
-
-
-def interrupting(at: int, times: int = 1) -> Callable[[int], None]:
-    def with_step(steps: int) -> None:
-        if steps == at:
-            for _ in range(times):
-                signal.raise_signal(signal.SIGINT)
-
-    return with_step
-
-
-@pytest.fixture(autouse=True)
-def ordinary_interrupts() -> Iterator[None]:
-    """Ctrl-C as in a terminal, even where the tests run in the background."""
-    former = signal.signal(signal.SIGINT, signal.default_int_handler)
-    yield
-    signal.signal(signal.SIGINT, former)
 
 
 @pytest.mark.parametrize("at", [1, 5])

@@ -27,7 +27,7 @@ LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("integrate",),
     ("vessel", "contents"),
     ("equilibrium", "trajectory"),
-    ("along", "charge", "collisions", "course", "exchange", "heating", "reach", "relaxation"),
+    ("along", "charge", "collisions", "course", "exchange", "heating", "reach", "relaxation", "solver_keys"),
     ("case",),
     ("surfaces",),
     ("endpoint", "monitored", "recorder", "remarks", "milestones"),

@@ -1,5 +1,6 @@
 """A case: what is charged, into which vessel, until when. Read from a TOML file or a plain dict, checked whole."""
 
+import math
 import os
 from collections.abc import Mapping
 from dataclasses import dataclass, field
@@ -13,7 +14,7 @@ from .contents import Contents
 from .entry import REQUIRED, Entry
 from .errors import InputError, hint
 from .heating import Heating, check_schedule, key_of, read_heating
-from .integrate import DEFAULT_METHOD, METHODS
+from .integrate import DEFAULT_METHOD
 from .kernels.equations import HIGHEST_TEMPERATURE
 from .mechanism import Mechanism, bundled_cases, read_mechanism
 from .mechanism.equation import Equation
@@ -22,6 +23,7 @@ from .mechanism.model import copy_document
 from .mechanism.phase import SOLUTION
 from .rates import Law
 from .schedule import Schedule
+from .solver_keys import read_solver
 from .vessel import HOLDS, Equations
 
 MARGIN_WARN, MARGIN_ERROR = 10.0, 500.0
@@ -41,6 +43,7 @@ class Case:
     rates : whether rates and affinities of every reaction go to the file.
     to_equilibrium : whether the run goes on until it has landed at equilibrium, at the latest until `end`.
     runaway_from : temperatures [K] from which the adiabatic time to maximum rate is asked for.
+    most_steps : steps after which a run is given up, 0: the solver's own limit. longest : the same in seconds of computing.
     transfer : UA of a jacket [W/K]. schedule : the given temperature of the contents, or the jacket's [K].
     """
 
@@ -61,6 +64,8 @@ class Case:
     transfer: float = 0.0
     schedule: Schedule | None = None
     runaway_from: tuple[float, ...] = ()
+    most_steps: int = 0
+    longest: float = math.inf
     document: Mapping[str, Any] = field(default_factory=dict, repr=False)
     file: object = field(default=None, repr=False, compare=False)
 
@@ -121,9 +126,10 @@ def build_case(document: Mapping[str, Any], file: object = None, mechanism: Mech
     end, to_equilibrium = _end(top)
     _check_heating(top.table("vessel", {}), mechanism, heating, charge.temperature)
     check_schedule(top.table("vessel", {}), heating, end, to_equilibrium)
-    case = Case(mechanism, holds, heating.heat, charge, end, *_solver(top), heating.inertia, *_output(top, file, end),
+    rtol, atol, method, most_steps, longest = read_solver(top)
+    case = Case(mechanism, holds, heating.heat, charge, end, rtol, atol, method, heating.inertia, *_output(top, file, end),
                 to_equilibrium, inert, heating.transfer, heating.schedule, _runaways(top.table("output", {}), mechanism),
-                document=copy_document(document), file=file)
+                most_steps, longest, document=copy_document(document), file=file)
     _check_heat_capacity(top, case)
     return case
 
@@ -197,17 +203,6 @@ def _end(top: Entry) -> tuple[float, bool]:
     end = until.quantity("time", "time", FOREVER if to_equilibrium else REQUIRED, sign="positive")
     until.done()
     return end, to_equilibrium
-
-
-def _solver(top: Entry) -> tuple[float, float, str]:
-    solver = top.table("solver", {})
-    rtol, atol = solver.number("rtol", 1e-6, "positive"), solver.number("atol", 1e-12, "positive")
-    for key, value, low, high in (("rtol", rtol, 1e-13, 1e-2), ("atol", atol, 1e-40, 1e-3)):
-        if not low <= value <= high:
-            raise solver.error(f"{value:g} is out of range", expected=f"a number from {low:g} to {high:g}", key=key)
-    method = solver.text("method", DEFAULT_METHOD, choices=METHODS)
-    solver.done()
-    return rtol, atol, method
 
 
 def _output(top: Entry, file: object, end: float) -> tuple[Path | None, tuple[float, ...], bool]:

@@ -56,12 +56,13 @@ def monitored(case: Case, equations: Equations, until: Callable[[float, np.ndarr
     parts = _Parts(case, equations, everywhere)
     if case.schedule is None:
         system = _compiled(parts, start)
-        problem = Problem(equations.f, equations.J, start, case.end, case.rtol, atol, stops, system, until)
+        problem = Problem(equations.f, equations.J, start, case.end, case.rtol, atol, stops, system, until,
+                          most_steps=case.most_steps, longest=case.longest)
         return Monitored(problem, parts.ledger, parts.surfaces)
     further = ExchangingEquations(equations)
     start, atol = (np.append(a, b) for a, b in zip((start, atol), _further(case, equations, part), strict=True))
     problem = Problem(further.f, further.J, start, case.end, case.rtol, atol, stops, _exchanging(parts, further, start), until,
-                      case.schedule.corners)
+                      case.schedule.corners, case.most_steps, case.longest)
     return Monitored(problem, parts.ledger, parts.surfaces)
 
 

@@ -16,7 +16,8 @@ KINDS: dict[str, str] = {
     "vessel.thermal_inertia": "number", "vessel.UA": "heat transfer", "vessel.jacket_temperature": "temperature",
     "start.temperature": "temperature", "start.pressure": "pressure",
     "start.equivalence_ratio": "number", "start.oxidiser": "table", "until.time": "time", "solver.rtol": "number",
-    "solver.atol": "number", "solver.method": "text", **{f"start.{way}": "table" for way in WAYS},
+    "solver.atol": "number", "solver.method": "text", "solver.most_steps": "number", "solver.longest": "time",
+    **{f"start.{way}": "table" for way in WAYS},
 }
 """Kind of value of each key: "text", "number", "table", or that of a quantity; besides, species within the tables."""
 _PLAIN = ("text", "table", "number")

@@ -9,7 +9,19 @@ import numpy as np
 from . import bdf, stepping
 from . import rosenbrock as ros
 from .differences import LEADING, ROWS
-from .interface import MOST_REFUSED, MOST_STEPS, MOST_STEPS_IF_ASKED, CompiledSystem, Monitor, Outcome, Problem, Status
+from .interface import (
+    MOST_REFUSED,
+    MOST_STEPS,
+    MOST_STEPS_IF_ASKED,
+    NOT_ENOUGH,
+    OUT_OF_TIME,
+    STEP_TOO_SMALL,
+    CompiledSystem,
+    Monitor,
+    Outcome,
+    Problem,
+    Status,
+)
 from .pattern import plan_of
 from .rosenbrock_tables import RODAS5P, RosenbrockTable
 
@@ -17,14 +29,14 @@ CHUNK, CHUNK_IF_ASKED = 64, 8
 """Steps between returns to Python, and where the problem wants to be asked whether to end."""
 SMALLEST_STEP = 1e-15
 """Of the time reached; below, a step no longer moves the clock."""
-STALLED = -1
+STALLED, TIME_IS_UP = -1, -2
 _REASONS = {
     STALLED: f"{MOST_REFUSED} steps were refused: round-off drives them, and what is left is too slow for double precision "
              "to tell from it; shorten the time",
-    stepping.TOO_SMALL: "the step became too small to move on; the tolerances may be tighter than double precision can meet: "
-                   "loosen rtol, or raise atol",
+    stepping.TOO_SMALL: STEP_TOO_SMALL,
     stepping.NOT_FINITE: "the right-hand side is not finite at the start: check charge and temperature",
-    stepping.TOO_MANY: "{steps} steps were not enough; loosen rtol or shorten the time",
+    stepping.TOO_MANY: NOT_ENOUGH,
+    TIME_IS_UP: OUT_OF_TIME,
 }
 
 
@@ -45,7 +57,9 @@ class Stepper:
         self.z, self.slope = system.start.copy(), np.empty(system.start.size)
         self.rtol, self.atol = self.problem.rtol, np.full(self.z.size, np.inf)
         self.atol[system.places] = self.problem.atol
-        self.counts[stepping.STEP_LIMIT] = MOST_STEPS if self.problem.until is None else MOST_STEPS_IF_ASKED
+        usual = MOST_STEPS if self.problem.until is None else MOST_STEPS_IF_ASKED
+        self.counts[stepping.STEP_LIMIT] = self.problem.most_steps or usual
+        self.deadline = time.perf_counter() + self.problem.longest
         chunk = CHUNK if self.problem.until is None else CHUNK_IF_ASKED
         self.times, self.states = np.empty(chunk), np.empty((chunk, self.z.size))
 
@@ -155,8 +169,8 @@ def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
             outcome.status = Status.STALLED
         elif status != stepping.REACHED:
             outcome.status = Status.GAVE_UP
-            limit = stepper.counts[stepping.STEP_LIMIT]
-            outcome.reason = f"at {outcome.time:.6g} s " + _REASONS[status].format(steps=limit)
+            outcome.reason = f"at {outcome.time:.6g} s: " + _REASONS[status].format(
+                steps=stepper.counts[stepping.STEP_LIMIT], longest=problem.longest)
     except KeyboardInterrupt:
         outcome.status, outcome.reason = Status.INTERRUPTED, f"interrupted at {outcome.time:.6g} s"
     outcome.counts |= stepper.work() | {"seconds": time.perf_counter() - began}
@@ -179,9 +193,18 @@ def _until(stop: float, stepper: Stepper, monitor: Monitor, outcome: Outcome) ->
                 return stepping.NOT_FINITE
         if status == stepping.BUFFER_FULL and _ended(stepper.problem, outcome, stepper):
             return stepping.REACHED
+        if status in (stepping.BUFFER_FULL, stepping.REACHED) and _late(stepper, outcome):
+            return TIME_IS_UP
     return status
 
 
 def _ended(problem: Problem, outcome: Outcome, stepper: Stepper) -> bool:
     """Whether the problem may end where it is."""
     return problem.until is not None and problem.until(outcome.time, stepper.z[stepper.system.places])
+
+
+def _late(stepper: Stepper, outcome: Outcome) -> bool:
+    """Whether its time is up before it is where it should end."""
+    problem = stepper.problem
+    return (time.perf_counter() > stepper.deadline and outcome.time < problem.end
+            and not _ended(problem, outcome, stepper))

@@ -1,5 +1,6 @@
 """What an integration is given and what it gives back; f, J and a step monitor, no chemistry."""
 
+import math
 from collections.abc import Callable
 from dataclasses import dataclass, field
 from enum import Enum
@@ -46,6 +47,8 @@ class Problem:
     stops : rising times within (0, end) that a step must land on [s].
     corners : rising times at which f goes on in another way: f(t) there is already that, and methods start anew [s].
     until : (t, y) -> whether the integration may end here, asked after accepted steps, of some solvers only now and then.
+    most_steps : so many steps, of the own methods refused ones included; 0: as many as the method allows.
+    longest : how long it may take by the clock [s]; looked at between steps, of the own methods every few.
     """
 
     f: Callable[[float, np.ndarray], np.ndarray]
@@ -58,6 +61,8 @@ class Problem:
     compiled: CompiledSystem | None = None
     until: Callable[[float, np.ndarray], bool] | None = None
     corners: tuple[float, ...] = ()
+    most_steps: int = 0
+    longest: float = math.inf
 
     @property
     def landings(self) -> tuple[tuple[float, bool], ...]:
@@ -94,6 +99,11 @@ class Outcome:
 
 MOST_STEPS = 1_000_000
 """An endless run is refused after so many steps."""
+NOT_ENOUGH = "{steps} steps were not enough; raise most_steps, loosen rtol or shorten the time"
+OUT_OF_TIME = "it has taken the {longest:g} s of computing that it may; raise longest, loosen rtol or shorten the time"
+STEP_TOO_SMALL = ("the step became too small to move on; the tolerances may be tighter than double precision can meet: "
+                  "loosen rtol, or raise atol")
+"""What is said, and what to do, where an integration gives up."""
 MOST_STEPS_IF_ASKED = 20_000
 """The same for a problem that asks whether to end: what has not come by then will not."""
 MOST_REFUSED = 150

@@ -5,12 +5,11 @@ Radau IIA of order 5 (E. Hairer, G. Wanner, Solving Ordinary Differential Equati
 
 import time
 import warnings
-from collections.abc import Callable
 from typing import Any
 
 import numpy as np
 
-from .interface import MOST_STEPS, Monitor, Outcome, Problem, Status
+from .interface import MOST_STEPS, NOT_ENOUGH, OUT_OF_TIME, STEP_TOO_SMALL, Monitor, Outcome, Problem, Status
 
 METHODS = ("Radau",)
 """Those offered; `integrate` takes the name of any other of scipy's implicit methods as well, for comparisons."""
@@ -32,7 +31,7 @@ def integrate(problem: Problem, method: str, monitor: Monitor) -> Outcome:
             warnings.simplefilter("ignore")  # trial states may leave the range of exp; they are rejected
             solver = _start(problem, method, 0.0, problem.start)
             for stop, corner in problem.landings:
-                steps = _advance(solver, stop, monitor, outcome, steps, problem.until)
+                steps = _advance(solver, stop, monitor, outcome, steps, problem, began)
                 if corner and outcome.time == stop:
                     _add_counts(outcome, solver)
                     solver = _start(problem, method, stop, solver.y)
@@ -57,18 +56,18 @@ def _add_counts(outcome: Outcome, solver: Any) -> None:
         outcome.counts[name] = outcome.counts.get(name, 0) + int(count)
 
 
-def _advance(solver: Any, stop: float, monitor: Monitor, outcome: Outcome, steps: int,
-             until: Callable[[float, np.ndarray], bool] | None) -> int:
+def _advance(solver: Any, stop: float, monitor: Monitor, outcome: Outcome, steps: int, problem: Problem,
+             began: float) -> int:
     """Steps until `stop`, unless the solver gave up before or may end."""
-    solver.t_bound = stop
+    solver.t_bound, until = stop, problem.until
     if outcome.status is not Status.FINISHED or (until is not None and until(outcome.time, solver.y)):
         return steps
     solver.status = "running"
     while solver.status == "running":
-        message = solver.step()
-        if solver.status == "failed" or steps == MOST_STEPS:
-            outcome.status = Status.GAVE_UP
-            outcome.reason = f"at {outcome.time:.6g} s: " + (message or f"{MOST_STEPS} steps were not enough")
+        solver.step()
+        reason = _obstacle(solver, steps, problem, time.perf_counter() - began)
+        if reason:
+            outcome.status, outcome.reason = Status.GAVE_UP, f"at {outcome.time:.6g} s: {reason}"
             break
         steps += 1
         outcome.time = float(solver.t)
@@ -76,3 +75,13 @@ def _advance(solver: Any, stop: float, monitor: Monitor, outcome: Outcome, steps
         if until is not None and until(outcome.time, solver.y):
             break
     return steps
+
+
+def _obstacle(solver: Any, steps: int, problem: Problem, seconds: float) -> str:
+    """Why it cannot go on after `steps` and this time [s], and what to do; empty if it can."""
+    if solver.status == "failed":  # all that scipy's implicit methods fail of
+        return STEP_TOO_SMALL
+    limit = problem.most_steps or MOST_STEPS
+    if steps >= limit:
+        return NOT_ENOUGH.format(steps=limit)
+    return OUT_OF_TIME.format(longest=problem.longest) if steps and seconds > problem.longest else ""
