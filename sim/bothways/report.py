@@ -26,7 +26,7 @@ def summary(case: Case, run: Trajectory, verdict: Verdict, title: str = "") -> s
     sections = [("mechanism", wrapped(_mechanism(case))), ("vessel", wrapped(_vessel(case))), ("charge", [_charge(case)]),
                 ("milestones", _milestones(run)),
                 ("safety", _safety(case, run)), ("end", _end(run)), ("equilibrium", _equilibrium(verdict)),
-                ("balances", [_balances(run)]),
+                ("balances", [_balances(run)]), ("second law", wrapped(_second_law(case, run))),
                 ("solver", [_solver(run)])]
     lines = [title] if title else []
     for name, content in sections:
@@ -172,6 +172,18 @@ def _balances(run: Trajectory) -> str:
     if "heat_received" in run.extra:
         text += f"; heat received {energy_text(float(run.extra['heat_received'][-1]))}"
     return text + f"; entropy produced {run.entropy_produced[-1]:.4g} J/K"
+
+
+def _second_law(case: Case, run: Trajectory) -> str:
+    """How the second law was kept: steps, those refused, the largest rise refused, and mendings of the totals."""
+    s, unit = run.statistics, "R" if case.heat == "adiabatic" else "RT"
+    if "mendings" not in s:
+        return f"not watched by {s['method']}; {run.potential_name} rose by {s['largest_potential_rise']:.1e} at most in a step"
+    refused, amounts = int(s["rejected_by_second_law"]), run.concentration[0] if case.holds == "volume" else run.amount[0]
+    largest = float(s["largest_rise_refused"]) / float(np.sum(amounts))
+    rise = f", the largest rise {largest:.1e} {unit} per mole" if refused else ""
+    return (f"kept at {counted(int(s['steps']), 'step')}, {refused} more refused by it{rise}; totals mended "
+            f"{counted(int(s['mendings']), 'time')}")
 
 
 def _solver(run: Trajectory) -> str:
