@@ -39,10 +39,6 @@ from .stepping import (
 
 LAST_STEP, LAST_ERROR = OWN_MEMORY, OWN_MEMORY + 1
 MEMORY_SIZE = OWN_MEMORY + 2
-GENTLE = 1e-2
-"""A mended state whose fast modes are kicked harder than this within the step is settled: what the judge changed is let
-relax over the step, d → (M/hγ - J)⁻¹ M d/hγ, which keeps the totals it restores, since J conserves them; then it is
-judged again. Left as it is, the state would be off the fast modes' course, and the next steps small [-]."""
 _SAFETY, _SHRINK, _GROW = 0.9, 0.2, 6.0
 
 
@@ -57,18 +53,6 @@ def _next_factor(norm, memory, rejected_before, order):
         growth = min(growth, trend)
     growth = min(max(growth, _SHRINK), _GROW)
     return min(growth, 1.0) if rejected_before else growth
-
-
-@compiled
-def _kick(before, after, jacobian, own, mass, atol, rtol):
-    """How hard a mended state is thrown off its slow course: the relative change times the fastest rate [1/s]."""
-    fastest, largest = 0.0, 0.0
-    for k in range(mass.size):
-        if mass[k] > 0.0:
-            fastest = max(fastest, abs(jacobian[own[k]]))
-            if atol[k] < np.inf:
-                largest = max(largest, abs(after[k] - before[k]) / (abs(after[k]) + atol[k] / rtol))
-    return fastest * largest
 
 
 @compiled
@@ -147,16 +131,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             counts[REJECTED] += 1
             rejected = True
             continue
-        point[:] = new
         answer = call(judge, exchange, verdict, context) if judge != 0 else STAND
-        if answer == STAND and _kick(point, new, jacobian, own, mass, atol, rtol) * h > GENTLE:
-            for k in range(n):
-                right[k] = (new[k] - point[k]) * mass[k] / (h * gamma)
-            solve_either(sound, lu, order, start, column, diagonal, matrix, pivots, right, permuted, slope)
-            for k in range(n):
-                new[k] = point[k] + slope[k]
-            counts[SOLVES] += 1
-            answer = call(judge, exchange, verdict, context)
         if answer == CROSSED and (1.0 - verdict[1]) * h > NEAREST * t:
             counts[REJECTED] += 1
             memory[STEP] = max(verdict[1] * h, NEAREST * t)
