@@ -110,6 +110,7 @@ class RosenbrockStepper(Stepper):
     def __post_init__(self) -> None:
         super().__post_init__()
         self.remember(ros.MEMORY_SIZE)
+        self.atol = ros.ATOL_PART * self.atol
         self.packed, self.first_order = self.table.packed(), float(self.table.order)
 
     def begin(self) -> bool:
