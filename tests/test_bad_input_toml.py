@@ -98,7 +98,7 @@ def test_missing_mechanism_names_the_nearest(refusals: Refusals) -> None:
 
 
 @pytest.mark.parametrize("stated, near", [("hydrogen-oxigen", "nearest: hydrogen-oxygen"), ("small", "nearest: small.toml"),
-                                          ("Methane", "nearest: methane"), ("zzz", "known: c1-c4, case.toml")])
+                                          ("Methane", "nearest: methane"), ("zzz", "known: butene-isomers, c1-c4, case.toml")])
 def test_missing_bundled_mechanism_names_the_nearest(refusals: Refusals, stated: str, near: str) -> None:
     refusals.write()
     path = refusals.folder / "case.toml"

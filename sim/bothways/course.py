@@ -129,7 +129,8 @@ class Course:
         values = self.states @ weights
         means = np.diff(values) / np.diff(self.times)
         highest = float(np.max(means))
-        if not highest > 0 or np.ptp(values) <= ROUND_OFF * np.max(np.abs(values)):
+        rise = np.max(values - np.minimum.accumulate(values))
+        if not highest > 0 or rise <= ROUND_OFF * np.max(np.abs(values)):
             return None
         padded = np.concatenate([[-np.inf], means, [-np.inf]])
         summits = np.flatnonzero((means >= 0.5 * highest) & (means >= padded[:-2]) & (means >= padded[2:]))

@@ -59,7 +59,7 @@ def nearest(word: object, known: Iterable[str], label: str = "nearest") -> str:
     close = closest(str(word), names)
     if close:
         return f"{label}: " + ", ".join(close)
-    return "known: " + ", ".join(names) if 0 < len(names) <= 12 else ""
+    return "known: " + ", ".join(names) if 0 < len(names) <= 24 else ""
 
 
 def hint(word: object, known: Iterable[str]) -> str:

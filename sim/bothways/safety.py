@@ -95,6 +95,8 @@ def time_to_maximum_rate(case: Case, temperature: float, inertia: float = 1.0) -
         return None
     course = course_of(alone, equations, columns)
     found = course.steepest(_temperature(course))
+    if found is None and outcome.status is Status.GAVE_UP and columns["temperature"][-1] > columns["temperature"][0]:
+        return float(columns["time"][-1])  # so sudden that a float64 of the time cannot tell its parts apart
     return found[0] if found else None
 
 

@@ -22,9 +22,9 @@ def act(chosen: argparse.Namespace) -> int:
     """Carries out the verb."""
     for name in bundled_mechanisms():
         m = read_mechanism(name)
-        print(f"{name:<18}{m.phase}, {len(m.species)} species, {counted(len(m.reactions), 'reaction')}")
+        print(f"{name:<22}{m.phase}, {len(m.species)} species, {counted(len(m.reactions), 'reaction')}")
         for source in m.sources:
-            print(textwrap.indent(textwrap.fill(source, 90), " " * 18))
+            print(textwrap.indent(textwrap.fill(source, 90), " " * 22))
     print("\nbundled cases (an invented scenario), for 'bothways run NAME':")
     for name, path in bundled_cases().items():
         print(f"{name:<28}{read_toml(path)['case'].get('title', '')}")

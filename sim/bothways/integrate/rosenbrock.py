@@ -11,6 +11,7 @@ import math
 import numpy as np
 
 from ..compiled import CROSSED, REFUSED, STAND, call, compiled
+from .last_resort import backward_euler
 from .sparse_lu import dense_factor, factor
 from .stepping import (
     AT_CROSSING,
@@ -20,6 +21,7 @@ from .stepping import (
     FACTORISATIONS,
     J_CALLS,
     JUDGED_AGAINST,
+    LAST_RESORTS,
     NEAREST,
     OWN_MEMORY,
     REACHED,
@@ -42,6 +44,8 @@ MEMORY_SIZE = OWN_MEMORY + 2
 ATOL_PART = 1e-2
 """The method works to this part of atol: radicals that grow from nothing set when a mixture ignites, long before they
 reach the amounts that anybody asks for (measured with benchmarks/solvers.py: parts of 1 to 1e-4, three published sets)."""
+PATIENCE = 3
+"""Refusals by the monitor in a row, each at a quarter of the length, before a backward Euler step is tried instead."""
 _SAFETY, _SHRINK, _GROW = 0.9, 0.2, 6.0
 
 
@@ -73,7 +77,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
     u, right, point = np.zeros((s, n)), np.empty(n), np.empty(n)
     start_slope, slope = np.empty(n), np.empty(n)
     exchange, verdict = np.zeros(3 * n), np.zeros(4)
-    written, fresh, rejected = 0, False, False
+    written, fresh, rejected, refused, first, last_at_first = 0, False, False, 0, 0.0, False
     while written < times.size:
         t, h = memory[TIME], memory[STEP]
         if counts[STEPS] + counts[REJECTED] >= counts[STEP_LIMIT]:
@@ -129,8 +133,10 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             finite = finite and math.isfinite(new[k])
         norm = error_norm(error, old, new, atol, rtol) if finite else np.inf
         if not norm <= 1.0:
-            factor_down = _next_factor(norm, memory, True, estimator_order) if norm < 1e10 else 0.1
-            memory[STEP] = h * min(factor_down, 0.9)
+            shorter = _next_factor(norm, memory, True, estimator_order) if norm < 1e10 else 0.1
+            if memory[LAST_STEP] == 0.0:  # the first step may be a guess that is far too long
+                shorter = max(min(shorter, norm ** (-1.0 / estimator_order)), 1e-3)
+            memory[STEP] = h * min(shorter, 0.9)
             counts[REJECTED] += 1
             rejected = True
             continue
@@ -139,7 +145,25 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             counts[REJECTED] += 1
             memory[STEP] = max(verdict[1] * h, NEAREST * t)
             continue
+        if answer == REFUSED and refused == 0:
+            first, last_at_first = h, last
+        if answer == REFUSED and refused >= PATIENCE:
+            for length in (first, h):  # the length at which the refusals began, where its error allows that
+                point[:] = z
+                if answer == REFUSED and backward_euler(
+                        f, J, context, rows, starts, order, start, column, diagonal, target, own, mass, z, start_slope, length,
+                        point, error, slope, atol, rtol, counts) and error_norm(slope, old, point, atol, rtol) <= 1.0:
+                    new[:] = point
+                    answer = call(judge, exchange, verdict, context)
+                    if answer == CROSSED and (1.0 - verdict[1]) * length > NEAREST * t:
+                        answer = REFUSED
+                    if answer != REFUSED:
+                        counts[LAST_RESORTS] += 1
+                        norm = error_norm(slope, old, point, atol, rtol) ** (0.5 * estimator_order)  # of order 1
+                        h, last, rejected = length, last_at_first if length == first else last, False
+                        memory[LAST_STEP] = 0.0
         if answer == REFUSED:
+            refused += 1
             counts[JUDGED_AGAINST] += 1
             counts[REJECTED] += 1
             memory[STEP] = 0.25 * h
@@ -155,7 +179,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
         states[written] = z
         counts[STEPS] += 1
         written += 1
-        fresh, rejected = False, False
+        fresh, rejected, refused = False, False, 0
         if answer == CROSSED:
             return AT_CROSSING, written
         if last:
