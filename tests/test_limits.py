@@ -7,11 +7,13 @@ from pathlib import Path
 import pytest
 
 from bothways import InputError, build_case, build_mechanism, cli, read_case, read_trajectory
+from bothways.batch import run_and_judge
 from bothways.case import Case
 from bothways.cli import main
 from bothways.integrate import METHODS, OWN_METHODS, compiled_methods
 from bothways.mechanism.toml_reader import parse_toml
 from bothways.outcome import outcome
+from bothways.report import summary
 from refusals import CASE, MECHANISM, Refusals, assert_kept, changed, interrupting, meddled
 
 
@@ -130,3 +132,17 @@ def test_the_summary_tells_how_the_second_law_was_kept(refusals: Refusals, metho
         assert f"totals mended {s['mendings']} time" in text
     else:
         assert "second law not watched by Radau; " in text
+
+
+@pytest.mark.parametrize("heat, unit", [("isothermal", "RT"), ("adiabatic", "R")])
+def test_the_summary_tells_what_the_second_law_refused(heat: str, unit: str) -> None:
+    """Rises are kept for the whole charge, of 1 mol/L here: 3 mol/m3 is 0.003 of it."""
+    document = changed(CASE, ('"adiabatic"', f'"{heat}"'), ("thermal_inertia = 1.2\n", ""), ('mechanism = "small.toml"\n', ""),
+                       ('pressure = "1 atm"\n', ""),
+                       ("mole_ratio = { Q = 0.1, O2 = 1 }", "concentration = { Q = 100, O2 = 900 }"))
+    case = build_case(parse_toml(document), mechanism=build_mechanism(parse_toml(MECHANISM)))
+    trajectory, found = run_and_judge(case)
+    statistics = {**trajectory.statistics, "rejected_by_second_law": 4, "largest_rise_refused": 3.0, "mendings": 1, "steps": 21}
+    text = " ".join(summary(case, replace(trajectory, statistics=statistics), found).split())
+    assert (f"second law kept at 21 steps, 4 more refused by it, the largest rise 3.0e-03 {unit} per mole; totals mended 1 time "
+            in text)

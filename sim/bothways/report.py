@@ -176,9 +176,10 @@ def _balances(run: Trajectory) -> str:
 
 def _second_law(case: Case, run: Trajectory) -> str:
     """How the second law was kept: steps, those refused, the largest rise refused, and mendings of the totals."""
-    s, unit = run.statistics, "R" if case.heat == "adiabatic" else "RT"
+    s, unit = run.statistics, "RT" if case.heat == "isothermal" else "R"  # of a free energy, or of an entropy
     if "mendings" not in s:
-        return f"not watched by {s['method']}; {run.potential_name} rose by {s['largest_potential_rise']:.1e} at most in a step"
+        return (f"not watched by {s['method']}; {run.potential_name} rose by {s['largest_potential_rise']:.1e} "
+                f"{run.potential_units} at most in a step")
     refused, amounts = int(s["rejected_by_second_law"]), run.concentration[0] if case.holds == "volume" else run.amount[0]
     largest = float(s["largest_rise_refused"]) / float(np.sum(amounts))
     rise = f", the largest rise {largest:.1e} {unit} per mole" if refused else ""
