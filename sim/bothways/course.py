@@ -16,8 +16,8 @@ from functools import cached_property, partial
 import numpy as np
 from scipy.optimize import brentq
 
-_ENOUGH = 1e-9
-"""Of a step: far within the error of the interpolant."""
+_ENOUGH, _MOST_SECANTS = 1e-9, 8
+"""Of a step: far within the error of the interpolant; and how many secants are tried before bisection takes over."""
 
 Apply = Callable[[np.ndarray], np.ndarray]
 SETTLING, POWER = 0.05, 5
@@ -188,22 +188,41 @@ class Course:
         return float(self.times[k])
 
     def _inflection(self, k: int, weights: np.ndarray) -> float:
+        """Where y'' @ weights is zero within step k: by secants from the zero of the quintic, as y'' of a state is dear."""
         piece, h = self.between(k), float(self.times[k + 1] - self.times[k])
 
-        def bend(t: float) -> float:
-            return float(self.derivatives(t, piece(t), h)[1] @ weights)
+        def bend(x: float) -> float:
+            t = self._time(k, x)
+            return float(self.derivatives(t, piece(t), h)[1] @ weights) * h * h
 
-        return _root(bend, self.times[k], self.times[k + 1], _ENOUGH * h)
+        curvature = _derivative(_derivative(_quintic(self.piece(k) @ weights)))
+        x = _root(partial(_value, curvature), 0.0, 1.0)
+        value, slope = bend(x), _value(_derivative(curvature), x)
+        for _ in range(_MOST_SECANTS):
+            step = -value / slope if slope else np.inf
+            if not 0.0 <= x + step <= 1.0:
+                break
+            x, before = x + step, value
+            if abs(step) <= _ENOUGH:
+                return self._time(k, x)
+            value = bend(x)
+            slope = (value - before) / step
+        return self._time(k, _root(bend, 0.0, 1.0, _ENOUGH))
 
     def _polynomial(self, k: int, component: int) -> tuple[float, ...]:
         """The quintic of one component from step k to k + 1, powers of x = 0…1 rising."""
-        y0, d0, c0, y1, d1, c1 = (float(value) for value in self.piece(k)[:, component])
-        rise = y1 - y0
-        return (y0, d0, 0.5 * c0, 10 * rise - 6 * d0 - 4 * d1 - 1.5 * c0 + 0.5 * c1,
-                -15 * rise + 8 * d0 + 7 * d1 + 1.5 * c0 - c1, 6 * rise - 3 * d0 - 3 * d1 - 0.5 * c0 + 0.5 * c1)
+        return _quintic(self.piece(k)[:, component])
 
     def _time(self, k: int, x: float) -> float:
         return float(self.times[k] + x * (self.times[k + 1] - self.times[k]))
+
+
+def _quintic(piece: np.ndarray) -> tuple[float, ...]:
+    """Coefficients, powers of x = 0…1 rising, from value, slope and curvature at both ends (6)."""
+    y0, d0, c0, y1, d1, c1 = (float(value) for value in piece)
+    rise = y1 - y0
+    return (y0, d0, 0.5 * c0, 10 * rise - 6 * d0 - 4 * d1 - 1.5 * c0 + 0.5 * c1,
+            -15 * rise + 8 * d0 + 7 * d1 + 1.5 * c0 - c1, 6 * rise - 3 * d0 - 3 * d1 - 0.5 * c0 + 0.5 * c1)
 
 
 def settled(v: np.ndarray, solve: Apply) -> np.ndarray:

@@ -51,20 +51,3 @@ def sum_at(values, places, first, last):
         s2 += values[own[e, 2]]
         s3 += values[own[e, 3]]
     return (s0 + s1) + (s2 + s3)
-
-
-@compiled
-def dot_at(x, first, y, places, start, last):
-    """Σ x[first…] y[places[start:last]]."""
-    p4, x4 = fours(places, start, last), fours(x, first, first + (last - start))
-    s0, s1, s2, s3 = 0.0, 0.0, 0.0, 0.0
-    for e in range(p4.shape[0]):
-        s0 += x4[e, 0] * y[p4[e, 0]]
-        s1 += x4[e, 1] * y[p4[e, 1]]
-        s2 += x4[e, 2] * y[p4[e, 2]]
-        s3 += x4[e, 3] * y[p4[e, 3]]
-    done = 4 * p4.shape[0]
-    p1, x1 = span(places, start + done, last), span(x, first + done, first + (last - start))
-    for e in range(p1.size):
-        s0 += x1[e] * y[p1[e]]
-    return (s0 + s1) + (s2 + s3)

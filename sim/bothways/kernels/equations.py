@@ -11,9 +11,9 @@ slope of the temperature [K/s], UA of a jacket [W/K, at constant volume W/(m3 K)
 
 import numpy as np
 
-from ..compiled import compiled
+from ..compiled import compiled, span
 from ..constants import GAS_CONSTANT as R
-from ..sums import dot, dot_at, total_of
+from ..sums import dot, total_of
 from . import layout as at
 from .layout import view
 from .lumped import conductances
@@ -213,7 +213,10 @@ def _temperature_row(y, T, volume, vessel, ints, work, data):
     p = 0
     for s in range(n):
         size = start[s + 1] - start[s]
-        total = dot_at(data, p, energy, row, start[s], start[s + 1])
+        values, rows = span(data, p, p + size), span(row, start[s], start[s + 1])
+        total = 0.0
+        for e in range(values.size):
+            total += energy[rows[e]] * values[e]
         p += size
         data[p + 1] = -by_balance * (T * total + f * (cp[s] - less)) / heat
         p += 2
