@@ -5,7 +5,7 @@ from pathlib import Path
 import pytest
 
 from bothways import build_mechanism as build
-from bothways import bundled_mechanisms, rates, read_mechanism, thermo
+from bothways import bundled_mechanisms, read_mechanism
 from bothways.mechanism.toml_reader import parse_toml
 from refusals import ARRHENIUS_2, MECHANISM, R1, R2, R3, R4, Refusals, changed, row
 
@@ -288,16 +288,3 @@ NOT_KNOWN = [
 @pytest.mark.parametrize("changes, entry, texts", NOT_KNOWN)
 def test_what_is_not_known(refusals: Refusals, changes: tuple, entry: str, texts: tuple) -> None:
     check(refusals, changes, entry, texts)
-
-
-FORMS = ["NASA 9-coefficient", "Shomate", "statistical mechanics", "structureless particle"]
-LAWS = ["SRI", "activated", "pressure table", "Chebyshev", "hard-sphere collision", "Eyring", "transition state",
-        "Hougen-Watson"]
-PLANNED = [("species.Q2.potential.form", '"NASA 7-coefficient"', form) for form in FORMS if form not in thermo._FORMS]
-PLANNED += [(f"{R3}.forward.law", '"Troe"', law) for law in LAWS if law not in rates._LAWS]
-
-
-@pytest.mark.parametrize("entry, known, planned", PLANNED)
-def test_what_is_planned_but_not_there_yet_is_refused_with_what_is(refusals: Refusals, entry: str, known: str,
-                                                                   planned: str) -> None:
-    check(refusals, ((known, f'"{planned}"'),), entry, (f"'{planned}' is not known", "expected ", known))
