@@ -133,22 +133,41 @@ def call(typing_context, address, given, result, context_array):  # type: ignore
     return types.int64(types.int64, given, result, context_array), generate
 
 
+def _part_of(context, builder, array, kind, first, last):  # type: ignore[no-untyped-def]
+    """The value of a one-dimensional view of an array from an index up to another: nothing asked, nothing counted."""
+    base = context.make_array(kind)(context, builder, array)
+    made = context.make_array(kind)(context, builder)
+    width = context.get_constant(types.intp, context.get_abi_sizeof(context.get_data_type(kind.dtype)))
+    context.populate_array(made, data=builder.gep(base.data, [first]), shape=(builder.sub(last, first),), strides=(width,),
+                           itemsize=width, meminfo=None, parent=None)
+    return made._getvalue()
+
+
 @intrinsic
 def _span(typing_context, array, first, last):  # type: ignore[no-untyped-def]
     result = array.copy(readonly=False)
 
     def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
-        base = context.make_array(signature.args[0])(context, builder, arguments[0])
-        first, last = (context.cast(builder, value, kind, types.intp)
-                       for value, kind in zip(arguments[1:], signature.args[1:], strict=True))
-        made = context.make_array(result)(context, builder)
-        size = builder.sub(last, first)
-        width = context.get_constant(types.intp, context.get_abi_sizeof(context.get_data_type(result.dtype)))
-        context.populate_array(made, data=builder.gep(base.data, [first]), shape=(size,), strides=(width,), itemsize=width,
-                               meminfo=None, parent=None)
-        return made._getvalue()
+        ends = [context.cast(builder, value, kind, types.intp)
+                for value, kind in zip(arguments[1:], signature.args[1:], strict=True)]
+        return _part_of(context, builder, arguments[0], signature.args[0], *ends)
 
     return result(array, first, last), generate
+
+
+@intrinsic
+def _span_at(typing_context, array, offsets, slot):  # type: ignore[no-untyped-def]
+    result = array.copy(readonly=False)
+
+    def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
+        kind, offset_kind, slot_kind = signature.args
+        offsets = context.make_array(offset_kind)(context, builder, arguments[1]).data
+        place = context.cast(builder, arguments[2], slot_kind, types.intp)
+        places = (place, builder.add(place, context.get_constant(types.intp, 1)))
+        ends = [context.cast(builder, builder.load(builder.gep(offsets, [k])), offset_kind.dtype, types.intp) for k in places]
+        return _part_of(context, builder, arguments[0], kind, *ends)
+
+    return result(array, offsets, slot), generate
 
 
 @intrinsic
@@ -187,13 +206,17 @@ float64_pointer, uint32_pointer = _pointer_to(types.float64), _pointer_to(types.
 """An address as a pointer to float64 or uint32, for numba's carray."""
 
 if JIT:
-    bits_to_float, float_to_bits, span, fours = _bits_to_float, _float_to_bits, _span, _fours
+    bits_to_float, float_to_bits, span, span_at, fours = _bits_to_float, _float_to_bits, _span, _span_at, _fours
 else:
     import struct
 
     def span(array, first, last):  # type: ignore[no-untyped-def]
         """array[first:last] (interpreted kernels)."""
         return array[first:last]
+
+    def span_at(array, offsets, slot):  # type: ignore[no-untyped-def]
+        """array[offsets[slot]:offsets[slot + 1]] (interpreted kernels)."""
+        return array[offsets[slot] : offsets[slot + 1]]
 
     def fours(array, first, last):  # type: ignore[no-untyped-def]
         """array[first:last] by whole fours, (…, 4) (interpreted kernels)."""

@@ -7,7 +7,7 @@ of a list spans offset k to offset k + 1. `view` is the one way to them.
 
 from collections.abc import Sequence
 
-from ..compiled import compiled, span
+from ..compiled import span_at
 
 SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALL_OFFS", "GROUPS", "LONG", "BLOCK", "CURVES",
          "COLUMNS", "RESPONSES", "DILUTED", "LUMPS", "LUMP_ENTRIES", "COMPLEXES")
@@ -159,8 +159,7 @@ def offset_slot(names: Sequence[str], name: str) -> int:
     return base + tuple(names).index(name)
 
 
-@compiled
-def view(array, ints, slot):
-    """The named array whose offset stands at `slot`, as a view that costs next to nothing: no bounds are asked for and
-    nothing is counted, so `array` must outlive it."""
-    return span(array, ints[slot], ints[slot + 1])
+view = span_at
+"""view(array, ints, slot): the named array whose offset stands at `slot`, as a view that costs next to nothing: no bounds
+are asked for and nothing is counted, so `array` must outlive it. A compiled function of its own would be compiled anew for
+every slot."""
