@@ -10,7 +10,7 @@ import os
 import tempfile
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
-from functools import cached_property
+from functools import cached_property, update_wrapper
 from pathlib import Path
 from typing import Any
 
@@ -20,7 +20,7 @@ from numba.core import types
 from numba.extending import intrinsic
 
 _HERE = Path(__file__).parent
-_SOURCES = ("constants.py", "compiled.py", "sums.py", "kernels/*.py", "integrate/*.py")
+_SOURCES = ("constants.py", "compiled.py", "apart.py", "sums.py", "kernels/*.py", "integrate/*.py")
 
 
 def _digest() -> str:
@@ -52,14 +52,42 @@ CACHE_FOLDER = _folder()
 JIT = not numba.config.DISABLE_JIT
 
 
-def compiled(function: Callable[..., Any]) -> Callable[..., Any]:
-    """Compiles a kernel at its first call, cached in CACHE_FOLDER.
+_HOW: dict[str, Any] = {"nogil": True, "error_model": "numpy"}
+"""No fastmath: sums keep their order and NaN stays NaN. Division by zero gives inf or NaN, as in NumPy. The GIL is released."""
 
-    No fastmath: sums keep their order and NaN stays NaN. Division by zero gives inf or NaN, as in NumPy.
-    The GIL is released.
+
+class Kernel:
+    """A function that kernels and Python call; compiled for either when it is first called from there.
+
+    For Python there is code that unpacks arrays, and the cache on disk. For kernels there is neither: what they call becomes
+    a part of them, and what Python unpacks costs more to compile than most kernels do.
     """
-    with _in_cache_folder():
-        return numba.njit(cache=True, nogil=True, error_model="numpy")(function)
+
+    def __init__(self, function: Callable[..., Any]) -> None:
+        update_wrapper(self, function)
+        self._function = function
+
+    @cached_property
+    def _for_python(self) -> Any:
+        with in_cache_folder():
+            return numba.njit(cache=True, **_HOW)(self._function)
+
+    @cached_property
+    def _for_kernels(self) -> Any:
+        return numba.njit(no_cpython_wrapper=True, no_cfunc_wrapper=True, **_HOW)(self._function)
+
+    def __call__(self, *arguments: Any) -> Any:
+        return self._for_python(*arguments)
+
+    @property
+    def _numba_type_(self) -> Any:
+        """What numba takes it for in a kernel."""
+        return self._for_kernels._numba_type_
+
+
+def compiled(function: Callable[..., Any]) -> Callable[..., Any]:
+    """Compiles a kernel at its first call, cached in CACHE_FOLDER."""
+    return Kernel(function) if JIT else function
 
 
 REFUSED, STAND, CROSSED = range(3)
@@ -80,7 +108,7 @@ class callback:
     @cached_property
     def _compiled(self) -> Any:
         pointers = types.CPointer(types.float64), types.CPointer(types.float64), types.CPointer(types.int64)
-        with _in_cache_folder():
+        with in_cache_folder():
             return numba.cfunc(types.int64(*pointers), cache=True, nopython=True, error_model="numpy")(self._function)
 
     @property
@@ -90,7 +118,7 @@ class callback:
 
 
 @contextmanager
-def _in_cache_folder() -> Iterator[None]:
+def in_cache_folder() -> Iterator[None]:
     before = numba.config.CACHE_DIR
     numba.config.CACHE_DIR = str(CACHE_FOLDER)
     try:

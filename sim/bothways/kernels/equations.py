@@ -11,6 +11,7 @@ slope of the temperature [K/s], UA of a jacket [W/K, at constant volume W/(m3 K)
 
 import numpy as np
 
+from ..apart import apart
 from ..compiled import compiled, span
 from ..constants import GAS_CONSTANT as R
 from ..sums import dot, total_of
@@ -40,8 +41,8 @@ _ENERGY = at.offset_slot(at.WORK, "energy")
 _COLUMN = at.offset_slot(at.WORK, "border_column")
 
 
-@compiled
-def _produce(y, border, T, vessel, ints, floats, work):
+@apart
+def produce(y, border, T, vessel, ints, floats, work):
     """Sets rates and omega for the species part y of a state; returns the volume in units of the state.
 
     At constant volume the state is per volume (1); border is the total concentration or the volume. Nothing is done
@@ -119,7 +120,7 @@ def rates_of_change(y, vessel, ints, floats, work, out):
     if not _usable(T):
         out[:] = np.nan
         return
-    volume = _produce(y, border_of(y, n, vessel), T, vessel, ints, floats, work)
+    volume = produce(y, border_of(y, n, vessel), T, vessel, ints, floats, work)
     omega = view(work, ints, _OMEGA)
     for i in range(n):
         out[i] = volume * omega[i]
@@ -134,7 +135,7 @@ def bordered_rates_of_change(z, vessel, ints, floats, work, out):
     if not _usable(T):
         out[:] = np.nan
         return
-    volume = _produce(z, border, T, vessel, ints, floats, work)
+    volume = produce(z, border, T, vessel, ints, floats, work)
     omega = view(work, ints, _OMEGA)
     for i in range(n):
         out[i] = volume * omega[i]
@@ -142,11 +143,11 @@ def bordered_rates_of_change(z, vessel, ints, floats, work, out):
     out[n + 1] = _heating(z, T, volume, vessel, ints, work)
 
 
-@compiled
-def _columns(y, border, T, vessel, ints, floats, work):
+@apart
+def columns(y, border, T, vessel, ints, floats, work):
     """Completes the Jacobian's species rows: `block` holds ∂f/∂y, `column` ∂f/∂border, `omega_by_T` ∂f/∂T."""
     n, size = ints[at.SPECIES], ints[at.BLOCK]
-    volume = _produce(y, border, T, vessel, ints, floats, work)
+    volume = produce(y, border, T, vessel, ints, floats, work)
     set_derivatives(T, ints, floats, work)
     block, omega, by_T = view(work, ints, _BLOCK), view(work, ints, _OMEGA), view(work, ints, _OMEGA_BY_T)
     column = view(work, ints, _COLUMN)
@@ -177,7 +178,7 @@ def bordered_jacobian(z, vessel, ints, floats, work, data):
     if not _usable(T):
         data[:] = np.nan
         return
-    volume = _columns(z, border, T, vessel, ints, floats, work)
+    volume = columns(z, border, T, vessel, ints, floats, work)
     start, block = view(ints, ints, _BLOCK_START), view(work, ints, _BLOCK)
     p = 0
     for s in range(n):
@@ -269,7 +270,7 @@ def reaction_conductances(y, vessel, ints, floats, work, out, reverse):
     reverse: (R) scratch.
     """
     n = ints[at.SPECIES]
-    _produce(y, border_of(y, n, vessel), y[n], vessel, ints, floats, work)
+    produce(y, border_of(y, n, vessel), y[n], vessel, ints, floats, work)
     one_way_rates(ints, work, out, reverse)
     conductances(out, reverse, ints, floats, work)
 
@@ -278,5 +279,5 @@ def reaction_conductances(y, vessel, ints, floats, work, out, reverse):
 def reaction_rates(y, vessel, ints, floats, work, forward, reverse):
     """Forward and reverse rates [mol/(m3 s)] of every reaction in a plain state; outputs (R)."""
     n = ints[at.SPECIES]
-    _produce(y, border_of(y, n, vessel), y[n], vessel, ints, floats, work)
+    produce(y, border_of(y, n, vessel), y[n], vessel, ints, floats, work)
     one_way_rates(ints, work, forward, reverse)
