@@ -10,14 +10,15 @@ import tomllib
 from collections.abc import Iterator, Mapping
 from functools import lru_cache
 from pathlib import Path
+from types import ModuleType
 
 import pytest
 
 import bothways
 
 LAYERS = (  # the lowest first; "" is the package itself with its public names
-    ("constants", "errors", "compiled"),
-    ("units", "outfile", "schedule", "components", "sums"),
+    ("constants", "errors", "compiled", "roots", "version"),
+    ("units", "outfile", "schedule", "components", "sums", "apart"),
     ("entry", "hdf5"),
     ("kernels",),
     ("thermo",),
@@ -44,12 +45,12 @@ LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("__main__",),
 )
 RANK = {part: rank for rank, layer in enumerate(LAYERS) for part in layer}
-ISLANDS = {"integrate": {"compiled", "sums"}, "kernels": {"compiled", "constants", "sums"}}
+ISLANDS = {"integrate": {"compiled", "sums"}, "kernels": {"apart", "compiled", "constants", "sums"}}
 """Parts that may import only these: solvers and kernels know no chemistry's objects."""
 NEVER = {"equilibrium": ("rates", "balance", "kernels.rates", "kernels.equations", "vessel", "integrate")}
 """Modules that a part may not import though they stand below it: the equilibrium shares no kinetics with a run."""
-THIRD_PARTY = {"numpy": None, "scipy": None, "numba": {"compiled", "kernels"}, "llvmlite": {"compiled"}, "h5py": {"hdf5"},
-               "matplotlib": {"plots"}, "tqdm": {"cli"}, "distributed": {"cli"}}
+THIRD_PARTY = {"numpy": None, "scipy": None, "numba": {"apart", "compiled", "kernels"}, "llvmlite": {"apart", "compiled"},
+               "h5py": {"hdf5"}, "matplotlib": {"plots"}, "tqdm": {"cli"}, "distributed": {"cli"}}
 """Libraries, and the parts that are their doors (None: any). llvmlite comes with numba."""
 OPTIONAL = {"distributed": "cluster"}
 """Libraries that are imported where they are asked for, and the extra that brings them."""
@@ -89,7 +90,7 @@ def imports(file: str, text: str, modules: set[str]) -> Iterator[tuple[int, str,
             for alias in node.names:
                 inner = f"{name}.{alias.name}".lstrip(".")
                 yield node.lineno, inner if own and inner in modules else name, own
-        elif isinstance(node, ast.Call) and _dynamic(node.func):
+        elif isinstance(node, ast.Call) and _dynamic(node.func) and file != "__init__.py":
             yield node.lineno, "an import by name", False
 
 
@@ -149,6 +150,17 @@ def _library_fault(part: str, target: str) -> str:
 
 def test_imports_run_downwards() -> None:
     assert faults(sources()) == []
+
+
+def test_the_package_loads_by_name_what_it_imports_for_type_checkers() -> None:
+    """Its public names are loaded by name, when first used: from where, the imports that only type checkers carry out say."""
+    package = sources()["__init__.py"]
+    stated = {alias.asname or alias.name: node.module for node in nodes(package) if isinstance(node, ast.ImportFrom)
+              for alias in node.names if node.level and alias.name != "program_version"}
+    assert stated == bothways._PART_OF
+    for name, part in stated.items():
+        found = getattr(bothways, name)
+        assert not isinstance(found, ModuleType) and found.__module__.startswith(f"bothways.{part}")
 
 
 def test_every_file_was_read() -> None:

@@ -13,7 +13,6 @@ import ctypes
 import os
 import traceback
 from collections.abc import Callable
-from functools import update_wrapper
 from typing import Any
 
 import llvmlite.binding
@@ -36,8 +35,7 @@ class Apart:
     every: list["Apart"] = []  # noqa: RUF012  (one list for the process)
 
     def __init__(self, function: Callable[..., float]) -> None:
-        update_wrapper(self, function)
-        self._function = function
+        self._function, self.__doc__ = function, function.__doc__
         self._cell, self._filler = ctypes.c_void_p(), ctypes.CFUNCTYPE(None)(self._fill_for_kernel)
         self._symbol = f"bothways_{function.__module__}_{function.__qualname__}".replace(".", "_")
         llvmlite.binding.add_symbol(self._symbol, ctypes.addressof(self._cell))
@@ -49,7 +47,7 @@ class Apart:
         """Compiles the kernel, or fetches it from the cache, unless this process has it."""
         if not self._cell.value:
             with in_cache_folder():
-                self._made = numba.cfunc(_SIGNATURE, cache=True, nopython=True, error_model="numpy")(self._function)
+                self._made = numba.cfunc(_SIGNATURE, cache=True, error_model="numpy")(self._function)
             self._cell.value = self._made.address
 
     def _fill_for_kernel(self) -> None:

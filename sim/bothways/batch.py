@@ -1,7 +1,6 @@
 """A batch run: the equations of a case integrated under the recorder's eyes, and the trajectory that results."""
 
 from collections.abc import Callable
-from importlib.metadata import PackageNotFoundError, version
 from typing import Any
 
 import numpy as np
@@ -18,15 +17,8 @@ from .recorder import HEAT_COLUMNS, Recorder, potential_of
 from .remarks import remark_at_end, remark_at_start
 from .safety import safety_figures, times_to_maximum_rate
 from .trajectory import Trajectory
+from .version import program_version
 from .vessel import Equations
-
-
-def program_version() -> str:
-    """The version of the installed program."""
-    try:
-        return version("bothways")
-    except PackageNotFoundError:
-        return "0 (not installed)"
 
 
 def prepare(case: Case, say: Callable[[str], None] = lambda text: None) -> bool:

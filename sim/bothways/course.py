@@ -14,7 +14,8 @@ from collections.abc import Callable, Sequence
 from functools import cached_property, partial
 
 import numpy as np
-from scipy.optimize import brentq
+
+from .roots import zero
 
 _ENOUGH, _MOST_SECANTS = 1e-9, 8
 """Of a step: far within the error of the interpolant; and how many secants are tried before bisection takes over."""
@@ -267,11 +268,7 @@ def _hermite_slope(x: float) -> np.ndarray:
 
 
 def _root(function: Callable[[float], float], start: float, end: float, near: float = 0.0) -> float:
-    """Where a function changes sign between two times, known to `near` or to round-off; `end` if it does not.
-
-    R.P. Brent, Algorithms for Minimization without Derivatives, 1973, ch. 4, as in SciPy.
-    """
-    try:
-        return float(brentq(function, start, end, xtol=max(near, 1e-300), rtol=4 * np.finfo(float).eps))
-    except ValueError:  # the interpolant rounds a crossing at the very end of a step away
-        return float(end)
+    """Where a function changes sign between two times, known to `near` or to round-off; `end` if it does not: the interpolant
+    rounds a crossing at the very end of a step away."""
+    found = zero(function, start, end, near)
+    return end if found is None else found

@@ -6,13 +6,16 @@ border before T and the jacket's temperature at the end. kernels/exchange.py say
 
 from dataclasses import dataclass
 from functools import cached_property
+from typing import TYPE_CHECKING
 
 import numpy as np
-from scipy.sparse import csc_array
 
 from .kernels import exchange as kernel
 from .schedule import Schedule
 from .vessel import Equations
+
+if TYPE_CHECKING:
+    from scipy.sparse import csc_array
 
 FURTHER = {"given temperature": 1, "jacket": 2}
 """Unknowns behind T in the plain form, by the vessel's heat."""
@@ -67,8 +70,10 @@ class ExchangingEquations:
         kernel.exchanging_rates_of_change(z.astype(float), *self.equations.arguments, out)
         return out
 
-    def bordered_J(self, t: float, z: np.ndarray) -> csc_array:
+    def bordered_J(self, t: float, z: np.ndarray) -> "csc_array":
         """Its Jacobian on its sparsity pattern."""
+        from scipy.sparse import csc_array  # takes its time to load, and runs of the own methods need it not
+
         self.equations.follow(self.equations.vessel, t)
         rows, starts = self.pattern
         data, base = np.empty(rows.size), np.empty(self.equations.bordered_pattern[0].size)

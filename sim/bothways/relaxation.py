@@ -9,7 +9,6 @@ doi:10.1137/050639193; LAPACK gejsv).
 """
 
 import numpy as np
-from scipy.linalg import lapack, qr
 
 from .constants import GAS_CONSTANT as R
 from .contents import Contents
@@ -58,6 +57,8 @@ def _without(followers: np.ndarray, rows: np.ndarray) -> tuple[np.ndarray, int]:
     """Rows with what the followers' rows span taken out, and the rank of that."""
     if not followers.size:
         return rows, 0
+    from scipy.linalg import qr  # takes its time to load, and few runs need it
+
     norms = np.linalg.norm(followers, axis=1)
     basis, triangle, _ = qr((followers[norms > 0] / norms[norms > 0, None]).T, mode="economic", pivoting=True)
     rank = int(np.sum(np.abs(np.diag(triangle)) > 1e-13))
@@ -91,6 +92,8 @@ def singular_values(matrix: np.ndarray) -> np.ndarray:
     Rows sorted by size and columns pivoted, Householder's triangularisation keeps the small rows' digits (A.J. Cox,
     N.J. Higham, BIT 38 (1998) 34, doi:10.1007/BF02510915), and Jacobi's method those of the triangle.
     """
+    from scipy.linalg import lapack, qr
+
     tall = matrix if matrix.shape[0] >= matrix.shape[1] else matrix.T
     order = np.argsort(-np.linalg.norm(tall, axis=1))
     triangle = qr(tall[order], mode="r", pivoting=True)[0][: tall.shape[1]]

@@ -9,10 +9,11 @@ but for a zero at the border (a semi-explicit differential-algebraic system of i
 from collections.abc import Callable
 from dataclasses import dataclass
 from functools import cached_property
+from typing import TYPE_CHECKING
 
 import numpy as np
-from scipy.sparse import csc_array
 
+from .apart import fill_all
 from .compiled import in_cache
 from .constants import GAS_CONSTANT as _R
 from .errors import InputError
@@ -21,6 +22,9 @@ from .kernels import equations as kernel
 from .mechanism import Mechanism, Tables, build_tables, table_view
 from .mechanism.phase import SOLUTION, less, shared
 from .schedule import Schedule
+
+if TYPE_CHECKING:
+    from scipy.sparse import csc_array
 
 HEAT = ("isothermal", "adiabatic", "given temperature", "jacket")
 HOLDS = ("volume", "pressure")
@@ -93,6 +97,7 @@ class Equations:
     @cached_property
     def arguments(self) -> tuple[np.ndarray, ...]:
         """vessel, ints, floats and work, as every kernel takes them."""
+        fill_all()
         return self.vessel, self.tables.ints, self.tables.floats, self.tables.work()
 
     def prepare(self, say: Callable[[str], None] = lambda text: None) -> bool:
@@ -136,8 +141,10 @@ class Equations:
             out[-1] = self.transfer * vessel[kernel.RAMP] / (_R * kernel.heat_capacity_of(_vector(y), vessel, ints, work))
         return out
 
-    def J_sparse(self, t: float, y: np.ndarray) -> csc_array:
+    def J_sparse(self, t: float, y: np.ndarray) -> "csc_array":
         """∂f/∂y of the plain form on its own sparsity pattern."""
+        from scipy.sparse import csc_array  # takes its time to load, and runs need it not
+
         rows, starts = self.pattern
         columns = np.repeat(np.arange(self.size), np.diff(starts))
         return csc_array((self.J(t, y)[rows, columns], rows, starts), shape=(self.size, self.size))
@@ -149,17 +156,23 @@ class Equations:
         kernel.bordered_rates_of_change(_vector(z), *self.arguments, out)
         return out
 
-    def bordered_J(self, t: float, z: np.ndarray) -> csc_array:
+    def bordered_J(self, t: float, z: np.ndarray) -> "csc_array":
         """∂F/∂z of the bordered form on its sparsity pattern, (N + 2, N + 2)."""
+        from scipy.sparse import csc_array
+
         rows, starts = self.bordered_pattern
-        data = np.empty(rows.size)
+        return csc_array((self.bordered_values(t, z), rows, starts), shape=(self.size + 1, self.size + 1))
+
+    def bordered_values(self, t: float, z: np.ndarray) -> np.ndarray:
+        """The values of `bordered_J`, column by column as `bordered_pattern` lists them."""
+        data = np.empty(self.bordered_pattern[0].size)
         self.follow(self.vessel, t)
         kernel.bordered_jacobian(_vector(z), *self.arguments, data)
-        return csc_array((data, rows, starts), shape=(self.size + 1, self.size + 1))
+        return data
 
     def resolvent(self, t: float, y: np.ndarray, step: float) -> Callable[[np.ndarray], np.ndarray]:
         """v -> (I - step J)⁻¹ v for J at a plain state y, by sparse factors of the bordered form; v: (N + 1)."""
-        solve, n = self._resolvent.of(self.bordered_J(t, self.bordered_state(y)).data, step), self.size - 1
+        solve, n = self._resolvent.of(self.bordered_values(t, self.bordered_state(y)), step), self.size - 1
         return lambda v: np.delete(solve(np.concatenate([v[:n], [0.0], v[n:]])), n)
 
     @cached_property

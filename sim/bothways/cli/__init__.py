@@ -5,12 +5,23 @@ import os
 import sys
 from collections.abc import Sequence
 from pathlib import Path
-from typing import NoReturn
+from typing import Any, NoReturn
 
 from ..errors import BothwaysError, InputError
 
 DONE, FAILED_VERDICT, BAD_INPUT, GAVE_UP, FAULT, INTERRUPTED = 0, 1, 2, 3, 4, 130
 """Exit statuses; FAULT is a mistake of the program itself."""
+VERBS = {
+    "run": "predict a batch's time course",
+    "equilibrium": "state where a batch must end",
+    "sweep": "run the cases of a grid",
+    "audit": "find what is wrong with a mechanism",
+    "compare": "judge reduced mechanisms against their parent",
+    "reduce": "make a smaller mechanism within stated limits",
+    "plot": "draw a run's course, approach to equilibrium or rates; a sweep's ignition delays",
+    "mechanisms": "list the bundled mechanisms, cases and grids",
+}
+"""What can be done, and what --help says of it."""
 SHOW_FAULT = "BOTHWAYS_TRACEBACK"
 """Environment variable that lets the traceback of such a fault through."""
 
@@ -19,7 +30,8 @@ def main(arguments: Sequence[str] | None = None) -> int:
     """Runs the command line; returns the exit status. Every failure is one line on stderr."""
     _show_any_text()
     try:
-        chosen = _parser().parse_args(arguments)
+        stated = sys.argv[1:] if arguments is None else arguments
+        chosen = _parser(next((word for word in stated if word in VERBS), "")).parse_args(arguments)
         status = int(chosen.act(chosen))
         print(end="", flush=True)
         return status
@@ -72,18 +84,41 @@ class _Parser(argparse.ArgumentParser):
         raise InputError(message, remedy=f"'{self.prog} --help' shows what is possible")
 
 
-def _parser() -> argparse.ArgumentParser:
-    from . import audit, compare, equilibrium, mechanisms, plot, reduce, run, sweep
-
+def _parser(wanted: str | None = None) -> argparse.ArgumentParser:
+    """The parser with every verb, or with only the wanted one complete: a verb's module takes its time to load."""
     parser = _Parser(
         prog="bothways", description="What happens in a closed batch reactor, by kinetics that cannot contradict "
         "thermodynamics: every reverse rate is made from the forward rate and the equilibrium constant.",
         epilog="example: bothways run hydrogen-kettle --plot", allow_abbrev=False)
     parser.add_argument("--version", action=_Version, nargs=0, help="show the version and where it is installed")
     verbs = parser.add_subparsers(required=True, metavar="COMMAND")
-    for verb in (run, equilibrium, sweep, audit, compare, reduce, plot, mechanisms):
-        verb.add_to(verbs)
+    for verb, text in VERBS.items():
+        if wanted in (verb, None):
+            _module(verb).add_to(verbs)
+        else:
+            verbs.add_parser(verb, help=text)
     return parser
+
+
+def _module(verb: str) -> Any:
+    """The module of a verb."""
+    if verb == "run":
+        from . import run as module
+    elif verb == "equilibrium":
+        from . import equilibrium as module  # type: ignore[no-redef]
+    elif verb == "sweep":
+        from . import sweep as module  # type: ignore[no-redef]
+    elif verb == "audit":
+        from . import audit as module  # type: ignore[no-redef]
+    elif verb == "compare":
+        from . import compare as module  # type: ignore[no-redef]
+    elif verb == "reduce":
+        from . import reduce as module  # type: ignore[no-redef]
+    elif verb == "plot":
+        from . import plot as module  # type: ignore[no-redef]
+    else:
+        from . import mechanisms as module  # type: ignore[no-redef]
+    return module
 
 
 class _Version(argparse.Action):

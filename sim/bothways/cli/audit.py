@@ -10,13 +10,13 @@ from ..mechanism import Mechanism, read_mechanism
 from ..mechanism.toml_reader import read_text
 from ..outfile import check_writable, write_whole
 from ..units import parse_quantity
-from . import DONE, FAILED_VERDICT, spare
+from . import DONE, FAILED_VERDICT, VERBS, spare
 
 
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser(
-        "audit", help="find what is wrong with a mechanism", formatter_class=argparse.RawDescriptionHelpFormatter,
+        "audit", help=VERBS["audit"], formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Looks a mechanism over for what breaks physics though it integrates happily: rates above the collision\n"
         "rate, published reverse constants against those of K(T), thermochemistry, stoichiometry, fall-off. The worst\n"
         "first, each with its place, its size and what is likelier at fault. Exit status 1 if anything is an error.",

@@ -8,7 +8,7 @@ from pathlib import Path
 
 from tqdm import tqdm
 
-from ..batch import prepare, program_version
+from ..batch import prepare
 from ..case import Case
 from ..compare import MEASURES, Comparison, compare_cases, read_limits, read_mapping
 from ..compare.file import write_comparison
@@ -16,7 +16,8 @@ from ..compare.tables import csv_text, markdown, terminal_text
 from ..errors import InputError
 from ..mechanism import Mechanism, read_mechanism
 from ..outfile import check_writable, write_whole
-from . import DONE, FAILED_VERDICT, spare
+from ..version import program_version
+from . import DONE, FAILED_VERDICT, VERBS, spare
 
 MOST_CASES = 10_000
 """More conditions than this are run only after --yes."""
@@ -26,7 +27,7 @@ def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     measures = ", ".join(m.name for m in MEASURES if m.limited)
     parser = verbs.add_parser(
-        "compare", help="judge reduced mechanisms against their parent", formatter_class=argparse.RawDescriptionHelpFormatter,
+        "compare", help=VERBS["compare"], formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Runs every condition of a grid with a mechanism and with reductions of it, and says in what and how far\n"
         "they depart, what they conserve that the parent does not, and what they cost.",
         epilog=f"what can be limited: {measures}\n\nexample:\n  bothways compare methane methane-skeletal --over methane-range "

@@ -19,7 +19,7 @@ from ..mechanism.phase import SOLUTION
 from ..outfile import check_writable, write_whole
 from ..report import pressure_text, volume_text
 from ..units import parse_quantity
-from . import DONE, spare
+from . import DONE, VERBS, spare
 
 SHOWN_ABOVE = 1e-12
 """Species below this mole fraction everywhere are left out of tables [-]."""
@@ -29,7 +29,7 @@ _COLUMNS = 6
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser(
-        "equilibrium", help="state where a batch must end", formatter_class=argparse.RawDescriptionHelpFormatter,
+        "equilibrium", help=VERBS["equilibrium"], formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Works out the equilibrium of a case's charge in its vessel, from the species' chemical potentials alone.\n"
         "With a list of temperatures or pressures: a table, each at that temperature or pressure, the rest as the case says.",
         epilog="examples:\n  bothways equilibrium hydrogen-kettle\n"

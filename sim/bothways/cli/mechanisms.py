@@ -7,12 +7,12 @@ from ..grid import bundled_grids
 from ..mechanism import bundled_cases, bundled_mechanisms, read_mechanism
 from ..mechanism.files import read_toml
 from ..report import counted
-from . import DONE
+from . import DONE, VERBS
 
 
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
-    parser = verbs.add_parser("mechanisms", help="list the bundled mechanisms, cases and grids",
+    parser = verbs.add_parser("mechanisms", help=VERBS["mechanisms"],
                               description="Lists the bundled mechanisms with phase, size and source, and the bundled "
                               "cases and grids.", epilog="example: bothways mechanisms", allow_abbrev=False)
     parser.set_defaults(act=act)

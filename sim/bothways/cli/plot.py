@@ -10,13 +10,13 @@ from ..sweep import LAYOUT as SWEEP_LAYOUT
 from ..sweep import read_sweep
 from ..trajectory import Trajectory, read_trajectory
 from ..units import parse_quantity
-from . import DONE, spare
+from . import DONE, VERBS, spare
 
 
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser(
-        "plot", help="draw a run's course, approach to equilibrium or rates; a sweep's ignition delays",
+        "plot", help=VERBS["plot"],
         formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Draws temperature, pressure and composition of a trajectory against time. Which species, which\n"
         "stretch of time and whether its axis is linear or logarithmic follow from the course, unless said. Or the approach\n"

@@ -12,14 +12,14 @@ from ..compare.tables import terminal_text
 from ..mechanism import Mechanism, read_mechanism, write_mechanism
 from ..outfile import check_writable
 from ..reduce import METHODS, Reduced, reduce_cases
-from . import DONE, spare
+from . import DONE, VERBS, spare
 from .compare import add_conditions, bar, conditions, workers
 
 
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser(
-        "reduce", help="make a smaller mechanism within stated limits", formatter_class=argparse.RawDescriptionHelpFormatter,
+        "reduce", help=VERBS["reduce"], formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Leaves species out of a mechanism, and with them their reactions, as far as stated limits allow in every\n"
         "condition of a grid: by a directed relation graph, a threshold found by bisection, and a last pass that tries the\n"
         "species left one by one. The result is an ordinary mechanism file that says how it came about. What is not limited\n"

@@ -7,8 +7,7 @@ import warnings
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
 from pathlib import Path
-
-from tqdm import tqdm
+from typing import TYPE_CHECKING
 
 from ..batch import prepare, run_and_judge
 from ..case import Case, read_case
@@ -17,8 +16,11 @@ from ..outfile import check_writable
 from ..remarks import Remark
 from ..report import summary
 from ..trajectory import Trajectory, write_trajectory
-from . import DONE, FAILED_VERDICT, GAVE_UP, INTERRUPTED, spare
+from . import DONE, FAILED_VERDICT, GAVE_UP, INTERRUPTED, VERBS, spare
 from .patience import Patience
+
+if TYPE_CHECKING:
+    from tqdm import tqdm
 
 NOT_REACHED = (Kind.NOT_YET, Kind.CANNOT_START)
 """Verdicts that fail a run which was to go on until equilibrium."""
@@ -27,7 +29,7 @@ NOT_REACHED = (Kind.NOT_YET, Kind.CANNOT_START)
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser(
-        "run", help="predict a batch's time course", formatter_class=argparse.RawDescriptionHelpFormatter,
+        "run", help=VERBS["run"], formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Integrates a case and writes its trajectory (HDF5); prints a summary.",
         epilog="examples:\n  bothways run hydrogen-kettle --plot\n"
         "  bothways run my-batch.toml --output my-batch.h5 --replace", allow_abbrev=False)
@@ -101,12 +103,15 @@ def remarks_shown() -> Iterator[None]:
 
 
 def _with_progress(case: Case, patience: Patience) -> tuple[Trajectory, Verdict]:
-    bar_format = "{desc} {elapsed}"
-    with tqdm(desc="starting", bar_format=bar_format, disable=None, leave=False, file=sys.stderr) as bar:
+    if not sys.stderr.isatty():
+        return run_and_judge(case, lambda *unused: patience.check())
+    from tqdm import tqdm  # takes its time to load
+
+    with tqdm(desc="starting", bar_format="{desc} {elapsed}", leave=False, file=sys.stderr) as bar:
         return run_and_judge(case, _teller(bar, patience))
 
 
-def _teller(bar: tqdm, patience: Patience) -> Callable[[int, float, float], None]:
+def _teller(bar: "tqdm", patience: Patience) -> Callable[[int, float, float], None]:
     def told(steps: int, t: float, temperature: float) -> None:
         bar.set_description_str(f"{steps} steps, {t:.4g} s, {temperature:.1f} K", refresh=False)
         bar.update()

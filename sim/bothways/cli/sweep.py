@@ -18,7 +18,7 @@ from ..outcome import DONE as CASE_DONE
 from ..outcome import outcome
 from ..report import time_text
 from ..sweep import Sweep, done_already, finished_before, output_of, summary_of, sweep
-from . import DONE, FAILED_VERDICT, GAVE_UP, INTERRUPTED, spare
+from . import DONE, FAILED_VERDICT, GAVE_UP, INTERRUPTED, VERBS, spare
 from .patience import Patience
 from .run import NOT_REACHED, compile_for
 
@@ -31,7 +31,7 @@ _CONNECT = "5s"
 def add_to(verbs) -> None:  # type: ignore[no-untyped-def]
     """Adds the verb to the parser."""
     parser = verbs.add_parser(
-        "sweep", help="run the cases of a grid", formatter_class=argparse.RawDescriptionHelpFormatter,
+        "sweep", help=VERBS["sweep"], formatter_class=argparse.RawDescriptionHelpFormatter,
         description="Runs a base case over a grid: products of values and ranges, rows of a CSV file, seeded samples. One\n"
         "HDF5 file holds each case's inputs, milestones, end, equilibrium, verdict and statistics.\n\n"
         "Finished cases are kept at once in FILE.unfinished: after whatever ends it, the same command goes on from there.",

@@ -11,8 +11,8 @@ from ..audit import Audit
 from ..audit.encounters import FORWARD, REVERSE, all_decades
 from ..audit.findings.jumps_of_K import all_jumps
 from ..audit.findings.published_reverse import pairs
-from ..batch import program_version
 from ..outfile import StrPath
+from ..version import program_version
 from . import style
 from .parts import Array, power_of_ten
 from .saving import check_picture, save

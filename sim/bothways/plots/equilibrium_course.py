@@ -5,13 +5,13 @@ from collections.abc import Sequence
 import numpy as np
 from matplotlib.figure import Figure
 
-from ..batch import program_version
 from ..equilibrium import Equilibrium, equilibria
 from ..equilibrium.minimiser import Amounts
 from ..errors import InputError, nearest
 from ..mechanism import Mechanism
 from ..outfile import StrPath
 from ..report import pressure_text, volume_text
+from ..version import program_version
 from . import style
 from .composition import linear_panel, log_panel
 from .labels import formula

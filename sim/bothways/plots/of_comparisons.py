@@ -6,9 +6,9 @@ import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.ticker import NullFormatter
 
-from ..batch import program_version
 from ..compare import MEASURES, Comparison
 from ..errors import InputError
+from ..version import program_version
 from .parts import Array
 
 

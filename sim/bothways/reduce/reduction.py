@@ -7,7 +7,6 @@ from typing import Any
 
 import numpy as np
 
-from ..batch import program_version
 from ..case import Case
 from ..compare import Comparison, compare_cases, digest
 from ..compare.limits import Limit
@@ -15,6 +14,7 @@ from ..compare.measures import BY_NAME
 from ..compare.runs import Run, warm
 from ..errors import InputError
 from ..mechanism import Mechanism, build
+from ..version import program_version
 from .graph import Graph
 from .part import part_of
 from .search import Found, by_sensitivity, by_threshold

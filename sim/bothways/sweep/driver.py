@@ -9,10 +9,11 @@ from pathlib import Path
 import numpy as np
 
 from .. import hdf5
-from ..batch import prepare, program_version
+from ..batch import prepare
 from ..errors import BothwaysError, InputError, SolverError
 from ..grid import Grid, read_grid
 from ..outfile import StrPath, check_writable
+from ..version import program_version
 from .record import Record
 from .results import KIND, Sweep, read_sweep, write_results
 from .work import hurry, know, work

@@ -11,7 +11,6 @@ from typing import Any
 import numpy as np
 
 from .. import hdf5
-from ..batch import program_version
 from ..errors import InputError, nearest
 from ..grid import Grid
 from ..grid.keys import kind_of, units_of
@@ -19,6 +18,7 @@ from ..hdf5 import SLICE, Variable
 from ..outcome import COURSE, SECONDS, VARIABLES, Row
 from ..outfile import StrPath, written_aside
 from ..units import SI_UNIT
+from ..version import program_version
 from .packing import unpacked
 from .record import Record
 

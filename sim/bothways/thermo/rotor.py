@@ -11,7 +11,6 @@ from dataclasses import dataclass
 from functools import lru_cache
 
 import numpy as np
-from scipy.linalg import eigh_tridiagonal
 
 from ..constants import BOLTZMANN, GAS_CONSTANT, PLANCK, SPEED_OF_LIGHT
 from .potential import Ladder
@@ -49,6 +48,8 @@ def _levels(V: float, fold: int, B: float, symmetry: int) -> Ladder:
 
 def _block(V: float, fold: int, B: float, first: int) -> np.ndarray:
     """Eigenvalues [K] of the basis functions m = first + k·fold."""
+    from scipy.linalg import eigh_tridiagonal  # takes its time to load, and few mechanisms have rotors
+
     largest = int(np.sqrt((2 * V + _HIGHEST) / B)) + 8 * fold
     m = np.arange(first - fold * (largest // fold + 1), largest + 1, fold)
     return eigh_tridiagonal(B * m.astype(float) ** 2 + V / 2, np.full(len(m) - 1, -V / 4), eigvals_only=True)
