@@ -26,6 +26,7 @@ LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("balance",),
     ("mechanism",),
     ("integrate",),
+    ("compiling",),
     ("vessel", "contents"),
     ("equilibrium", "trajectory"),
     ("along", "charge", "collisions", "course", "exchange", "heating", "reach", "relaxation", "solver_keys"),
@@ -49,8 +50,8 @@ ISLANDS = {"integrate": {"compiled", "sums"}, "kernels": {"apart", "compiled", "
 """Parts that may import only these: solvers and kernels know no chemistry's objects."""
 NEVER = {"equilibrium": ("rates", "balance", "kernels.rates", "kernels.equations", "vessel", "integrate")}
 """Modules that a part may not import though they stand below it: the equilibrium shares no kinetics with a run."""
-THIRD_PARTY = {"numpy": None, "scipy": None, "numba": {"apart", "compiled", "kernels"}, "llvmlite": {"apart", "compiled"},
-               "h5py": {"hdf5"}, "matplotlib": {"plots"}, "tqdm": {"cli"}, "distributed": {"cli"}}
+THIRD_PARTY = {"numpy": None, "scipy": None, "numba": {"apart", "compiled", "compiling", "kernels"},
+               "llvmlite": {"apart", "compiled"}, "h5py": {"hdf5"}, "matplotlib": {"plots"}, "tqdm": {"cli"}, "distributed": {"cli"}}
 """Libraries, and the parts that are their doors (None: any). llvmlite comes with numba."""
 OPTIONAL = {"distributed": "cluster"}
 """Libraries that are imported where they are asked for, and the extra that brings them."""

@@ -43,8 +43,8 @@ def test_a_run_loads_no_more_than_it_uses(tmp_path):
 
 
 def test_functions_named_as_their_parts_stay_functions():
-    code = "import bothways, bothways.batch, bothways.reduce; print(callable(bothways.equilibrium), callable(bothways.compare), " \
-        "callable(bothways.audit), callable(bothways.sweep), callable(bothways.reduce), file=sys.stderr)"
+    code = "import bothways as b, bothways.batch, bothways.reduce; print(*(callable(f) for f in (b.equilibrium, b.compare, " \
+        "b.audit, b.sweep, b.reduce)), file=sys.stderr)"
     path = str(Path(bothways.__file__).parents[1])
     done = subprocess.run([sys.executable, "-c", f"import sys; sys.path.insert(0, {path!r})\n{code}"], capture_output=True,
                           text=True, check=True, timeout=120)

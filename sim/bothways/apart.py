@@ -13,7 +13,7 @@ import ctypes
 import os
 import traceback
 from collections.abc import Callable
-from typing import Any
+from typing import Any, ClassVar
 
 import llvmlite.binding
 import numba
@@ -32,7 +32,7 @@ class Apart:
     """A kernel (state, border, T, vessel, ints, floats, work) -> float64 that is compiled once; the arrays are float64 but
     for ints (uint32). It can be called from kernels."""
 
-    every: list["Apart"] = []  # noqa: RUF012  (one list for the process)
+    every: ClassVar[list["Apart"]] = []
 
     def __init__(self, function: Callable[..., float]) -> None:
         self._function, self.__doc__ = function, function.__doc__
@@ -85,7 +85,9 @@ def apart(function: Callable[..., Any]) -> Callable[..., Any]:
     return Apart(function).jump if JIT else function
 
 
-def fill_all() -> None:
-    """Compiles, or fetches, every kernel that stands apart now, so that Ctrl-C ends this and no run's time holds it."""
+def fill(*kernels: Any) -> None:
+    """Compiles, or fetches, these kernels that stand apart (all, if none is named) now: Ctrl-C ends this, and no run's time
+    holds it."""
     for kernel in Apart.every:
-        kernel.fill()
+        if not kernels or kernel.jump in kernels:
+            kernel.fill()

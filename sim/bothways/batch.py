@@ -27,7 +27,7 @@ def prepare(case: Case, say: Callable[[str], None] = lambda text: None) -> bool:
     say : told before it takes long. Returns whether the machine had no compiled kernels.
     """
     equations = case.equations()
-    new = equations.prepare(say)
+    new = equations.prepare(say, case.method)
     task = monitored(case, equations)
     if case.method in OWN_METHODS:
         warm_up(task.problem, case.method)

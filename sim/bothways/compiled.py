@@ -79,13 +79,17 @@ class Kernel:
     def __call__(self, *arguments: Any) -> Any:
         return self._for_python(*arguments)
 
+    def prepare(self, *arguments: Any) -> None:
+        """Compiles it, or fetches it from the cache, for arguments of these types, without calling it."""
+        self._for_python.compile(tuple(map(numba.typeof, arguments)))
+
     @property
     def _numba_type_(self) -> Any:
         """What numba takes it for in a kernel."""
         return self._for_kernels._numba_type_
 
 
-def compiled(function: Callable[..., Any]) -> Callable[..., Any]:
+def compiled(function: Callable[..., Any]) -> Any:
     """Compiles a kernel at its first call, cached in CACHE_FOLDER."""
     return Kernel(function) if JIT else function
 

@@ -13,11 +13,12 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
-from .apart import fill_all
+from .apart import fill
 from .compiled import in_cache
+from .compiling import compiled_before, side_by_side
 from .constants import GAS_CONSTANT as _R
 from .errors import InputError
-from .integrate import Resolvent
+from .integrate import DEFAULT_METHOD, Resolvent
 from .kernels import equations as kernel
 from .mechanism import Mechanism, Tables, build_tables, table_view
 from .mechanism.phase import SOLUTION, less, shared
@@ -97,17 +98,21 @@ class Equations:
     @cached_property
     def arguments(self) -> tuple[np.ndarray, ...]:
         """vessel, ints, floats and work, as every kernel takes them."""
-        fill_all()
+        fill()
         return self.vessel, self.tables.ints, self.tables.floats, self.tables.work()
 
-    def prepare(self, say: Callable[[str], None] = lambda text: None) -> bool:
+    def prepare(self, say: Callable[[str], None] = lambda text: None, method: str = DEFAULT_METHOD) -> bool:
         """Compiles (or fetches from the cache) the kernels of f and J now; says so first where it will take long.
 
+        method : what else to compile for, where there is nothing compiled yet.
         Returns whether the machine had no compiled kernels.
         """
-        new = not in_cache() or (self.schedule is not None and not in_cache("f_of_exchanging"))
+        first = not compiled_before()
+        new = first or (self.schedule is not None and not in_cache("f_of_exchanging"))
         if new:
             say("compiling the numerical kernels, once on this machine (about a minute)")
+        if first:
+            side_by_side(method)
         y = np.append(np.ones(self.size - 1), 1000.0)
         self.f(0.0, y)
         self.J(0.0, y)

@@ -10,6 +10,7 @@ from numba import carray
 from ..compiled import callback, compiled, float64_pointer, uint32_pointer
 from . import layout as at
 from .equations import VESSEL_SIZE, border_of, bordered_jacobian, rates_of_change
+from .layout import put
 
 VESSEL, INTS, FLOATS, WORK, N_INTS, N_FLOATS, N_WORK, N_DATA = range(8)
 CONTEXT_SIZE = 8
@@ -36,7 +37,7 @@ def f_of_bordered(z_pointer, out_pointer, context):
     n = ints[at.SPECIES]
     z, out = carray(z_pointer, (n + 2,)), carray(out_pointer, (n + 2,))
     y = np.empty(n + 1)
-    y[:n] = z[:n]
+    put(z[:n], y)
     y[n] = z[n + 1]
     rates_of_change(y, vessel, ints, floats, work, out[: n + 1])
     out[n + 1] = out[n]
@@ -51,7 +52,7 @@ def J_of_bordered(z_pointer, out_pointer, context):
     n = ints[at.SPECIES]
     z, out = carray(z_pointer, (n + 2,)), carray(out_pointer, (size,))
     y = np.empty(n + 2)
-    y[:n] = z[:n]
+    put(z[:n], y)
     y[n] = z[n + 1]
     y[n], y[n + 1] = border_of(y, n, vessel), z[n + 1]
     bordered_jacobian(y, vessel, ints, floats, work, out)

@@ -16,7 +16,7 @@ from ..compiled import compiled, span
 from ..constants import GAS_CONSTANT as R
 from ..sums import dot, total_of
 from . import layout as at
-from .layout import view
+from .layout import put, view
 from .lumped import conductances
 from .rates import one_way_rates, set_derivatives, set_production
 from .thermal import set_temperature
@@ -190,9 +190,9 @@ def bordered_jacobian(z, vessel, ints, floats, work, data):
     column, by_T = view(work, ints, _COLUMN), view(work, ints, _OMEGA_BY_T)
     held_pressure = vessel[HOLDS] == PRESSURE_HELD
     slope = vessel[PRESSURE] / (R * T)
-    data[p : p + n] = column
+    put(column, data[p : p + n])
     data[p + n] = -slope if held_pressure else -1.0
-    data[p + n + 2 : p + 2 * n + 2] = by_T
+    put(by_T, data[p + n + 2 : p + 2 * n + 2])
     data[p + 2 * n + 2] = slope * border / T if held_pressure else 0.0
     _temperature_row(z, T, volume, vessel, ints, work, data)
 
@@ -240,7 +240,7 @@ def jacobian(y, vessel, ints, floats, work, data, out):
         out[:] = np.nan
         return
     z = np.empty(n + 2)
-    z[:n] = y[:n]
+    put(y[:n], z)
     z[n] = border_of(y, n, vessel)
     z[n + 1] = T
     bordered_jacobian(z, vessel, ints, floats, work, data)

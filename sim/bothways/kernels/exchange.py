@@ -32,7 +32,7 @@ from .equations import (
     bordered_rates_of_change,
     heat_capacity_of,
 )
-from .layout import view
+from .layout import put, view
 
 ROUND_OFF = 4e-15
 
@@ -107,7 +107,7 @@ def exchanging_jacobian(z, vessel, ints, floats, work, base, data):
 def _jacket_columns(z, n, vessel, ints, work, base, data):
     """Behind the bordered values: Q' and Σ' by T; the columns of Q and Σ; T', Q', Σ', T_j' by T_j."""
     T, jacket, transfer = z[n + 1], z[n + 4], vessel[TRANSFER]
-    data[: base.size] = base
+    put(base, data)
     p = base.size
     data[p], data[p + 1], data[p + 2], data[p + 3] = -transfer, -transfer / jacket, 0.0, 0.0
     data[p + 4] = transfer / (R * heat_capacity_of(z, vessel, ints, work))
@@ -121,13 +121,13 @@ def _given_columns(z, n, vessel, ints, floats, work, base, data):
     p, q = 0, 0
     for s in range(n):
         length = np.int64(start[s + 1]) - np.int64(start[s]) + 2
-        data[q : q + length] = base[p : p + length]
+        put(base[p : p + length], data[q : q + length])
         p += length
         q += length
         data[q] = _by_amount(s, z[n + 1], vessel, ints, floats, work)
         q += 1
     length = 2 * (n + 2)
-    data[q : q + length] = base[p : p + length]
+    put(base[p : p + length], data[q : q + length])
     data[q + length] = _by_temperature(z, z[n + 1], vessel, ints, floats, work)
     data[q + length + 1] = 0.0
 
@@ -135,9 +135,9 @@ def _given_columns(z, n, vessel, ints, floats, work, base, data):
 @compiled
 def _set_border(z, given, n, vessel):
     """z with the border that belongs to its amounts; its given value is not read."""
-    z[:] = given
+    put(given, z)
     y = np.empty(n + 1)
-    y[:n] = given[:n]
+    put(given[:n], y)
     y[n] = given[n + 1]
     z[n] = border_of(y, n, vessel)
 

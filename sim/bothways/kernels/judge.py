@@ -39,7 +39,7 @@ from .equations import (
     balanced,
 )
 from .exchange import change_by_heat, change_by_ramp, further
-from .layout import view
+from .layout import put, view
 from .molar import standard_state
 from .surfaces import SIZE as SURFACE_SIZE
 from .surfaces import arm, share_before
@@ -265,7 +265,7 @@ def judge(exchange_pointer, verdict_pointer, context):
             return REFUSED
         exchange[nz + n + 1] = T1
     else:
-        scratch[6, :] = scratch[2]
+        put(scratch[2], scratch[6])
     potential, deviation = scratch[8], scratch[9]
     _reduced_potentials(old, T0, vessel, ints, floats, scratch[0], potential)
     _deviations(old, rows, potential, matrix, residual, multiplier, deviation)

@@ -7,7 +7,7 @@ of a list spans offset k to offset k + 1. `view` is the one way to them.
 
 from collections.abc import Sequence
 
-from ..compiled import span_at
+from ..compiled import compiled, span_at
 
 SIZES = ("SPECIES", "REACTIONS", "EXPRESSIONS", "TERMS", "BODIES", "FALL_OFFS", "GROUPS", "LONG", "BLOCK", "CURVES",
          "COLUMNS", "RESPONSES", "DILUTED", "LUMPS", "LUMP_ENTRIES", "COMPLEXES")
@@ -163,3 +163,11 @@ view = span_at
 """view(array, ints, slot): the named array whose offset stands at `slot`, as a view that costs next to nothing: no bounds
 are asked for and nothing is counted, so `array` must outlive it. A compiled function of its own would be compiled anew for
 every slot."""
+
+
+@compiled
+def put(values, out):
+    """out_i = values_i for as many as there are values. An assignment to a slice would do the same, but bring with it all
+    that it takes to say in words that lengths differ."""
+    for i in range(values.size):
+        out[i] = values[i]
