@@ -51,7 +51,8 @@ ISLANDS = {"integrate": {"compiled", "sums"}, "kernels": {"apart", "compiled", "
 NEVER = {"equilibrium": ("rates", "balance", "kernels.rates", "kernels.equations", "vessel", "integrate")}
 """Modules that a part may not import though they stand below it: the equilibrium shares no kinetics with a run."""
 THIRD_PARTY = {"numpy": None, "scipy": None, "numba": {"apart", "compiled", "compiling", "kernels"},
-               "llvmlite": {"apart", "compiled"}, "h5py": {"hdf5"}, "matplotlib": {"plots"}, "tqdm": {"cli"}, "distributed": {"cli"}}
+               "llvmlite": {"apart", "compiled"}, "h5py": {"hdf5"}, "matplotlib": {"plots"},
+               "tqdm": {"cli"}, "distributed": {"cli"}}
 """Libraries, and the parts that are their doors (None: any). llvmlite comes with numba."""
 OPTIONAL = {"distributed": "cluster"}
 """Libraries that are imported where they are asked for, and the extra that brings them."""

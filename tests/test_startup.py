@@ -1,5 +1,6 @@
 """What a start costs: modules that are not needed are not loaded, and kernels are compiled once."""
 
+import os
 import subprocess
 import sys
 from pathlib import Path
@@ -19,7 +20,7 @@ def loaded_by(code: str, *watched: str) -> set[str]:
         f"print(*(name for name in {watched!r} if name in sys.modules))"
     path = str(Path(bothways.__file__).parents[1])
     done = subprocess.run([sys.executable, "-c", f"import sys; sys.path.insert(0, {path!r})\n{asked}"], capture_output=True,
-                          text=True, check=True, timeout=120)
+                          text=True, check=True, timeout=600)
     return set(done.stdout.split())
 
 
@@ -47,7 +48,7 @@ def test_functions_named_as_their_parts_stay_functions():
         "b.audit, b.sweep, b.reduce)), file=sys.stderr)"
     path = str(Path(bothways.__file__).parents[1])
     done = subprocess.run([sys.executable, "-c", f"import sys; sys.path.insert(0, {path!r})\n{code}"], capture_output=True,
-                          text=True, check=True, timeout=120)
+                          text=True, check=True, timeout=600)
     assert done.stderr.split() == ["True"] * 5
 
 
@@ -77,3 +78,99 @@ def test_zeros(f, exact, near):
 
 def test_no_zero():
     assert zero(lambda x: x + 1.0, 0.0, 1.0) is None and zero(lambda x: np.nan, 0.0, 1.0) is None
+
+
+# ---- kernels stand apart, and the first start compiles in two processes
+
+
+def run_with(cache: Path, code: str, timeout: float = 600.0) -> subprocess.CompletedProcess:
+    path = str(Path(bothways.__file__).parents[1])
+    environment = {**os.environ, "NUMBA_CACHE_DIR": str(cache), "PYTHONPATH": path}
+    return subprocess.run([sys.executable, "-c", code], env=environment, capture_output=True, text=True, timeout=timeout)
+
+
+def test_the_shares_of_the_two_processes_are_disjoint_and_complete(monkeypatch):
+    """Neither compiles what is the other's: they would write the same files. Together it is all that a run asks for."""
+    from bothways import compiling
+
+    shares = []
+    for share in (compiling._own_share, lambda: compiling._other_share("Rosenbrock")):
+        touched: list[str] = []
+        with monkeypatch.context() as patch:
+            watch(patch, touched)
+            share()
+        shares.append(set(touched) - {"_f", "_J"})  # what the method is tried on
+    assert not shares[0] & shares[1]
+    asked: list[str] = []
+    with monkeypatch.context() as patch:
+        watch(patch, asked)
+        bothways.run(bothways.read_case("hydrogen-kettle"))
+    assert set(asked) <= shares[0] | shares[1]
+    assert {"jacobian", "judge", "advance", "produce", "columns", "f_of_bordered", "J_of_bordered"} <= shares[0] | shares[1]
+
+
+def watch(patch, touched):
+    """Notes the name of every kernel that is compiled for Python, called from there, or asked for its address."""
+    from bothways import apart, compiled
+
+    called, prepared = compiled.Kernel.__call__, compiled.Kernel.prepare
+    patch.setattr(compiled.Kernel, "__call__", lambda self, *a: (touched.append(self.__name__), called(self, *a))[1])
+    patch.setattr(compiled.Kernel, "prepare", lambda self, *a: (touched.append(self.__name__), prepared(self, *a))[1])
+    address = compiled.callback.address.fget
+    patch.setattr(compiled.callback, "address",
+                  property(lambda self: (touched.append(self._function.__name__), address(self))[1]))
+    filled = apart.Apart.fill
+    patch.setattr(apart.Apart, "fill", lambda self: (touched.append(self._function.__name__), filled(self))[1])
+
+
+@pytest.mark.parametrize("executable", ["", "/nowhere/python3", "/bin/false", "fails"])
+def test_without_the_other_process_all_is_compiled_here(executable, monkeypatch, tmp_path):
+    from bothways import compiling
+
+    if executable == "fails":
+        (tmp_path / "python3").write_text("#!/bin/sh\nexit 3\n")
+        (tmp_path / "python3").chmod(0o755)
+        executable = str(tmp_path / "python3")
+    monkeypatch.setattr(sys, "executable", executable)
+    compiling.side_by_side("Rosenbrock")
+
+
+def test_the_other_process_ends_when_this_one_is_interrupted(monkeypatch):
+    from bothways import compiling
+
+    others = []
+    start = compiling._other_process
+
+    def interrupted():
+        raise KeyboardInterrupt
+
+    monkeypatch.setattr(compiling, "_other_process", lambda method: others.append(start(method)) or others[-1])
+    monkeypatch.setattr(compiling, "_cores", lambda: 2)
+    monkeypatch.setattr(compiling, "_own_share", interrupted)
+    with pytest.raises(KeyboardInterrupt):
+        compiling.side_by_side("Rosenbrock")
+    assert others[0] is not None and others[0].poll() is not None
+
+
+def test_a_kernel_that_stands_apart_is_fetched_by_the_kernel_that_needs_it():
+    """A process that got its arrays from elsewhere, without anybody having filled the cells."""
+    code = ("import numpy as np, bothways, bothways.vessel as v\n"
+            "v.fill = lambda: None\n"
+            "e = bothways.read_case('hydrogen-kettle').equations()\n"
+            "y = np.append(np.full(len(e.mechanism.species), 0.5), 1500.0)\n"
+            "print(e.f(0.0, y).tobytes().hex(), e.J(0.0, y).tobytes().hex())")
+    empty, filled = (subprocess.run([sys.executable, "-c", text], env={**os.environ, "PYTHONPATH": os.pathsep.join(sys.path)},
+                                    capture_output=True, text=True, check=True, timeout=600).stdout
+                     for text in (code, code.replace("v.fill = lambda: None", "")))
+    assert empty == filled and len(filled) > 1000
+
+
+@pytest.mark.slow
+def test_two_processes_fill_a_cache_that_a_run_finds_complete(tmp_path):
+    run = f"from bothways.cli import main; main(['run', 'hydrogen-kettle', '--output', {str(tmp_path / 'x.h5')!r}, '--replace'])"
+    first = run_with(tmp_path / "cache", run)
+    assert "compiling the numerical kernels" in first.stderr
+    files = {path.relative_to(tmp_path): path.stat().st_mtime_ns for path in (tmp_path / "cache").rglob("*.nb?")}
+    again = run_with(tmp_path / "cache", run)
+    assert again.stderr == ""
+    assert {path.relative_to(tmp_path): path.stat().st_mtime_ns for path in (tmp_path / "cache").rglob("*.nb?")} == files

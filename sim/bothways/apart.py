@@ -11,6 +11,7 @@ cell is filled when its kernel is first needed.
 import _thread
 import ctypes
 import os
+import threading
 import traceback
 from collections.abc import Callable
 from typing import Any, ClassVar
@@ -35,7 +36,7 @@ class Apart:
     every: ClassVar[list["Apart"]] = []
 
     def __init__(self, function: Callable[..., float]) -> None:
-        self._function, self.__doc__ = function, function.__doc__
+        self._function, self.__doc__, self._lock = function, function.__doc__, threading.RLock()
         self._cell, self._filler = ctypes.c_void_p(), ctypes.CFUNCTYPE(None)(self._fill_for_kernel)
         self._symbol = f"bothways_{function.__module__}_{function.__qualname__}".replace(".", "_")
         llvmlite.binding.add_symbol(self._symbol, ctypes.addressof(self._cell))
@@ -45,10 +46,10 @@ class Apart:
 
     def fill(self) -> None:
         """Compiles the kernel, or fetches it from the cache, unless this process has it."""
-        if not self._cell.value:
-            with in_cache_folder():
+        with self._lock, in_cache_folder():
+            if not self._cell.value:
                 self._made = numba.cfunc(_SIGNATURE, cache=True, error_model="numpy")(self._function)
-            self._cell.value = self._made.address
+                self._cell.value = self._made.address
 
     def _fill_for_kernel(self) -> None:
         """Called by compiled code that found the cell empty. It cannot be told of a failure: Ctrl-C is kept for later."""

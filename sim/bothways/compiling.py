@@ -8,6 +8,7 @@ does not matter to it. Whatever it leaves undone, because it failed or could not
 import os
 import subprocess
 import sys
+import time
 from pathlib import Path
 
 import numpy as np
@@ -20,6 +21,9 @@ from .kernels import callbacks, equations, judge, molar
 
 _LAST = ("equations.produce", "judge.judge", "equations.bordered_jacobian", "equations.columns", "callbacks.J_of_bordered")
 
+PATIENCE = 60.0
+"""The other process is given this [s], and twice what the share of this one took, to end after it."""
+
 
 def compiled_before() -> bool:
     """Whether what every run needs was compiled on this machine before, to the end."""
@@ -28,11 +32,13 @@ def compiled_before() -> bool:
 
 def side_by_side(method: str) -> None:
     """Compiles what a run with this method needs, into the cache, the integrators and J in another process."""
-    other = _other_process(method)
+    other, began = _other_process(method), time.perf_counter()
     try:
         _own_share()
         if other is not None:
-            other.wait()
+            other.wait(PATIENCE + 2.0 * (time.perf_counter() - began))
+    except subprocess.TimeoutExpired:
+        pass
     finally:
         if other is not None and other.poll() is None:
             other.kill()
