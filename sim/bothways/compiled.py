@@ -8,6 +8,7 @@ starts an empty folder. NUMBA_CACHE_DIR, where it is set, is where these folders
 import hashlib
 import os
 import tempfile
+import threading
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
 from functools import cached_property, update_wrapper
@@ -88,6 +89,9 @@ class Kernel:
         """What numba takes it for in a kernel."""
         return self._for_kernels._numba_type_
 
+_ONE_AT_A_TIME = threading.RLock()
+"""The place of the cache is one setting for the whole process."""
+
 
 def compiled(function: Callable[..., Any]) -> Any:
     """Compiles a kernel at its first call, cached in CACHE_FOLDER."""
@@ -123,12 +127,13 @@ class callback:
 
 @contextmanager
 def in_cache_folder() -> Iterator[None]:
-    before = numba.config.CACHE_DIR
-    numba.config.CACHE_DIR = str(CACHE_FOLDER)
-    try:
-        yield
-    finally:
-        numba.config.CACHE_DIR = before
+    with _ONE_AT_A_TIME:
+        before = numba.config.CACHE_DIR
+        numba.config.CACHE_DIR = str(CACHE_FOLDER)
+        try:
+            yield
+        finally:
+            numba.config.CACHE_DIR = before
 
 
 def in_cache(name: str = "") -> bool:
