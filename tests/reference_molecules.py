@@ -5,6 +5,7 @@ capacity, hard spheres and Eyring's expression rows of Arrhenius; what is left i
 other than those: NotImplementedError), masses are those of building blocks.
 """
 
+from functools import lru_cache
 from typing import Any
 
 import numpy as np
@@ -23,14 +24,19 @@ Modes = tuple[Array, list[Array]]  # oscillators (θ, degeneracy), ladders of (�
 
 def rotor_levels(rotor: dict[str, Any]) -> Array:
     """Eigenvalues of -B d²/dφ² + (V/2)(1 - cos nφ) in the basis e^{imφ}, as one dense matrix."""
-    V, B, n = float(quantity(rotor["barrier"], LD(1), ENERGY) / R), float(rotor["B"] * C2), rotor["fold"]
+    B, n = float(rotor["B"] * C2), rotor["fold"]
+    E = _eigenvalues(float(quantity(rotor["barrier"], LD(1), ENERGY) / R), B, n)
+    return np.column_stack([E, np.full(len(E), 1 / rotor.get("symmetry", n))]).astype(LD)
+
+
+@lru_cache(None)  # a transition state asks for its levels at every evaluation
+def _eigenvalues(V: float, B: float, n: int) -> Array:
     m = np.arange(-260, 261)
     matrix = np.diag(B * m.astype(float) ** 2 + V / 2)
     for k in range(len(m) - n):
         matrix[k, k + n] = matrix[k + n, k] = -V / 4
     E = np.linalg.eigvalsh(matrix)
-    E = E[E < 0.9 * B * 260.0**2] - E[0]
-    return np.column_stack([E, np.full(len(E), 1 / rotor.get("symmetry", n))]).astype(LD)
+    return E[E < 0.9 * B * 260.0**2] - E[0]
 
 
 def modes_of(potential: dict[str, Any]) -> Modes:
