@@ -1,7 +1,6 @@
 """Random networks to their equilibria: they land, or say why not; nothing is wrong in silence. Failures name their seed.
 
-What double precision resolves decides: an entry of J sums fast and slow rates, so that a slow one drowns where the time
-scales of a network lie some sixteen decades apart.
+Over 20 decades every one lands: by species while that goes, then by reactions (integrate/graded.py).
 """
 
 import warnings
@@ -66,21 +65,22 @@ def census(seeds: range, decades: float, spread: float) -> tuple[list[str], list
     return faults, short
 
 
-def test_networks_over_20_decades_land_or_say_so(monkeypatch: pytest.MonkeyPatch) -> None:
-    """All four closures; a limit of 2000 steps stands in for patience. A guard: not much more than half may fail to land."""
+def test_networks_over_20_decades_land(monkeypatch: pytest.MonkeyPatch) -> None:
+    """All four closures, each within 2000 steps."""
     monkeypatch.setattr(driver, "MOST_STEPS_IF_ASKED", 2000)
-    faults, short = census(range(60), 20.0, 4.0)
+    faults, short = census(range(80), 20.0, 4.0)
     assert not faults, "\n".join(faults)
-    assert len(short) <= 36, f"not landed: {short}"
+    assert not short
 
 
 @pytest.mark.slow
 @pytest.mark.parametrize("decades", [20.0, 30.0])
 def test_2000_networks_land_or_say_so(decades: float) -> None:
-    """None lands wrong in silence; those that run out of steps or are stopped by round-off are listed."""
+    """Over 20 decades every one lands; over 30 nearly every one does, and those that round-off stops say so."""
     faults, short = census(range(2000), decades, 4.0)
     print(f"{decades:g} decades: {len(short)} of 2000 did not land: {short}")
     assert not faults, "\n".join(faults)
+    assert len(short) <= (0 if decades <= 20.0 else 4)
 
 
 @pytest.mark.parametrize("slow, told", [(1e-10, False), (1e-18, True)])

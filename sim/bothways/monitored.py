@@ -11,8 +11,10 @@ from .constants import GAS_CONSTANT as R
 from .contents import Contents
 from .equilibrium import conserved_by_reactions
 from .exchange import ExchangingEquations
-from .integrate import CompiledSystem, Problem
-from .kernels import callbacks, exchange, judge
+from .integrate import ByReaction, CompiledSystem, Problem
+from .kernels import by_reaction, callbacks, exchange, judge
+from .mechanism.rate_partials import rate_partials
+from .reach import reachable
 from .surfaces import Surfaces, surfaces_of
 from .vessel import Equations
 
@@ -82,16 +84,27 @@ class _Parts:
         energy = Contents(case.mechanism, tables).energy(part, charge.temperature, case.holds)
         self.ledger = judge.ledger_of(conserved, conserved @ part, energy, charge.temperature)
         self.n_rows, self.equations, self.n = len(conserved), equations, part.size
+        self.mechanism, (there, self.running) = case.mechanism, reachable(case.mechanism, case.charge.amount)
+        self.absent = np.flatnonzero(~there).astype(np.uint32)
 
     def context(self, values: int) -> np.ndarray:
         """What callbacks and judge are handed; values: of the Jacobian."""
         table = np.empty((0, 0)) if self.surfaces is None else self.surfaces.table
-        more = [self.ledger.ctypes.data, self.n_rows, table.ctypes.data, len(table)]
+        more = [self.ledger.ctypes.data, self.n_rows, table.ctypes.data, len(table), self.absent.ctypes.data, self.absent.size]
         return np.append(callbacks.context_of(*self.arrays, values), np.array(more, dtype=np.int64))
+
+    def by_reaction(self) -> ByReaction:
+        """The form by reactions; those that cannot proceed from the charge are left out of it."""
+        entries = rate_partials(self.mechanism)
+        arrays = entries.reaction, entries.species, entries.source, entries.weight
+        more = np.array([*(array.ctypes.data for array in arrays), entries.weight.size], dtype=np.int64)
+        return ByReaction(by_reaction.rates_by_reaction.address, by_reaction.slopes_by_reaction.address,
+                          np.append(self.context(0), more), self.mechanism.stoichiometry * self.running, entries.reaction,
+                          entries.species, (*self.kept(), *arrays))
 
     def kept(self) -> tuple[np.ndarray, ...]:
         """What the addresses in the context belong to."""
-        return (*self.arrays, self.ledger, *([] if self.surfaces is None else [self.surfaces.table]))
+        return (*self.arrays, self.ledger, self.absent, *([] if self.surfaces is None else [self.surfaces.table]))
 
     def enter(self, follow: Callable[[float, np.ndarray], None] | None) -> Callable[[float, np.ndarray], None] | None:
         """What a method tells where f goes on in another way: `follow` the schedule, and change over at surfaces."""
@@ -129,4 +142,4 @@ def _compiled(parts: _Parts, start: np.ndarray) -> CompiledSystem:
     return CompiledSystem(
         callbacks.f_of_bordered.address, callbacks.J_of_bordered.address, judge.judge.address,
         parts.context(equations.bordered_pattern[0].size), equations.bordered_pattern, equations.mass, 2,
-        np.append(np.arange(n), n + 1), equations.bordered_state(start), parts.kept(), parts.enter(None))
+        np.append(np.arange(n), n + 1), equations.bordered_state(start), parts.kept(), parts.enter(None), parts.by_reaction)

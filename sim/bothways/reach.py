@@ -11,8 +11,16 @@ def reachable(mechanism: Mechanism, charge: np.ndarray) -> tuple[np.ndarray, np.
     """Masks of the species (N) that can come about and of the reactions that can proceed, either way, from a charge (N).
 
     A reaction proceeds once one whole side is there and a partner for one of its terms; what it makes may start others.
-    A lumped step also needs what its rate vanishes without.
+    A lumped step also needs what its rate vanishes without. Worked out once for each set of species that are there.
     """
+    known = mechanism.__dict__.setdefault("_reachable", {})
+    key = (charge > 0).tobytes()
+    if key not in known:
+        known[key] = _reachable(mechanism, charge)
+    return known[key]
+
+
+def _reachable(mechanism: Mechanism, charge: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
     present = set(np.flatnonzero(charge > 0).tolist())
     sides = [[{mechanism.index(name) for name, _ in side} for side in (r.equation.reactants, r.equation.products)]
              for r in mechanism.reactions]

@@ -183,8 +183,10 @@ def _second_law(case: Case, run: Trajectory) -> str:
     refused, amounts = int(s["rejected_by_second_law"]), run.concentration[0] if case.holds == "volume" else run.amount[0]
     largest = float(s["largest_rise_refused"]) / float(np.sum(amounts))
     rise = f", the largest rise {largest:.1e} {unit} per mole" if refused else ""
-    euler = f" ({int(s['backward_Euler_steps'])} of them backward Euler)" if s.get("backward_Euler_steps") else ""
-    return (f"kept at {counted(int(s['steps']), 'step')}{euler}, {refused} more refused by it{rise}; totals mended "
+    kinds = {"backward_Euler_steps": "backward Euler", "graded_steps": "by reactions, as rates many decades apart ask for"}
+    others = [f"{int(s[key])} {kind}" for key, kind in kinds.items() if s.get(key)]
+    special = f" (of them {' and '.join(others)})" if others else ""
+    return (f"kept at {counted(int(s['steps']), 'step')}{special}, {refused} more refused by it{rise}; totals mended "
             f"{counted(int(s['mendings']), 'time')}")
 
 

@@ -4,7 +4,7 @@
 """
 
 from . import compiled_methods, scipy_methods
-from .interface import CompiledSystem, Monitor, Outcome, Problem, Status
+from .interface import ByReaction, CompiledSystem, Monitor, Outcome, Problem, Status
 from .resolvent import Resolvent
 
 OWN_METHODS = tuple(compiled_methods.STEPPERS)
@@ -26,5 +26,5 @@ def warm_up(problem: Problem, method: str = DEFAULT_METHOD) -> None:
     stepper.advance(1e-30)
 
 
-__all__ = ["DEFAULT_METHOD", "METHODS", "OWN_METHODS", "CompiledSystem", "Monitor", "Outcome", "Problem", "Resolvent",
-           "Status", "integrate", "warm_up"]
+__all__ = ["DEFAULT_METHOD", "METHODS", "OWN_METHODS", "ByReaction", "CompiledSystem", "Monitor", "Outcome", "Problem",
+           "Resolvent", "Status", "integrate", "warm_up"]

@@ -6,7 +6,7 @@ from dataclasses import dataclass, field
 
 import numpy as np
 
-from . import bdf, stepping
+from . import bdf, graded, stepping
 from . import rosenbrock as ros
 from .differences import LEADING, ROWS
 from .interface import (
@@ -16,6 +16,7 @@ from .interface import (
     NOT_ENOUGH,
     OUT_OF_TIME,
     STEP_TOO_SMALL,
+    ByReaction,
     CompiledSystem,
     Monitor,
     Outcome,
@@ -27,6 +28,13 @@ from .rosenbrock_tables import RODAS5P, RosenbrockTable
 
 CHUNK, CHUNK_IF_ASKED = 64, 8
 """Steps between returns to Python, and where the problem wants to be asked whether to end."""
+PATIENCE, USUAL_RTOL, CHEAP = 600, 1e-6, 100
+"""Where so many steps have not come to the end that is asked for, a Rosenbrock method goes on by reactions. More steps are
+allowed at a tighter rtol than USUAL_RTOL, as many more as the order tells, and with more unknowns than CHEAP, in proportion to
+their square, since steps by reactions cost more then. (Common practice, no source.)"""
+RESUMED = 1e-2
+"""The first step by reactions is tried no shorter than this part of the time reached [-]: long steps damp what round-off has
+left of fast transients, which may be too fast for the clock."""
 SMALLEST_STEP = 1e-15
 """Of the time reached; below, a step no longer moves the clock."""
 STALLED, TIME_IS_UP = -1, -2
@@ -59,7 +67,7 @@ class Stepper:
         self.atol[system.places] = self.problem.atol
         usual = MOST_STEPS if self.problem.until is None else MOST_STEPS_IF_ASKED
         self.counts[stepping.STEP_LIMIT] = self.problem.most_steps or usual
-        self.deadline = time.perf_counter() + self.problem.longest
+        self.deadline, self.most_refused = time.perf_counter() + self.problem.longest, MOST_REFUSED
         chunk = CHUNK if self.problem.until is None else CHUNK_IF_ASKED
         self.times, self.states = np.empty(chunk), np.empty((chunk, self.z.size))
 
@@ -96,6 +104,14 @@ class Stepper:
         return (s.f, s.J, s.judge, s.context, self.rows, self.starts, p.order, p.start, p.column, p.diagonal, p.target,
                 self.own, s.mass)
 
+    def in_trouble(self, status: int) -> bool:
+        """Whether round-off drives the steps: the judge refuses too many, or they became too small."""
+        return status == stepping.TOO_SMALL or bool(self.counts[stepping.JUDGED_AGAINST] > self.most_refused)
+
+    def change_over(self) -> bool:
+        """Goes on in another way, if there is one left."""
+        return False
+
     def work(self) -> dict[str, int | float]:
         """What it took so far."""
         return {name: int(count) for name, count in zip(stepping.COUNTED, self.counts, strict=False)}
@@ -109,6 +125,9 @@ class RosenbrockStepper(Stepper):
 
     def __post_init__(self) -> None:
         super().__post_init__()
+        self.by_reaction: ByReaction | None = None
+        tighter = max(1.0, USUAL_RTOL / self.problem.rtol) ** (1.0 / self.table.order)
+        self.patience = PATIENCE * tighter * max(1.0, (self.own.size / CHEAP) ** 2)
         self.remember(ros.MEMORY_SIZE)
         self.atol = ros.ATOL_PART * self.atol
         self.packed, self.first_order = self.table.packed(), float(self.table.order)
@@ -120,8 +139,31 @@ class RosenbrockStepper(Stepper):
 
     def advance(self, stop: float) -> tuple[int, int]:
         """Goes on towards `stop`."""
+        if self.by_reaction is not None:
+            by = self.by_reaction
+            return graded.advance(by.rates, by.slopes, self.system.judge, by.context, self.space, self.packed, self.table.gamma,
+                                  float(self.table.estimator_order), self.z, self.memory, self.atol, self.rtol, stop,
+                                  self.times, self.states, self.counts)
         return ros.advance(*self.common(), self.packed, self.table.gamma, float(self.table.estimator_order), self.z,
                            self.memory, self.atol, self.rtol, stop, self.times, self.states, self.counts)
+
+    def in_trouble(self, status: int) -> bool:
+        """As every method; or, on the way to an end that is asked for, too many steps."""
+        slow = self.problem.until is not None and self.counts[stepping.STEPS] + self.counts[stepping.REJECTED] > self.patience
+        return super().in_trouble(status) or bool(slow)
+
+    def change_over(self) -> bool:
+        """Goes on by reactions (graded.py), from where it stands."""
+        if self.by_reaction is not None or self.system.by_reaction is None:
+            return False
+        by = self.system.by_reaction()
+        if not by.nu.any():
+            return False
+        self.by_reaction, self.space = by, graded.space_for(by, len(self.table.m))
+        self.memory[ros.LAST_STEP] = 0.0
+        self.memory[stepping.STEP] = max(self.memory[stepping.STEP], RESUMED * self.memory[stepping.TIME])
+        self.most_refused = int(self.counts[stepping.JUDGED_AGAINST]) + MOST_REFUSED
+        return True
 
 
 @dataclass
@@ -186,7 +228,9 @@ def _until(stop: float, stepper: Stepper, monitor: Monitor, outcome: Outcome) ->
         for t, z in zip(stepper.times[:written], stepper.states[:written], strict=True):
             outcome.time = float(t)
             monitor.accepted(outcome.time, z[stepper.system.places])
-        if stepper.counts[stepping.JUDGED_AGAINST] > MOST_REFUSED:
+        if stepper.in_trouble(status) and stepper.change_over() and status == stepping.TOO_SMALL:
+            status = stepping.BUFFER_FULL
+        if stepper.counts[stepping.JUDGED_AGAINST] > stepper.most_refused:
             return STALLED
         if status == stepping.AT_CROSSING:
             status = stepping.REACHED if outcome.time >= stop else stepping.BUFFER_FULL

@@ -10,6 +10,26 @@ import numpy as np
 
 
 @dataclass(frozen=True)
+class ByReaction:
+    """The same system as dn/dt = ν w: n the first unknowns, T the last, which follows from them. For integrate/graded.py.
+
+    rates, slopes : addresses of `callback`s over (n | T), with outputs (w (R) | T) and (entries | d (R) | q (R) | a (N) |
+        b (N)): ∂w/∂n = entries + d aᵀ + q bᵀ, b = ∂T/∂n. They return 0 where there is no T.
+    context : (int64) handed to both, and to the judge. keep : what the addresses in it belong to.
+    nu : (N, R), zero columns for reactions that cannot proceed. reaction, species : (entries) uint32; entries with
+        species N are zero.
+    """
+
+    rates: int
+    slopes: int
+    context: np.ndarray
+    nu: np.ndarray
+    reaction: np.ndarray
+    species: np.ndarray
+    keep: tuple = ()
+
+
+@dataclass(frozen=True)
 class CompiledSystem:
     """The same problem behind addresses, for the compiled methods; z are its unknowns, y among them.
 
@@ -22,6 +42,7 @@ class CompiledSystem:
     mass : (nz) 1 for unknowns with a derivative, 0 for those tied by a linear row of ∂f/∂z.
     tail : so many unknowns at the end have full rows and columns.
     places : (n) where the unknowns y stand in z. start : (nz) z at time 0.
+    by_reaction : makes the form by reactions, if there is one; asked only where a method cannot go on without.
     """
 
     f: int
@@ -35,6 +56,7 @@ class CompiledSystem:
     start: np.ndarray
     keep: tuple = ()
     enter: Callable[[float, np.ndarray], None] | None = None
+    by_reaction: Callable[[], ByReaction] | None = None
 
 
 @dataclass(frozen=True)

@@ -51,7 +51,7 @@ _SAFETY, _SHRINK, _GROW = 0.9, 0.2, 6.0
 
 
 @compiled
-def _next_factor(norm, memory, rejected_before, order):
+def next_factor(norm, memory, rejected_before, order):
     """How much longer the next step may be: the elementary rule, held back by the trend of the last error."""
     if not norm > 1e-10:
         norm = 1e-10
@@ -134,7 +134,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             finite = finite and math.isfinite(new[k])
         norm = error_norm(error, old, new, atol, rtol) if finite else np.inf
         if not norm <= 1.0:
-            shorter = _next_factor(norm, memory, True, estimator_order) if norm < 1e10 else 0.1
+            shorter = next_factor(norm, memory, True, estimator_order) if norm < 1e10 else 0.1
             if memory[LAST_STEP] == 0.0:  # the first step may be a guess that is far too long
                 shorter = max(min(shorter, norm ** (-1.0 / estimator_order)), 1e-3)
             memory[STEP] = h * min(shorter, 0.9)
@@ -171,7 +171,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             rejected = True
             continue
         memory[STEP] = h
-        growth = _next_factor(norm, memory, rejected, estimator_order)
+        growth = next_factor(norm, memory, rejected, estimator_order)
         memory[LAST_STEP], memory[LAST_ERROR] = h, max(norm, 1e-2)
         memory[TIME] = stop if last else t + h
         memory[STEP] = max(h * growth, intended) if last else h * growth

@@ -14,10 +14,10 @@ NEAREST = 1e-13
 TIME, STEP, SMALLEST_STEP, OWN_MEMORY = range(4)
 """Places in a method's memory; its own begin at the last."""
 COUNTED = ("steps", "rejected", "f_evaluations", "J_evaluations", "factorisations", "solves", "dense_factorisations",
-           "rejected_by_second_law", "Newton_failures", "backward_Euler_steps")
+           "rejected_by_second_law", "Newton_failures", "backward_Euler_steps", "graded_steps")
 (STEPS, REJECTED, F_CALLS, J_CALLS, FACTORISATIONS, SOLVES, DENSE, JUDGED_AGAINST, NEWTON_FAILED, LAST_RESORTS,
- STEP_LIMIT) = range(11)
-COUNTS_SIZE = 11
+ GRADED_STEPS, STEP_LIMIT) = range(12)
+COUNTS_SIZE = 12
 
 
 @compiled

@@ -97,13 +97,13 @@ def _heating(y, T, volume, vessel, ints, work):
     """dT/dt [K/s] from the production rates and what the jacket gives, or as it is given (0 of an isothermal vessel)."""
     if not balanced(vessel):
         return vessel[RAMP]
-    released = -dot(_energies(vessel, ints, work), view(work, ints, _OMEGA))
+    released = -dot(energies(vessel, ints, work), view(work, ints, _OMEGA))
     received = vessel[TRANSFER] / R * (vessel[JACKET_TEMPERATURE] - T)
     return (released * volume * T + received) / heat_capacity_of(y, vessel, ints, work)
 
 
 @compiled
-def _energies(vessel, ints, work):
+def energies(vessel, ints, work):
     """u/RT of a gas at constant volume, else h/RT, (N)."""
     enthalpy, energy = view(work, ints, _ENTHALPY), view(work, ints, _ENERGY)
     less = vessel[LESS]
@@ -205,7 +205,7 @@ def _temperature_row(y, T, volume, vessel, ints, work, data):
     UA ∂T)/C, u the internal energies of a gas at constant volume, else the enthalpies.
     """
     n = ints[at.SPECIES]
-    start, row, energy = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), _energies(vessel, ints, work)
+    start, row, energy = view(ints, ints, _BLOCK_START), view(ints, ints, _BLOCK_ROW), energies(vessel, ints, work)
     cp, cp_slope, omega = view(work, ints, _CP), view(work, ints, _CP_SLOPE), view(work, ints, _OMEGA)
     less = vessel[LESS]
     by_balance = 1.0 if balanced(vessel) else 0.0

@@ -3,7 +3,8 @@
 Called by the compiled integrators with (old state | new state | error estimate), bordered; it may mend the new
 state. In order:
 
-1. Negative amounts become zero, and the conserved combinations (elements and whatever else the stoichiometry
+1. Negative amounts become zero, as do species that cannot come about from the charge (what round-off makes of an autocatalyst
+   would grow), and the conserved combinations (elements and whatever else the stoichiometry
    conserves) are brought back to the charge's totals by n_i → n_i (1 + Σ_k λ_k a_ki): no amount changes sign, and
    what round-off took is given back in proportion.
 2. In an adiabatic vessel T is the temperature at which contents and vessel hold the energy of the start, in a jacket that
@@ -20,7 +21,7 @@ import math
 import numpy as np
 from numba import carray
 
-from ..compiled import CROSSED, REFUSED, STAND, callback, compiled, float64_pointer, fours
+from ..compiled import CROSSED, REFUSED, STAND, callback, compiled, float64_pointer, fours, uint32_pointer
 from ..constants import GAS_CONSTANT as R
 from ..sums import dot, total_of
 from . import layout as at
@@ -44,14 +45,19 @@ from .molar import standard_state
 from .surfaces import SIZE as SURFACE_SIZE
 from .surfaces import arm, share_before
 
-LEDGER, N_ROWS, SURFACES, N_SURFACES = range(CONTEXT_SIZE, CONTEXT_SIZE + 4)
-JUDGE_CONTEXT_SIZE = CONTEXT_SIZE + 4
+LEDGER, N_ROWS, SURFACES, N_SURFACES, ABSENT, N_ABSENT = range(CONTEXT_SIZE, CONTEXT_SIZE + 6)
+JUDGE_CONTEXT_SIZE = CONTEXT_SIZE + 6
 ENERGY, START_TEMPERATURE, LARGEST_EXCESS, MENDED, LARGEST_DRIFT, LARGEST_ENERGY_DRIFT, START_ENERGY = range(7)
 LEDGER_HEAD = 8
 ROUND_OFF = 4e-15
 """Of each part of a change of the potential [-]."""
 DRIFT_ALLOWED = 1e-15
 """Conserved totals further off than this [-] are mended."""
+LEAST_WEIGHT = 1e-9
+"""A conserved row whose own species, those that rows before it do not hold, weigh less than this part of it is left as it is:
+the round-off of its total is more than they are good for [-]."""
+INSIGNIFICANT = 1e-30
+"""Of the total amount: totals off by less are not mended [-]."""
 LARGEST_MENDING = 1e-2
 """A mending that changes an amount by more than this part of it is refused: the step is too long."""
 COOLEST, HOTTEST = 20.0, 2e4
@@ -75,8 +81,9 @@ def ledger_of(rows: np.ndarray, totals: np.ndarray, energy: float, temperature: 
 
 
 @compiled
-def weighted_solve(rows, weights, right, matrix, out):
-    """λ of (Σ_i rows_ki w_i rows_li) λ_l = right_k by Cholesky's method; rows that weigh nothing get λ = 0."""
+def weighted_solve(rows, weights, right, matrix, out, least):
+    """λ of (Σ_i rows_ki w_i rows_li) λ_l = right_k by Cholesky's method; λ = 0 of rows of which no more than a part `least`
+    is independent of those before."""
     m, n = rows.shape
     weighted = np.empty(n)
     for k in range(m):
@@ -94,7 +101,7 @@ def weighted_solve(rows, weights, right, matrix, out):
             if q < k:
                 matrix[k, q] = total / matrix[q, q] if matrix[q, q] > 0.0 else 0.0
             else:
-                matrix[k, k] = math.sqrt(total) if total > 1e-12 * scale else 0.0
+                matrix[k, k] = math.sqrt(total) if total > least * scale else 0.0
     for k in range(m):
         total = right[k]
         for j in range(k):
@@ -115,19 +122,21 @@ def mend(amount, rows, totals, matrix, residual, multiplier, head):
         if amount[i] < 0.0:
             amount[i] = 0.0
             negative = True
-    change = np.empty(amount.size)
+    change, nothing = np.empty(amount.size), INSIGNIFICANT * total_of(amount)
     for attempt in range(3):
         worst = 0.0
         for k in range(totals.size):
             now, size = _total_and_size(rows[k], amount)
             residual[k] = totals[k] - now
+            if abs(residual[k]) <= nothing:
+                residual[k] = 0.0
             if size > 0.0:
                 worst = max(worst, abs(residual[k]) / size)
         if attempt == 0 and not negative:
             head[LARGEST_DRIFT] = max(head[LARGEST_DRIFT], worst)
         if worst <= DRIFT_ALLOWED:
             return True
-        weighted_solve(rows, amount, residual, matrix, multiplier)
+        weighted_solve(rows, amount, residual, matrix, multiplier, LEAST_WEIGHT)
         largest = 0.0
         _fit(rows, multiplier, change)
         for i in range(amount.size):
@@ -254,6 +263,9 @@ def judge(exchange_pointer, verdict_pointer, context):
     old, new, error = exchange[:n], exchange[nz : nz + n], exchange[2 * nz : 2 * nz + n]
     T0, T1 = exchange[n + 1], exchange[nz + n + 1]
     verdict[0] = 0.0
+    absent = carray(uint32_pointer(c[ABSENT]), (c[N_ABSENT],))
+    for k in range(absent.size):
+        new[absent[k]] = 0.0
     if not mend(new, rows, totals, matrix, residual, multiplier, head):
         return REFUSED
     standard_state(T0, ints, floats, work, scratch[0], scratch[1], scratch[2], scratch[3])
@@ -323,7 +335,7 @@ def _deviations(old, rows, potential, matrix, right, multiplier, deviation):
         deviation[i] = old[i] * potential[i]
     for k in range(right.size):
         right[k] = dot(rows[k], deviation)
-    weighted_solve(rows, old, right, matrix, multiplier)
+    weighted_solve(rows, old, right, matrix, multiplier, 1e-12)
     _fit(rows, multiplier, deviation)
     for i in range(old.size):
         deviation[i] = potential[i] - deviation[i]

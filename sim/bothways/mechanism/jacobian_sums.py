@@ -92,7 +92,7 @@ def _rows(molecules: list[int], net: dict[int, int]) -> tuple[list[int | None], 
 def _partners(net: list[dict[int, int]], ints: dict, floats: dict, first: int, extras: Extras) -> None:
     """Responses to the partners of each group, and where they go."""
     responses: dict[tuple[int, int], tuple[list[int], list[int]]] = defaultdict(lambda: ([], []))
-    for term, group in _terms_of_groups(ints):
+    for term, group in terms_of_groups(ints):
         for i, count in net[ints["term_reaction"][term]].items():
             responses[group, i][count < 0].extend([term] * abs(count))
     ints["response_start"], ints["response_term"] = _signed_lists(list(responses.values()), len(ints["term_reaction"]))
@@ -106,7 +106,7 @@ def _partners(net: list[dict[int, int]], ints: dict, floats: dict, first: int, e
                        for e in range(start[group], start[group + 1])]
 
 
-def _terms_of_groups(ints: dict) -> Iterator[tuple[int, int]]:
+def terms_of_groups(ints: dict) -> Iterator[tuple[int, int]]:
     """Every term with its partner group; what pressure does goes by the total alone."""
     for kind in ("body", "fall", "curve"):
         yield from zip(ints[f"{kind}_term"].tolist(), ints[f"{kind}_group"].tolist(), strict=True)
