@@ -12,6 +12,7 @@ import pytest
 import bothways.integrate.compiled_methods as driver
 from bothways import Remark
 from bothways.batch import run_and_judge
+from bothways.case import FOREVER
 from bothways.endpoint import Kind, Verdict
 from bothways.integrate import Status
 from networks import CLOSURES, network
@@ -40,8 +41,8 @@ def ended(seed: int, *more: Any) -> tuple[str, Verdict]:
 
 
 def _told(result: Any, last: Verdict) -> bool:
-    """Whether a run that did not land says so: not yet, and that steps ran out or round-off stopped it."""
-    stopped = result.statistics["status"] == Status.STALLED.value or not result.complete
+    """Whether a run that did not land says so: not yet, and that steps or time ran out or round-off stopped it."""
+    stopped = result.statistics["status"] == Status.STALLED.value or not result.complete or result.time[-1] == FOREVER
     return last.kind is Kind.NOT_YET and stopped and "instead of" in last.sentence
 
 

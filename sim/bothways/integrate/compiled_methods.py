@@ -30,8 +30,8 @@ CHUNK, CHUNK_IF_ASKED = 64, 8
 """Steps between returns to Python, and where the problem wants to be asked whether to end."""
 PATIENCE, USUAL_RTOL, CHEAP = 600, 1e-6, 100
 """Where so many steps have not come to the end that is asked for, a Rosenbrock method goes on by reactions. More steps are
-allowed at a tighter rtol than USUAL_RTOL, as many more as the order tells, and with more unknowns than CHEAP, in proportion to
-their square, since steps by reactions cost more then. (Common practice, no source.)"""
+allowed at a tighter rtol than USUAL_RTOL, as many more as the order tells, and with more unknowns than CHEAP, by the square root
+of how many more, since steps by reactions cost more then. (Common practice, no source.)"""
 RESUMED = 1e-2
 """The first step by reactions is tried no shorter than this part of the time reached [-]: long steps damp what round-off has
 left of fast transients, which may be too fast for the clock."""
@@ -127,7 +127,7 @@ class RosenbrockStepper(Stepper):
         super().__post_init__()
         self.by_reaction: ByReaction | None = None
         tighter = max(1.0, USUAL_RTOL / self.problem.rtol) ** (1.0 / self.table.order)
-        self.patience = PATIENCE * tighter * max(1.0, (self.own.size / CHEAP) ** 2)
+        self.patience = PATIENCE * tighter * max(1.0, self.own.size / CHEAP) ** 0.5
         self.remember(ros.MEMORY_SIZE)
         self.atol = ros.ATOL_PART * self.atol
         self.packed, self.first_order = self.table.packed(), float(self.table.order)
