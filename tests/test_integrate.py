@@ -94,7 +94,7 @@ def random_matrix(n, density, tail, seed):
 def test_sparse_lu_solves(n, density):
     matrix, rows, starts, values = random_matrix(n, density, 2 if n > 3 else 0, n)
     p = plan(rows, starts, 2 if n > 3 else 0)
-    lu, scratch = np.empty(p.fill), np.zeros(n)
+    lu, scratch = np.zeros(p.fill), np.zeros(n)
     assert factor(values, p.order, p.start, p.column, p.diagonal, p.target, lu, scratch)
     right, x, out = np.arange(1.0, n + 1), np.empty(n), np.empty(n)
     solve(lu, p.order, p.start, p.column, p.diagonal, right, x)
@@ -110,7 +110,7 @@ def test_a_cancelled_pivot_is_noticed():
     """[[1, 1], [1, 1 + 1e-12]]: the second pivot keeps no digit worth having, and the factorisation says so."""
     rows, starts = np.array([0, 1, 0, 1]), np.array([0, 2, 4])
     p = plan(rows, starts, 0)
-    lu, scratch = np.empty(p.fill), np.zeros(2)
+    lu, scratch = np.zeros(p.fill), np.zeros(2)
     assert not factor(np.array([1.0, 1.0, 1.0, 1.0 + 1e-12]), p.order, p.start, p.column, p.diagonal, p.target, lu, scratch)
     assert factor(np.array([1.0, 1.0, 1.0, 1.1]), p.order, p.start, p.column, p.diagonal, p.target, lu, scratch)
 

@@ -21,7 +21,7 @@ from numba.core import types
 from numba.extending import intrinsic
 
 _HERE = Path(__file__).parent
-_SOURCES = ("constants.py", "compiled.py", "apart.py", "sums.py", "kernels/*.py", "integrate/*.py")
+_SOURCES = ("constants.py", "compiled.py", "apart.py", "sums.py", "lanes.py", "kernels/*.py", "integrate/*.py")
 
 
 def _digest() -> str:

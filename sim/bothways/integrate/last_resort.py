@@ -8,7 +8,7 @@ equations are solved. They are, by Newton's method with the exact Jacobian at ev
 import numpy as np
 
 from ..compiled import call, compiled
-from .sparse_lu import dense_factor, factor
+from .sparse_lu import dense_factor, factor, fill
 from .stepping import DENSE, F_CALLS, FACTORISATIONS, J_CALLS, SOLVES, error_norm, set_matrix, solve_either
 
 MOST_ITERATIONS = 24
@@ -37,7 +37,7 @@ def backward_euler(f, J, context, rows, starts, order, start, column, diagonal, 
     """
     n = z.size
     values, jacobian, right = np.empty(rows.size), np.empty(rows.size), np.empty(n)
-    lu, row, permuted = np.zeros(column.size), np.zeros(n), np.empty(n)
+    lu, row, permuted = np.zeros(fill(start, order, diagonal)), np.zeros(n), np.empty(n)
     matrix, pivots = np.empty((n, n)), np.empty(n, dtype=np.int64)
     before = np.inf
     for attempt in range(MOST_ITERATIONS):

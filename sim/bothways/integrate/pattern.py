@@ -9,8 +9,14 @@ from functools import lru_cache
 
 import numpy as np
 
-FULL = 0.25
-"""Time of an operation in the full block, where no places are looked up, by that of one elsewhere, as measured [-]."""
+from ..lanes import padded
+from .full_block import block_size
+
+INDEXED, ROW, EIGHT, BLOCK = 0.55, 4.0, 0.8, 0.055
+"""Times as measured: of an operation whose place is looked up, of one row less a multiple of another and of each eight of
+its columns in the block, of the block by its width cubed [ns]; only their ratios count."""
+LARGEST_BLOCK = 400
+"""A full block is tried up to this size."""
 
 
 @dataclass(frozen=True)
@@ -18,9 +24,9 @@ class SparsePlan:
     """Static pattern of L + U of a permuted matrix, by rows.
 
     order : (n) original index of each permuted one.
-    start, column : rows of L + U in compressed form, columns rising.
-    diagonal : (n) place of each diagonal entry.
-    target : place in L + U of each value of the compressed-column input.
+    start, column : rows of L + U in compressed form, columns rising, without the columns of the full block at the end,
+        whose rows stand whole behind them. diagonal : (rows before the block) place of each diagonal entry.
+    target : place in all this of each value of the compressed-column input.
     """
 
     order: np.ndarray
@@ -31,8 +37,8 @@ class SparsePlan:
 
     @property
     def fill(self) -> int:
-        """Entries of L + U."""
-        return len(self.column)
+        """Entries of L + U and of the full block's own arrays."""
+        return len(self.column) + int(block_size(len(self.order), len(self.order) - len(self.diagonal)))
 
 
 def plan_of(rows: np.ndarray, starts: np.ndarray, tail: int) -> SparsePlan:
@@ -50,29 +56,34 @@ def plan(rows: np.ndarray, starts: np.ndarray, tail: int) -> SparsePlan:
     n = len(starts) - 1
     neighbours = _graph(rows, starts, n)
     order, filled = _eliminate(neighbours, n, tail)
-    dense = _first_full_row([len(filled[k]) for k in order.tolist()])
-    for i in range(dense, n):
-        filled[order[i]] = order[i + 1 :].tolist()
     place = np.empty(n, dtype=np.int64)
     place[order] = np.arange(n)
-    start, column, diagonal = _rows_of_factors(order, filled, place)
+    dense = _first_full_row([place[np.array(filled[k], dtype=np.int64)] for k in order.tolist()])
+    start, column, diagonal = _rows_of_factors(order, filled, place, dense)
     lookup = {(i, j): k for i in range(n) for k, j in
               enumerate(column[start[i] : start[i + 1]].tolist(), start[i])}
+    wide = int(padded(n - dense))
+    lookup |= {(i, dense + j): start[n] + i * wide + j for i in range(n) for j in range(n - dense)}
     columns = np.repeat(np.arange(n), np.diff(starts))
     target = [lookup[i, j] for i, j in zip(place[rows].tolist(), place[columns].tolist(), strict=True)]
     return SparsePlan(order.astype(np.uint32), start.astype(np.uint32), column.astype(np.uint32),
                       diagonal.astype(np.uint32), np.array(target, dtype=np.uint32))
 
 
-def _first_full_row(lengths: list[int]) -> int:
-    """Where the full block best begins: the rows of U before it cost their length squared, the block a third of a cube.
+def _first_full_row(filled: list[np.ndarray]) -> int:
+    """Where the full block best begins, whole eights before the end, by the time that its size costs.
 
-    lengths : of the rows of U without their diagonal, in order of elimination.
+    filled : of each eliminated unknown, where its neighbours that are eliminated later stand.
     """
-    n = len(lengths)
-    sparse = np.concatenate([[0.0], np.cumsum(np.square(lengths, dtype=float))])
-    full = np.arange(n, -1, -1.0) ** 3 / 3.0
-    return int(np.argmin(sparse + FULL * full))
+    n = len(filled)
+    ahead = np.array([len(later) for later in filled], dtype=float)
+    costs = {}
+    for size in [s for s in range(8, n, 8) if s <= LARGEST_BLOCK] or [n]:
+        first, wide = n - size, float(padded(size))
+        near = np.array([np.count_nonzero(later < first) for later in filled[:first]], dtype=float)
+        costs[first] = (INDEXED * float(ahead[:first] @ near) + (ROW + EIGHT * wide / 8.0) * float(ahead[:first].sum())
+                        + BLOCK * wide**3)
+    return min(costs, key=lambda first: (costs[first], -first))
 
 
 def _graph(rows: np.ndarray, starts: np.ndarray, n: int) -> list[set[int]]:
@@ -111,15 +122,17 @@ def _remove(k: int, neighbours: list[set[int]], order: list[int], later: list[li
     neighbours[k] = set()
 
 
-def _rows_of_factors(order: np.ndarray, later: list[list[int]],
-                     place: np.ndarray) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
+def _rows_of_factors(order: np.ndarray, later: list[list[int]], place: np.ndarray,
+                     dense: int) -> tuple[np.ndarray, np.ndarray, np.ndarray]:
     n = len(order)
-    rows: list[list[int]] = [[i] for i in range(n)]
-    for k in order.tolist():
+    rows: list[list[int]] = [[i] if i < dense else [] for i in range(n)]
+    for k in order[:dense].tolist():
         for v in later[k]:
-            rows[place[k]].append(int(place[v]))
             rows[place[v]].append(int(place[k]))
+            if place[v] < dense:
+                rows[place[k]].append(int(place[v]))
     start = np.cumsum([0] + [len(row) for row in rows])
-    column = np.concatenate([np.sort(row) for row in rows])
-    diagonal = np.array([start[i] + int(np.searchsorted(column[start[i] : start[i + 1]], i)) for i in range(n)])
+    column = np.concatenate([np.sort(np.array(row, dtype=np.int64)) for row in rows])
+    diagonal = np.array([start[i] + int(np.searchsorted(column[start[i] : start[i + 1]], i)) for i in range(dense)],
+                        dtype=np.int64)
     return start, column, diagonal

@@ -12,7 +12,7 @@ import numpy as np
 
 from ..compiled import CROSSED, REFUSED, STAND, call, compiled
 from .last_resort import backward_euler
-from .sparse_lu import dense_factor, factor
+from .sparse_lu import dense_factor, factor, fill
 from .stepping import (
     AT_CROSSING,
     BUFFER_FULL,
@@ -73,7 +73,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
     """
     n, s = z.size, table.shape[1]
     values, jacobian = np.empty(rows.size), np.empty(rows.size)
-    lu, row, permuted = np.zeros(column.size), np.zeros(n), np.empty(n)
+    lu, row, permuted = np.zeros(fill(start, order, diagonal)), np.zeros(n), np.empty(n)
     matrix, pivots = np.empty((0, 0)), np.empty(0, dtype=np.int64)
     u, right, point = np.zeros((s, n)), np.empty(n), np.empty(n)
     start_slope, slope = np.empty(n), np.empty(n)

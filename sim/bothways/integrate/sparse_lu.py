@@ -5,61 +5,87 @@ pivoting a pivot may lose its digits to cancellation, and what it divides then g
 False, and the caller takes the pivoted dense way.
 """
 
+import numpy as np
+
 from ..compiled import compiled, span
-from ..sums import dot
+from ..lanes import padded
+from .full_block import block_size, eliminate, places, right_part, solve_block, subtract_rows
 
 CANCELLED = 1e-9
 """A pivot smaller than this part of what it was made from has lost its digits."""
 
 
 @compiled
-def factor(values, order, start, column, diagonal, target, lu, row):
-    """L + U of the permuted matrix into lu (fill); row: (n) scratch of zeros, left zero. False if digits were lost.
+def fill(start, order, diagonal):
+    """How many numbers `factor` sets."""
+    return start[order.size] + block_size(order.size, order.size - diagonal.size)
 
-    values: of the input, in compressed columns. L has a unit diagonal; the diagonal of lu holds 1/pivot. The loops of
-    the full block at the end need no places.
+
+@compiled
+def factor(values, order, start, column, diagonal, target, lu, row):
+    """L + U of the permuted matrix into lu (`fill`, zeros at first); row: (n) scratch of zeros, left zero.
+
+    values: of the input, in compressed columns. False if digits were lost. L has a unit diagonal; the diagonal of lu
+    holds 1/pivot. The columns of the full block at the end are what full_block.py says.
     """
-    dense = first_full_row(start, diagonal)
-    lu[:] = 0.0
-    for e in range(values.size):
-        lu[target[e]] = values[e]
-    sound = True
-    for i in range(diagonal.size):
-        middle = diagonal[i]
-        own, places = span(lu, start[i], start[i + 1]), span(column, start[i], start[i + 1])
-        for p in range(places.size):
-            row[places[p]] = own[p]
-        made_from = abs(row[i])
-        below = span(column, start[i], middle if i < dense else start[i + 1] - (diagonal.size - dense))
-        for p in range(below.size):
-            k = below[p]
-            multiplier = row[k] * lu[diagonal[k]]
-            row[k] = multiplier
-            if multiplier != 0.0:
-                before = row[i]
-                behind, end = diagonal[k] + 1, start[k + 1]
-                _subtract_at(row, multiplier, span(lu, behind, end), span(column, behind, end))
-                made_from = max(made_from, abs(row[i] - before))
-        if i > dense:
-            made_from = _eliminate_full(i, dense, start, diagonal, lu, row, made_from)
-        pivot = row[i]
-        if not abs(pivot) > CANCELLED * made_from:
-            sound = False
-        for p in range(places.size):
-            own[p] = row[places[p]]
-            row[places[p]] = 0.0
-        lu[middle] = 1.0 / pivot
+    n, dense = order.size, diagonal.size
+    size = n - dense
+    wide = padded(size)
+    block = span(lu, start[n], lu.size)
+    lower, _, inverse, made_from, _ = places(n, size)
+    _spread(values, target, span(lu, 0, start[n] + n * wide))
+    multipliers, sound = np.empty(dense), True
+    for i in range(dense):
+        own, names = span(lu, start[i], start[i + 1]), span(column, start[i], start[i + 1])
+        above = span(names, 0, diagonal[i] - start[i])
+        largest = _eliminate_left(own, names, above, start, column, diagonal, lu, row, multipliers, i)
+        subtract_rows(block, i * wide, multipliers, above, wide)
+        pivot = lu[diagonal[i]]
+        sound = sound and abs(pivot) > CANCELLED * largest
+        lu[diagonal[i]] = 1.0 / pivot
+    for k in range(size):
+        i = dense + k
+        own, above = span(lu, start[i], start[i + 1]), span(column, start[i], start[i + 1])
+        _eliminate_left(own, above, above, start, column, diagonal, lu, row, multipliers, i)
+        largest = abs(block[i * wide + k])
+        for p in range(above.size):
+            block[lower + above[p] * wide + k] = multipliers[p]
+            largest = max(largest, abs(multipliers[p] * block[above[p] * wide + k]))
+        block[made_from + k] = largest
+        subtract_rows(block, i * wide, multipliers, above, wide)
+    eliminate(block, n, size)
+    for k in range(size):
+        sound = sound and abs(1.0 / block[inverse + k]) > CANCELLED * block[made_from + k]
     return sound
 
 
 @compiled
-def first_full_row(start, diagonal):
-    """Where the full block at the end begins: every row from there on reaches from its diagonal to the last column."""
-    n = diagonal.size
-    i = n
-    while i > 0 and start[i] - diagonal[i - 1] == n - i + 1:
-        i -= 1
-    return i
+def _eliminate_left(own, names, above, start, column, diagonal, lu, row, multipliers, i):
+    """A row's part left of the block less its multiples of the rows above; returns the largest part of its diagonal (i).
+
+    own, names: the row and its columns; above: those of them that stand above it.
+    """
+    for p in range(names.size):
+        row[names[p]] = own[p]
+    made_from = abs(row[i])
+    for p in range(above.size):
+        k = above[p]
+        m = row[k] * lu[diagonal[k]]
+        row[k], multipliers[p], before = m, m, row[i]
+        behind, last = diagonal[k] + 1, start[k + 1]
+        _subtract_at(row, m, span(lu, behind, last), span(column, behind, last))
+        made_from = max(made_from, abs(row[i] - before))
+    for p in range(names.size):
+        own[p] = row[names[p]]
+        row[names[p]] = 0.0
+    return made_from
+
+
+@compiled
+def _spread(values, target, lu):
+    lu[:] = 0.0
+    for e in range(values.size):
+        lu[target[e]] = values[e]
 
 
 @compiled
@@ -70,68 +96,29 @@ def _subtract_at(row, multiplier, values, places):
 
 
 @compiled
-def _eliminate_full(i, dense, start, diagonal, lu, row, made_from):
-    """Row i less its multiples of the full rows above it, two at a time; returns the largest part of its pivot."""
-    size, at = diagonal.size - dense, i - dense
-    own = span(row, dense, diagonal.size)
-    for k in range(0, at - 1, 2):
-        one, two = _full_row(lu, start, dense + k, size), _full_row(lu, start, dense + k + 1, size)
-        m1 = own[k] * one[k]
-        m2 = (own[k + 1] - m1 * one[k + 1]) * two[k + 1]
-        _subtract_two(span(own, k + 2, size), m1, span(one, k + 2, size), m2, span(two, k + 2, size))
-        own[k], own[k + 1] = m1, m2
-        made_from = max(made_from, abs(m1 * one[at]), abs(m2 * two[at]))
-    if at % 2 == 1:
-        one = _full_row(lu, start, i - 1, size)
-        m1 = own[at - 1] * one[at - 1]
-        _subtract_two(span(own, at, size), m1, span(one, at, size), 0.0, span(one, at, size))
-        own[at - 1] = m1
-        made_from = max(made_from, abs(m1 * one[at]))
-    return made_from
-
-
-@compiled
-def _subtract_two(row, m1, one, m2, two):
-    """row - m1·one - m2·two. Loops that start at 0 become vector instructions; from elsewhere on they do not."""
-    for q in range(row.size):
-        row[q] -= m1 * one[q] + m2 * two[q]
-
-
-@compiled
-def _full_row(lu, start, i, size):
-    """The part of row i in the full block."""
-    return span(lu, start[i + 1] - size, start[i + 1])
-
-
-@compiled
 def _product_at(lu, x, column, first, last):
     """Σ lu_p x at the columns of places first to last: rows are short, so that one sum is faster than four."""
-    values, places = span(lu, first, last), span(column, first, last)
+    values, names = span(lu, first, last), span(column, first, last)
     total = 0.0
     for p in range(values.size):
-        total += values[p] * x[places[p]]
+        total += values[p] * x[names[p]]
     return total
 
 
 @compiled
 def solve(lu, order, start, column, diagonal, right, x):
     """Solves for one right-hand side (n) in the original order; x: (n) result in the permuted one, see `unpermute`."""
-    n, dense = diagonal.size, first_full_row(start, diagonal)
-    size = n - dense
-    full = span(x, dense, n)
+    n, dense = order.size, diagonal.size
+    size, block = n - dense, span(lu, start[n], lu.size)
     for i in range(dense):
         x[i] = right[order[i]] - _product_at(lu, x, column, start[i], diagonal[i])
     for i in range(dense, n):
-        own = _full_row(lu, start, i, size)
-        x[i] = (right[order[i]] - _product_at(lu, x, column, start[i], start[i + 1] - size)
-                - dot(span(own, 0, i - dense), full))
-    for k in range(size):
-        at = size - 1 - k
-        own = _full_row(lu, start, dense + at, size)
-        full[at] = (full[at] - dot(span(own, at + 1, size), span(full, at + 1, size))) * own[at]
+        x[i] = right[order[i]]
+    solve_block(block, n, size, x)
     for k in range(dense):
         i = dense - 1 - k
-        x[i] = (x[i] - _product_at(lu, x, column, diagonal[i] + 1, start[i + 1])) * lu[diagonal[i]]
+        above = x[i] - right_part(block, n, size, i) - _product_at(lu, x, column, diagonal[i] + 1, start[i + 1])
+        x[i] = above * lu[diagonal[i]]
 
 
 @compiled
