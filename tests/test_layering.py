@@ -18,7 +18,7 @@ import bothways
 
 LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("constants", "errors", "compiled", "roots", "version"),
-    ("units", "outfile", "schedule", "components", "sums", "apart"),
+    ("units", "outfile", "schedule", "components", "sums", "apart", "lanes"),
     ("entry", "hdf5"),
     ("kernels",),
     ("thermo",),
@@ -46,12 +46,12 @@ LAYERS = (  # the lowest first; "" is the package itself with its public names
     ("__main__",),
 )
 RANK = {part: rank for rank, layer in enumerate(LAYERS) for part in layer}
-ISLANDS = {"integrate": {"compiled", "sums"}, "kernels": {"apart", "compiled", "constants", "sums"}}
+ISLANDS = {"integrate": {"compiled", "lanes", "sums"}, "kernels": {"apart", "compiled", "constants", "lanes", "sums"}}
 """Parts that may import only these: solvers and kernels know no chemistry's objects."""
 NEVER = {"equilibrium": ("rates", "balance", "kernels.rates", "kernels.equations", "vessel", "integrate")}
 """Modules that a part may not import though they stand below it: the equilibrium shares no kinetics with a run."""
-THIRD_PARTY = {"numpy": None, "scipy": None, "numba": {"apart", "compiled", "compiling", "kernels"},
-               "llvmlite": {"apart", "compiled"}, "h5py": {"hdf5"}, "matplotlib": {"plots"},
+THIRD_PARTY = {"numpy": None, "scipy": None, "numba": {"apart", "compiled", "compiling", "kernels", "lanes"},
+               "llvmlite": {"apart", "compiled", "lanes"}, "h5py": {"hdf5"}, "matplotlib": {"plots"},
                "tqdm": {"cli"}, "distributed": {"cli"}}
 """Libraries, and the parts that are their doors (None: any). llvmlite comes with numba."""
 OPTIONAL = {"distributed": "cluster"}

@@ -81,6 +81,15 @@ def _total(builder: Any, value: Any) -> Any:
 
 
 @intrinsic
+def _multiply_add(typing_context, a, b, c):  # type: ignore[no-untyped-def]
+    def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
+        a, b, c = arguments
+        return builder.fma(a, b, c) if FUSED else builder.fadd(builder.fmul(a, b), c)
+
+    return types.float64(types.float64, types.float64, types.float64), generate
+
+
+@intrinsic
 def _take(typing_context, x, i, a, u, j):  # type: ignore[no-untyped-def]
     def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
         kinds = signature.args
@@ -152,14 +161,19 @@ def _product(typing_context, x, i, u, j, eights):  # type: ignore[no-untyped-def
     return types.float64(x, i, u, j, eights), generate
 
 
+multiply_add: Callable[[float, float, float], float]
 take: Callable[..., None]
 take_two: Callable[..., None]
 take_four: Callable[..., None]
 widen: Callable[..., None]
 product: Callable[..., float]
 if JIT:
-    take, take_two, take_four, widen, product = _take, _take_two, _take_four, _widen, _product
+    multiply_add, take, take_two, take_four, widen, product = _multiply_add, _take, _take_two, _take_four, _widen, _product
 else:
+    def multiply_add(a, b, c):  # type: ignore[no-untyped-def]
+        """a b + c."""
+        return a * b + c
+
     def take(x, i, a, u, j):  # type: ignore[no-untyped-def]
         """x[i:] -= a u[j:], eight of each."""
         x[i : i + WIDTH] -= a * u[j : j + WIDTH]

@@ -1,6 +1,7 @@
 """exp and log over arrays, written so that the compiler turns the loops into vector instructions."""
 
-from ..compiled import bits_to_float, compiled, float_to_bits
+from ..compiled import bits_to_float, compiled, float_to_bits, span
+from ..lanes import multiply_add
 
 LN10 = 2.302585092994046
 _LOG2E = 1.4426950408889634
@@ -9,6 +10,17 @@ _LN2_LOW = 1.9082149292705877e-10
 _ROUND = 6755399441055744.0  # 1.5 · 2^52: adding it rounds to a whole number that stands in the low bits
 _HALF_ROOT_BITS = 0x3FE6A09E667F3BCD  # of √½
 SMALLEST, LARGEST = -690.0, 709.0  # 1e-300: what it is multiplied by next does not make it subnormal, which is slow
+
+
+GROUP = 16
+"""The compiler's vector loops do so many numbers at a time and what is left one by one, which is slow: arrays that are handed
+to them have room behind them for a whole number of groups."""
+
+
+@compiled
+def in_groups(array, first, last):
+    """array[first:last] with as much of the room behind it as makes the last group whole."""
+    return span(array, first, first + (last - first + GROUP - 1) // GROUP * GROUP)
 
 
 @compiled
@@ -21,23 +33,23 @@ def exp_array(x, out):
     """
     for i in range(x.size):
         v = min(max(x[i], SMALLEST), LARGEST)
-        t = v * _LOG2E + _ROUND
+        t = multiply_add(v, _LOG2E, _ROUND)
         k = t - _ROUND
-        r = (v - k * _LN2_HIGH) - k * _LN2_LOW
+        r = multiply_add(-k, _LN2_LOW, multiply_add(-k, _LN2_HIGH, v))
         p = 1.0 / 6227020800.0
-        p = p * r + 1.0 / 479001600.0
-        p = p * r + 1.0 / 39916800.0
-        p = p * r + 1.0 / 3628800.0
-        p = p * r + 1.0 / 362880.0
-        p = p * r + 1.0 / 40320.0
-        p = p * r + 1.0 / 5040.0
-        p = p * r + 1.0 / 720.0
-        p = p * r + 1.0 / 120.0
-        p = p * r + 1.0 / 24.0
-        p = p * r + 1.0 / 6.0
-        p = p * r + 0.5
-        p = p * r + 1.0
-        p = p * r + 1.0
+        p = multiply_add(p, r, 1.0 / 479001600.0)
+        p = multiply_add(p, r, 1.0 / 39916800.0)
+        p = multiply_add(p, r, 1.0 / 3628800.0)
+        p = multiply_add(p, r, 1.0 / 362880.0)
+        p = multiply_add(p, r, 1.0 / 40320.0)
+        p = multiply_add(p, r, 1.0 / 5040.0)
+        p = multiply_add(p, r, 1.0 / 720.0)
+        p = multiply_add(p, r, 1.0 / 120.0)
+        p = multiply_add(p, r, 1.0 / 24.0)
+        p = multiply_add(p, r, 1.0 / 6.0)
+        p = multiply_add(p, r, 0.5)
+        p = multiply_add(p, r, 1.0)
+        p = multiply_add(p, r, 1.0)
         out[i] = p * bits_to_float((float_to_bits(t) + 1023) << 52)
 
 
@@ -56,14 +68,14 @@ def log_array(x, out):
         s = d / (2.0 + d)
         z = s * s
         p = 2.0 / 21.0
-        p = p * z + 2.0 / 19.0
-        p = p * z + 2.0 / 17.0
-        p = p * z + 2.0 / 15.0
-        p = p * z + 2.0 / 13.0
-        p = p * z + 2.0 / 11.0
-        p = p * z + 2.0 / 9.0
-        p = p * z + 2.0 / 7.0
-        p = p * z + 2.0 / 5.0
-        p = p * z + 2.0 / 3.0
+        p = multiply_add(p, z, 2.0 / 19.0)
+        p = multiply_add(p, z, 2.0 / 17.0)
+        p = multiply_add(p, z, 2.0 / 15.0)
+        p = multiply_add(p, z, 2.0 / 13.0)
+        p = multiply_add(p, z, 2.0 / 11.0)
+        p = multiply_add(p, z, 2.0 / 9.0)
+        p = multiply_add(p, z, 2.0 / 7.0)
+        p = multiply_add(p, z, 2.0 / 5.0)
+        p = multiply_add(p, z, 2.0 / 3.0)
         half = 0.5 * d * d
         out[i] = k * _LN2_HIGH + (d - (half - (s * (half + z * p) + k * _LN2_LOW)))

@@ -7,9 +7,11 @@ rates/fall_off.py, rates/sri.py and rates/activated.py state the formulas.
 
 import math
 
-from ..compiled import compiled
+import numpy as np
+
+from ..compiled import compiled, span
 from . import layout as at
-from .elementary import LN10, SMALLEST, exp_array, log_array
+from .elementary import LN10, SMALLEST, exp_array, in_groups, log_array
 from .layout import view
 
 SMALLEST_PARTNER = 1e-300
@@ -54,34 +56,56 @@ _K_BY_M = at.offset_slot(at.WORK, "k_by_M")
 
 
 @compiled
-def set_centres(T, ints, floats, work):
-    """What of every fall-off hangs on T [K] alone: log10 F_cent with its slope, k_0/k_inf and its log10.
-
-    parameters: (4 L) a, 1/T***, 1/T*, T**, one kind after another. Lindemann's F_cent comes out as 1 exactly.
-    """
-    parameter, centre = view(floats, ints, _FALL_PARAMETER), view(work, ints, _CENTRE)
-    log_centre, slope = view(work, ints, _LOG_CENTRE), view(work, ints, _LOG_CENTRE_SLOPE)
-    exponent, parts = view(work, ints, _CENTRE_EXPONENT), view(work, ints, _CENTRE_PART)
-    n = centre.size
+def set_centre_exponents(T, ints, floats, work):
+    """Exponents of the parts of every F_cent at T [K]; parameters: (4 L) a, 1/T***, 1/T*, T**, one kind after another."""
+    parameter, exponent = view(floats, ints, _FALL_PARAMETER), view(work, ints, _CENTRE_EXPONENT)
+    n = exponent.size // 3
     for q in range(2 * n):
         exponent[q] = -T * parameter[n + q]
     for q in range(n):
         exponent[2 * n + q] = -parameter[3 * n + q] / T
-    exp_array(exponent, parts)
+
+
+@compiled
+def set_centres(T, ints, floats, work):
+    """What of every fall-off hangs on T [K] alone: log10 F_cent, k_0/k_inf and its log10; the exponentials must be set.
+
+    Lindemann's F_cent comes out as 1 exactly.
+    """
+    parameter, centre = view(floats, ints, _FALL_PARAMETER), view(work, ints, _CENTRE)
+    exponent, parts = view(work, ints, _CENTRE_EXPONENT), view(work, ints, _CENTRE_PART)
+    n = centre.size
     for e in range(parts.size):
         parts[e] = parts[e] if exponent[e] >= SMALLEST else 0.0  # a published T* of 1e-30 means zero, its slope too
     for q in range(n):
         a = parameter[q]
-        x3, x1, x2 = (1.0 - a) * parts[q], a * parts[n + q], parts[2 * n + q]
-        value = x3 + x1 + x2
-        by_T = x2 * parameter[3 * n + q] / (T * T) - x3 * parameter[n + q] - x1 * parameter[2 * n + q]
-        centre[q] = max(value, _SMALLEST_CENTRE)
-        slope[q] = by_T / (value * LN10) if value > _SMALLEST_CENTRE else 0.0
-    log_array(centre, log_centre)
+        centre[q] = max((1.0 - a) * parts[q] + a * parts[n + q] + parts[2 * n + q], _SMALLEST_CENTRE)
+    _log_in_groups(work, ints, _CENTRE, _LOG_CENTRE)
+    log_centre = view(work, ints, _LOG_CENTRE)
     for q in range(n):
         log_centre[q] *= 1.0 / LN10
     _set_ratios(ints, work)
     _set_curve_centres(T, ints, floats, work)
+
+
+@compiled
+def _log_in_groups(work, ints, given, result):
+    values = in_groups(work, np.int64(ints[given]), np.int64(ints[given + 1]))
+    first = np.int64(ints[result])
+    log_array(values, span(work, first, first + values.size))
+
+
+@compiled
+def set_centre_slopes(T, ints, floats, work):
+    """d log10 F_cent/dT [1/K] of every fall-off; `set_centres` must stand for T."""
+    parameter, centre = view(floats, ints, _FALL_PARAMETER), view(work, ints, _CENTRE)
+    slope, parts = view(work, ints, _LOG_CENTRE_SLOPE), view(work, ints, _CENTRE_PART)
+    n = centre.size
+    for q in range(n):
+        a, value = parameter[q], centre[q]
+        by_T = (parts[2 * n + q] * parameter[3 * n + q] / (T * T) - (1.0 - a) * parts[q] * parameter[n + q]
+                - a * parts[n + q] * parameter[2 * n + q])
+        slope[q] = by_T / (value * LN10) if value > _SMALLEST_CENTRE else 0.0
 
 
 @compiled
@@ -148,12 +172,19 @@ def fall_off_constants(ints, floats, work):
         reduced[q] = log_ratio[q] + log_partner[group[q]] / LN10
     log_factor, factor = view(work, ints, _LOG_BROADENING), view(work, ints, _BROADENING)
     _log_broadenings(reduced, view(work, ints, _LOG_CENTRE), log_factor)
-    exp_array(log_factor, factor)
+    _exp_in_groups(work, ints, _LOG_BROADENING, _BROADENING)
     k, limit, ratio = view(work, ints, _K), view(work, ints, _K_LIMIT), view(work, ints, _RATIO)
     term, low = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW)
     for q in range(m.size):
         k[term[q]] = limit[low[q]] * m[q] / (1.0 + m[q] * ratio[q]) * factor[q]
     _curve_constants(ints, floats, work)
+
+
+@compiled
+def _exp_in_groups(work, ints, given, result):
+    values = in_groups(work, np.int64(ints[given]), np.int64(ints[given + 1]))
+    first = np.int64(ints[result])
+    exp_array(values, span(work, first, first + values.size))
 
 
 @compiled

@@ -99,20 +99,19 @@ WORK = (
     "seen",             # (5) see SEEN_…: what the parts of this table stand for
     "active",           # (9 N) coefficients in force, power by power
     "gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope",  # (N) g/RT reduced, h/RT, cp/R, T dcp/dT/R
-    "log_scale", "scale",  # (N + 1) E
+    "log_scale", "log_k", "centre_exponent", "spare_exponent",  # of E (N + 1), of expressions (X), of F_cent (3 L, one
+    "scale", "k_limit", "centre_part", "spare_part",            # kind after another), with room; their exponentials
     "inverse_scale",    # (N + 1) 1/E
     "scale_slope",      # (N + 1) d ln E/dT
-    "log_k", "k_limit",  # (X) expressions and their exponentials
     "k_slope",          # (X) d ln k/dT
     "reactant_scale",   # (R) product of E over the reactants
     "reverse_slope",    # (R) d ln (ΠE_reac/ΠE_prod)/dT
-    "log_centre", "log_centre_slope",  # (L) log10 F_cent and its slope
-    "centre_exponent", "centre_part",  # (3 L) exponentials of F_cent, one kind after another
-    "centre",           # (L) F_cent
+    "log_centre", "spare_log_centre", "log_centre_slope",  # (L) log10 F_cent, with room, and its slope
+    "centre", "spare_centre",  # (L) F_cent, with room
     "fall_ratio", "fall_log_ratio",  # (L) k_0/k_inf and its log10, at T
     "fall_partner", "fall_reduced",  # (L) [M] and log10 of the reduced pressure
     "fall_by_reduced", "fall_by_centre",  # (L) d log10 F by log10 of the reduced pressure and of F_cent
-    "log_broadening", "broadening",  # (L) F
+    "log_broadening", "spare_log_broadening", "broadening", "spare_broadening",  # (L) F, with room
     "curve_centre", "curve_centre_slope",  # (U) log10 of the centre and its slope
     "curve_factor",     # (U) ln of what stands beside it
     "complex_gibbs", "complex_enthalpy", "complex_heat_capacity", "complex_heat_capacity_slope",  # (K) as of the species

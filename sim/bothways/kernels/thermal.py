@@ -7,11 +7,11 @@ import math
 
 import numpy as np
 
-from ..compiled import compiled
+from ..compiled import compiled, span
 from . import layout as at
 from .complexes import set_complex_slopes, set_complexes
-from .elementary import exp_array
-from .fall_off import set_centres
+from .elementary import exp_array, in_groups
+from .fall_off import set_centre_exponents, set_centre_slopes, set_centres
 from .layout import view
 from .molar import standard_state
 from .pressure import set_columns
@@ -38,7 +38,7 @@ _SCALE = at.offset_slot(at.WORK, "scale")
 _INVERSE_SCALE = at.offset_slot(at.WORK, "inverse_scale")
 _SCALE_SLOPE = at.offset_slot(at.WORK, "scale_slope")
 _LOG_K = at.offset_slot(at.WORK, "log_k")
-_K_LIMIT = at.offset_slot(at.WORK, "k_limit")
+_CENTRE_EXPONENT = at.offset_slot(at.WORK, "centre_exponent")
 _K_SLOPE = at.offset_slot(at.WORK, "k_slope")
 _REACTANT_SCALE = at.offset_slot(at.WORK, "reactant_scale")
 _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
@@ -46,25 +46,21 @@ _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
 
 @compiled
 def _scales(T, ints, floats, work):
-    """E_i = c°·exp(-g_i/RT) [mol/m3], c° = p°/RT in a gas, with the element terms taken off g, which change no K; and 1/E_i."""
+    """ln of E_i = c°·exp(-g_i/RT) [mol/m3], c° = p°/RT in a gas, with the element terms taken off g, which change no K."""
     n = ints[at.SPECIES]
     gibbs, reduction = view(work, ints, _GIBBS), view(floats, ints, _REDUCTION)
-    log_scale, scale = view(work, ints, _LOG_SCALE), view(work, ints, _SCALE)
-    inverse_scale = view(work, ints, _INVERSE_SCALE)
+    log_scale = view(work, ints, _LOG_SCALE)
     standard = view(floats, ints, _STANDARD)
     log_standard = math.log(standard[0]) - standard[1] * math.log(T)
     for i in range(n):
         gibbs[i] -= reduction[2 * i] / T + reduction[2 * i + 1]
         log_scale[i] = log_standard - gibbs[i]
     log_scale[n] = 0.0
-    exp_array(log_scale, scale)
-    for i in range(n + 1):
-        inverse_scale[i] = 1.0 / scale[i]
 
 
 @compiled
 def _limits(T, ints, floats, work):
-    """Exponentials of all Arrhenius expressions."""
+    """ln of all Arrhenius expressions."""
     log_A, power, theta = view(floats, ints, _LOG_A), view(floats, ints, _POWER), view(floats, ints, _THETA)
     log_k = view(work, ints, _LOG_K)
     log_T = math.log(T)
@@ -72,7 +68,17 @@ def _limits(T, ints, floats, work):
     for e in range(log_k.size):
         log_k[e] = log_A[e] + power[e] * log_T - theta[e] * inverse
     set_complexes(T, ints, floats, work)
-    exp_array(log_k, view(work, ints, _K_LIMIT))
+
+
+@compiled
+def _exponentials(ints, work):
+    """All exponentials that hang on temperature alone, in one go; and 1/E_i."""
+    exponents = in_groups(work, np.int64(ints[_LOG_SCALE]), np.int64(ints[_CENTRE_EXPONENT + 1]))
+    first = np.int64(ints[_SCALE])
+    exp_array(exponents, span(work, first, first + exponents.size))
+    scale, inverse_scale = view(work, ints, _SCALE), view(work, ints, _INVERSE_SCALE)
+    for i in range(scale.size):
+        inverse_scale[i] = 1.0 / scale[i]
 
 
 @compiled
@@ -99,6 +105,8 @@ def set_temperature(T, ints, floats, work):
                    view(work, ints, _HEAT_CAPACITY), view(work, ints, _HEAT_CAPACITY_SLOPE))
     _scales(T, ints, floats, work)
     _limits(T, ints, floats, work)
+    set_centre_exponents(T, ints, floats, work)
+    _exponentials(ints, work)
     _reactant_scales(ints, work)
     set_centres(T, ints, floats, work)
     set_columns(T, ints, floats, work)
@@ -122,6 +130,7 @@ def set_slopes(T, ints, floats, work):
     for e in range(k_slope.size):
         k_slope[e] = (power[e] + theta[e] / T) / T
     set_complex_slopes(T, ints, floats, work)
+    set_centre_slopes(T, ints, floats, work)
     _reverse_slopes(ints, work, slope)
     seen[at.SEEN_SLOPES] = T
 

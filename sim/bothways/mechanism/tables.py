@@ -5,6 +5,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from ..kernels import layout
+from ..kernels.elementary import GROUP
 from .jacobian_sums import jacobian_sums, padded
 from .law_tables import law_tables
 from .model import Mechanism
@@ -123,6 +124,7 @@ def _work_lengths(sizes: dict[str, int]) -> list[int]:
                "partial": 4 * r + sizes["LONG"] + t + 1 + sizes["RESPONSES"] + sizes["LUMP_ENTRIES"] + sizes["DILUTED"],
                "dilution": sizes["DILUTED"] + 1, "net": r + 1, "net_by_T": r + 1,
                "block": sizes["BLOCK"] + n + layout.NOT_WANTED}
+    by_name |= {name: GROUP for name in layout.WORK if name.startswith("spare_")}
     by_name |= dict.fromkeys(("lump_bare", "lump_forward", "lump_reverse"), sizes["LUMPS"])
     by_name |= dict.fromkeys(("gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T",
                               "concentration", "energy", "border_column"), n)
