@@ -129,7 +129,6 @@ class RosenbrockStepper(Stepper):
         tighter = max(1.0, USUAL_RTOL / self.problem.rtol) ** (1.0 / self.table.order)
         self.patience = PATIENCE * tighter * max(1.0, self.own.size / CHEAP) ** 0.5
         self.remember(ros.MEMORY_SIZE)
-        self.atol = ros.ATOL_PART * self.atol
         self.packed, self.first_order = self.table.packed(), float(self.table.order)
 
     def begin(self) -> bool:
