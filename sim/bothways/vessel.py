@@ -233,7 +233,7 @@ class Equations:
     @cached_property
     def _full_rows(self) -> set[int]:
         if self.holds == "pressure":
-            return {int(s) for key in ("made_species", "taken_species") for s in table_view(self.tables, key)}
+            return {int(s) for s in table_view(self.tables, "changed_species")}
         places = table_view(self.tables, "extra_place").astype(np.int64) - len(self._block[1])
         return set(places[places >= 0].tolist())
 

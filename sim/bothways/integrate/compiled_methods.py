@@ -224,9 +224,9 @@ def _until(stop: float, stepper: Stepper, monitor: Monitor, outcome: Outcome) ->
     status = stepping.BUFFER_FULL
     while status == stepping.BUFFER_FULL:
         status, written = stepper.advance(stop)
-        for t, z in zip(stepper.times[:written], stepper.states[:written], strict=True):
-            outcome.time = float(t)
-            monitor.accepted(outcome.time, z[stepper.system.places])
+        for t, y in zip(stepper.times[:written].tolist(), stepper.states[:written, stepper.system.places], strict=True):
+            outcome.time = t
+            monitor.accepted(t, y)
         if stepper.in_trouble(status) and stepper.change_over() and status == stepping.TOO_SMALL:
             status = stepping.BUFFER_FULL
         if stepper.counts[stepping.JUDGED_AGAINST] > stepper.most_refused:

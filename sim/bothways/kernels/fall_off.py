@@ -17,6 +17,7 @@ from .layout import view
 SMALLEST_PARTNER = 1e-300
 _SMALLEST_CENTRE = 1e-30
 _LARGEST_EXPONENT = 700.0
+_PER_LN10 = 1.0 / LN10
 
 _FALL_TERM = at.offset_slot(at.INTS, "fall_term")
 _FALL_LOW = at.offset_slot(at.INTS, "fall_low")
@@ -39,6 +40,7 @@ _LOG_CENTRE_SLOPE = at.offset_slot(at.WORK, "log_centre_slope")
 _CENTRE = at.offset_slot(at.WORK, "centre")
 _RATIO = at.offset_slot(at.WORK, "fall_ratio")
 _LOG_RATIO = at.offset_slot(at.WORK, "fall_log_ratio")
+_SHARE = at.offset_slot(at.WORK, "fall_share")
 _FALL_PARTNER = at.offset_slot(at.WORK, "fall_partner")
 _REDUCED = at.offset_slot(at.WORK, "fall_reduced")
 _BY_REDUCED = at.offset_slot(at.WORK, "fall_by_reduced")
@@ -62,8 +64,9 @@ def set_centre_exponents(T, ints, floats, work):
     n = exponent.size // 3
     for q in range(2 * n):
         exponent[q] = -T * parameter[n + q]
+    inverse = 1.0 / T
     for q in range(n):
-        exponent[2 * n + q] = -parameter[3 * n + q] / T
+        exponent[2 * n + q] = -parameter[3 * n + q] * inverse
 
 
 @compiled
@@ -83,7 +86,7 @@ def set_centres(T, ints, floats, work):
     _log_in_groups(work, ints, _CENTRE, _LOG_CENTRE)
     log_centre = view(work, ints, _LOG_CENTRE)
     for q in range(n):
-        log_centre[q] *= 1.0 / LN10
+        log_centre[q] *= _PER_LN10
     _set_ratios(ints, work)
     _set_curve_centres(T, ints, floats, work)
 
@@ -113,10 +116,13 @@ def _set_ratios(ints, work):
     """k_0/k_inf of every fall-off and its log10."""
     log_k, limit = view(work, ints, _LOG_K), view(work, ints, _K_LIMIT)
     term, low = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW)
-    ratio, log_ratio = view(work, ints, _RATIO), view(work, ints, _LOG_RATIO)
+    ratio, log_ratio, high = view(work, ints, _RATIO), view(work, ints, _LOG_RATIO), view(work, ints, _SHARE)
     for q in range(term.size):
-        ratio[q] = limit[low[q]] / limit[term[q]]
-        log_ratio[q] = (log_k[low[q]] - log_k[term[q]]) / LN10
+        e, t = low[q], term[q]
+        ratio[q], high[q] = limit[e], limit[t]
+        log_ratio[q] = (log_k[e] - log_k[t]) * _PER_LN10
+    for q in range(ratio.size):  # apart, since looking up places keeps the divisions from being done by the vector
+        ratio[q] /= high[q]
 
 
 @compiled
@@ -169,14 +175,16 @@ def fall_off_constants(ints, floats, work):
     m, reduced = view(work, ints, _FALL_PARTNER), view(work, ints, _REDUCED)
     for q in range(m.size):
         m[q] = partner[group[q]]
-        reduced[q] = log_ratio[q] + log_partner[group[q]] / LN10
+        reduced[q] = log_ratio[q] + log_partner[group[q]] * _PER_LN10
     log_factor, factor = view(work, ints, _LOG_BROADENING), view(work, ints, _BROADENING)
     _log_broadenings(reduced, view(work, ints, _LOG_CENTRE), log_factor)
     _exp_in_groups(work, ints, _LOG_BROADENING, _BROADENING)
     k, limit, ratio = view(work, ints, _K), view(work, ints, _K_LIMIT), view(work, ints, _RATIO)
-    term, low = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW)
+    term, low, share = view(ints, ints, _FALL_TERM), view(ints, ints, _FALL_LOW), view(work, ints, _SHARE)
     for q in range(m.size):
-        k[term[q]] = limit[low[q]] * m[q] / (1.0 + m[q] * ratio[q]) * factor[q]
+        share[q] = m[q] / (1.0 + m[q] * ratio[q]) * factor[q]
+    for q in range(m.size):
+        k[term[q]] = limit[low[q]] * share[q]
     _curve_constants(ints, floats, work)
 
 

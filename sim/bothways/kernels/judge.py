@@ -60,6 +60,8 @@ INSIGNIFICANT = 1e-30
 """Of the total amount: totals off by less are not mended [-]."""
 LARGEST_MENDING = 1e-2
 """A mending that changes an amount by more than this part of it is refused: the step is too long."""
+QUADRATIC = 1e-8
+"""A correction of T by less than this part of it leaves an error of its square [-]: it is the last."""
 COOLEST, HOTTEST = 20.0, 2e4
 SMALLEST_AMOUNT = 1e-300
 """Below, the logarithm of an amount is taken of this [-]."""
@@ -178,7 +180,7 @@ def _fit(rows, multiplier, out):
 
 @compiled
 def temperature_of(amount, T, vessel, ints, floats, work, head, gibbs, enthalpy, cp, slope):
-    """Step 2: T at which the energy is the one in `head`; gibbs, enthalpy, cp stand for it then. -1 if out of reach."""
+    """Step 2: T at which the energy is the one in `head`; cp stands for it then to QUADRATIC. -1 if out of reach."""
     less = vessel[LESS]
     previous = np.inf
     for attempt in range(60):
@@ -193,7 +195,9 @@ def temperature_of(amount, T, vessel, ints, floats, work, head, gibbs, enthalpy,
         step = (head[ENERGY] / R - energy) / heat
         if attempt == 0:
             head[LARGEST_ENERGY_DRIFT] = max(head[LARGEST_ENERGY_DRIFT], abs(step) / T)
-        if abs(step) <= 2e-16 * T or (abs(step) >= previous and abs(step) < 1e-13 * T):
+        if abs(step) <= QUADRATIC * T:
+            return T + step
+        if abs(step) >= previous and abs(step) < 1e-13 * T:
             return T
         previous = abs(step)
         T += max(min(step, 0.5 * T), -0.3 * T)

@@ -56,10 +56,9 @@ INTS = (
     "complex_molecule",  # their species
     "group_start",      # (G + 1) partner groups: first named species
     "group_species",    # named species of the groups
-    "made_species",     # (K) species that reactions make, in order of how many do,
-    "made_start",       # (K + 1) and where these stand
-    "made_reaction",    # the reactions, as often as they make a molecule, padded with R
-    "taken_species", "taken_start", "taken_reaction",  # likewise those that take it
+    "changed_species",  # (K) species that reactions change, in order of how many do,
+    "changed_start",    # (K + 1) and where these stand
+    "changed_reaction",  # the reactions, as often as they make a molecule, R + 1 further on where they take one; padded with R
     "block_start",      # (N + 1) columns of the species block of the Jacobian
     "block_row",        # its rows
     "target",           # (16 R) where the partials by the four molecules go in `block`, four rows each
@@ -109,6 +108,7 @@ WORK = (
     "log_centre", "spare_log_centre", "log_centre_slope",  # (L) log10 F_cent, with room, and its slope
     "centre", "spare_centre",  # (L) F_cent, with room
     "fall_ratio", "fall_log_ratio",  # (L) k_0/k_inf and its log10, at T
+    "fall_share",       # (L) scratch: k_inf, then k/k_0
     "fall_partner", "fall_reduced",  # (L) [M] and log10 of the reduced pressure
     "fall_by_reduced", "fall_by_centre",  # (L) d log10 F by log10 of the reduced pressure and of F_cent
     "log_broadening", "spare_log_broadening", "broadening", "spare_broadening",  # (L) F, with room
@@ -123,9 +123,9 @@ WORK = (
     "k_by_T", "k_by_M",  # (T) their derivatives; of laws of pressure by_M is by the total C
     "k_total", "k_total_by_T",  # (R)
     "forward", "reverse",  # (R) Πa over the reactants and over the products
-    "net",              # (R + 1) net rates, and a zero
+    "net",              # (2 R + 1) net rates, a zero, and the net rates with the other sign
     "bare",             # (R) ΠE_reac (Πa_reac - Πa_prod): the net rate for k one
-    "net_by_T",         # (R + 1) likewise
+    "net_by_T",         # (2 R + 1) likewise
     "lump_bare",        # (L) net rate of each lumped term for k one
     "lump_forward", "lump_reverse",  # (L) its one-way rates
     "omega",            # (N) production rates

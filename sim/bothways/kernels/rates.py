@@ -28,12 +28,9 @@ _BODY_TERM = at.offset_slot(at.INTS, "body_term")
 _BODY_GROUP = at.offset_slot(at.INTS, "body_group")
 _GROUP_START = at.offset_slot(at.INTS, "group_start")
 _GROUP_SPECIES = at.offset_slot(at.INTS, "group_species")
-_MADE_SPECIES = at.offset_slot(at.INTS, "made_species")
-_MADE_START = at.offset_slot(at.INTS, "made_start")
-_MADE_REACTION = at.offset_slot(at.INTS, "made_reaction")
-_TAKEN_SPECIES = at.offset_slot(at.INTS, "taken_species")
-_TAKEN_START = at.offset_slot(at.INTS, "taken_start")
-_TAKEN_REACTION = at.offset_slot(at.INTS, "taken_reaction")
+_CHANGED_SPECIES = at.offset_slot(at.INTS, "changed_species")
+_CHANGED_START = at.offset_slot(at.INTS, "changed_start")
+_CHANGED_REACTION = at.offset_slot(at.INTS, "changed_reaction")
 _TARGET = at.offset_slot(at.INTS, "target")
 _RESPONSE_START = at.offset_slot(at.INTS, "response_start")
 _RESPONSE_TERM = at.offset_slot(at.INTS, "response_term")
@@ -47,6 +44,7 @@ _INVERSE_SCALE = at.offset_slot(at.WORK, "inverse_scale")
 _LOG_PARTNER = at.offset_slot(at.WORK, "log_partner")
 _K_LIMIT = at.offset_slot(at.WORK, "k_limit")
 _K_SLOPE = at.offset_slot(at.WORK, "k_slope")
+_SCALE = at.offset_slot(at.WORK, "scale")
 _REACTANT_SCALE = at.offset_slot(at.WORK, "reactant_scale")
 _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
 _ACTIVITY = at.offset_slot(at.WORK, "activity")
@@ -142,8 +140,12 @@ def _sum_terms(values, total, ints):
 
 @compiled
 def _products_of_activities(c, ints, work):
-    """Πa over the reactants, into `forward`, and over the products, into `reverse`, of each reaction."""
+    """Πa over the reactants, into `forward`, and over the products, into `reverse`, of each reaction; ΠE over the reactants.
+
+    All in one loop, since what it takes is looking up places; E alone would stand while the temperature does.
+    """
     a, inverse_scale = view(work, ints, _ACTIVITY), view(work, ints, _INVERSE_SCALE)
+    scale, out = view(work, ints, _SCALE), view(work, ints, _REACTANT_SCALE)
     for i in range(c.size):
         a[i] = c[i] * inverse_scale[i]
     a[c.size] = 1.0
@@ -151,13 +153,16 @@ def _products_of_activities(c, ints, work):
     p0, p1 = view(ints, ints, _PRODUCT0), view(ints, ints, _PRODUCT1)
     forward, reverse = view(work, ints, _FORWARD), view(work, ints, _REVERSE)
     for j in range(forward.size):
-        forward[j] = a[r0[j]] * a[r1[j]]
+        first, second = r0[j], r1[j]
+        forward[j] = a[first] * a[second]
+        out[j] = scale[first] * scale[second]
         reverse[j] = a[p0[j]] * a[p1[j]]
     side, species = view(ints, ints, _LONG_SIDE), view(ints, ints, _LONG_SPECIES)
     reaction = view(ints, ints, _LONG_REACTION)
     for m in range(side.size):
         if side[m] == 0:
             forward[reaction[m]] *= a[species[m]]
+            out[reaction[m]] *= scale[species[m]]
         else:
             reverse[reaction[m]] *= a[species[m]]
 
@@ -179,7 +184,6 @@ def set_rates(c, total, ints, floats, work):
     forward, reverse = view(work, ints, _FORWARD), view(work, ints, _REVERSE)
     for j in range(k.size):
         net[j] = k[j] * (scale[j] * (forward[j] - reverse[j]))
-    net[k.size] = 0.0
     add_lumped_rates(c, ints, floats, work)
 
 
@@ -196,16 +200,17 @@ def one_way_rates(ints, work, forward, reverse):
 
 @compiled
 def _gather(rates, out, ints):
-    """Σ_j ν_ij rates_j for every species."""
+    """Σ_j ν_ij rates_j for every species; rates: (2 R + 1) as `net`, its second half set here."""
+    r = rates.size // 2
+    given, turned = span(rates, 0, r), span(rates, r + 1, rates.size)
+    for j in range(r):
+        turned[j] = -given[j]
+    rates[r] = 0.0
     out[:] = 0.0
-    species, start = view(ints, ints, _MADE_SPECIES), view(ints, ints, _MADE_START)
-    reaction = view(ints, ints, _MADE_REACTION)
+    species, start = view(ints, ints, _CHANGED_SPECIES), view(ints, ints, _CHANGED_START)
+    reaction = view(ints, ints, _CHANGED_REACTION)
     for k in range(species.size):
         out[species[k]] = sum_at(rates, reaction, start[k], start[k + 1])
-    species, start = view(ints, ints, _TAKEN_SPECIES), view(ints, ints, _TAKEN_START)
-    reaction = view(ints, ints, _TAKEN_REACTION)
-    for k in range(species.size):
-        out[species[k]] -= sum_at(rates, reaction, start[k], start[k + 1])
 
 
 @compiled
@@ -302,7 +307,6 @@ def _temperature_derivatives(ints, floats, work):
     reverse_slope = view(work, ints, _REVERSE_SLOPE)
     _sum_terms(view(work, ints, _K_BY_T), k_by_T, ints)
     keep_plain(view(work, ints, _K_BY_T), k_by_T, ints)
-    by_T[k.size] = 0.0
     for j in range(k.size):
         by_T[j] = bare[j] * k_by_T[j] - k[j] * (scale[j] * reverse[j]) * reverse_slope[j]
     add_lumped_slopes(by_T, ints, floats, work)

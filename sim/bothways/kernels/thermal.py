@@ -40,7 +40,6 @@ _SCALE_SLOPE = at.offset_slot(at.WORK, "scale_slope")
 _LOG_K = at.offset_slot(at.WORK, "log_k")
 _CENTRE_EXPONENT = at.offset_slot(at.WORK, "centre_exponent")
 _K_SLOPE = at.offset_slot(at.WORK, "k_slope")
-_REACTANT_SCALE = at.offset_slot(at.WORK, "reactant_scale")
 _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
 
 
@@ -82,20 +81,6 @@ def _exponentials(ints, work):
 
 
 @compiled
-def _reactant_scales(ints, work):
-    """Product of E over the reactants of each reaction."""
-    first, second = view(ints, ints, _REACTANT0), view(ints, ints, _REACTANT1)
-    scale, out = view(work, ints, _SCALE), view(work, ints, _REACTANT_SCALE)
-    for j in range(out.size):
-        out[j] = scale[first[j]] * scale[second[j]]
-    side, species = view(ints, ints, _LONG_SIDE), view(ints, ints, _LONG_SPECIES)
-    reaction = view(ints, ints, _LONG_REACTION)
-    for m in range(side.size):
-        if side[m] == 0:
-            out[reaction[m]] *= scale[species[m]]
-
-
-@compiled
 def set_temperature(T, ints, floats, work):
     """Brings the thermal parts of `work` to T [K]; nothing is done where they stand for it already."""
     seen = view(work, ints, _SEEN)
@@ -107,7 +92,6 @@ def set_temperature(T, ints, floats, work):
     _limits(T, ints, floats, work)
     set_centre_exponents(T, ints, floats, work)
     _exponentials(ints, work)
-    _reactant_scales(ints, work)
     set_centres(T, ints, floats, work)
     set_columns(T, ints, floats, work)
     seen[at.SEEN_T] = T

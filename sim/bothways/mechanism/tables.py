@@ -71,17 +71,15 @@ def _sides(mechanism: Mechanism, ints: dict) -> list[list[list[int]]]:
 
 
 def _stoichiometry(mechanism: Mechanism, ints: dict, floats: dict) -> None:
-    """Reactions that make and that take each species; by length, since loops of one length after another are fast."""
-    r = len(mechanism.reactions)
-    for key, sign in (("made", 1), ("taken", -1)):
-        lists: dict[int, list[int]] = {}
-        for j, reaction in enumerate(mechanism.reactions):
-            for name, count in reaction.net.items():
-                lists.setdefault(mechanism.index(name), []).extend([j] * max(sign * count, 0))
-        kept = sorted(((s, padded(members, r)) for s, members in lists.items() if members), key=lambda item: len(item[1]))
-        ints[f"{key}_species"] = np.array([s for s, _ in kept])
-        ints[f"{key}_start"] = np.cumsum([0] + [len(members) for _, members in kept])
-        ints[f"{key}_reaction"] = np.array([j for _, members in kept for j in members])
+    """Reactions that change each species; by length, since loops of one length after another are fast."""
+    r, lists = len(mechanism.reactions), [[] for _ in mechanism.species]  # type: tuple[int, list[list[int]]]
+    for j, reaction in enumerate(mechanism.reactions):
+        for name, count in reaction.net.items():
+            lists[mechanism.index(name)] += [j if count > 0 else r + 1 + j] * abs(count)
+    kept = sorted(((s, padded(members, r)) for s, members in enumerate(lists) if members), key=lambda item: len(item[1]))
+    ints["changed_species"] = np.array([s for s, _ in kept])
+    ints["changed_start"] = np.cumsum([0] + [len(members) for _, members in kept])
+    ints["changed_reaction"] = np.array([j for _, members in kept for j in members])
     _dilution(mechanism, ints, floats)
 
 
@@ -122,13 +120,13 @@ def _work_lengths(sizes: dict[str, int]) -> list[int]:
                "log_k": x, "k_limit": x, "k_slope": x, "centre_exponent": 3 * fall, "centre_part": 3 * fall,
                "partner": sizes["GROUPS"], "log_partner": sizes["GROUPS"], "k": t, "k_by_T": t, "k_by_M": t,
                "partial": 4 * r + sizes["LONG"] + t + 1 + sizes["RESPONSES"] + sizes["LUMP_ENTRIES"] + sizes["DILUTED"],
-               "dilution": sizes["DILUTED"] + 1, "net": r + 1, "net_by_T": r + 1,
+               "dilution": sizes["DILUTED"] + 1, "net": 2 * r + 1, "net_by_T": 2 * r + 1,
                "block": sizes["BLOCK"] + n + layout.NOT_WANTED}
     by_name |= {name: GROUP for name in layout.WORK if name.startswith("spare_")}
     by_name |= dict.fromkeys(("lump_bare", "lump_forward", "lump_reverse"), sizes["LUMPS"])
     by_name |= dict.fromkeys(("gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T",
                               "concentration", "energy", "border_column"), n)
-    by_name |= dict.fromkeys(("log_centre", "log_centre_slope", "log_broadening", "broadening", "centre", "fall_ratio",
+    by_name |= dict.fromkeys(("log_centre", "log_centre_slope", "log_broadening", "broadening", "centre", "fall_ratio", "fall_share",
                               "fall_log_ratio", "fall_partner", "fall_reduced", "fall_by_reduced", "fall_by_centre"), fall)
     by_name |= dict.fromkeys(("complex_gibbs", "complex_enthalpy", "complex_heat_capacity", "complex_heat_capacity_slope"),
                              sizes["COMPLEXES"])
