@@ -72,17 +72,20 @@ def _time_shift(error, old, new, slope, h, atol, rtol):
 
     Of y' = f(y) any course moved in time is another course, so that an error along the change d of a step, the part
     e·d/d·d of its length h, is never forgotten, and grows as f does: before an ignition it moves the ignition.
-    Errors in other directions die out. Products in units of the tolerances; slope: (n) f(old).
+    Errors in other directions die out. Products in units of the tolerances; slope: (n) f(old). Where the change is mostly of
+    unknowns that change by less than rtol of themselves, nothing grows: round-off may be all there is.
     """
-    along, squared, before = 0.0, 0.0, 0.0
+    along, squared, before, grown = 0.0, 0.0, 0.0, 0.0
     for i in range(error.size):
-        scale = 1.0 / (atol[i] + rtol * max(abs(old[i]), abs(new[i])))
-        d = (new[i] - old[i]) * scale
-        start = slope[i] * scale
+        size = max(abs(old[i]), abs(new[i]))
+        scale = 1.0 / (atol[i] + rtol * size)
+        change, start = new[i] - old[i], slope[i] * scale
+        d = change * scale
         along += error[i] * scale * d
         squared += d * d
         before += start * start
-    return abs(along) / squared * h if squared > h * h * before else 0.0
+        grown += d * d if abs(change) > rtol * size else 0.0
+    return abs(along) / squared * h if squared > h * h * before and grown > 0.5 * squared else 0.0
 
 
 @compiled
