@@ -21,8 +21,8 @@ _NUMBERS = ir.VectorType(ir.DoubleType(), WIDTH)
 
 @compiled
 def padded(size):
-    """The next whole number of eights."""
-    return (size + 7) // 8 * 8
+    """The next odd number of eights: rows of a power of two would all want the same places in the cache."""
+    return 16 * (size + 7 >> 4) + 8 if size > 0 else 0
 
 
 def _fused() -> bool:
@@ -161,14 +161,49 @@ def _product(typing_context, x, i, u, j, eights):  # type: ignore[no-untyped-def
     return types.float64(x, i, u, j, eights), generate
 
 
+def _list_of(eights: int) -> Any:
+    @intrinsic
+    def take_list(typing_context, x, i, factors, rows, wide, j):  # type: ignore[no-untyped-def]
+        def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
+            kinds = signature.args
+            place = _place(context, builder, kinds[0], arguments[0], arguments[1], kinds[1])
+            base = _place(context, builder, kinds[0], arguments[0], arguments[5], kinds[5])
+            steps = [ir.Constant(ir.IntType(64), m) for m in range(eights)]
+            sums = [cgutils.alloca_once_value(builder, _load(builder, builder.gep(place, [step]))) for step in steps]
+            lists = [context.make_array(kind)(context, builder, array) for kind, array in zip(kinds[2:4], arguments[2:4],
+                                                                                              strict=True)]
+            count = builder.extract_value(lists[1].shape, 0)
+            width = builder.udiv(context.cast(builder, arguments[4], kinds[4], types.intp), ir.Constant(ir.IntType(64), WIDTH))
+            with cgutils.for_range(builder, count) as loop:
+                factor = _all(builder, builder.load(builder.gep(lists[0].data, [loop.index])))
+                row = context.cast(builder, builder.load(builder.gep(lists[1].data, [loop.index])), kinds[3].dtype, types.intp)
+                start = builder.gep(base, [builder.mul(row, width)])
+                for step, total in zip(steps, sums, strict=True):
+                    other = _load(builder, builder.gep(start, [step]))
+                    builder.store(_less_product(builder, builder.load(total), factor, other), total)
+            for step, total in zip(steps, sums, strict=True):
+                _store(builder, builder.load(total), builder.gep(place, [step]))
+            return context.get_dummy_value()
+
+        return types.none(x, i, factors, rows, wide, j), generate
+
+    return take_list
+
+
+_take_list, _take_list_of_two = _list_of(1), _list_of(2)
+
+
 multiply_add: Callable[[float, float, float], float]
 take: Callable[..., None]
 take_two: Callable[..., None]
 take_four: Callable[..., None]
+take_list: Callable[..., None]
+take_list_of_two: Callable[..., None]
 widen: Callable[..., None]
 product: Callable[..., float]
 if JIT:
-    multiply_add, take, take_two, take_four, widen, product = _multiply_add, _take, _take_two, _take_four, _widen, _product
+    multiply_add, take, take_two, widen, product = _multiply_add, _take, _take_two, _widen, _product
+    take_four, take_list, take_list_of_two = _take_four, _take_list, _take_list_of_two
 else:
     def multiply_add(a, b, c):  # type: ignore[no-untyped-def]
         """a b + c."""
@@ -186,6 +221,16 @@ else:
         """x[i:] -= a u[j:] + b u[k:] + c u[l:] + d u[m:], eight of each."""
         take_two(x, i, a, b, u, j, k)
         take_two(x, i, c, d, u, l, m)
+
+    def take_list(x, i, factors, rows, wide, j):  # type: ignore[no-untyped-def]
+        """x[i:] -= Σ factors x[rows·wide + j:], eight of each; rows: their numbers."""
+        for factor, row in zip(factors, rows, strict=False):
+            take(x, i, factor, x, int(row) * wide + j)
+
+    def take_list_of_two(x, i, factors, rows, wide, j):  # type: ignore[no-untyped-def]
+        """The same of sixteen."""
+        take_list(x, i, factors, rows, wide, j)
+        take_list(x, i + WIDTH, factors, rows, wide, j + WIDTH)
 
     def product(x, i, u, j, eights):  # type: ignore[no-untyped-def]
         """Σ x[i:] u[j:] over so many eights."""

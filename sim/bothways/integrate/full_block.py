@@ -8,7 +8,7 @@ of each pivot by the block's rows (`lower`: L by columns); for each column of th
 """
 
 from ..compiled import compiled
-from ..lanes import padded, product, take, take_four, take_two, widen
+from ..lanes import padded, product, take, take_four, take_list, take_list_of_two, take_two, widen
 
 
 @compiled
@@ -65,17 +65,22 @@ def eliminate(block, n, size):
 
 
 @compiled
-def subtract_rows(block, own, multipliers, rows, wide):
-    """Row `own` less multiples of others; rows: their numbers."""
-    whole = rows.size // 4 * 4
-    for p in range(0, whole, 4):
-        a, b, c, d = multipliers[p], multipliers[p + 1], multipliers[p + 2], multipliers[p + 3]
-        j, k, l, m = rows[p] * wide, rows[p + 1] * wide, rows[p + 2] * wide, rows[p + 3] * wide
+def subtract_rows(block, i, multipliers, rows, wide, first):
+    """Row i less multiples of others (rows: their numbers) from column `first` on, sixteen columns or what is left."""
+    if first + 16 <= wide:
+        take_list_of_two(block, i * wide + first, multipliers, rows, wide, first)
+    else:
+        take_list(block, i * wide + first, multipliers, rows, wide, first)
+
+
+@compiled
+def widen_parts(block, n, size):
+    """Widens the largest parts of the block's pivots by what the sparse pivots took off them."""
+    wide = padded(size)
+    lower, _, _, made_from, _ = places(n, size)
+    for k in range(n - size):
         for q in range(0, wide, 8):
-            take_four(block, own + q, a, b, c, d, block, j + q, k + q, l + q, m + q)
-    for p in range(whole, rows.size):
-        for q in range(0, wide, 8):
-            take(block, own + q, multipliers[p], block, rows[p] * wide + q)
+            widen(block, made_from + q, block, k * wide + q, lower + k * wide + q)
 
 
 @compiled
@@ -115,7 +120,8 @@ def _subtract_all(block, own, x, first, count, wide):
 
 
 @compiled
-def right_part(block, n, size, i):
-    """What row i has in the block's columns times their solution."""
-    wide = padded(size)
-    return product(block, i * wide, block, places(n, size)[4], wide // 8)
+def subtract_right(block, n, size, x):
+    """Takes off the sparse rows of x what they have in the block's columns times their solution."""
+    wide, own = padded(size), places(n, size)[4]
+    for i in range(n - size):
+        x[i] -= product(block, i * wide, block, own, wide // 8)

@@ -71,14 +71,14 @@ def plan(rows: np.ndarray, starts: np.ndarray, tail: int) -> SparsePlan:
 
 
 def _first_full_row(filled: list[np.ndarray]) -> int:
-    """Where the full block best begins, whole eights before the end, by the time that its size costs.
+    """Where the full block best begins, an odd number of eights before the end, by the time that its size costs.
 
     filled : of each eliminated unknown, where its neighbours that are eliminated later stand.
     """
     n = len(filled)
     ahead = np.array([len(later) for later in filled], dtype=float)
     costs = {}
-    for size in [s for s in range(8, n, 8) if s <= LARGEST_BLOCK] or [n]:
+    for size in [s for s in range(8, n, 16) if s <= LARGEST_BLOCK] or [n]:
         first, wide = n - size, float(padded(size))
         near = np.array([np.count_nonzero(later < first) for later in filled[:first]], dtype=float)
         costs[first] = (INDEXED * float(ahead[:first] @ near) + (ROW + EIGHT * wide / 8.0) * float(ahead[:first].sum())

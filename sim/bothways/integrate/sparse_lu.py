@@ -5,11 +5,9 @@ pivoting a pivot may lose its digits to cancellation, and what it divides then g
 False, and the caller takes the pivoted dense way.
 """
 
-import numpy as np
-
 from ..compiled import compiled, span
 from ..lanes import padded
-from .full_block import block_size, eliminate, places, right_part, solve_block, subtract_rows
+from .full_block import block_size, eliminate, places, solve_block, subtract_right, subtract_rows, widen_parts
 
 CANCELLED = 1e-9
 """A pivot smaller than this part of what it was made from has lost its digits."""
@@ -34,25 +32,27 @@ def factor(values, order, start, column, diagonal, target, lu, row):
     block = span(lu, start[n], lu.size)
     lower, _, inverse, made_from, _ = places(n, size)
     _spread(values, target, span(lu, 0, start[n] + n * wide))
-    multipliers, sound = np.empty(dense), True
+    sound = True
     for i in range(dense):
         own, names = span(lu, start[i], start[i + 1]), span(column, start[i], start[i + 1])
         above = span(names, 0, diagonal[i] - start[i])
-        largest = _eliminate_left(own, names, above, start, column, diagonal, lu, row, multipliers, i)
-        subtract_rows(block, i * wide, multipliers, above, wide)
+        largest = _eliminate_left(own, names, above, start, column, diagonal, lu, row, i)
+        for q in range(0, wide, 16):
+            subtract_rows(block, i, own, above, wide, q)
         pivot = lu[diagonal[i]]
         sound = sound and abs(pivot) > CANCELLED * largest
         lu[diagonal[i]] = 1.0 / pivot
     for k in range(size):
         i = dense + k
         own, above = span(lu, start[i], start[i + 1]), span(column, start[i], start[i + 1])
-        _eliminate_left(own, above, above, start, column, diagonal, lu, row, multipliers, i)
-        largest = abs(block[i * wide + k])
+        _eliminate_left(own, above, above, start, column, diagonal, lu, row, i)
         for p in range(above.size):
-            block[lower + above[p] * wide + k] = multipliers[p]
-            largest = max(largest, abs(multipliers[p] * block[above[p] * wide + k]))
-        block[made_from + k] = largest
-        subtract_rows(block, i * wide, multipliers, above, wide)
+            block[lower + above[p] * wide + k] = own[p]
+        block[made_from + k] = abs(block[i * wide + k])
+    widen_parts(block, n, size)
+    for q in range(0, wide, 16):  # a few columns at a time: what is taken off many rows stays near
+        for i in range(dense, n):
+            subtract_rows(block, i, span(lu, start[i], start[i + 1]), span(column, start[i], start[i + 1]), wide, q)
     eliminate(block, n, size)
     for k in range(size):
         sound = sound and abs(1.0 / block[inverse + k]) > CANCELLED * block[made_from + k]
@@ -60,10 +60,10 @@ def factor(values, order, start, column, diagonal, target, lu, row):
 
 
 @compiled
-def _eliminate_left(own, names, above, start, column, diagonal, lu, row, multipliers, i):
+def _eliminate_left(own, names, above, start, column, diagonal, lu, row, i):
     """A row's part left of the block less its multiples of the rows above; returns the largest part of its diagonal (i).
 
-    own, names: the row and its columns; above: those of them that stand above it.
+    own, names: the row and its columns; above: those of them that stand above it, where the multipliers are left.
     """
     for p in range(names.size):
         row[names[p]] = own[p]
@@ -71,10 +71,12 @@ def _eliminate_left(own, names, above, start, column, diagonal, lu, row, multipl
     for p in range(above.size):
         k = above[p]
         m = row[k] * lu[diagonal[k]]
-        row[k], multipliers[p], before = m, m, row[i]
+        row[k] = m
         behind, last = diagonal[k] + 1, start[k + 1]
-        _subtract_at(row, m, span(lu, behind, last), span(column, behind, last))
-        made_from = max(made_from, abs(row[i] - before))
+        if last > behind:
+            before = row[i]
+            _subtract_at(row, m, span(lu, behind, last), span(column, behind, last))
+            made_from = max(made_from, abs(row[i] - before))
     for p in range(names.size):
         own[p] = row[names[p]]
         row[names[p]] = 0.0
@@ -110,15 +112,19 @@ def solve(lu, order, start, column, diagonal, right, x):
     """Solves for one right-hand side (n) in the original order; x: (n) result in the permuted one, see `unpermute`."""
     n, dense = order.size, diagonal.size
     size, block = n - dense, span(lu, start[n], lu.size)
-    for i in range(dense):
-        x[i] = right[order[i]] - _product_at(lu, x, column, start[i], diagonal[i])
-    for i in range(dense, n):
+    for i in range(n):
         x[i] = right[order[i]]
+    for i in range(dense):
+        if diagonal[i] > start[i]:
+            x[i] -= _product_at(lu, x, column, start[i], diagonal[i])
     solve_block(block, n, size, x)
+    subtract_right(block, n, size, x)
     for k in range(dense):
         i = dense - 1 - k
-        above = x[i] - right_part(block, n, size, i) - _product_at(lu, x, column, diagonal[i] + 1, start[i + 1])
-        x[i] = above * lu[diagonal[i]]
+        behind, last = diagonal[i] + 1, start[i + 1]
+        if last > behind:
+            x[i] -= _product_at(lu, x, column, behind, last)
+        x[i] *= lu[diagonal[i]]
 
 
 @compiled
