@@ -5,7 +5,6 @@ where rows are short. Here rows are padded to whole eights and every operation i
 fused multiply-add it is used: one rounding instead of two.
 """
 
-from collections.abc import Callable
 from typing import Any
 
 import numba
@@ -27,8 +26,8 @@ def padded(size):
 
 def _fused() -> bool:
     """Whether a multiply-add is one instruction here; elsewhere it would be a slow call."""
-    if numba.config.CPU_NAME or numba.config.CPU_FEATURES:
-        return False
+    if any(getattr(numba.config, name, None) for name in ("CPU_NAME", "CPU_FEATURES")):
+        return False  # compiled for another machine
     features = binding.get_host_cpu_features()
     return bool(features.get("fma")) or "aarch64" in binding.get_process_triple()
 
@@ -102,19 +101,21 @@ def _take(typing_context, x, i, a, u, j):  # type: ignore[no-untyped-def]
 
 
 @intrinsic
-def _take_four(typing_context, x, i, a, b, c, d, u, j, k, l, m):  # type: ignore[no-untyped-def]
+def _take_four(typing_context, x, i, a, b, c, d, u, j, wide):  # type: ignore[no-untyped-def]
     def generate(context, builder, signature, arguments):  # type: ignore[no-untyped-def]
         kinds = signature.args
         place = _place(context, builder, kinds[0], arguments[0], arguments[1], kinds[1])
         value = _load(builder, place)
-        for factor, where in zip(range(2, 6), range(7, 11), strict=True):
-            other = _load(builder, _place(context, builder, kinds[6], arguments[6], arguments[where], kinds[where]))
+        first = _place(context, builder, kinds[6], arguments[6], arguments[7], kinds[7])
+        width = builder.udiv(context.cast(builder, arguments[8], kinds[8], types.intp), ir.Constant(ir.IntType(64), WIDTH))
+        for row, factor in enumerate(range(2, 6)):
+            other = _load(builder, builder.gep(first, [builder.mul(width, ir.Constant(ir.IntType(64), row))]))
             value = _less_product(builder, value, _all(builder, arguments[factor]), other)
         _store(builder, value, place)
         return context.get_dummy_value()
 
     number = types.float64
-    return types.none(x, i, number, number, number, number, u, j, k, l, m), generate
+    return types.none(x, i, number, number, number, number, u, j, wide), generate
 
 
 @intrinsic
@@ -193,14 +194,14 @@ def _list_of(eights: int) -> Any:
 _take_list, _take_list_of_two = _list_of(1), _list_of(2)
 
 
-multiply_add: Callable[[float, float, float], float]
-take: Callable[..., None]
-take_two: Callable[..., None]
-take_four: Callable[..., None]
-take_list: Callable[..., None]
-take_list_of_two: Callable[..., None]
-widen: Callable[..., None]
-product: Callable[..., float]
+multiply_add: Any
+take: Any
+take_two: Any
+take_four: Any
+take_list: Any
+take_list_of_two: Any
+widen: Any
+product: Any
 if JIT:
     multiply_add, take, take_two, widen, product = _multiply_add, _take, _take_two, _widen, _product
     take_four, take_list, take_list_of_two = _take_four, _take_list, _take_list_of_two
@@ -217,10 +218,10 @@ else:
         """x[i:] -= a u[j:] + b u[k:], eight of each."""
         x[i : i + WIDTH] = (x[i : i + WIDTH] - a * u[j : j + WIDTH]) - b * u[k : k + WIDTH]
 
-    def take_four(x, i, a, b, c, d, u, j, k, l, m):  # type: ignore[no-untyped-def]
-        """x[i:] -= a u[j:] + b u[k:] + c u[l:] + d u[m:], eight of each."""
-        take_two(x, i, a, b, u, j, k)
-        take_two(x, i, c, d, u, l, m)
+    def take_four(x, i, a, b, c, d, u, j, wide):  # type: ignore[no-untyped-def]
+        """x[i:] -= a u[j:] + b u[j + wide:] + c u[j + 2 wide:] + d u[j + 3 wide:], eight of each."""
+        take_two(x, i, a, b, u, j, j + wide)
+        take_two(x, i, c, d, u, j + 2 * wide, j + 3 * wide)
 
     def take_list(x, i, factors, rows, wide, j):  # type: ignore[no-untyped-def]
         """x[i:] -= Σ factors x[rows·wide + j:], eight of each; rows: their numbers."""

@@ -112,8 +112,7 @@ def _subtract_all(block, own, x, first, count, wide):
     for k in range(0, whole, 4):
         j = first + k * wide
         for q in range(0, wide, 8):
-            take_four(block, own + q, x[k], x[k + 1], x[k + 2], x[k + 3], block, j + q, j + wide + q, j + 2 * wide + q,
-                      j + 3 * wide + q)
+            take_four(block, own + q, x[k], x[k + 1], x[k + 2], x[k + 3], block, j + q, wide)
     for k in range(whole, count):
         for q in range(0, wide, 8):
             take(block, own + q, x[k], block, first + k * wide + q)

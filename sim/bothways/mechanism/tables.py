@@ -126,8 +126,9 @@ def _work_lengths(sizes: dict[str, int]) -> list[int]:
     by_name |= dict.fromkeys(("lump_bare", "lump_forward", "lump_reverse"), sizes["LUMPS"])
     by_name |= dict.fromkeys(("gibbs", "enthalpy", "heat_capacity", "heat_capacity_slope", "omega", "omega_by_T",
                               "concentration", "energy", "border_column"), n)
-    by_name |= dict.fromkeys(("log_centre", "log_centre_slope", "log_broadening", "broadening", "centre", "fall_ratio", "fall_share",
-                              "fall_log_ratio", "fall_partner", "fall_reduced", "fall_by_reduced", "fall_by_centre"), fall)
+    by_name |= dict.fromkeys(("log_centre", "log_centre_slope", "log_broadening", "broadening", "centre", "fall_ratio",
+                              "fall_share", "fall_log_ratio", "fall_partner", "fall_reduced", "fall_by_reduced",
+                              "fall_by_centre"), fall)
     by_name |= dict.fromkeys(("complex_gibbs", "complex_enthalpy", "complex_heat_capacity", "complex_heat_capacity_slope"),
                              sizes["COMPLEXES"])
     return [by_name.get(name, r) for name in layout.WORK]
