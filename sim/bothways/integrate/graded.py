@@ -22,7 +22,7 @@ from ..compiled import CROSSED, REFUSED, STAND, call, compiled
 from ..sums import dot
 from .grading import grade_reactions, grade_species, in_order
 from .interface import ByReaction
-from .rosenbrock import LAST_ERROR, LAST_STEP, next_factor
+from .rosenbrock import LAST_ERROR, LAST_STEP, next_factor, shortened
 from .sparse_lu import dense_factor, dense_solve
 from .stepping import (
     AT_CROSSING,
@@ -297,8 +297,7 @@ def advance(rates, slopes, judge, context, space, table, gamma, estimator_order,
                  and _combine(table, z, space, new, error))
         norm = error_norm(error, old, new, atol, rtol) if sound else np.inf
         if not norm <= 1.0:
-            shorter = next_factor(norm, memory, True, estimator_order) if norm < 1e10 else 0.1
-            memory[STEP] = h * min(shorter, 0.9)
+            memory[STEP] = h * shortened(norm, estimator_order)
             counts[REJECTED] += 1
             rejected = True
             continue

@@ -51,15 +51,17 @@ _SAFETY, _SHRINK, _GROW = 0.85, 0.2, 6.0
 
 
 @compiled
-def next_factor(norm, memory, rejected, rejected_before, order):
-    """How much longer the next step may be: the elementary rule, held back by the trend of the last error.
+def shortened(norm, order):
+    """What part of its length a step is tried again with: by the elementary rule, since the trend has just been wrong."""
+    return min(max(_SAFETY * norm ** (-1.0 / order), _SHRINK), 0.9) if norm < 1e10 else 0.1
 
-    rejected: this step is tried again; the trend, which has just been wrong, does not count then.
-    """
-    if not norm > 1e-10:
-        norm = 1e-10
+
+@compiled
+def next_factor(norm, memory, rejected_before, order):
+    """How much longer the next step may be: the elementary rule, held back by the trend of the last error."""
+    norm = max(norm, 1e-10)
     growth = _SAFETY * norm ** (-1.0 / order)
-    if memory[LAST_STEP] > 0.0 and not rejected:
+    if memory[LAST_STEP] > 0.0:
         trend = _SAFETY * memory[STEP] / memory[LAST_STEP] * (memory[LAST_ERROR] / norm**2) ** (1.0 / order)
         growth = min(growth, trend)
     growth = min(max(growth, _SHRINK), _GROW)
@@ -162,10 +164,10 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             shift = _time_shift(error, old, new, start_slope, h, atol, rtol)
             norm = max(error_norm(error, old, new, atol, rtol), shift / (SHIFT_PART * rtol * (t + h)))
         if not norm <= 1.0:
-            shorter = next_factor(norm, memory, True, True, estimator_order) if norm < 1e10 else 0.1
+            shorter = shortened(norm, estimator_order)
             if memory[LAST_STEP] == 0.0:  # the first step may be a guess that is far too long
                 shorter = max(min(shorter, norm ** (-1.0 / estimator_order)), 1e-3)
-            memory[STEP] = h * min(shorter, 0.9)
+            memory[STEP] = h * shorter
             counts[REJECTED] += 1
             rejected = True
             continue
@@ -199,7 +201,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             rejected = True
             continue
         memory[STEP] = h
-        growth = next_factor(norm, memory, False, rejected, estimator_order)
+        growth = next_factor(norm, memory, rejected, estimator_order)
         memory[LAST_STEP], memory[LAST_ERROR] = h, max(norm, 1e-2)
         memory[TIME] = stop if last else t + h
         memory[STEP] = max(h * growth, intended) if last else h * growth
