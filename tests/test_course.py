@@ -5,6 +5,7 @@ import pytest
 
 from bothways import Equations, build_case, read_case, read_mechanism, run
 from bothways.course import Course, settled
+from bothways.integrate import Resolvent
 
 FAST = 1e9
 
@@ -94,3 +95,11 @@ def test_settled_keeps_what_the_step_resolves():
     kept = settled(np.ones(5), lambda v: v / (1 - 0.05 * rates))
     x = -0.05 * rates
     assert np.allclose(kept, 1 - (x / (1 + x))**5, rtol=1e-9, atol=1e-15)
+
+
+def test_a_resolvent_without_a_digit_left_takes_all_as_fast():
+    """(I - h J) that is zero, or holds no number: what is left of any vector is nothing."""
+    pattern = np.array([0, 1, 0, 1]), np.array([0, 2, 4])
+    for values in (np.array([2.0, 0.0, 0.0, 2.0]), np.full(4, np.nan)):
+        solve = Resolvent(pattern, np.ones(2), 0).of(values, 0.5)
+        assert np.array_equal(solve(np.array([1.0, 2.0])), np.zeros(2))

@@ -54,8 +54,8 @@ ROUND_OFF = 4e-15
 DRIFT_ALLOWED = 1e-15
 """Conserved totals further off than this [-] are mended."""
 LEAST_WEIGHT = 1e-9
-"""A conserved row whose own species, those that rows before it do not hold, weigh less than this part of it is left as it is:
-the round-off of its total is more than they are good for [-]."""
+"""Rows are mended from the smallest on. One whose own species, those that smaller rows do not hold, weigh less than this part of
+it is left as it is: the round-off of its total is more than they are good for [-]."""
 INSIGNIFICANT = 1e-30
 """Of the total amount: totals off by less are not mended [-]."""
 LARGEST_MENDING = 1e-2
@@ -83,17 +83,17 @@ def ledger_of(rows: np.ndarray, totals: np.ndarray, energy: float, temperature: 
 
 
 @compiled
-def weighted_solve(rows, weights, right, matrix, out, least):
-    """λ of (Σ_i rows_ki w_i rows_li) λ_l = right_k by Cholesky's method; λ = 0 of rows of which no more than a part `least`
-    is independent of those before."""
+def weighted_solve(rows, weights, right, order, least, matrix, out):
+    """λ of (Σ_i rows_ki w_i rows_li) λ_l = right_k by Cholesky's method, rows in this order; λ = 0 of rows of which no more
+    than a part `least` is independent of those before."""
     m, n = rows.shape
     weighted = np.empty(n)
     for k in range(m):
-        row = rows[k]
+        row = rows[order[k]]
         for i in range(n):
             weighted[i] = row[i] * weights[i]
         for q in range(k + 1):
-            matrix[k, q] = dot(weighted, rows[q])
+            matrix[k, q] = dot(weighted, rows[order[q]])
     for k in range(m):
         scale = matrix[k, k]
         for q in range(k + 1):
@@ -105,15 +105,15 @@ def weighted_solve(rows, weights, right, matrix, out, least):
             else:
                 matrix[k, k] = math.sqrt(total) if total > least * scale else 0.0
     for k in range(m):
-        total = right[k]
+        total = right[order[k]]
         for j in range(k):
-            total -= matrix[k, j] * out[j]
-        out[k] = total / matrix[k, k] if matrix[k, k] > 0.0 else 0.0
+            total -= matrix[k, j] * out[order[j]]
+        out[order[k]] = total / matrix[k, k] if matrix[k, k] > 0.0 else 0.0
     for k in range(m - 1, -1, -1):
-        total = out[k]
+        total = out[order[k]]
         for j in range(k + 1, m):
-            total -= matrix[j, k] * out[j]
-        out[k] = total / matrix[k, k] if matrix[k, k] > 0.0 else 0.0
+            total -= matrix[j, k] * out[order[j]]
+        out[order[k]] = total / matrix[k, k] if matrix[k, k] > 0.0 else 0.0
 
 
 @compiled
@@ -124,11 +124,12 @@ def mend(amount, rows, totals, matrix, residual, multiplier, head):
         if amount[i] < 0.0:
             amount[i] = 0.0
             negative = True
-    change, nothing = np.empty(amount.size), INSIGNIFICANT * total_of(amount)
+    change, sizes, nothing = np.empty(amount.size), np.empty(totals.size), INSIGNIFICANT * total_of(amount)
     for attempt in range(3):
         worst = 0.0
         for k in range(totals.size):
             now, size = _total_and_size(rows[k], amount)
+            sizes[k] = size
             residual[k] = totals[k] - now
             if abs(residual[k]) <= nothing:
                 residual[k] = 0.0
@@ -138,7 +139,7 @@ def mend(amount, rows, totals, matrix, residual, multiplier, head):
             head[LARGEST_DRIFT] = max(head[LARGEST_DRIFT], worst)
         if worst <= DRIFT_ALLOWED:
             return True
-        weighted_solve(rows, amount, residual, matrix, multiplier, LEAST_WEIGHT)
+        weighted_solve(rows, amount, residual, np.argsort(sizes), LEAST_WEIGHT, matrix, multiplier)
         largest = 0.0
         _fit(rows, multiplier, change)
         for i in range(amount.size):
@@ -339,7 +340,7 @@ def _deviations(old, rows, potential, matrix, right, multiplier, deviation):
         deviation[i] = old[i] * potential[i]
     for k in range(right.size):
         right[k] = dot(rows[k], deviation)
-    weighted_solve(rows, old, right, matrix, multiplier, 1e-12)
+    weighted_solve(rows, old, right, np.arange(right.size), 1e-12, matrix, multiplier)
     _fit(rows, multiplier, deviation)
     for i in range(old.size):
         deviation[i] = potential[i] - deviation[i]
