@@ -153,6 +153,7 @@ def state_at(run, t):
 def test_what_cannot_come_about_stays_away(seed, monkeypatch):
     """Also by species: a little of an autocatalyst that round-off made would grow to amounts that matter."""
     monkeypatch.setattr(driver, "PATIENCE", 10**6)
+    monkeypatch.setattr(driver, "DROWNED", np.inf)
     monkeypatch.setattr(driver, "MOST_STEPS_IF_ASKED", 500)
     case = network(seed, 20.0, 4.0)
     with warnings.catch_warnings():
@@ -175,6 +176,15 @@ def test_what_the_method_by_species_cannot_do(seed, decades, monkeypatch):
     assert last.kind in (Kind.LANDED, Kind.APART) and result.statistics["graded_steps"] < 800
     assert np.max(np.abs(result.element_residual)) < 1e-13
     assert result.statistics["rejected_by_second_law"] < 0.05 * result.statistics["steps"]
+
+
+@pytest.mark.parametrize("seed", [160, 1678, 1743])
+def test_what_drowns_is_noticed_before_it_does_harm(seed):
+    """30 decades: by species steps go on growing past what they no longer see, up to the last time, and end elsewhere."""
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore", Remark)
+        result, last = run_and_judge(network(seed, 30.0, 4.0))
+    assert last.kind in (Kind.LANDED, Kind.APART) and last.largest_deviation < 1e-6 and 0 < result.statistics["graded_steps"]
 
 
 def test_mending_leaves_alone_what_only_round_off_tells():

@@ -28,10 +28,13 @@ from .rosenbrock_tables import RODAS5P, RosenbrockTable
 
 CHUNK, CHUNK_IF_ASKED = 64, 8
 """Steps between returns to Python, and where the problem wants to be asked whether to end."""
-PATIENCE, USUAL_RTOL, CHEAP = 600, 1e-6, 100
+PATIENCE, USUAL_RTOL, CHEAP = 1000, 1e-6, 100
 """Where so many steps have not come to the end that is asked for, a Rosenbrock method goes on by reactions. More steps are
 allowed at a tighter rtol than USUAL_RTOL, as many more as the order tells, and with more unknowns than CHEAP, by the square root
 of how many more, since steps by reactions cost more then. (Common practice, no source.)"""
+DROWNED = 1e15
+"""And where the fastest rate times the time reached is more than this: an entry of the Jacobian that holds the fastest rate to
+sixteen digits says nothing any more about rates of one over that time [-]."""
 RESUMED = 1e-2
 """The first step by reactions is tried no shorter than this part of the time reached [-]: long steps damp what round-off has
 left of fast transients, which may be too fast for the clock."""
@@ -147,9 +150,13 @@ class RosenbrockStepper(Stepper):
                            self.memory, self.atol, self.rtol, stop, self.times, self.states, self.counts)
 
     def in_trouble(self, status: int) -> bool:
-        """As every method; or, on the way to an end that is asked for, too many steps."""
+        """As every method; or what the time reached asks for drowns in the fastest rate; or, on the way to an end that is asked
+        for, too many steps."""
+        if self.by_reaction is not None:
+            return super().in_trouble(status)
+        drowned = self.memory[stepping.TIME] * self.memory[ros.FASTEST] > DROWNED
         slow = self.problem.until is not None and self.counts[stepping.STEPS] + self.counts[stepping.REJECTED] > self.patience
-        return super().in_trouble(status) or bool(slow)
+        return super().in_trouble(status) or bool(drowned) or bool(slow)
 
     def change_over(self) -> bool:
         """Goes on by reactions (graded.py), from where it stands."""

@@ -39,8 +39,8 @@ from .stepping import (
     solve_either,
 )
 
-LAST_STEP, LAST_ERROR = OWN_MEMORY, OWN_MEMORY + 1
-MEMORY_SIZE = OWN_MEMORY + 2
+LAST_STEP, LAST_ERROR, FASTEST = OWN_MEMORY, OWN_MEMORY + 1, OWN_MEMORY + 2
+MEMORY_SIZE = OWN_MEMORY + 3
 SHIFT_PART = 0.01
 """A step that speeds up may shift what follows by this part of rtol, of the time reached. Parts of 0.005 to 0.1 and none
 were compared by the steps to an achieved error, see benchmarks/controllers.py; without it ignition comes at a time that is
@@ -91,6 +91,15 @@ def _time_shift(error, old, new, slope, h, atol, rtol):
 
 
 @compiled
+def fastest(jacobian, own, mass):
+    """The largest rate on the diagonal of the Jacobian [1/time], of unknowns that have a derivative."""
+    largest = 0.0
+    for i in range(mass.size):
+        largest = max(largest, mass[i] * abs(jacobian[own[i]]))
+    return largest
+
+
+@compiled
 def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, target, own, mass, table, gamma,
             estimator_order, z, memory, atol, rtol, stop, times, states, counts):
     """Steps from memory[TIME] towards `stop` until it is reached or the buffer (times, states) is full.
@@ -119,6 +128,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
         if not fresh:
             call(J, z, jacobian, context)
             call(f, z, start_slope, context)
+            memory[FASTEST] = fastest(jacobian, own, mass)
             counts[J_CALLS] += 1
             counts[F_CALLS] += 1
             fresh = True
