@@ -20,6 +20,7 @@ from invented import building_blocks
 from invented_laws import every_law
 from invented_lumped import lumped_steps
 from networks import CLOSURES, network
+from test_relaxation import chain, from_ratio
 
 pytestmark = pytest.mark.skipif(not JIT, reason="callbacks have no address in interpreted kernels")
 SETS = {"building blocks": building_blocks, "every law": every_law, "lumped steps": lumped_steps}
@@ -161,6 +162,18 @@ def test_what_cannot_come_about_stays_away(seed, monkeypatch):
         result = run_and_judge(case)[0]
     there, _ = reachable(case.mechanism, case.charge.amount)
     assert result.statistics["graded_steps"] == 0 and not there.all() and np.all(result.amount[:, ~there] == 0.0)
+
+
+@pytest.mark.parametrize("slow", [1e-16, 1e-20, 1e-24])
+def test_a_slow_step_behind_a_fast_one_keeps_its_time(slow):
+    """A ⇌ B ⇌ C at 1 : 2 : 3, k = 1 and `slow`: c = ½ (1 - exp(-4/3 slow t)) once A and B are at their equilibrium, to within
+    `slow`; 16 to 24 decades, at every step with more C than the tolerance asks for."""
+    case = chain([("A", "B", 1.0), ("B", "C", slow)], from_ratio(1.0, 2.0, 3.0), {"A": 1})
+    result, last = run_and_judge(build_case({**case.document, "until": {"equilibrium": True}}, mechanism=case.mechanism))
+    c, exact = result.mole_fraction[:, 2], -0.5 * np.expm1(-4.0 / 3.0 * slow * result.time)
+    seen = exact > 1e-9
+    assert last.kind is Kind.LANDED and result.statistics["graded_steps"] > 0 and np.sum(seen) > 10
+    assert np.max(np.abs(c[seen] / exact[seen] - 1.0)) < 1e-4
 
 
 @pytest.mark.parametrize("seed, decades", [(1, 20.0), (55, 20.0), (529, 20.0), (1269, 30.0)])
