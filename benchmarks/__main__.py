@@ -2,7 +2,7 @@
 
     python -m benchmarks [folder]
 
-Some twenty minutes; run it on an idle machine. Existing files of the folder are replaced.
+Some half an hour; run it on an idle machine. Existing files of the folder are replaced.
 """
 
 import os
@@ -15,7 +15,7 @@ from pathlib import Path
 
 from matplotlib.figure import Figure
 
-from . import family, parts, solvers
+from . import controllers, family, parts, solvers
 
 MARKERS = "os^vDXP*"
 PACKAGES = ("numpy", "scipy", "numba", "scikit-sundae")
@@ -76,6 +76,7 @@ def main(folder: Path) -> None:
     folder.mkdir(parents=True, exist_ok=True)
     write(folder, "parts", "Parts of a step", parts.report())
     write(folder, "family", "Time of a step against the number of species", family.report())
+    write(folder, "controllers", "Rules for the step length", controllers.lines(list(controllers.SETS)))
     write(folder, "solvers", "Work and precision of the integrators", precision(folder))
 
 
