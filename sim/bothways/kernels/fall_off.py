@@ -130,7 +130,7 @@ def _set_curve_centres(T, ints, floats, work):
     """log10 of the centre, its slope, and ln of the factor beside it, of every other curve."""
     parameter, centre = view(floats, ints, _CURVE_PARAMETER), view(work, ints, _CURVE_CENTRE)
     slope, factor = view(work, ints, _CURVE_CENTRE_SLOPE), view(work, ints, _CURVE_FACTOR)
-    log_T = math.log(T)
+    log_T = math.log(T) if centre.size > 0 else 0.0
     for u in range(centre.size):
         p = parameter[8 * u : 8 * u + 8]
         x1, x2 = p[0] * math.exp(-T * p[1]), p[2] * math.exp(-T * p[3])

@@ -284,7 +284,7 @@ def judge(exchange_pointer, verdict_pointer, context):
     else:
         put(scratch[2], scratch[6])
     potential, deviation = scratch[8], scratch[9]
-    _reduced_potentials(old, T0, vessel, ints, floats, scratch[0], potential)
+    _reduced_potentials(old, T0, vessel, ints, floats, scratch[0], deviation, potential)
     _deviations(old, rows, potential, matrix, residual, multiplier, deviation)
     change, noise = change_of_potential(old, new, T0, T1, potential, deviation, scratch[2], scratch[6], vessel)
     further_change, further_noise, excused = 0.0, 0.0, 0.0
@@ -317,8 +317,8 @@ def judge(exchange_pointer, verdict_pointer, context):
 
 
 @compiled
-def _reduced_potentials(amount, T, vessel, ints, floats, gibbs, out):
-    """μ/RT less element terms, which no reaction changes; without ln of the amount where that is zero."""
+def _reduced_potentials(amount, T, vessel, ints, floats, gibbs, held, out):
+    """μ/RT less element terms, which no reaction changes; without ln of the amount where that is zero. held: scratch."""
     reduction, standard = view(floats, ints, _REDUCTION), view(floats, ints, _STANDARD)
     total = total_of(amount)
     shift = standard[1] * math.log(T) - math.log(standard[0])
@@ -326,11 +326,12 @@ def _reduced_potentials(amount, T, vessel, ints, floats, gibbs, out):
         shift = math.log(vessel[PRESSURE] / (R * standard[0] * total))
     elif vessel[SHARED] == 1.0:
         shift = -math.log(total)
-    held, logs = np.maximum(amount, SMALLEST_AMOUNT), np.empty(amount.size)
-    log_array(held, logs)
+    for i in range(amount.size):
+        held[i] = max(amount[i], SMALLEST_AMOUNT)
+    log_array(held, out)
     for i in range(amount.size):
         bare = gibbs[i] - reduction[2 * i] / T - reduction[2 * i + 1] + shift
-        out[i] = bare + logs[i] if amount[i] > 0.0 else bare
+        out[i] = bare + out[i] if amount[i] > 0.0 else bare
 
 
 @compiled

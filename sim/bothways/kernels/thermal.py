@@ -44,13 +44,13 @@ _REVERSE_SLOPE = at.offset_slot(at.WORK, "reverse_slope")
 
 
 @compiled
-def _scales(T, ints, floats, work):
+def _scales(T, log_T, ints, floats, work):
     """ln of E_i = c°·exp(-g_i/RT) [mol/m3], c° = p°/RT in a gas, with the element terms taken off g, which change no K."""
     n = ints[at.SPECIES]
     gibbs, reduction = view(work, ints, _GIBBS), view(floats, ints, _REDUCTION)
     log_scale = view(work, ints, _LOG_SCALE)
     standard = view(floats, ints, _STANDARD)
-    log_standard = math.log(standard[0]) - standard[1] * math.log(T)
+    log_standard = math.log(standard[0]) - standard[1] * log_T
     for i in range(n):
         gibbs[i] -= reduction[2 * i] / T + reduction[2 * i + 1]
         log_scale[i] = log_standard - gibbs[i]
@@ -58,11 +58,10 @@ def _scales(T, ints, floats, work):
 
 
 @compiled
-def _limits(T, ints, floats, work):
+def _limits(T, log_T, ints, floats, work):
     """ln of all Arrhenius expressions."""
     log_A, power, theta = view(floats, ints, _LOG_A), view(floats, ints, _POWER), view(floats, ints, _THETA)
     log_k = view(work, ints, _LOG_K)
-    log_T = math.log(T)
     inverse = 1.0 / T
     for e in range(log_k.size):
         log_k[e] = log_A[e] + power[e] * log_T - theta[e] * inverse
@@ -88,8 +87,9 @@ def set_temperature(T, ints, floats, work):
         return
     standard_state(T, ints, floats, work, view(work, ints, _GIBBS), view(work, ints, _ENTHALPY),
                    view(work, ints, _HEAT_CAPACITY), view(work, ints, _HEAT_CAPACITY_SLOPE))
-    _scales(T, ints, floats, work)
-    _limits(T, ints, floats, work)
+    log_T = math.log(T)
+    _scales(T, log_T, ints, floats, work)
+    _limits(T, log_T, ints, floats, work)
     set_centre_exponents(T, ints, floats, work)
     _exponentials(ints, work)
     set_centres(T, ints, floats, work)
