@@ -43,8 +43,8 @@ LAST_STEP, LAST_ERROR, FASTEST = OWN_MEMORY, OWN_MEMORY + 1, OWN_MEMORY + 2
 MEMORY_SIZE = OWN_MEMORY + 3
 SHIFT_PART = 0.02
 """A step that speeds up may shift what follows by this part of rtol, of the time reached. Parts of 0.005 to 0.3 and none
-were compared by the steps to an achieved error, see benchmarks/controllers.py; without it ignition comes at a time that is
-wrong by ten to a hundred times rtol, or takes half as many steps again."""
+were compared by the steps to an achieved error, see benchmarks/controllers.py; without it the same error takes more than
+half as many steps again."""
 PATIENCE = 3
 """Refusals by the monitor in a row, each at a quarter of the length, before a backward Euler step is tried instead."""
 _SAFETY, _SHRINK, _GROW = 0.85, 0.2, 6.0
