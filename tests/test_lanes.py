@@ -61,6 +61,7 @@ def test_factors_with_a_full_block_of_any_size(size, monkeypatch):
     lu, scratch, x, out = np.zeros(p.fill), np.zeros(60), np.empty(60), np.empty(60)
     for turn in (1.0, 2.0):  # a second factorisation finds what the first left behind
         assert factor(turn * values, p.order, p.start, p.column, p.diagonal, p.target, lu, scratch)
+        solve(lu, p.order, p.start, p.column, p.diagonal, np.full(60, np.nan), x)  # is forgotten
         solve(lu, p.order, p.start, p.column, p.diagonal, np.arange(1.0, 61.0), x)
         unpermute(x, p.order, out)
         assert np.allclose(turn * matrix @ out, np.arange(1.0, 61.0), rtol=1e-12) and not scratch.any()

@@ -90,6 +90,8 @@ def solve_block(block, n, size, x):
     lower, upper, inverse, _, own = places(n, size)
     for i in range(size):
         block[own + i] = x[above + i]
+    for i in range(size, wide):  # a right-hand side that was not finite leaves NaN there
+        block[own + i] = 0.0
     _subtract_all(block, own, x, lower, above, wide)
     for k in range(size - 1):
         value, column = block[own + k], lower + (above + k) * wide
