@@ -77,11 +77,11 @@ def test_networks_over_20_decades_land(monkeypatch: pytest.MonkeyPatch) -> None:
 @pytest.mark.slow
 @pytest.mark.parametrize("decades", [20.0, 30.0])
 def test_2000_networks_land_or_say_so(decades: float) -> None:
-    """Over 20 decades every one lands; over 30 nearly every one does, and those that round-off stops say so."""
+    """Every one lands over 20 decades, and so did every one over 30; should round-off stop one of these, it has to say so."""
     faults, short = census(range(2000), decades, 4.0)
     print(f"{decades:g} decades: {len(short)} of 2000 did not land: {short}")
     assert not faults, "\n".join(faults)
-    assert len(short) <= (0 if decades <= 20.0 else 4)
+    assert len(short) <= (0 if decades <= 20.0 else 2)
 
 
 @pytest.mark.parametrize("slow, told", [(1e-10, False), (1e-18, True)])

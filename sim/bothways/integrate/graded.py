@@ -245,8 +245,12 @@ def _solve_stages(rates, context, table, h, z, start_w, w, space, counts):
 
 
 @compiled
-def _combine(table, z, space, new, error):
-    """The new state and its error estimate from the stages, T's from those of the amounts; False if not finite."""
+def _combine(table, z, atol, space, new, error):
+    """The new state and its error estimate from the stages, T's from those of the amounts; False if not finite.
+
+    A negative amount within atol becomes its mirror image, as near to the truth as zero is: at zero what species take from one
+    another in pairs is gone from the Jacobian, and step after step would overshoot again.
+    """
     n, s, last = space.scale.size, table.shape[1], z.size - 1
     new[:] = z
     error[:] = 0.0
@@ -259,6 +263,8 @@ def _combine(table, z, space, new, error):
     for k in range(n):
         if not math.isfinite(new[k]):
             return False
+        if new[k] < 0.0 and -new[k] <= atol[k]:
+            new[k] = -new[k]
     return True
 
 
@@ -294,7 +300,7 @@ def advance(rates, slopes, judge, context, space, table, gamma, estimator_order,
         counts[FACTORISATIONS] += 1
         old[:] = z
         sound = (factorise(space, 1.0 / (h * gamma)) and _solve_stages(rates, context, table, h, z, start_w, w, space, counts)
-                 and _combine(table, z, space, new, error))
+                 and _combine(table, z, atol, space, new, error))
         norm = error_norm(error, old, new, atol, rtol) if sound else np.inf
         if not norm <= 1.0:
             memory[STEP] = h * shortened(norm, estimator_order)
