@@ -22,7 +22,7 @@ from ..compiled import CROSSED, REFUSED, STAND, call, compiled
 from ..sums import dot
 from .grading import grade_reactions, grade_species, in_order
 from .interface import ByReaction
-from .rosenbrock import LAST_ERROR, LAST_STEP, next_factor, shortened
+from .rosenbrock import LAST_ERROR, LAST_STEP, SHIFT_PART, next_factor, shortened, time_shift
 from .sparse_lu import dense_factor, dense_solve
 from .stepping import (
     AT_CROSSING,
@@ -269,6 +269,15 @@ def _combine(table, z, atol, space, new, error):
 
 
 @compiled
+def _set_slope(w, space, slope):
+    """f (nz) from the net rates (R), zero for unknowns that are neither amounts nor T."""
+    slope[:] = 0.0
+    for i in range(space.scale.size):
+        slope[i] = dot(space.nu[i], w)
+    slope[slope.size - 1] = dot(_parts(space)[3], slope[: space.scale.size])
+
+
+@compiled
 def advance(rates, slopes, judge, context, space, table, gamma, estimator_order, z, memory, atol, rtol, stop, times, states,
             counts):
     """Steps from memory[TIME] towards `stop` until it is reached or the buffer (times, states) is full.
@@ -277,7 +286,7 @@ def advance(rates, slopes, judge, context, space, table, gamma, estimator_order,
     the status and the number of steps written.
     """
     nz = z.size
-    start_w, w = np.empty(space.speed.size), np.empty(space.speed.size)
+    start_w, w, slope = np.empty(space.speed.size), np.empty(space.speed.size), np.empty(nz)
     exchange, verdict = np.zeros(3 * nz), np.zeros(4)
     old, new, error = exchange[:nz], exchange[nz : 2 * nz], exchange[2 * nz :]
     written, fresh, rejected = 0, False, False
@@ -296,12 +305,16 @@ def advance(rates, slopes, judge, context, space, table, gamma, estimator_order,
             counts[F_CALLS] += 1
             if not linearise(rates, slopes, context, z, atol, space, start_w):
                 return NOT_FINITE, written
+            _set_slope(start_w, space, slope)
             fresh = True
         counts[FACTORISATIONS] += 1
         old[:] = z
         sound = (factorise(space, 1.0 / (h * gamma)) and _solve_stages(rates, context, table, h, z, start_w, w, space, counts)
                  and _combine(table, z, atol, space, new, error))
-        norm = error_norm(error, old, new, atol, rtol) if sound else np.inf
+        norm = np.inf
+        if sound:
+            shift = time_shift(error, old, new, slope, h, atol, rtol)
+            norm = max(error_norm(error, old, new, atol, rtol), shift / (SHIFT_PART * rtol * (t + h)))
         if not norm <= 1.0:
             memory[STEP] = h * shortened(norm, estimator_order)
             counts[REJECTED] += 1

@@ -69,7 +69,7 @@ def next_factor(norm, memory, rejected_before, order):
 
 
 @compiled
-def _time_shift(error, old, new, slope, h, atol, rtol):
+def time_shift(error, old, new, slope, h, atol, rtol):
     """By how much an error shifts all that follows in time, while the course speeds up; 0 where it slows down.
 
     Of y' = f(y) any course moved in time is another course, so that an error along the change d of a step, the part
@@ -172,7 +172,7 @@ def advance(f, J, judge, context, rows, starts, order, start, column, diagonal, 
             finite = finite and math.isfinite(new[k])
         norm = np.inf
         if finite:
-            shift = _time_shift(error, old, new, start_slope, h, atol, rtol)
+            shift = time_shift(error, old, new, start_slope, h, atol, rtol)
             norm = max(error_norm(error, old, new, atol, rtol), shift / (SHIFT_PART * rtol * (t + h)))
         if not norm <= 1.0:
             shorter = shortened(norm, estimator_order)
