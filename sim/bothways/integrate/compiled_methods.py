@@ -35,6 +35,9 @@ of how many more, since steps by reactions cost more then. (Common practice, no 
 DROWNED = 1e15
 """And where the fastest rate times the time reached is more than this: an entry of the Jacobian that holds the fastest rate to
 sixteen digits says nothing any more about rates of one over that time [-]."""
+FEW, MANY = 400, 1000
+"""A step by reactions takes time as the cube of the unknowns: of more than FEW only a run that round-off stops goes on that way,
+of more than MANY none does. (Common practice, no source; 350 unknowns take a hundred times as long as by species.)"""
 RESUMED = 1e-2
 """The first step by reactions is tried no shorter than this part of the time reached [-]: long steps damp what round-off has
 left of fast transients, which may be too fast for the clock."""
@@ -152,7 +155,7 @@ class RosenbrockStepper(Stepper):
     def in_trouble(self, status: int) -> bool:
         """As every method; or what the time reached asks for drowns in the fastest rate; or, on the way to an end that is asked
         for, too many steps."""
-        if self.by_reaction is not None:
+        if self.by_reaction is not None or self.own.size > FEW:
             return super().in_trouble(status)
         drowned = self.memory[stepping.TIME] * self.memory[ros.FASTEST] > DROWNED
         slow = self.problem.until is not None and self.counts[stepping.STEPS] + self.counts[stepping.REJECTED] > self.patience
@@ -160,7 +163,7 @@ class RosenbrockStepper(Stepper):
 
     def change_over(self) -> bool:
         """Goes on by reactions (graded.py), from where it stands."""
-        if self.by_reaction is not None or self.system.by_reaction is None:
+        if self.by_reaction is not None or self.system.by_reaction is None or self.own.size > MANY:
             return False
         by = self.system.by_reaction()
         if not by.nu.any():
